@@ -1,0 +1,71 @@
+"""Controller families: what is published of each, as data, and how a part is recognised as one."""
+
+from __future__ import annotations
+
+import re
+from functools import cache
+from pathlib import Path
+
+from .profile import (
+    ROLES,
+    DeadTimeModel,
+    Figure,
+    PinDescription,
+    Profile,
+    ProfileError,
+    parse,
+    plain_name,
+)
+
+__all__ = [
+    "ROLES",
+    "DeadTimeModel",
+    "Figure",
+    "PinDescription",
+    "Profile",
+    "ProfileError",
+    "families",
+    "generic_number",
+    "load",
+    "parse",
+    "plain_name",
+]
+
+_FOLDER = Path(__file__).parent
+
+
+def families() -> tuple[str, ...]:
+    """Return the families that have a profile, such as "494", in alphabetical order."""
+    return tuple(sorted(path.stem for path in _FOLDER.glob("*.toml")))
+
+
+@cache
+def load(family: str, variant: str | None = None) -> Profile:
+    """Return the profile of a family.
+
+    variant: the generic number met on the board, such as "594", whose own figures then take precedence
+    Raises ProfileError for a family or a variant that does not exist, and for a faulty file.
+    """
+    if family not in families():
+        raise ProfileError(f"no profile of a family {family!r}; there are: {', '.join(families())}")
+    path = _FOLDER / f"{family}.toml"
+    return parse(path.read_text(encoding="utf-8"), path.name, variant)
+
+
+def generic_number(text: str) -> tuple[str, str] | None:
+    """Return (family, generic number) when a model name or value holds one as a whole number, else None.
+
+    "xx494CN" holds 494; "4940", "1494" and "4.94" do not, and neither does a logic part such as 74HC594.
+    """
+    for family in families():
+        for number in load(family).generic_numbers:
+            if _number_pattern(number).search(text):
+                return family, number
+    return None
+
+
+@cache
+def _number_pattern(number: str) -> re.Pattern[str]:
+    # Logic series 54 and 74 count their functions by the same numbers (594: a shift register). A look-behind
+    # has a fixed width, so that the one for logic is written as an alternative that eats the number.
+    return re.compile(rf"(?<![0-9])(?<![0-9]\.){number}(?![0-9]|\.[0-9])")

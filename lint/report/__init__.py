@@ -1,0 +1,51 @@
+"""Reports: one module per format, each with `write(reviews, stream, gate)`.
+
+A new format is a module here and a line in `FORMATS`. A report computes nothing of a circuit: it prints what
+the review says.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from importlib import import_module
+from typing import Protocol, TextIO
+
+from ..verdict import Level, Review
+
+# Name on the command line -> module; loaded only when asked for, so that a JSON report needs no rich.
+FORMATS = {"text": ".text", "json": ".json"}
+
+
+@dataclass(frozen=True, slots=True)
+class Gate:
+    """What stops a build.
+
+    level:  the least level of a failed verdict that does; None: none does
+    strict: whether `open` and `review` verdicts do as well
+    """
+
+    level: Level | None = Level.ERROR
+    strict: bool = False
+
+    def passes(self, review: Review) -> bool:
+        """Tell whether `review` passes."""
+        return review.passes(self.level, strict=self.strict)
+
+    def __str__(self) -> str:
+        """Return the gate as asked for on the command line, such as "error, strict"."""
+        return (self.level.value if self.level else "never") + (", strict" if self.strict else "")
+
+
+class Writer(Protocol):
+    """Writes `reviews` to `stream` in one format."""
+
+    def __call__(self, reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
+        """Write everything; raise OSError where the stream does."""
+        ...
+
+
+def writer(name: str) -> Writer:
+    """Return the writer of the format `name`, a key of `FORMATS`."""
+    write: Writer = import_module(FORMATS[name], __package__).write
+    return write

@@ -1,0 +1,335 @@
+"""Growing the network round a pin: through resistive parts until nets of known potential.
+
+What a part means to direct current is one small function a kind, in the table `_MEANINGS`. A part that
+linear analysis does not cover is never passed over: it lands in `blocked` (the answer cannot be had), in
+`diodes` (taken as off, to be proved by the answer) or in `switches` (taken as off, and said so).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from ...grammar.netlist import Part, Pin
+from .controllers import Controller, ControllerPin
+from .graph import Circuit, Connection
+from .potentials import Potential
+from .solver import Array, ControlledSource, CurrentSource, Element, Network, Resistor, Sample, Value, VoltageSource
+from .worst_case import Parameter, Variation
+
+GROUND = "\x00ground"  # the name of ground inside a network: no net of a file can have it
+
+# Pins of a controller whose potential the converter's own switching sets.
+_SWITCHING_ROLES = ("output 1 collector", "output 1 emitter", "output 2 collector", "output 2 emitter")
+
+
+@dataclass(frozen=True, slots=True)
+class Blocked:
+    """A net on which a part sits that linear analysis does not cover."""
+
+    net: str
+    part: str
+    reason: str
+
+
+@dataclass(frozen=True, slots=True)
+class Diode:
+    """A diode on the network: taken as off, which the solution must bear out."""
+
+    part: str
+    anode: str
+    cathode: str
+
+
+@dataclass(slots=True)
+class Growth:
+    """A network as it grows from its seeds; `network()` hands it to the solver.
+
+    stops: nets at which growth ends although their potential is not known (what the caller replaces by a
+           free quantity, or wants to leave out)
+    """
+
+    circuit: Circuit
+    known: Mapping[str, Potential]
+    controllers: Sequence[Controller]
+    stops: frozenset[str] = frozenset()
+    elements: dict[str, Element] = field(default_factory=dict[str, Element])
+    parameters: dict[str, Parameter] = field(default_factory=dict[str, Parameter])
+    potentials: dict[str, Value] = field(default_factory=dict[str, Value])
+    assumptions: dict[str, None] = field(default_factory=dict[str, None])
+    blocked: list[Blocked] = field(default_factory=list[Blocked])
+    diodes: list[Diode] = field(default_factory=list[Diode])
+    switches: dict[str, None] = field(default_factory=dict[str, None])
+    parts: dict[str, None] = field(default_factory=dict[str, None])
+    nets: dict[str, None] = field(default_factory=dict[str, None])
+    _waiting: list[str] = field(default_factory=list[str])
+
+    def __post_init__(self) -> None:
+        """Put ground in: bias currents return there."""
+        self.potentials[GROUND] = lambda sample: np.zeros(1)
+
+    def grow(self, *seeds: str, through_known: bool = False) -> Growth:
+        """Grow from `seeds`; a seed of known potential is grown from only when `through_known`."""
+        for seed in seeds:
+            self._enter(seed, expand=through_known)
+        while self._waiting:
+            net = self._waiting.pop()
+            for connection in self.circuit.connections(net):
+                self._take(connection, net)
+        return self
+
+    def network(self) -> Network:
+        """Return the network grown so far, ready for the solver."""
+        return Network(tuple(self.elements.values()), dict(self.potentials))
+
+    def add_parameter(self, parameter: Parameter) -> Value:
+        """Register something that varies and return how its value is read from a sample."""
+        self.parameters.setdefault(parameter.name, parameter)
+        name = parameter.name
+        return lambda sample: sample[name]
+
+    def assume(self, *sentences: str) -> None:
+        """Note what was taken for granted."""
+        self.assumptions.update(dict.fromkeys(sentence for sentence in sentences if sentence))
+
+    def _enter(self, net: str, *, expand: bool = False) -> None:
+        """Take a net into the network, once: known ones end the growth, others go on the waiting list."""
+        if not net or (net in self.nets and not expand):
+            return
+        self.nets[net] = None
+        potential = self.known.get(net)
+        if potential is not None:
+            self.potentials[net] = self.add_parameter(potential.parameter)
+            self.assume(potential.assumption)
+        if net not in self.stops and (potential is None or expand):
+            self._waiting.append(net)
+
+    def _take(self, connection: Connection, net: str) -> None:
+        part = connection.part
+        for controller in self.controllers:
+            if controller.reference == part.reference:
+                self._controller_pin(controller, connection, net)
+                return
+        meaning = _MEANINGS.get(self.circuit.kind(part), _opaque)
+        meaning(self, part, net)
+
+    def _controller_pin(self, controller: Controller, connection: Connection, net: str) -> None:
+        role = controller.role_of(connection.index)
+        if role is None or role in ("ground", "reference", "feedback"):
+            return
+        pin = controller.pins[role]
+        if role in ("supply", *_SWITCHING_ROLES, "timing resistor", "timing capacitor"):
+            if net not in self.known:
+                self.block(net, part=controller.part, reason=f"{pin.name} of {controller.reference} sets it")
+            return
+        self._pin_current(controller, pin, net)
+
+    def _pin_current(self, controller: Controller, pin: ControllerPin, net: str) -> None:
+        """Let the current that flows into a controller's pin load the net."""
+        figure_name = {
+            "dead time": "dead-time.bias-current",
+            "output control": "output-control.current",
+        }.get(pin.role, "amplifier.bias-current")
+        if pin.role == "output control" and _is_ground(self.known.get(net)):
+            return  # a pin at ground draws nothing from the reference
+        spread = controller.profile.figure(figure_name).spread()
+        name = f"{controller.reference} {pin.name} current"
+        value = self.add_parameter(Parameter(name, spread.minimum, spread.nominal, spread.maximum))
+        self.add(CurrentSource(name, net, GROUND, value))
+
+    def block(self, net: str, part: Part, reason: str) -> None:
+        """Note that a part keeps a net's potential from being computed."""
+        blocked = Blocked(net, part.reference, reason)
+        if net not in self.known and net not in self.stops and blocked not in self.blocked:
+            self.blocked.append(blocked)
+
+    def add(self, element: Element) -> None:
+        """Put an element in, once."""
+        self.elements.setdefault(element.name, element)
+
+    def use(self, part: Part) -> None:
+        """Note that a part takes part in the answer."""
+        self.parts[part.reference] = None
+
+    def follow(self, part: Part) -> None:
+        """Go on with every net that the part is on."""
+        for pin in part.pins:
+            self._enter(pin.net)
+
+    def part_value(self, part: Part, net: str) -> Value | None:
+        """Return the part's value as something that varies; without a value the net is blocked."""
+        value = self.circuit.value(part)
+        if value is None:
+            self.block(net, part, self.circuit.reader.value_problem(part) or "it has no value")
+            return None
+        self.assume(*value.assumptions)
+        s = value.spread
+        return self.add_parameter(Parameter(part.reference, s.minimum, s.nominal, s.maximum))
+
+
+def _is_ground(potential: Potential | None) -> bool:
+    return potential is not None and potential.origin == "ground"
+
+
+def _resistor(growth: Growth, part: Part, net: str) -> None:
+    if len(part.pins) != 2:
+        _opaque(growth, part, net)
+        return
+    value = growth.part_value(part, net)
+    if value is not None:
+        growth.use(part)
+        zero = growth.parameters[part.reference].low <= 0
+        growth.add(Resistor(part.reference, part.pins[0].net, part.pins[1].net, value, may_be_zero=zero))
+        growth.follow(part)
+
+
+def _trimmer(growth: Growth, part: Part, net: str) -> None:
+    """Put in a trimmer as two resistances whose sum is its value; the wiper travels end to end."""
+    value = growth.part_value(part, net)
+    if value is None:
+        return
+    growth.use(part)
+    name = f"{part.reference} travel"
+    travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL))
+    top, wiper, bottom = (pin.net for pin in in_trimmer_order(part))
+    growth.add(Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True))
+    growth.add(Resistor(f"{part.reference} lower", wiper, bottom, _share(value, travel), may_be_zero=True))
+    growth.follow(part)
+
+
+_WIPER_NAMES = frozenset({"w", "wiper", "s", "slider"})
+
+
+def in_trimmer_order(part: Part) -> tuple[Pin, Pin, Pin]:
+    """Return a trimmer's pins as top, wiper, bottom.
+
+    The wiper is the pin named so, else the one numbered 2, else the middle one as listed (`RV1 top wiper
+    bottom 10k`).
+    """
+    pins = list(part.pins)
+    named = [pin for pin in pins if pin.name.casefold() in _WIPER_NAMES]
+    numbered = [pin for pin in pins if pin.number == "2"]
+    wiper = (named or numbered or pins[1:2])[0]
+    pins.remove(wiper)
+    return pins[0], wiper, pins[1]
+
+
+def _share(value: Value, travel: Value, *, rest: bool = False) -> Value:
+    def resistance(sample: Sample) -> Array:
+        share = travel(sample)
+        return value(sample) * (1.0 - share if rest else share)
+
+    return resistance
+
+
+def _short(growth: Growth, part: Part, net: str) -> None:
+    """Take an inductor, fuse or jumper as a short: direct current sees no more than that."""
+    if len(part.pins) != 2:
+        _opaque(growth, part, net)
+        return
+    growth.use(part)
+    growth.add(Resistor(part.reference, part.pins[0].net, part.pins[1].net, lambda _: np.zeros(1), may_be_zero=True))
+    growth.follow(part)
+
+
+def _open(growth: Growth, part: Part, net: str) -> None:
+    """Take a capacitor, test point or coupling as open: no direct current flows in it."""
+
+
+def _diode(growth: Growth, part: Part, net: str) -> None:
+    if len(part.pins) != 2:
+        _opaque(growth, part, net)
+        return
+    anode, cathode = diode_nets(part)
+    diode = Diode(part.reference, anode, cathode)
+    if diode not in growth.diodes:
+        growth.diodes.append(diode)
+        growth.use(part)
+        growth.follow(part)
+
+
+def diode_nets(part: Part) -> tuple[str, str]:
+    """Return the anode's and the cathode's net: by pin name where given, else anode first as in a list."""
+    first, second = part.pins
+    if first.name.casefold() in ("k", "c", "cathode") or second.name.casefold() in ("a", "anode"):
+        return second.net, first.net
+    return first.net, second.net
+
+
+def _switch(growth: Growth, part: Part, net: str) -> None:
+    """Take a transistor or switch as off, and say so: when it is on, the net is somewhere else.
+
+    Where it shares the net with a winding it is the converter's power switch, and the net's potential is
+    the converter's doing.
+    """
+    neighbours = (growth.circuit.kind(connection.part) for connection in growth.circuit.connections(net))
+    if _WINDINGS.isdisjoint(neighbours):
+        growth.switches[part.reference] = None
+    else:
+        growth.block(net, part, f"{part.reference} switches it")
+
+
+_WINDINGS = frozenset({"inductor", "transformer", "relay"})
+
+
+def _voltage_source(growth: Growth, part: Part, net: str) -> None:
+    value = growth.part_value(part, net)
+    if value is not None:
+        growth.use(part)
+        growth.add(VoltageSource(part.reference, part.pins[0].net, part.pins[1].net, value))
+        growth.follow(part)
+
+
+def _current_source(growth: Growth, part: Part, net: str) -> None:
+    value = growth.part_value(part, net)
+    if value is not None:
+        growth.use(part)
+        growth.add(CurrentSource(part.reference, part.pins[0].net, part.pins[1].net, value))
+        growth.follow(part)
+
+
+def _controlled_source(growth: Growth, part: Part, net: str) -> None:
+    """Put in an E or G source of constant gain; any other is opaque."""
+    gain = _constant(part.value)
+    if part.element not in ("E", "G") or len(part.pins) != 4 or gain is None:
+        _opaque(growth, part, net)
+        return
+    growth.use(part)
+    a, b, control_a, control_b = (pin.net for pin in part.pins)
+    kind = "voltage" if part.element == "E" else "current"
+    growth.add(
+        ControlledSource(part.reference, a, b, control_a, control_b, lambda _: np.full(1, gain), kind)
+    )
+    growth.follow(part)
+
+
+def _constant(text: str) -> float | None:
+    try:
+        return float(text)
+    except ValueError:
+        return None
+
+
+def _opaque(growth: Growth, part: Part, net: str) -> None:
+    growth.block(net, part, f"{part.reference} ({growth.circuit.kind(part)}) may feed or load it")
+
+
+_MEANINGS: dict[str, Callable[[Growth, Part, str], None]] = {
+    "resistor": _resistor,
+    "trimmer": _trimmer,
+    "capacitor": _open,
+    "coupling": _open,
+    "test point": _open,
+    "inductor": _short,
+    "fuse": _short,
+    "jumper": _short,
+    "diode": _diode,
+    "transistor": _switch,
+    "switch": _switch,
+    "voltage source": _voltage_source,
+    "battery": _voltage_source,
+    "current source": _current_source,
+    "controlled source": _controlled_source,
+}

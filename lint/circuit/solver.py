@@ -1,0 +1,360 @@
+"""Modified nodal analysis of a small linear network, many samples at once.
+
+Published method: C.-W. Ho, A. Ruehli, P. Brennan, "The modified nodal approach to network analysis",
+IEEE Transactions on Circuits and Systems, CAS-22, no. 6, June 1975, pp. 504-509.
+
+Two things are added to the textbook form. A net of known potential (ground, the reference, a rail) has no
+equation of its own; what it feeds goes to the right-hand side. And a *free quantity* may take the place of
+a source: the output voltage, the load current, with one *condition* each that settles it, such as "the
+amplifier's inputs are equal". That is the nullor of network theory, and it makes a closed loop one linear
+solve for any network, not for a recognised shape of two resistors.
+
+Every value is an array of shape (samples,), in volts, amperes and ohms, or a plain float that all share.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import TypeAlias
+
+import numpy as np
+from numpy.typing import NDArray
+
+Array: TypeAlias = NDArray[np.float64]
+Sample: TypeAlias = Mapping[str, Array]
+Value: TypeAlias = Callable[[Sample], Array]
+
+
+@dataclass(frozen=True, slots=True)
+class Resistor:
+    """A resistance between two nets; 0 ohm is allowed (a short, an inductor, the end of a trimmer)."""
+
+    name: str
+    a: str
+    b: str
+    resistance: Value
+    may_be_zero: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class VoltageSource:
+    """Holds `a` above `b` by a voltage."""
+
+    name: str
+    a: str
+    b: str
+    voltage: Value
+
+
+@dataclass(frozen=True, slots=True)
+class CurrentSource:
+    """Drives a current out of net `a`, through itself, into net `b`."""
+
+    name: str
+    a: str
+    b: str
+    current: Value
+
+
+@dataclass(frozen=True, slots=True)
+class ControlledSource:
+    """A source of constant gain, steered by the voltage between two nets.
+
+    kind "voltage": holds `a` above `b` by gain times the control (no unit); "current": drives gain times
+    the control out of `a` into `b` (siemens).
+    """
+
+    name: str
+    a: str
+    b: str
+    control_a: str
+    control_b: str
+    gain: Value
+    kind: str
+
+
+Element: TypeAlias = Resistor | VoltageSource | CurrentSource | ControlledSource
+
+
+@dataclass(frozen=True, slots=True)
+class FreePotential:
+    """The potential of `net` is what the conditions make it (an output voltage in closed loop)."""
+
+    net: str
+
+
+@dataclass(frozen=True, slots=True)
+class FreeCurrent:
+    """A current out of net `a` into net `b` is what the conditions make it (a load current)."""
+
+    name: str
+    a: str
+    b: str
+
+
+Free: TypeAlias = FreePotential | FreeCurrent
+
+
+@dataclass(frozen=True, slots=True)
+class Condition:
+    """Net `a` stands above net `b` by `difference`."""
+
+    a: str
+    b: str
+    difference: Value
+
+
+@dataclass(frozen=True, slots=True)
+class Network:
+    """A network ready to solve: its elements, the nets whose potential is known, and the closed loops.
+
+    Every net that is neither known nor free needs a conductive path to one that is: see `floating`.
+    """
+
+    elements: tuple[Element, ...]
+    known: Mapping[str, Value]
+    free: tuple[Free, ...] = ()
+    conditions: tuple[Condition, ...] = ()
+
+    def nets(self) -> list[str]:
+        """Return every net of the network, in order of appearance."""
+        seen: dict[str, None] = {}
+        for element in self.elements:
+            seen.update(dict.fromkeys(_terminals(element)))
+        for condition in self.conditions:
+            seen.update(dict.fromkeys((condition.a, condition.b)))
+        return list(seen)
+
+    def floating(self) -> set[str]:
+        """Return the nets that no conductive path joins to a known or free potential."""
+        neighbours: dict[str, set[str]] = {}
+        for element in self.elements:
+            conducts = isinstance(element, Resistor | VoltageSource) or (
+                isinstance(element, ControlledSource) and element.kind == "voltage"
+            )
+            if conducts:
+                neighbours.setdefault(element.a, set()).add(element.b)
+                neighbours.setdefault(element.b, set()).add(element.a)
+        reached: set[str] = set()
+        waiting = [*self.known, *(free.net for free in self.free if isinstance(free, FreePotential))]
+        while waiting:
+            net = waiting.pop()
+            if net not in reached:
+                reached.add(net)
+                waiting.extend(neighbours.get(net, ()))
+        return set(self.nets()) - reached
+
+
+def _terminals(element: Element) -> tuple[str, ...]:
+    if isinstance(element, ControlledSource):
+        return (element.a, element.b, element.control_a, element.control_b)
+    return (element.a, element.b)
+
+
+@dataclass(slots=True)
+class Solution:
+    """Voltages and currents of one network, arrays of shape (samples,). Where no solution exists: NaN."""
+
+    network: Network
+    sample: Sample
+    size: int
+    _potentials: dict[str, Array]
+    _branches: dict[str, Array]
+    _free: dict[str, Array] = field(default_factory=dict[str, Array])
+
+    def voltage(self, net: str, reference: str | None = None) -> Array:
+        """Return the potential of `net` in volts, over ground or over another net."""
+        if reference is None:
+            return self._potentials[net]
+        return self._potentials[net] - self._potentials[reference]
+
+    def free_current(self, name: str) -> Array:
+        """Return the current in amperes that the conditions settled for the FreeCurrent `name`."""
+        return self._free[name]
+
+    def current(self, element: Element) -> Array:
+        """Return the current through `element` from its `a` to its `b` terminal, in amperes."""
+        if element.name in self._branches:
+            return self._branches[element.name]
+        if isinstance(element, CurrentSource):
+            return _array(element.current(self.sample), self.size)
+        if isinstance(element, ControlledSource):
+            control = self.voltage(element.control_a, element.control_b)
+            return control * element.gain(self.sample)
+        assert isinstance(element, Resistor)
+        return self.voltage(element.a, element.b) / element.resistance(self.sample)
+
+    def current_out_of(self, net: str) -> Array:
+        """Return the sum of the currents that leave `net` through the network's elements, in amperes."""
+        total = np.zeros(self.size)
+        for element in self.network.elements:
+            if element.a == net and element.b != net:
+                total = total + self.current(element)
+            elif element.b == net and element.a != net:
+                total = total - self.current(element)
+        return total
+
+
+def solve(network: Network, sample: Sample, size: int) -> Solution:
+    """Solve `network` for every sample at once.
+
+    sample: parameter name to an array of shape (size,)
+    Raises ValueError where the network is not well posed (a floating net, as many conditions as free
+    quantities wanted): the caller must have looked. A sample in which the closed loop has no solution
+    gives NaN in every answer of that sample.
+    """
+    if len(network.free) != len(network.conditions):
+        raise ValueError("a closed loop needs one condition for each free quantity")
+    if network.floating():
+        raise ValueError(f"floating nets: {', '.join(sorted(network.floating()))}")
+    equations = _Equations(network, sample, size)
+    for element in network.elements:
+        equations.add(element)
+    for position, free in enumerate(network.free):
+        equations.add_free(position, free)
+    for position, condition in enumerate(network.conditions):
+        equations.add_condition(position, condition)
+    answer = _solve_each(equations.matrix, equations.right)
+    return equations.solution(answer)
+
+
+def _array(value: Array | float, size: int) -> Array:
+    return np.broadcast_to(np.asarray(value, dtype=np.float64), (size,))
+
+
+def _solve_each(matrix: Array, right: Array) -> Array:
+    """Solve a stack of systems; a singular one gives NaN instead of spoiling the whole stack."""
+    if matrix.shape[1] == 0:
+        return np.zeros_like(right)
+    try:
+        return np.linalg.solve(matrix, right[..., None])[..., 0]
+    except np.linalg.LinAlgError:
+        answer = np.full_like(right, np.nan)
+        for index in range(matrix.shape[0]):
+            try:
+                answer[index] = np.linalg.solve(matrix[index], right[index])
+            except np.linalg.LinAlgError:
+                continue  # stays NaN: the caller reads it as "no solution in this corner"
+        return answer
+
+
+class _Equations:
+    """The stacked matrix and right-hand side while they are being stamped.
+
+    Rows: Kirchhoff's current law of each ordinary net, then one equation a branch, then the conditions.
+    Columns: the potentials of the ordinary nets, the branch currents, the free quantities.
+    """
+
+    def __init__(self, network: Network, sample: Sample, size: int) -> None:
+        self.network = network
+        self.sample = sample
+        self.size = size
+        self.known = {net: _array(value(sample), size) for net, value in network.known.items()}
+        free_nets = {free.net for free in network.free if isinstance(free, FreePotential)}
+        self.known = {net: value for net, value in self.known.items() if net not in free_nets}
+        ordinary = [net for net in network.nets() if net not in self.known and net not in free_nets]
+        self.rows = {net: index for index, net in enumerate(ordinary)}
+        self.columns = dict(self.rows)
+        self.branches = [element for element in network.elements if _has_branch(element)]
+        self.branch_index = {b.name: len(ordinary) + i for i, b in enumerate(self.branches)}
+        self.first_free = len(ordinary) + len(self.branches)
+        for position, free in enumerate(network.free):
+            if isinstance(free, FreePotential):
+                self.columns[free.net] = self.first_free + position
+        count = self.first_free + len(network.free)
+        self.matrix: Array = np.zeros((size, count, count))
+        self.right: Array = np.zeros((size, count))
+
+    def add(self, element: Element) -> None:
+        if isinstance(element, CurrentSource):
+            self._inject(element.a, element.b, element.current(self.sample))
+        elif isinstance(element, ControlledSource) and element.kind == "current":
+            self._transconductance(element)
+        elif _has_branch(element):
+            self._branch(element)
+        else:
+            assert isinstance(element, Resistor)
+            self._conductance(element.a, element.b, 1.0 / element.resistance(self.sample))
+
+    def add_free(self, position: int, free: Free) -> None:
+        if isinstance(free, FreeCurrent):
+            column = self.first_free + position
+            if free.a in self.rows:
+                self.matrix[:, self.rows[free.a], column] += 1.0
+            if free.b in self.rows:
+                self.matrix[:, self.rows[free.b], column] -= 1.0
+
+    def add_condition(self, position: int, condition: Condition) -> None:
+        row = self.first_free + position
+        self._potential(row, condition.a, 1.0)
+        self._potential(row, condition.b, -1.0)
+        self.right[:, row] += condition.difference(self.sample)
+
+    def solution(self, answer: Array) -> Solution:
+        potentials = {net: answer[:, column] for net, column in self.columns.items()}
+        potentials.update(self.known)
+        branches = {name: answer[:, index] for name, index in self.branch_index.items()}
+        free = {
+            free.name: answer[:, self.first_free + position]
+            for position, free in enumerate(self.network.free)
+            if isinstance(free, FreeCurrent)
+        }
+        return Solution(self.network, self.sample, self.size, potentials, branches, free)
+
+    def _potential(self, row: int, net: str, factor: Array | float) -> None:
+        """Add `factor` times the potential of `net` to the left side of equation `row`."""
+        if net in self.columns:
+            self.matrix[:, row, self.columns[net]] += factor
+        else:
+            self.right[:, row] -= factor * self.known[net]
+
+    def _conductance(self, a: str, b: str, conductance: Array) -> None:
+        for here, there in ((a, b), (b, a)):
+            if here in self.rows:
+                self._potential(self.rows[here], here, conductance)
+                self._potential(self.rows[here], there, -conductance)
+
+    def _inject(self, a: str, b: str, current: Array) -> None:
+        if a in self.rows:
+            self.right[:, self.rows[a]] -= current
+        if b in self.rows:
+            self.right[:, self.rows[b]] += current
+
+    def _transconductance(self, source: ControlledSource) -> None:
+        gain = source.gain(self.sample)
+        for net, sign in ((source.a, 1.0), (source.b, -1.0)):
+            if net in self.rows:
+                self._potential(self.rows[net], source.control_a, sign * gain)
+                self._potential(self.rows[net], source.control_b, -sign * gain)
+
+    def _branch(self, element: Element) -> None:
+        index = self.branch_index[element.name]
+        if element.a in self.rows:
+            self.matrix[:, self.rows[element.a], index] += 1.0
+        if element.b in self.rows:
+            self.matrix[:, self.rows[element.b], index] -= 1.0
+        self._potential(index, element.a, 1.0)
+        self._potential(index, element.b, -1.0)
+        if isinstance(element, Resistor):
+            self.matrix[:, index, index] -= element.resistance(self.sample)
+        elif isinstance(element, VoltageSource):
+            self.right[:, index] += element.voltage(self.sample)
+        elif isinstance(element, ControlledSource):
+            gain = element.gain(self.sample)
+            self._potential(index, element.control_a, -gain)
+            self._potential(index, element.control_b, gain)
+
+
+def _has_branch(element: Element) -> bool:
+    """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
+    if isinstance(element, Resistor):
+        return element.may_be_zero
+    return isinstance(element, VoltageSource) or (
+        isinstance(element, ControlledSource) and element.kind == "voltage"
+    )
+
+
+def names_in(elements: Sequence[Element]) -> tuple[str, ...]:
+    """Return the names of `elements` without repetition, in order."""
+    return tuple(dict.fromkeys(element.name for element in elements))

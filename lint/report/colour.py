@@ -1,0 +1,47 @@
+"""Whether a stream gets colours, and how wide its lines are.
+
+The order is the one that satisfies the published conventions together (no-color.org, force-color.org):
+NO_COLOR, then FORCE_COLOR, then TERM=dumb, then whether the stream is a terminal.
+"""
+
+from __future__ import annotations
+
+import os
+import sys
+from collections.abc import Mapping
+from typing import TextIO
+
+NARROWEST, WIDEST = 80, 120
+
+
+def wanted(stream: TextIO, environment: Mapping[str, str]) -> bool:
+    """Tell whether `stream` is to be coloured under the variables of `environment`.
+
+    FORCE_COLOR speaks of what the run prints: a report kept in a file stays free of escapes.
+    """
+    if environment.get("NO_COLOR"):
+        return False
+    if environment.get("FORCE_COLOR") and stream is sys.stdout:
+        return True
+    return environment.get("TERM") != "dumb" and stream.isatty()
+
+
+def width(stream: TextIO, environment: Mapping[str, str]) -> int:
+    """Return the width of a line in cells: that of the terminal within 80 .. 120, 80 elsewhere.
+
+    COLUMNS overrules the terminal, as it does for other programs.
+    """
+    columns = environment.get("COLUMNS", "")
+    if columns.isdecimal() and len(columns) <= len(str(WIDEST)):
+        found = int(columns)
+    elif stream.isatty():
+        found = os.get_terminal_size(stream.fileno()).columns
+    else:
+        found = NARROWEST
+    return max(NARROWEST, min(WIDEST, found))
+
+
+def shows_box_characters(stream: TextIO) -> bool:
+    """Tell whether `stream` can carry every character; a StringIO, without an encoding, can."""
+    encoding = getattr(stream, "encoding", None)
+    return encoding is None or encoding.lower().replace("-", "").startswith("utf")
