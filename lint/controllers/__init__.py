@@ -33,6 +33,9 @@ __all__ = [
 
 _FOLDER = Path(__file__).parent
 
+# The logic series 54 and 74 count their functions with the same numbers: a 74HC594 is a shift register.
+_LOGIC_PART = re.compile(r"(?<![0-9])[57]4[a-z]{1,5}[0-9]+", re.IGNORECASE)
+
 
 def families() -> tuple[str, ...]:
     """Return the families that have a profile, such as "494", in alphabetical order."""
@@ -57,15 +60,10 @@ def generic_number(text: str) -> tuple[str, str] | None:
 
     "xx494CN" holds 494; "4940", "1494" and "4.94" do not, and neither does a logic part such as 74HC594.
     """
+    text = _LOGIC_PART.sub(" ", text)
     for family in families():
         for number in load(family).generic_numbers:
-            if _number_pattern(number).search(text):
+            # A digit or a decimal fraction on either side makes it another number.
+            if re.search(rf"(?<![0-9])(?<![0-9]\.){number}(?![0-9]|\.[0-9])", text):
                 return family, number
     return None
-
-
-@cache
-def _number_pattern(number: str) -> re.Pattern[str]:
-    # Logic series 54 and 74 count their functions by the same numbers (594: a shift register). A look-behind
-    # has a fixed width, so that the one for logic is written as an alternative that eats the number.
-    return re.compile(rf"(?<![0-9])(?<![0-9]\.){number}(?![0-9]|\.[0-9])")
