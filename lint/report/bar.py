@@ -152,7 +152,7 @@ def bar(spread: Spread, limit: Limit, cells: int) -> Bar | None:
 
     The zone between the limits gets the most room. A side without a limit reaches to the farthest value, and
     at least as far as the other limit is from zero. Beyond a limit the drawing reaches to the farthest value
-    and at most as far as the zone is wide, so that an absurd value leaves the limits legible.
+    and at most twice as far as the zone is wide, so that an absurd value leaves the limits legible.
     """
     low, high = _drawable(limit.minimum), _drawable(limit.maximum)
     finite = [value for value in (spread.minimum, spread.nominal, spread.maximum) if abs(value) < _HUGE]
@@ -165,7 +165,7 @@ def bar(spread: Spread, limit: Limit, cells: int) -> Bar | None:
         start, end = low, low + max(abs(low) or largest or 1.0, max(finite, default=low) - low)
     else:
         return None
-    reach = (end - start) or abs(end) or largest or 1.0
+    reach = 2 * ((end - start) or abs(end) or largest or 1.0)
     left = max(start - reach, spread.minimum) if low is not None and spread.minimum < low else start
     right = min(end + reach, spread.maximum) if high is not None and spread.maximum > high else end
     before = max(1, round(cells * (start - left) / (right - left))) if left < start else 0
@@ -187,17 +187,29 @@ def _drawable(limit: float | None) -> float | None:
 
 
 def label_line(labels: Sequence[Label], width: int, gap: int = 2) -> str:
-    """Return one line of `labels`, each centred on its cell, moved aside where two would run together."""
-    starts: list[int] = []
-    edge = 0
-    for cell, text in labels:
-        starts.append(max(edge, cell - cell_len(text) // 2))
-        edge = starts[-1] + cell_len(text) + gap
-    edge = width
-    for index in range(len(labels) - 1, -1, -1):
-        starts[index] = max(0, min(starts[index], edge - cell_len(labels[index][1])))
-        edge = starts[index] - gap
+    """Return one line of `labels`, centred on their cells; where two would collide the outer one gives way."""
+    sizes = [cell_len(text) for _, text in labels]
+    starts = [cell - size // 2 for (cell, _), size in zip(labels, sizes, strict=True)]
+    middle = len(labels) // 2
+    for index in range(middle - 1, -1, -1):
+        starts[index] = min(starts[index], starts[index + 1] - gap - sizes[index])
+    _push_right(starts, sizes, gap)
+    _push_left(starts, sizes, gap, width)
     line = ""
     for start, (_, text) in zip(starts, labels, strict=True):
         line += " " * (start - cell_len(line)) + text
     return line
+
+
+def _push_right(starts: list[int], sizes: Sequence[int], gap: int) -> None:
+    edge = 0
+    for index, size in enumerate(sizes):
+        starts[index] = max(edge, starts[index])
+        edge = starts[index] + size + gap
+
+
+def _push_left(starts: list[int], sizes: Sequence[int], gap: int, width: int) -> None:
+    edge = width
+    for index in range(len(sizes) - 1, -1, -1):
+        starts[index] = max(0, min(starts[index], edge - sizes[index]))
+        edge = starts[index] - gap

@@ -62,8 +62,9 @@ class Page:
         title = self.say(title)
         shown = [(self.say(text), style) for text, style in notes]
         taken = cell_len(title) + sum(cell_len(text) for text, _ in shown)
-        length = max(2, self.width - taken - 2)
-        self.line((title, title_style), (f" {rule * length} ", "dim"), *shown)
+        gap = " " if shown else ""
+        length = max(2, self.width - taken - 1 - len(gap))
+        self.line((title, title_style), (f" {rule * length}{gap}", "dim"), *shown)
 
     def paragraph(self, text: str, indent: int, lead: Piece = ("", ""), style: str = "") -> None:
         """Put `text` wrapped at `indent`, with `lead` in the margin of its first line."""
@@ -73,12 +74,12 @@ class Page:
             margin = ""
 
     def row(self, cells: Sequence[Piece], widths: Sequence[int], indent: int) -> None:
-        """Put one row of a table, each cell wrapped in its own column; columns stand two cells apart."""
+        """Put one row of a table, each cell wrapped in its own column, the first (numbers) flush right."""
         columns = [wrap(self.say(text), width) for (text, _), width in zip(cells, widths, strict=True)]
         for texts in zip_longest(*columns, fillvalue=""):
-            pieces: list[Piece] = [(" " * indent, "")]
-            for text, width, (_, style) in zip(texts, widths, cells, strict=True):
-                pieces += [(text, style), (" " * (width - cell_len(text) + 2), "")]
+            pieces: list[Piece] = [(" " * (indent + widths[0] - cell_len(texts[0])) + texts[0], cells[0][1])]
+            for text, width, (_, style) in zip(texts[1:], widths[1:], cells[1:], strict=True):
+                pieces += [("  ", ""), (text, style), (" " * (width - cell_len(text)), "")]
             self.line(*pieces)
 
 

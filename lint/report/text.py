@@ -1,70 +1,30 @@
 """The text report, laid out by the walk an engineer makes round the controller.
 
 First the pins in their physical order, then the verdicts by topic with the worst first, then what could not
-be checked and what would open it, then the cautions, the count and the gate's answer. Colours follow IEC
-60073 (red: act, yellow: abnormal, green: normal, blue: your action is needed) and never stand without a word.
+be checked and what would open it, then the cautions, the count and the gate's answer.
 """
 
 from __future__ import annotations
 
 import os
-from collections import Counter
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from io import StringIO
 from typing import TextIO
 
 from rich.cells import cell_len
 from rich.console import Console
 
-from ..quantity import percent
-from ..verdict import ControllerReview, Level, Outcome, PinRow, Review, Verdict
+from ..verdict import ControllerReview, Outcome, PinRow, Review, Verdict
 from . import Gate, colour
-from .bar import Bar, Piece, bar, label_line
+from .bar import Piece
+from .findings import asks, lead, name, topics
 from .glyphs import ASCII, BOX, Glyphs
 from .page import Page
+from .words import counts, word
 
-# The order in which one walks round the board; a topic that is not named here follows in alphabetical order.
-_WALK = (
-    "connections",
-    "supply",
-    "reference",
-    "oscillator",
-    "dead time",
-    "soft start",
-    "output mode",
-    "output stage",
-    "error amplifier",
-    "feedback",
-    "current limit",
-    "ratings",
-    "safety",
-)
-
-_WORDS = {
-    Outcome.FAIL: "fail",
-    Outcome.REVIEW: "review",
-    Outcome.OPEN: "open",
-    Outcome.PASS: "pass",
-    Outcome.INFORMATIONAL: "info",
-    Outcome.NOT_APPLICABLE: "not applicable",
-}
-
-_COLOURS = {
-    Outcome.FAIL: "bold yellow",
-    Outcome.REVIEW: "bold blue",
-    Outcome.OPEN: "bold blue",
-    Outcome.PASS: "green",
-    Outcome.INFORMATIONAL: "",
-    Outcome.NOT_APPLICABLE: "dim",
-}
-
-_RANKS = (Outcome.FAIL, Outcome.REVIEW, Outcome.OPEN, Outcome.INFORMATIONAL, Outcome.PASS)
-
-_INDENT = 10
-_LABEL = 9
-_SHORTEST_BAR = 14
-_LONGEST_BAR = 60
-_PLACES = 3
+_LABEL = 12
+_INDENT = 11
+_WIDEST_FUNCTION, _WIDEST_NET, _WIDEST_WORD = 14, 20, 12
 
 
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
@@ -85,21 +45,174 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
 
 
 def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyphs = BOX) -> None:
-    """Print the report of `reviews` on a rich console."""
+    """Print the report of `reviews` on a rich console, as wide as the console is."""
     page = Page(console, glyphs)
-    for review in reviews:
-        _heading(page, review)
+    for number, review in enumerate(reviews):
+        if number:
+            page.blank()
+        _title(page, review)
         for controller, verdicts in _sections(review):
             if controller is not None:
                 _controller(page, controller)
             elif review.controllers:
                 page.heading("the rest of the board", "bold", glyphs.strong, [])
                 page.blank()
-            _topics(page, verdicts)
+            topics(page, verdicts)
         _not_checked(page, review.verdicts)
-        _taken_for_granted(page, review.verdicts)
+        _taken_for_granted(page, review)
         _cautions(page, review.cautions)
         _not_applicable(page, review.verdicts)
-        _answer(page, review, gate)
+        _answer(page, counts(review.verdicts), gate, gate.passes(review))
     if len(reviews) > 1:
-        _answer_to_all(page, reviews, gate)
+        passed = sum(gate.passes(review) for review in reviews)
+        told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
+        _answer(page, told, gate, passed == len(reviews))
+
+
+def _title(page: Page, review: Review) -> None:
+    netlist = f"{review.netlist}  ({review.format})"
+    rows = [
+        ("netlist", netlist),
+        ("title", review.name),
+        ("brief", review.brief or "none"),
+        ("parts list", review.parts_list or "none"),
+    ]
+    for label, text in rows:
+        if text:
+            page.paragraph(text, _LABEL, (label, "dim"), "bold" if label == "netlist" else "")
+    if any(verdict.measured and verdict.limit for verdict in review.verdicts):
+        _legend(page)
+    page.blank()
+
+
+def _legend(page: Page) -> None:
+    """Say once how a bar is read."""
+    glyphs = page.glyphs
+    page.line(
+        ("bars".ljust(_LABEL), "dim"),
+        (f"{glyphs.low}{glyphs.inside * 2}{glyphs.high}", ""),
+        (" limits   ", "dim"),
+        (glyphs.spread * 2, "green"),
+        (" minimum to maximum   ", "dim"),
+        (glyphs.nominal, "green"),
+        (" nominal   ", "dim"),
+        ("%", ""),
+        (" room to the limit", "dim"),
+    )
+
+
+def _sections(review: Review) -> Iterator[tuple[ControllerReview | None, list[Verdict]]]:
+    """Yield each controller with its verdicts, then the rest; a lone controller takes them all."""
+    if len(review.controllers) == 1:
+        yield review.controllers[0], list(review.verdicts)
+        return
+    for controller in review.controllers:
+        yield controller, [verdict for verdict in review.verdicts if verdict.controller == controller.part]
+    known = {controller.part for controller in review.controllers}
+    rest = [verdict for verdict in review.verdicts if verdict.controller not in known]
+    if rest:
+        yield None, rest
+
+
+def _controller(page: Page, controller: ControllerReview) -> None:
+    """Print one controller: what it is, where it stands, its pins."""
+    model = f", {controller.model}" if controller.model else ""
+    page.heading(controller.part, "bold", page.glyphs.strong, [(f"{controller.family} class{model}", "")])
+    page.paragraph(f"at {controller.place}", 2, style="dim")
+    page.blank()
+    _pin_table(page, controller.pins)
+    page.blank()
+    for sentence in controller.assumptions:
+        page.paragraph(sentence, _INDENT, ("  assumed", "dim"))
+    if controller.assumptions:
+        page.blank()
+
+
+def _pin_table(page: Page, pins: Sequence[PinRow]) -> None:
+    header = ("pin", "function", "net", "voltage or state", "verdict")
+    rows: list[tuple[Piece, ...]] = [tuple((title, "dim") for title in header)]
+    for pin in sorted(pins, key=_pin_order):
+        said = word(pin.outcome, pin.level) if pin.outcome else ("", "")
+        rows.append(((pin.number, ""), (pin.function, ""), (pin.net, ""), (pin.state, ""), said))
+    number, function, net, _, verdict = (
+        max(cell_len(page.say(row[column][0])) for row in rows) for column in range(len(header))
+    )
+    widths = [number, min(function, _WIDEST_FUNCTION), min(net, _WIDEST_NET), 0, min(verdict, _WIDEST_WORD)]
+    widths[3] = page.width - 2 - sum(widths) - 2 * (len(widths) - 1)
+    for row in rows:
+        page.row(row, widths, indent=2)
+
+
+def _pin_order(pin: PinRow) -> tuple[bool, int, str]:
+    """Return a key for the physical order: numbers by value, anything else after them."""
+    return not pin.number.isdecimal(), len(pin.number), pin.number
+
+
+def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
+    """Print the open verdicts, grouped by the input that would open them."""
+    groups: dict[tuple[str, ...], list[Verdict]] = {}
+    for verdict in verdicts:
+        if verdict.outcome is Outcome.OPEN:
+            groups.setdefault(verdict.needs, []).append(verdict)
+    if not groups:
+        return
+    members = [verdict for group in groups.values() for verdict in group]
+    page.heading("could not be checked", "bold", page.glyphs.light, counts(members))
+    page.blank()
+    for needs, group in sorted(groups.items(), key=lambda item: (not item[0], -len(item[1]), item[0])):
+        mark = lead(group[0])
+        for need in needs or ("no single input opens these; each says what stands in the way",):
+            page.paragraph(need, _INDENT, mark, "bold")
+            mark = ("  and", "dim")
+        for verdict in group:
+            page.paragraph(verdict.message, _INDENT)
+            page.paragraph(name(verdict), _INDENT, style="dim")
+        page.blank()
+
+
+def _taken_for_granted(page: Page, review: Review) -> None:
+    """Print once each what the verdicts in brief rest on; a verdict in full has its assumptions beside it."""
+    said = [sentence for verdict in review.verdicts if asks(verdict) for sentence in verdict.assumptions]
+    said += [sentence for controller in review.controllers for sentence in controller.assumptions]
+    rest = [sentence for verdict in review.verdicts if not asks(verdict) for sentence in verdict.assumptions]
+    unsaid = [sentence for sentence in dict.fromkeys(rest) if sentence not in set(said)]
+    if not unsaid:
+        return
+    page.heading("taken for granted", "bold", page.glyphs.light, [])
+    page.blank()
+    for sentence in unsaid:
+        page.paragraph(sentence, _INDENT, ("  assumed", "dim"))
+    page.blank()
+
+
+def _cautions(page: Page, cautions: Sequence[str]) -> None:
+    if not cautions:
+        return
+    page.heading("cautions", "bold", page.glyphs.light, [])
+    page.blank()
+    for caution in cautions:
+        page.paragraph(caution, _INDENT, ("  caution", "bold yellow"))
+    page.blank()
+
+
+def _not_applicable(page: Page, verdicts: Sequence[Verdict]) -> None:
+    rules = [verdict.rule for verdict in verdicts if verdict.outcome is Outcome.NOT_APPLICABLE]
+    if rules:
+        listed = ", ".join(dict.fromkeys(rules))
+        page.paragraph(f"{len(rules)} not applicable: {listed}", 2, style="dim")
+        page.blank()
+
+
+def _answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None:
+    """Print the count and the gate's answer, on one line where they fit."""
+    answer: list[Piece] = [
+        (f"gate {gate}: ", "bold"),
+        ("passed", "bold green") if passed else ("not passed", "bold red"),
+    ]
+    taken = sum(cell_len(text) for text, _ in (*told, *answer))
+    page.line((page.glyphs.strong * page.width, "dim"))
+    if taken + 2 > page.width:
+        page.line(*told)
+        page.line(*answer)
+    else:
+        page.line(*told, (" " * (page.width - taken), ""), *answer)

@@ -1,0 +1,182 @@
+"""The verdicts of a text report, by topic: in full where something is asked of the reader, else in brief."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from rich.cells import cell_len
+
+from ...grammar.netlist import Place
+from ..quantity import engineering, percent
+from ..verdict import Outcome, Verdict
+from .bar import Bar, Piece, bar, label_line
+from .page import Page
+from .words import badness, counts, word
+
+# The order in which one walks round the board; a topic that is not named here follows in alphabetical order.
+_WALK = (
+    "connections",
+    "supply",
+    "reference",
+    "oscillator",
+    "dead time",
+    "soft start",
+    "output mode",
+    "output stage",
+    "error amplifier",
+    "feedback",
+    "current limit",
+    "ratings",
+    "safety",
+)
+
+_INDENT = 11
+_LABEL = 9
+_SHORTEST_BAR, _LONGEST_BAR = 14, 60
+_PLACES = 4
+
+# Between the columns of a small bar: rule, low limit, bar, high limit, margin.
+_GAPS = 2 + 1 + 1 + 2
+
+_ELSEWHERE = (Outcome.OPEN, Outcome.NOT_APPLICABLE)
+
+
+def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
+    """Print the verdicts by topic, worst first; what is open or does not apply is printed elsewhere."""
+    for topic in sorted({verdict.topic for verdict in verdicts}, key=_walk):
+        about = [verdict for verdict in verdicts if verdict.topic == topic]
+        shown = [verdict for verdict in about if verdict.outcome not in _ELSEWHERE]
+        if not shown:
+            continue
+        page.heading(topic or "other", "bold", page.glyphs.light, counts(about))
+        page.blank()
+        in_full = sorted((verdict for verdict in shown if asks(verdict)), key=badness)
+        in_brief = sorted((verdict for verdict in shown if not asks(verdict)), key=badness)
+        for verdict in in_full:
+            _full(page, verdict)
+            page.blank()
+        _brief(page, in_brief)
+        if in_brief:
+            page.blank()
+
+
+def asks(verdict: Verdict) -> bool:
+    """Tell whether a verdict asks something of the reader and is therefore printed in full."""
+    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW)
+
+
+def name(verdict: Verdict) -> str:
+    """Return the rule and its subject in one text."""
+    return f"{verdict.rule}  {verdict.subject}".rstrip()
+
+
+def lead(verdict: Verdict) -> Piece:
+    """Return the word of a verdict as it stands in the margin."""
+    text, style = word(verdict.outcome, verdict.level)
+    return f"  {text}", style
+
+
+def _walk(topic: str) -> tuple[int, str]:
+    return (_WALK.index(topic) if topic in _WALK else len(_WALK), topic)
+
+
+def _full(page: Page, verdict: Verdict) -> None:
+    page.paragraph(verdict.message, _INDENT, lead(verdict), "bold")
+    page.paragraph(name(verdict), _INDENT, style="dim")
+    drawn = _bar(verdict, min(_LONGEST_BAR, page.width - _INDENT))
+    if drawn is not None:
+        _gauge(page, drawn, word(verdict.outcome, verdict.level)[1])
+    for label, text in _details(verdict):
+        if text:
+            label_style = "bold" if label == "remedy" else "dim"
+            page.paragraph(text, _INDENT + _LABEL, (" " * _INDENT + label, label_style))
+
+
+def _details(verdict: Verdict) -> list[tuple[str, str]]:
+    """Return what stands below the message, each with its label; an empty text is not to be printed."""
+    shares = ", ".join(f"{percent(share, 2)} from {source}" for source, share in verdict.contributions)
+    on = f" on {', '.join(verdict.nets)}" if verdict.nets else ""
+    return [
+        ("measured", str(verdict.measured) if verdict.measured and not verdict.limit else ""),
+        ("margin", _margin(verdict)),
+        ("formula", verdict.formula),
+        ("spread", shares),
+        ("parts", (", ".join(verdict.parts) + on).strip()),
+        ("at", _places(verdict.places)),
+        *(("assumed", sentence) for sentence in verdict.assumptions),
+        ("source", verdict.source),
+        ("remedy", verdict.remedy),
+    ]
+
+
+def _places(places: Sequence[Place]) -> str:
+    """Return the first places as `file:line:column, line:column`: a file is named where it changes."""
+    texts: list[str] = []
+    file = None
+    for place in places[:_PLACES]:
+        texts.append(f"{place.line}:{place.column}" if place.file == file else str(place))
+        file = place.file
+    more = f" and {len(places) - _PLACES} more" if len(places) > _PLACES else ""
+    return ", ".join(texts) + more
+
+
+def _gauge(page: Page, drawn: Bar, outside: str) -> None:
+    """Print a bar on three lines: the limits above it, the values below it."""
+    margin = " " * _INDENT
+    room = page.width - _INDENT
+    page.blank()
+    page.line((margin + page.say(label_line(drawn.limits(page.glyphs), room)), "dim"))
+    page.line((margin, ""), *drawn.draw(page.glyphs, outside))
+    page.line((margin + page.say(label_line(drawn.values(), room)), ""))
+    page.blank()
+
+
+def _bar(verdict: Verdict, cells: int) -> Bar | None:
+    if verdict.measured is None or verdict.limit is None:
+        return None
+    return bar(verdict.measured, verdict.limit, cells)
+
+
+def _brief(page: Page, verdicts: Sequence[Verdict]) -> None:
+    """Print verdicts that ask nothing: the message, then the rule and a small bar, all bars in line."""
+    barred = [verdict for verdict in verdicts if _bar(verdict, _SHORTEST_BAR) is not None]
+    names, lows, highs, margins = (
+        max((cell_len(page.say(text(verdict))) for verdict in barred), default=0)
+        for text in (name, _low, _high, _margin)
+    )
+    cells = page.width - _INDENT - names - lows - highs - margins - _GAPS
+    apart = cells < _SHORTEST_BAR
+    if apart:
+        names, cells = 0, min(_LONGEST_BAR, cells + names)
+    for verdict in verdicts:
+        page.paragraph(verdict.message, _INDENT, lead(verdict))
+        drawn = _bar(verdict, cells)
+        if drawn is None or apart:
+            page.paragraph(name(verdict), _INDENT, style="dim")
+        if drawn is not None:
+            title = "" if apart else page.say(name(verdict))
+            page.line(
+                (" " * _INDENT + _pad(title, names), "dim"),
+                (f"  {page.say(_low(verdict)):>{lows}} ", "dim"),
+                *drawn.draw(page.glyphs, "red"),
+                (f" {page.say(_high(verdict)):<{highs}}", "dim"),
+                (f"  {page.say(_margin(verdict)):>{margins}}", ""),
+            )
+
+
+def _low(verdict: Verdict) -> str:
+    limit = verdict.limit
+    return "" if limit is None or limit.minimum is None else engineering(limit.minimum, limit.unit)
+
+
+def _high(verdict: Verdict) -> str:
+    limit = verdict.limit
+    return "" if limit is None or limit.maximum is None else engineering(limit.maximum, limit.unit)
+
+
+def _margin(verdict: Verdict) -> str:
+    return "" if verdict.margin is None else percent(verdict.margin, 2)
+
+
+def _pad(text: str, width: int) -> str:
+    return text + " " * (width - cell_len(text))

@@ -1,0 +1,51 @@
+"""The words of outcomes and levels in a text report, and their colours.
+
+IEC 60073: red asks to act, yellow is abnormal, green is normal, blue asks for something of the reader.
+"""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Iterable
+
+from ..verdict import Level, Outcome, Verdict
+from .bar import Piece
+
+# One word a verdict: a failed one goes by its level. Worst first: the order in a topic and of the counts.
+_WORDS: dict[tuple[Outcome, Level | None], Piece] = {
+    (Outcome.FAIL, Level.ERROR): ("error", "bold red"),
+    (Outcome.FAIL, None): ("fail", "bold red"),
+    (Outcome.FAIL, Level.WARNING): ("warning", "bold yellow"),
+    (Outcome.FAIL, Level.NOTE): ("note", "bold yellow"),
+    (Outcome.REVIEW, None): ("review", "bold blue"),
+    (Outcome.OPEN, None): ("open", "bold blue"),
+    (Outcome.INFORMATIONAL, None): ("info", ""),
+    (Outcome.PASS, None): ("pass", "green"),
+    (Outcome.NOT_APPLICABLE, None): ("not applicable", "dim"),
+}
+
+_ORDER = tuple(_WORDS)
+
+
+def word(outcome: Outcome, level: Level | None) -> Piece:
+    """Return the word of a verdict in its colour."""
+    return _WORDS[_key(outcome, level)]
+
+
+def badness(verdict: Verdict) -> int:
+    """Return a key that sorts the worst verdict first."""
+    return _ORDER.index(_key(verdict.outcome, verdict.level))
+
+
+def counts(verdicts: Iterable[Verdict]) -> list[Piece]:
+    """Return how many verdicts go by each word, `1 error, 2 pass`; those that do not apply are left out."""
+    found = Counter(_key(verdict.outcome, verdict.level) for verdict in verdicts)
+    pieces: list[Piece] = []
+    for key, (text, style) in _WORDS.items():
+        if found[key] and key[0] is not Outcome.NOT_APPLICABLE:
+            pieces += [(", " if pieces else "", ""), (f"{found[key]} {text}", style)]
+    return pieces
+
+
+def _key(outcome: Outcome, level: Level | None) -> tuple[Outcome, Level | None]:
+    return outcome, level if outcome is Outcome.FAIL else None
