@@ -11,8 +11,8 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from types import MappingProxyType
 
-from ...grammar.netlist import Netlist, Part, Pin, Place
-from ..controllers import ROLES, Profile, generic_number, load, plain_name
+from ...grammar.netlist import Netlist, Part, Place
+from ..controllers import Profile, generic_number, load, plain_name
 
 # A part with fewer pins (a resistor of value 494) is no controller, whatever its name.
 _LEAST_PINS = 8
@@ -136,6 +136,8 @@ class _Mapping:
         self._names = profile.roles_by_name()
         self._numbers = profile.roles_by_number()
         self._complaints: list[str] = []
+        # Whether a pin that is missing was left out by the exporter: no list in the brief can mend that.
+        self._left_out = False
         self.pins: dict[str, ControllerPin] = {}
         self.assumptions: list[str] = []
 
@@ -144,8 +146,8 @@ class _Mapping:
     def read(self) -> None:
         """Map the pins by the first way that tells anything; see the module's description."""
         names, numbers, positions = self._by_name(), self._by_number(), self._by_position()
-        by_number_first = self._part.pins_known == "numbers"
-        ways = (numbers, names, positions) if by_number_first else (names, numbers, positions)
+        numbered = self._part.pins_known == "numbers"
+        ways = (numbers, names) if numbered else (names, numbers, positions)
         reading = next((way for way in ways if way.tells), None)
         if reading is None:
             self._complaints.append(
@@ -155,6 +157,7 @@ class _Mapping:
             return
         self.assumptions += reading.assumptions
         if reading is numbers:
+            self._left_out = numbered
             self._compare(numbers, names)
         self._take(reading)
 
@@ -197,9 +200,12 @@ class _Mapping:
     def _by_number(self) -> _Reading:
         """Read package pin numbers, as the file states them or as a library uses them for names."""
         pins = self._part.pins
-        if self._part.pins_known == "numbers" and not self._part.element:
+        stated = self._part.pins_known == "numbers"
+        if stated and not self._part.element:
             return _Reading(tuple(self._numbers.get(pin.number) for pin in pins))
-        numbers = [pin.name or pin.number for pin in pins]
+        # A SPICE-style list has no package pins, only a library's own words that happen to be numbers. They
+        # may be its inner nodes; that they all fit the package is the least to ask.
+        numbers = [pin.number if stated else pin.name for pin in pins]
         if self._part.pins_known == "positions" or not all(number in self._numbers for number in numbers):
             return _Reading((None,) * len(pins))
         return _Reading(
@@ -212,7 +218,7 @@ class _Mapping:
 
     def _by_position(self) -> _Reading:
         pins = self._part.pins
-        if len(pins) != self._profile.package_pins or self._part.pins_known == "numbers":
+        if len(pins) != self._profile.package_pins:
             return _Reading((None,) * len(pins))
         return _Reading(
             tuple(self._numbers[str(position)] for position in range(1, len(pins) + 1)),
@@ -265,32 +271,30 @@ class _Mapping:
             self.assumptions.append(
                 f"{self._part.reference}: {len(indices)} pins read as {sheet.name}; taken as one"
             )
-        self.pins[role] = _controller_pin(pins[index], role, sheet.name, sheet.number, index)
+        pin = pins[index]
+        self.pins[role] = ControllerPin(role, sheet.name, sheet.number, pin.net, pin.place, index)
 
     def unmapped(self) -> tuple[str, ...]:
         """Return the roles without a pin, in the order of the package."""
-        return tuple(role for role in ROLES if role not in self.pins and role in self._numbers.values())
+        return tuple(pin.role for pin in self._profile.pins if pin.role not in self.pins)
 
     def problem(self) -> str:
         """Return what keeps pins from being mapped and how to mend it, empty where all are mapped."""
-        missing = [self._profile.pin(role).name for role in self.unmapped()]
-        if not (missing or self._complaints):
-            return ""
         reasons = list(self._complaints)
-        if missing:
-            reasons.append(f"no pin found for {_listed(missing)}")
-        return f"{self._part.reference}: {'; '.join(reasons)}; {self._remedy()}"
+        remedy = self._remedy()
+        if missing := [self._profile.pin(role) for role in self.unmapped()]:
+            reasons.append(f"no pin found for {_listed([f'{pin.name} ({pin.number})' for pin in missing])}")
+            if self._left_out and not self._complaints:
+                remedy = "let the exporter write every pin of the part, connected or not"
+        return f"{self._part.reference}: {'; '.join(reasons)}; {remedy}" if reasons else ""
 
     def _remedy(self) -> str:
-        example = ", ".join(f'"{pin.name}"' for pin in self._profile.pins[:2])
+        first, second, *_ = self._profile.pins
         return (
-            f"add to the brief, under [controllers.{_toml_key(self._part.reference)}]: pins = [{example}, ...] "
-            f"with one name or number for each of the {len(self._part.pins)} nodes, in the netlist's order"
+            f"add to the brief, under [controllers.{_toml_key(self._part.reference)}]: "
+            f'pins = ["{first.name}", "{second.name}", ...] with one name or number for each of the '
+            f"{len(self._part.pins)} nodes, in the netlist's order"
         )
-
-
-def _controller_pin(pin: Pin, role: str, name: str, number: str, index: int) -> ControllerPin:
-    return ControllerPin(role=role, name=name, number=number, net=pin.net, place=pin.place, index=index)
 
 
 def _listed(names: list[str]) -> str:
