@@ -11,7 +11,7 @@ from math import floor, isfinite, isinf, log10
 from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
-    from pint import Quantity
+    from pint.facets.plain import PlainQuantity
 
 _PREFIXES = {-12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G"}
 
@@ -45,15 +45,14 @@ class Spread:
         return cls(value, value, value, unit)
 
     @property
-    def quantities(self) -> tuple[Quantity[float], Quantity[float], Quantity[float]]:
+    def quantities(self) -> tuple[PlainQuantity[float], PlainQuantity[float], PlainQuantity[float]]:
         """Return minimum, nominal and maximum as pint quantities of the tool's own registry."""
-        from .units import registry
+        from .units import quantity
 
-        ureg = registry()
         return (
-            ureg.Quantity(self.minimum, self.unit or "dimensionless"),
-            ureg.Quantity(self.nominal, self.unit or "dimensionless"),
-            ureg.Quantity(self.maximum, self.unit or "dimensionless"),
+            quantity(self.minimum, self.unit),
+            quantity(self.nominal, self.unit),
+            quantity(self.maximum, self.unit),
         )
 
     def __str__(self) -> str:
