@@ -187,7 +187,7 @@ def _drawable(limit: float | None) -> float | None:
 
 
 def label_line(labels: Sequence[Label], width: int, gap: int = 2) -> str:
-    """Return one line of `labels`, centred on their cells; where two would collide the outer one gives way."""
+    """Return one line of `labels`, centred on their cells; where two would collide the outer gives way."""
     sizes = [cell_len(text) for _, text in labels]
     starts = [cell - size // 2 for (cell, _), size in zip(labels, sizes, strict=True)]
     middle = len(labels) // 2

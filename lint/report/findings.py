@@ -114,7 +114,8 @@ def _places(places: Sequence[Place]) -> str:
     texts: list[str] = []
     file = None
     for place in places[:_PLACES]:
-        texts.append(f"{place.line}:{place.column}" if place.file == file else str(place))
+        where = f"{place.line}:{place.column}" if place.line else ""
+        texts.append(where if place.file == file else f"{place.file}:{where}".rstrip(":"))
         file = place.file
     more = f" and {len(places) - _PLACES} more" if len(places) > _PLACES else ""
     return ", ".join(texts) + more

@@ -1,0 +1,121 @@
+"""The JSON report, for programs. `review.schema.json` beside this module describes it.
+
+The same reviews give the same bytes: keys in a fixed order, numbers as Python's shortest form, and ASCII
+throughout, so that neither the locale nor a terminal has a say. Values are in SI base units.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Sequence
+from importlib.metadata import version
+from math import isfinite
+from typing import Any, TextIO
+
+from ...grammar.netlist import Place
+from ..quantity import Spread
+from ..verdict import ControllerReview, Limit, Review, Verdict
+from . import Gate
+
+SCHEMA = 1
+
+
+def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
+    """Write `reviews` to `stream`; the gate is no part of it, it is the exit status."""
+    del gate
+    report = {
+        "schema": SCHEMA,
+        "tool": {"name": "pwmlint", "version": version("pwmlint")},
+        "reviews": [_review(review) for review in reviews],
+    }
+    stream.write(json.dumps(report, indent=2, allow_nan=False) + "\n")
+
+
+def _review(review: Review) -> dict[str, Any]:
+    return {
+        "netlist": review.netlist,
+        "format": review.format,
+        "name": review.name,
+        "brief": review.brief,
+        "parts_list": review.parts_list,
+        "controllers": [_controller(controller) for controller in review.controllers],
+        "verdicts": [_verdict(verdict) for verdict in review.verdicts],
+        "cautions": list(review.cautions),
+        "counts": review.counts,
+    }
+
+
+def _controller(controller: ControllerReview) -> dict[str, Any]:
+    return {
+        "part": controller.part,
+        "family": controller.family,
+        "model": controller.model,
+        "place": _place(controller.place),
+        "pins": [
+            {
+                "number": pin.number,
+                "function": pin.function,
+                "net": pin.net,
+                "state": pin.state,
+                "outcome": pin.outcome,
+                "level": pin.level,
+            }
+            for pin in controller.pins
+        ],
+        "assumptions": list(controller.assumptions),
+    }
+
+
+def _verdict(verdict: Verdict) -> dict[str, Any]:
+    return {
+        "rule": verdict.rule,
+        "topic": verdict.topic,
+        "outcome": verdict.outcome,
+        "level": verdict.level,
+        "subject": verdict.subject,
+        "controller": verdict.controller,
+        "message": verdict.message,
+        "measured": _spread(verdict.measured),
+        "limit": _limit(verdict.limit),
+        "margin": _number(verdict.margin),
+        "parts": list(verdict.parts),
+        "nets": list(verdict.nets),
+        "pins": list(verdict.pins),
+        "places": [_place(place) for place in verdict.places],
+        "formula": verdict.formula,
+        "contributions": [
+            {"parameter": parameter, "share": _number(share)} for parameter, share in verdict.contributions
+        ],
+        "assumptions": list(verdict.assumptions),
+        "source": verdict.source,
+        "needs": list(verdict.needs),
+        "remedy": verdict.remedy,
+        "fingerprint": verdict.fingerprint,
+        "deviation": None,
+    }
+
+
+def _spread(spread: Spread | None) -> dict[str, Any] | None:
+    if spread is None:
+        return None
+    return {
+        "minimum": _number(spread.minimum),
+        "nominal": _number(spread.nominal),
+        "maximum": _number(spread.maximum),
+        "unit": spread.unit,
+    }
+
+
+def _limit(limit: Limit | None) -> dict[str, Any] | None:
+    if limit is None:
+        return None
+    return {"minimum": _number(limit.minimum), "maximum": _number(limit.maximum), "unit": limit.unit}
+
+
+def _place(place: Place) -> dict[str, Any]:
+    return {"file": place.file, "line": place.line, "column": place.column}
+
+
+def _number(value: float | None) -> float | None:
+    """Return a number as JSON can hold it: there is no infinity in JSON, null stands for it."""
+    return value if value is not None and isfinite(value) else None
