@@ -185,16 +185,18 @@ class _Mapping:
     def _roles_of(self, names: Iterable[str]) -> tuple[str | None, ...]:
         """Return the role of each name.
 
-        A name without a sign is the non-inverting input where its partner with a minus sign is an
-        inverting one: `IN1` beside `-IN1`. Alone it would tell nothing.
+        A name without a sign is the non-inverting input where its partner with a minus sign is the
+        inverting one and no other name has the plus: `IN1` beside `-IN1`. Alone it would tell nothing.
         """
         plain = [plain_name(name) for name in names]
         roles = {name: self._names.get(name) for name in plain}
         for name in plain:
-            role = roles[name]
-            partner = name.replace("-", "")
-            if role and role.endswith(" in-") and partner != name and roles.get(partner, role) is None:
-                roles[partner] = role.removesuffix("-") + "+"
+            role, partner = roles[name], name.replace("-", "")
+            if role is None or not role.endswith(" in-") or partner == name:
+                continue
+            plus = role.removesuffix("-") + "+"
+            if partner in roles and roles[partner] is None and plus not in roles.values():
+                roles[partner] = plus
         return tuple(roles[name] for name in plain)
 
     def _by_number(self) -> _Reading:
