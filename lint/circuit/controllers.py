@@ -102,9 +102,10 @@ def find_controllers(
     listed = {reference.casefold(): pins for reference, pins in pins_by_reference.items()}
     found: list[Controller] = []
     for part in netlist.parts.values():
-        named = generic_number(part.model) or generic_number(part.value)
         pins = listed.get(part.reference.casefold())
-        if named and part.fitted and (pins is not None or len(part.pins) >= _LEAST_PINS):
+        if not part.fitted or (pins is None and len(part.pins) < _LEAST_PINS):
+            continue
+        if named := generic_number(part.model) or generic_number(part.value):
             found.append(_controller(part, *named, pins))
     return tuple(found)
 

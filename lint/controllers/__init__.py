@@ -60,10 +60,18 @@ def generic_number(text: str) -> tuple[str, str] | None:
 
     "xx494CN" holds 494; "4940", "1494" and "4.94" do not, and neither does a logic part such as 74HC594.
     """
-    text = _LOGIC_PART.sub(" ", text)
-    for family in families():
-        for number in load(family).generic_numbers:
-            # A digit or a decimal fraction on either side makes it another number.
-            if re.search(rf"(?<![0-9])(?<![0-9]\.){number}(?![0-9]|\.[0-9])", text):
-                return family, number
-    return None
+    found = _whole_number().search(_LOGIC_PART.sub(" ", text))
+    return (_family_by_number()[found[0]], found[0]) if found else None
+
+
+@cache
+def _family_by_number() -> dict[str, str]:
+    """Return the family of every generic number; no two families share one."""
+    return {number: family for family in families() for number in load(family).generic_numbers}
+
+
+@cache
+def _whole_number() -> re.Pattern[str]:
+    """Return the pattern of a generic number: a digit or a decimal on either side makes it another one."""
+    numbers = "|".join(_family_by_number())
+    return re.compile(rf"(?<![0-9])(?<![0-9]\.)(?:{numbers})(?![0-9]|\.[0-9])")

@@ -71,6 +71,11 @@ def has_use(figure: Figure) -> bool:
     return bool(sides) or figure.spread().nominal == figure.typical
 
 
+def test_no_two_families_share_a_generic_number():
+    numbers = [number for family in families() for number in load(family).generic_numbers]
+    assert len(set(numbers)) == len(numbers)
+
+
 def test_the_494_class_is_there():
     assert "494" in families()
 
