@@ -31,7 +31,7 @@ _EXPECTED = {
 _LONGEST_TEXT = 200
 _RANGE = re.compile(r"\s*(?:\.\.\.?|…)\s*")
 _NUMBER_AND_UNIT = re.compile(
-    r"(?P<number>[+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]{1,3})?)\s*(?P<unit>[A-Za-zµμΩΩ°%]*)"
+    r"(?P<number>[+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]{1,3})?)\s*(?P<unit>%|°?[A-Za-zµμΩΩ]*)"
 )
 
 
@@ -50,7 +50,7 @@ def registry() -> UnitRegistry[float]:
     from pint import UnitRegistry
 
     # None is pint's own way to begin without its file of units; only its annotation leaves it out.
-    units: UnitRegistry[float] = UnitRegistry(None)  # pyright: ignore[reportArgumentType]
+    units = cast("UnitRegistry[float]", UnitRegistry(None))  # pyright: ignore[reportArgumentType]
     units.load_definitions(Path(__file__).with_name("units.txt").read_text(encoding="utf-8").splitlines())
     return units
 
@@ -64,7 +64,7 @@ def quantity(value: float, unit: str) -> PlainQuantity[float]:
 def read_range(text: str, unit: str) -> Spread:
     """Return "10 V .. 15 V", "10 .. 15 V" or "12 V" as a Spread in `unit`; a range's nominal is its middle.
 
-    unit: "V", "A", "ohm", "F", "H", "s", "Hz", "W", "J", "degC" or ""; "degC" stays degC, a ratio ("") may be written in percent
+    unit: "V", "A", "ohm", "F", "H", "s", "Hz", "W", "J", "degC" or "" (also written in percent)
 
     Raises QuantityTextError for anything unreadable, of another dimension, not finite, or with ends swapped.
     """
@@ -114,15 +114,27 @@ def _read(text: str, start: int, end: int, unit: str, shared: str) -> float:
 
 def _converted(number: float, name: str, unit: str, column: int) -> float:
     """Return `number` of the unit written as `name` in our unit of that quantity."""
-    from pint.errors import DimensionalityError, UndefinedUnitError
+    from pint.errors import DimensionalityError
 
-    written = "percent" if name == "%" else name or "dimensionless"
+    known = _unit_name(name)
+    if known is None:
+        raise QuantityTextError(f'unknown unit "{name}"', column=column, expected=_EXPECTED[unit])
     try:
-        # pint leaves the type of what may be converted to open
-        return quantity(number, written).to(unit or "dimensionless").magnitude  # pyright: ignore[reportUnknownMemberType]
-    except UndefinedUnitError:
-        raise QuantityTextError(f'unknown unit "{name}"', column=column, expected=_EXPECTED[unit]) from None
+        # pint leaves open what may be converted to what
+        return quantity(number, known).to(unit or "dimensionless").magnitude  # pyright: ignore[reportUnknownMemberType]
     except DimensionalityError:
-        raise QuantityTextError(
-            f'"{name or number}" is no unit of this quantity', column=column, expected=_EXPECTED[unit]
-        ) from None
+        message = f'"{name}" is no unit of this quantity' if name else "the unit is missing"
+        raise QuantityTextError(message, column=column, expected=_EXPECTED[unit]) from None
+
+
+def _unit_name(name: str) -> str | None:
+    """Return the unit written as `name` in full, such as "kilovolt"; "" for no unit, None for an unknown one.
+
+    pint also takes a plural s behind a symbol; "Vs" must not pass for volts.
+    """
+    if name in ("", "%"):
+        return "percent" if name else ""
+    for prefix, full, plural in registry().parse_unit_name(name):
+        if not plural or full in name:
+            return prefix + full
+    return None
