@@ -31,6 +31,17 @@ class Estimate:
         """Return the same estimate with `formula` as its explanation."""
         return replace(self, formula=formula)
 
+    def scaled(self, factor: float, unit: str | None = None) -> Estimate:
+        """Return the same estimate times a positive factor, such as 1/2 for two outputs that alternate."""
+        if factor <= 0:
+            raise ValueError("a negative factor would turn the ends round")
+
+        def times(spread: Spread) -> Spread:
+            ends = (spread.minimum * factor, spread.nominal * factor, spread.maximum * factor)
+            return Spread(*ends, spread.unit if unit is None else unit)
+
+        return replace(self, spread=times(self.spread), statistical=times(self.statistical))
+
 
 @dataclass(frozen=True, slots=True)
 class Unsolved:

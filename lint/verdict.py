@@ -81,6 +81,7 @@ class Verdict:
     rule, topic, subject, controller, level: filled in by the engine from the rule and its subject
     message:     one sentence with the figures in it
     measured, limit, margin: None where the question is not one of numbers
+    pins:        roles of the controller's pins it is about, such as "dead time"
     formula:     the formula with the numbers in it
     contributions: (parameter, share of the spread 0..1), the greatest first
     assumptions: what was taken for granted, each a sentence
@@ -101,6 +102,7 @@ class Verdict:
     margin: float | None = None
     parts: tuple[str, ...] = ()
     nets: tuple[str, ...] = ()
+    pins: tuple[str, ...] = ()
     places: tuple[Place, ...] = ()
     formula: str = ""
     contributions: tuple[tuple[str, float], ...] = ()

@@ -1,0 +1,1 @@
+"""What a reviewer would say: one module a topic, one function a question."""

@@ -35,7 +35,9 @@ def estimate(
     obstacle = _obstacle(growth)
     if obstacle is not None:
         return obstacle
-    network = replace(_without_floating(growth.network(), free), free=tuple(free), conditions=tuple(conditions))
+    network = replace(
+        _without_floating(growth.network(), free), free=tuple(free), conditions=tuple(conditions)
+    )
     diodes = [d for d in growth.diodes if {d.anode, d.cathode} <= {*network.nets(), *network.known}]
     units = {name: unit for name, (_, unit) in probes.items()} | dict.fromkeys(map(_key, diodes), "V")
     reads = {name: probe for name, (probe, _) in probes.items()}
@@ -48,6 +50,12 @@ def estimate(
 
 
 def _obstacle(growth: Growth) -> Unsolved | None:
+    if growth.valueless:
+        return Unsolved(
+            "; ".join(growth.valueless.values()),
+            parts=tuple(growth.valueless),
+            needs=tuple(f"a value for {reference}" for reference in growth.valueless),
+        )
     if not growth.blocked:
         return None
     nets = dict.fromkeys(blocked.net for blocked in growth.blocked)

@@ -50,12 +50,10 @@ class Circuit:
         graph: nx.MultiGraph[Node] = nx.MultiGraph()
         graph.add_nodes_from(("net", name) for name in self.netlist.nets)
         graph.add_nodes_from(("part", name) for name in self.parts)
-        graph.add_edges_from(
-            (("part", name), ("net", pin.net), index)
-            for name, part in self.parts.items()
-            for index, pin in enumerate(part.pins)
-            if pin.net
-        )
+        for name, part in self.parts.items():
+            for index, pin in enumerate(part.pins):
+                if pin.net:
+                    graph.add_edge(("part", name), ("net", pin.net), index)
         return graph
 
     @cached_property

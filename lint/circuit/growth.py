@@ -2,7 +2,8 @@
 
 What a part means to direct current is one small function a kind, in the table `_MEANINGS`. A part that
 linear analysis does not cover is never passed over: it lands in `blocked` (the answer cannot be had), in
-`diodes` (taken as off, to be proved by the answer) or in `switches` (taken as off, and said so).
+`valueless` (its value is missing), in `diodes` (taken as off, to be proved by the answer) or in `switches`
+(taken as off, and said so).
 """
 
 from __future__ import annotations
@@ -16,7 +17,17 @@ from ...grammar.netlist import Part, Pin
 from .controllers import Controller, ControllerPin
 from .graph import Circuit, Connection
 from .potentials import Potential
-from .solver import Array, ControlledSource, CurrentSource, Element, Network, Resistor, Sample, Value, VoltageSource
+from .solver import (
+    Array,
+    ControlledSource,
+    CurrentSource,
+    Element,
+    Network,
+    Resistor,
+    Sample,
+    Value,
+    VoltageSource,
+)
 from .worst_case import Parameter, Variation
 
 GROUND = "\x00ground"  # the name of ground inside a network: no net of a file can have it
@@ -48,7 +59,7 @@ class Growth:
     """A network as it grows from its seeds; `network()` hands it to the solver.
 
     stops: nets at which growth ends although their potential is not known (what the caller replaces by a
-           free quantity, or wants to leave out)
+           free quantity or drives himself); nothing on them is called an obstacle
     """
 
     circuit: Circuit
@@ -60,6 +71,7 @@ class Growth:
     potentials: dict[str, Value] = field(default_factory=dict[str, Value])
     assumptions: dict[str, None] = field(default_factory=dict[str, None])
     blocked: list[Blocked] = field(default_factory=list[Blocked])
+    valueless: dict[str, str] = field(default_factory=dict[str, str])
     diodes: list[Diode] = field(default_factory=list[Diode])
     switches: dict[str, None] = field(default_factory=dict[str, None])
     parts: dict[str, None] = field(default_factory=dict[str, None])
@@ -70,10 +82,10 @@ class Growth:
         """Put ground in: bias currents return there."""
         self.potentials[GROUND] = lambda sample: np.zeros(1)
 
-    def grow(self, *seeds: str, through_known: bool = False) -> Growth:
-        """Grow from `seeds`; a seed of known potential is grown from only when `through_known`."""
+    def grow(self, *seeds: str, from_known: bool = False) -> Growth:
+        """Grow from `seeds`; a seed of known potential, or a stop, is grown from only when `from_known`."""
         for seed in seeds:
-            self._enter(seed, expand=through_known)
+            self._enter(seed, expand=from_known)
         while self._waiting:
             net = self._waiting.pop()
             for connection in self.circuit.connections(net):
@@ -103,7 +115,7 @@ class Growth:
         if potential is not None:
             self.potentials[net] = self.add_parameter(potential.parameter)
             self.assume(potential.assumption)
-        if net not in self.stops and (potential is None or expand):
+        if expand or (potential is None and net not in self.stops):
             self._waiting.append(net)
 
     def _take(self, connection: Connection, net: str) -> None:
@@ -158,11 +170,11 @@ class Growth:
         for pin in part.pins:
             self._enter(pin.net)
 
-    def part_value(self, part: Part, net: str) -> Value | None:
-        """Return the part's value as something that varies; without a value the net is blocked."""
+    def part_value(self, part: Part) -> Value | None:
+        """Return the part's value as something that varies; one without goes to `valueless`."""
         value = self.circuit.value(part)
         if value is None:
-            self.block(net, part, self.circuit.reader.value_problem(part) or "it has no value")
+            self.valueless[part.reference] = self.circuit.reader.value_problem(part)
             return None
         self.assume(*value.assumptions)
         s = value.spread
@@ -177,7 +189,7 @@ def _resistor(growth: Growth, part: Part, net: str) -> None:
     if len(part.pins) != 2:
         _opaque(growth, part, net)
         return
-    value = growth.part_value(part, net)
+    value = growth.part_value(part)
     if value is not None:
         growth.use(part)
         zero = growth.parameters[part.reference].low <= 0
@@ -187,14 +199,16 @@ def _resistor(growth: Growth, part: Part, net: str) -> None:
 
 def _trimmer(growth: Growth, part: Part, net: str) -> None:
     """Put in a trimmer as two resistances whose sum is its value; the wiper travels end to end."""
-    value = growth.part_value(part, net)
+    value = growth.part_value(part)
     if value is None:
         return
     growth.use(part)
     name = f"{part.reference} travel"
     travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL))
     top, wiper, bottom = (pin.net for pin in in_trimmer_order(part))
-    growth.add(Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True))
+    growth.add(
+        Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True)
+    )
     growth.add(Resistor(f"{part.reference} lower", wiper, bottom, _share(value, travel), may_be_zero=True))
     growth.follow(part)
 
@@ -230,7 +244,9 @@ def _short(growth: Growth, part: Part, net: str) -> None:
         _opaque(growth, part, net)
         return
     growth.use(part)
-    growth.add(Resistor(part.reference, part.pins[0].net, part.pins[1].net, lambda _: np.zeros(1), may_be_zero=True))
+    growth.add(
+        Resistor(part.reference, part.pins[0].net, part.pins[1].net, lambda _: np.zeros(1), may_be_zero=True)
+    )
     growth.follow(part)
 
 
@@ -275,7 +291,7 @@ _WINDINGS = frozenset({"inductor", "transformer", "relay"})
 
 
 def _voltage_source(growth: Growth, part: Part, net: str) -> None:
-    value = growth.part_value(part, net)
+    value = growth.part_value(part)
     if value is not None:
         growth.use(part)
         growth.add(VoltageSource(part.reference, part.pins[0].net, part.pins[1].net, value))
@@ -283,7 +299,7 @@ def _voltage_source(growth: Growth, part: Part, net: str) -> None:
 
 
 def _current_source(growth: Growth, part: Part, net: str) -> None:
-    value = growth.part_value(part, net)
+    value = growth.part_value(part)
     if value is not None:
         growth.use(part)
         growth.add(CurrentSource(part.reference, part.pins[0].net, part.pins[1].net, value))
@@ -299,9 +315,7 @@ def _controlled_source(growth: Growth, part: Part, net: str) -> None:
     growth.use(part)
     a, b, control_a, control_b = (pin.net for pin in part.pins)
     kind = "voltage" if part.element == "E" else "current"
-    growth.add(
-        ControlledSource(part.reference, a, b, control_a, control_b, lambda _: np.full(1, gain), kind)
-    )
+    growth.add(ControlledSource(part.reference, a, b, control_a, control_b, lambda _: np.full(1, gain), kind))
     growth.follow(part)
 
 

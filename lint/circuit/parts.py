@@ -110,7 +110,9 @@ class PartReader:
         text = self.attribute(part, name)
         if text:
             try:
-                return Rating(read_value(text, quantity, spice=False).number, f"{part.reference} {name} {text}")
+                return Rating(
+                    read_value(text, quantity, spice=False).number, f"{part.reference} {name} {text}"
+                )
             except ValueTextError:
                 return None
         value = self.written(part)
@@ -169,7 +171,11 @@ class PartReader:
         if kind == "resistor" and number <= defaults()["limits"]["link_up_to"]:
             return 0.0
         row = kind
-        if kind == "resistor" and not is_preferred(number, ("E24",)) and is_preferred(number, ("E96", "E192")):
+        if (
+            kind == "resistor"
+            and not is_preferred(number, ("E24",))
+            and is_preferred(number, ("E96", "E192"))
+        ):
             row = "resistor-fine"
         if kind == "capacitor" and number >= defaults()["limits"]["electrolytic_from"]:
             row = "electrolytic"

@@ -38,7 +38,9 @@ class Potential:
     def parameter(self) -> Parameter:
         """Return what varies about it, for the worst case."""
         s = self.spread
-        return Parameter(f"V({self.net})", s.minimum, s.nominal, s.maximum, self.variation, self.label or self.net)
+        return Parameter(
+            f"V({self.net})", s.minimum, s.nominal, s.maximum, self.variation, self.label or self.net
+        )
 
 
 def known_potentials(
@@ -134,4 +136,3 @@ def named_voltage(net: str) -> float | None:
         return None
     volts = float(f"{match['whole']}.{match['tenths'] or '0'}")
     return -volts if match["sign"] == "-" else volts
-

@@ -228,7 +228,7 @@ def _solve_each(matrix: Array, right: Array) -> Array:
     if matrix.shape[1] == 0:
         return np.zeros_like(right)
     try:
-        return np.linalg.solve(matrix, right[..., None])[..., 0]
+        answer: Array = np.linalg.solve(matrix, right[..., None])[..., 0]
     except np.linalg.LinAlgError:
         answer = np.full_like(right, np.nan)
         for index in range(matrix.shape[0]):
@@ -236,7 +236,7 @@ def _solve_each(matrix: Array, right: Array) -> Array:
                 answer[index] = np.linalg.solve(matrix[index], right[index])
             except np.linalg.LinAlgError:
                 continue  # stays NaN: the caller reads it as "no solution in this corner"
-        return answer
+    return answer
 
 
 class _Equations:

@@ -1,0 +1,166 @@
+"""Closed loops: the output voltage a controller regulates to, and the current at which it takes over.
+
+An amplifier in control holds its inputs equal, within its offset. So the unknown (output voltage, load
+current) is a free quantity of the network, and "inputs equal" is its condition: one linear solve.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+from itertools import product
+from math import isinf
+
+from ..estimate import Estimate, Unsolved
+from ..quantity import Spread
+from .amplifiers import Amplifier
+from .answers import Probe, estimate
+from .controllers import Controller
+from .graph import Circuit
+from .growth import Growth
+from .potentials import Potential
+from .solver import Condition, FreeCurrent, FreePotential, Resistor
+from .worst_case import Parameter, Variation
+
+
+@dataclass(frozen=True, slots=True)
+class Regulation:
+    """An output in regulation.
+
+    output:   voltage of the output net, trimmers swept end to end
+    inputs:   potential of the amplifier's non-inverting input meanwhile (the other is equal)
+    trimmers: what can be set on the bench
+    settable: the lowest and the highest voltage (V) to which every unit can be set, whatever its tolerances;
+              None without a trimmer, crossed where no voltage is within reach of every unit
+    """
+
+    output: Estimate
+    inputs: Estimate
+    trimmers: tuple[str, ...] = ()
+    settable: tuple[float, float] | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Trip:
+    """The current limit taking over.
+
+    current:     the current in the power path at which the amplifier's inputs are equal
+    threshold:   the voltage across the sense resistor at that moment
+    dissipation: the power in the sense resistor at that moment
+    """
+
+    current: Estimate
+    threshold: Estimate
+    dissipation: Estimate
+
+
+@dataclass(slots=True)
+class Loops:
+    """Solves the closed loops of one controller."""
+
+    circuit: Circuit
+    known: Mapping[str, Potential]
+    controller: Controller
+
+    def regulation(self, amplifier: Amplifier) -> Regulation | Unsolved:
+        """Return the output voltage at which the voltage amplifier's inputs are equal."""
+        output = amplifier.output
+        growth = self._grow(amplifier, self._without(output), frozenset({output}))
+        condition = self._inputs_equal(growth, amplifier)
+        probes: dict[str, tuple[Probe, str]] = {
+            "output": (lambda s: s.voltage(output), "V"),
+            "inputs": (lambda s: s.voltage(amplifier.plus), "V"),
+        }
+        found = estimate(growth, probes, [FreePotential(output)], [condition])
+        if isinstance(found, Unsolved):
+            return found
+        if isinf(found["output"].spread.nominal):
+            return Unsolved(
+                f"no voltage on {output} makes the inputs of amplifier {amplifier.number} equal",
+                parts=found["output"].parts,
+                nets=(output, amplifier.plus, amplifier.minus),
+            )
+        trimmers = tuple(p.name for p in growth.parameters.values() if p.variation is Variation.TRAVEL)
+        settable = _settable(growth, probes, output, condition) if trimmers else None
+        return Regulation(found["output"], found["inputs"], trimmers, settable)
+
+    def trip(self, amplifier: Amplifier, output: Potential | None = None) -> Trip | Unsolved:
+        """Return the sense current at which the current amplifier's inputs are equal.
+
+        output: the potential to take for the output net, where the network reaches it
+        """
+        sense = amplifier.sense
+        assert sense is not None
+        known = dict(self.known)
+        if output is not None:
+            known[output.net] = output
+        growth = self._grow(amplifier, known, frozenset({sense.near, sense.far} - known.keys()))
+        growth.grow(sense.far)
+        value = growth.part_value(sense.part)
+        assert value is not None  # a part without a value is not taken for a sense resistor
+        growth.use(sense.part)
+        resistor = Resistor(sense.part.reference, sense.near, sense.far, value)
+        growth.add(resistor)
+        if sense.far not in known:
+            return Unsolved(
+                f"net {sense.far} has no known potential",
+                nets=(sense.far,),
+                needs=(f'brief: [rails.{sense.far}] voltage = "..."',),
+            )
+        condition = self._inputs_equal(growth, amplifier)
+        found = estimate(
+            growth, _trip_probes(resistor), [FreeCurrent("load", sense.far, sense.near)], [condition]
+        )
+        if not isinstance(found, Unsolved) and found["current"].spread.nominal < 0:
+            # The current flows the other way: sensed below ground, or on the way out of the high side.
+            growth.elements[resistor.name] = resistor = replace(resistor, a=sense.far, b=sense.near)
+            reverse = FreeCurrent("load", sense.near, sense.far)
+            found = estimate(growth, _trip_probes(resistor), [reverse], [condition])
+        if isinstance(found, Unsolved):
+            return found
+        if isinf(found["current"].spread.nominal):
+            return Unsolved(
+                f"no current in {sense.part.reference} makes amplifier {amplifier.number}'s inputs equal",
+                parts=found["current"].parts,
+                nets=(amplifier.plus, amplifier.minus),
+            )
+        return Trip(found["current"], found["threshold"], found["dissipation"])
+
+    def _without(self, net: str) -> dict[str, Potential]:
+        return {name: potential for name, potential in self.known.items() if name != net}
+
+    def _grow(self, amplifier: Amplifier, known: Mapping[str, Potential], stops: frozenset[str]) -> Growth:
+        growth = Growth(self.circuit, known, (self.controller,), stops)
+        return growth.grow(amplifier.plus, amplifier.minus)
+
+    def _inputs_equal(self, growth: Growth, amplifier: Amplifier) -> Condition:
+        offset = self.controller.profile.figure("amplifier.offset").spread()
+        name = f"{self.controller.reference} amplifier {amplifier.number} offset"
+        value = growth.add_parameter(Parameter(name, offset.minimum, offset.nominal, offset.maximum))
+        return Condition(amplifier.plus, amplifier.minus, value)
+
+
+def _trip_probes(resistor: Resistor) -> dict[str, tuple[Probe, str]]:
+    return {
+        "current": (lambda s: s.free_current("load"), "A"),
+        "threshold": (lambda s: s.voltage(resistor.a, resistor.b), "V"),
+        "dissipation": (lambda s: s.voltage(resistor.a, resistor.b) * s.current(resistor), "W"),
+    }
+
+
+def _settable(
+    growth: Growth, probes: Mapping[str, tuple[Probe, str]], output: str, condition: Condition
+) -> tuple[float, float] | None:
+    """Return the voltages between which every unit can be set, each end from the least favourable unit."""
+    travel = [p for p in growth.parameters.values() if p.variation is Variation.TRAVEL]
+    ends: list[Spread] = []
+    for positions in product((0.0, 1.0), repeat=len(travel)):
+        fixed = {p.name: replace(p, low=x, nominal=x, high=x) for p, x in zip(travel, positions, strict=True)}
+        growth.parameters.update(fixed)
+        found = estimate(growth, probes, [FreePotential(output)], [condition])
+        if isinstance(found, Unsolved):
+            return None
+        ends.append(found["output"].spread)
+    lowest = min(ends, key=lambda end: end.nominal)
+    highest = max(ends, key=lambda end: end.nominal)
+    return lowest.maximum, highest.minimum

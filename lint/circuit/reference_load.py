@@ -1,0 +1,95 @@
+"""The current out of a controller's reference pin: in all, and branch by branch."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from ..estimate import Estimate, Unsolved
+from ..quantity import Spread
+from .answers import Probe, estimate
+from .controllers import Controller
+from .graph import Circuit
+from .growth import Growth
+from .potentials import Potential
+from .solver import Element
+
+
+@dataclass(frozen=True, slots=True)
+class ReferenceLoad:
+    """What the reference feeds.
+
+    total:    current out of the pin's net, in A
+    branches: (part or pin, current in A) of everything on the net, the greatest first
+    unknown:  parts on the net whose current cannot be told, each as a sentence
+    """
+
+    total: Estimate
+    branches: tuple[tuple[str, Estimate], ...]
+    unknown: tuple[str, ...]
+
+
+def reference_load(
+    circuit: Circuit,
+    known: Mapping[str, Potential],
+    controllers: Sequence[Controller],
+    controller: Controller,
+) -> ReferenceLoad | Unsolved:
+    """Return the direct current that a controller's reference pin delivers.
+
+    A net that a branch leads to and whose potential cannot be computed is taken anywhere between ground
+    and the reference: nothing that hangs on the reference alone can leave these bounds.
+    """
+    net = controller.net("reference")
+    if not net:
+        return Unsolved(f"the reference pin of {controller.reference} is not mapped or hangs open")
+    potentials = dict(known)
+    growth = Growth(circuit, potentials, controllers).grow(net, from_known=True)
+    while growth.blocked:
+        potentials.update(_bounded(growth, potentials[net]))
+        growth = Growth(circuit, potentials, controllers).grow(net, from_known=True)
+    elements = [element for element in growth.elements.values() if net in (element.a, element.b)]
+    probes: dict[str, tuple[Probe, str]] = {"total": (lambda s: s.current_out_of(net), "A")}
+    probes |= {element.name: (_out_of(net, element), "A") for element in elements}
+    found = estimate(growth, probes)
+    if isinstance(found, Unsolved):
+        return found
+    total = found.pop("total")
+    branches = sorted(found.items(), key=lambda item: (-item[1].spread.maximum, item[0]))
+    return ReferenceLoad(total, tuple(branches), _unknown(circuit, controllers, net))
+
+
+def _bounded(growth: Growth, reference: Potential) -> dict[str, Potential]:
+    """Return the nets that stopped the growth, each taken between ground and the reference."""
+    top = reference.spread.maximum
+    return {
+        blocked.net: Potential(
+            blocked.net,
+            Spread(0.0, top / 2, top, "V"),
+            "bound",
+            assumption=f"net {blocked.net} taken anywhere from ground to the reference ({blocked.reason})",
+        )
+        for blocked in growth.blocked
+    }
+
+
+def _out_of(net: str, element: Element) -> Probe:
+    sign = 1.0 if element.a == net else -1.0
+    return lambda solution: sign * solution.current(element)
+
+
+# Parts that draw no direct current, or whose current the network itself tells.
+_TOLD = frozenset(
+    {"resistor", "trimmer", "capacitor", "test point", "inductor", "fuse", "jumper", "diode", "coupling"}
+    | {"voltage source", "current source", "controlled source"}
+)
+
+
+def _unknown(circuit: Circuit, controllers: Sequence[Controller], net: str) -> tuple[str, ...]:
+    references = {controller.reference for controller in controllers}
+    parts = {connection.part.reference: connection.part for connection in circuit.connections(net)}
+    return tuple(
+        f"what {reference} ({circuit.kind(part)}) draws from {net} is not known"
+        for reference, part in parts.items()
+        if reference not in references and circuit.kind(part) not in _TOLD
+    )

@@ -1,0 +1,241 @@
+"""All that a rule sees: the circuit, what the engineer told, and the questions in the field's words.
+
+A rule asks `design.voltage(net)` or `design.regulation(controller)`; it never walks the graph. Answers are
+kept, so that ten rules may ask the same without solving ten times.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import TypeVar, cast
+
+from ..grammar.netlist import Netlist, Part, Place
+from .brief import Brief, ControllerBrief, Rail
+from .circuit.amplifiers import Amplifier, AmplifierReader, Reach, amplifier_for
+from .circuit.answers import estimate
+from .circuit.controllers import Controller, find_controllers
+from .circuit.dead_time import DeadTime, dead_time
+from .circuit.graph import Circuit
+from .circuit.growth import Growth
+from .circuit.loops import Loops, Regulation, Trip
+from .circuit.potentials import Potential, known_potentials
+from .circuit.reference_load import ReferenceLoad, reference_load
+from .circuit.timing import Timing, timing
+from .circuit.worst_case import Variation
+from .estimate import Estimate, Unsolved
+from .parts_list import PartsList
+from .quantity import Spread
+
+_Answer = TypeVar("_Answer")
+
+
+@dataclass(frozen=True, slots=True)
+class NoLoop:
+    """There is no such loop on the controller: `reason` is a sentence."""
+
+    reason: str
+
+
+class Design:
+    """A netlist with its brief and parts list, and the answers to what a reviewer asks of them."""
+
+    def __init__(
+        self, netlist: Netlist, brief: Brief | None = None, parts_list: PartsList | None = None
+    ) -> None:
+        self.netlist = netlist
+        self.brief = brief
+        self.parts_list = parts_list
+        self.circuit = Circuit(netlist, parts_list)
+        told = brief.controllers if brief is not None else {}
+        pins = {reference: entry.pins for reference, entry in told.items() if entry.pins}
+        self.controllers = find_controllers(netlist, pins)
+        self.known = known_potentials(self.circuit, brief, self.controllers)
+        self._answers: dict[tuple[str, str], object] = {}
+
+    # What the engineer told
+
+    def told(self, controller: Controller) -> ControllerBrief | None:
+        """Return what the brief says of a controller."""
+        return self.brief.controllers.get(controller.reference) if self.brief is not None else None
+
+    def rail(self, net: str) -> Rail | None:
+        """Return what the brief says of a net."""
+        return self.brief.rails.get(net) if self.brief is not None else None
+
+    def missing(self, controller: Controller, need: str) -> str:
+        """Return the line of the brief that would tell `need` of a controller, empty where it is told.
+
+        need: a key of the controller's table in the brief, such as "topology"
+        """
+        told = self.told(controller)
+        if told is not None and getattr(told, need) is not None:
+            return ""
+        return f'brief: [controllers.{controller.reference}] {need} = "..."'
+
+    # What the circuit does
+
+    def potential(self, net: str) -> Potential | None:
+        """Return a net's potential where it is known without solving."""
+        return self.known.get(net)
+
+    def is_ground(self, net: str) -> bool:
+        """Tell whether a net is ground."""
+        return net in self.known and self.known[net].origin == "ground"
+
+    def voltage(self, net: str) -> Estimate | Unsolved:
+        """Return the direct voltage of a net over ground, loops standing still."""
+        return self._keep("voltage", net, lambda: self._voltage(net))
+
+    def has_path(self, net: str) -> bool:
+        """Tell whether a direct-current path joins a net to a known potential."""
+        growth = Growth(self.circuit, self.known, self.controllers).grow(net)
+        return bool(growth.blocked) or net not in growth.network().floating()
+
+    def reference_load(self, controller: Controller) -> ReferenceLoad | Unsolved:
+        """Return the current out of a controller's reference pin, in all and by branch."""
+        return self._keep(
+            "reference load",
+            controller.reference,
+            lambda: reference_load(self.circuit, self.known, self.controllers, controller),
+        )
+
+    def timing(self, controller: Controller) -> Timing | Unsolved:
+        """Return a controller's timing resistance, capacitance and oscillator frequency."""
+        return self._keep(
+            "timing", controller.reference, lambda: timing(self.circuit, self.known, controller)
+        )
+
+    def dead_time(self, controller: Controller, voltage: Estimate) -> DeadTime:
+        """Return the dead time that a voltage on the dead-time pin makes at the controller's frequency."""
+        found = self.timing(controller)
+        frequency = None if isinstance(found, Unsolved) else found.frequency
+        return dead_time(controller.profile, voltage, frequency)
+
+    def output_mode(self, controller: Controller) -> str | None:
+        """Return "single-ended" or "push-pull" as the output-control pin sets it, None where it does not."""
+        net = controller.net("output control")
+        if not net:
+            return None
+        voltage = self.voltage(net)
+        if isinstance(voltage, Unsolved):
+            return None
+        reference = controller.profile.figure("reference.voltage").spread()
+        if voltage.spread.maximum < _LOW:
+            return "single-ended"
+        return "push-pull" if voltage.spread.minimum > reference.minimum - _HIGH_DROP else None
+
+    def amplifiers(self, controller: Controller) -> tuple[Amplifier, ...]:
+        """Return what each error amplifier of a controller is used for."""
+        return self._keep("amplifiers", controller.reference, self._amplifier_reader(controller).amplifiers)
+
+    def reach(self, controller: Controller, net: str) -> Reach:
+        """Return what resistors alone join to a net of a controller's amplifiers."""
+        return self._keep("reach", net, lambda: self._amplifier_reader(controller).reach(net))
+
+    def regulation(self, controller: Controller) -> Regulation | Unsolved | NoLoop:
+        """Return the output voltage that a controller's voltage loop regulates to."""
+        return self._keep("regulation", controller.reference, lambda: self._regulation(controller))
+
+    def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
+        """Return the current at which a controller's current loop takes over.
+
+        shorted: with the output at ground instead of at its regulated voltage
+        """
+        key = f"trip{' shorted' if shorted else ''}"
+        return self._keep(key, controller.reference, lambda: self._trip(controller, shorted=shorted))
+
+    def divider(self, amplifier: Amplifier) -> tuple[Part, Part] | None:
+        """Return top and bottom resistor of a plain divider from the output, None for any other network."""
+        net = amplifier.plus if amplifier.sensed_by == "in+" else amplifier.minus
+        resistors = [c.part for c in self.circuit.connections(net) if self.circuit.kind(c.part) == "resistor"]
+        ends = {other: part for part in resistors for other in self.circuit.other_nets(part, net)}
+        grounds = [end for end in ends if self.is_ground(end)]
+        if len(ends) != 2 or amplifier.output not in ends or len(grounds) != 1:
+            return None
+        return ends[amplifier.output], ends[grounds[0]]
+
+    def nominal(self, part: Part) -> float | None:
+        """Return the nominal value of a part in SI units, None where it has none."""
+        value = self.circuit.value(part)
+        return value.spread.nominal if value is not None else None
+
+    # Where things are
+
+    def place(self, reference: str) -> Place:
+        """Return where a part stands in the netlist."""
+        return self.netlist.parts[reference].place
+
+    def part(self, reference: str) -> Part:
+        """Return a part by its reference designator."""
+        return self.netlist.parts[reference]
+
+    def _keep(self, question: str, about: str, answer: Callable[[], _Answer]) -> _Answer:
+        key = (question, about)
+        if key not in self._answers:
+            self._answers[key] = answer()
+        return cast(_Answer, self._answers[key])
+
+    def _amplifier_reader(self, controller: Controller) -> AmplifierReader:
+        told = self.told(controller)
+        output = told.output if told is not None and told.output else ""
+        return AmplifierReader(self.circuit, self.known, controller, output)
+
+    def _voltage(self, net: str) -> Estimate | Unsolved:
+        potential = self.known.get(net)
+        if potential is not None:
+            assumptions = (potential.assumption,) if potential.assumption else ()
+            return Estimate(potential.spread, potential.spread, nets=(net,), assumptions=assumptions)
+        growth = Growth(self.circuit, self.known, self.controllers).grow(net)
+        if not growth.blocked and net in growth.network().floating():
+            return Unsolved(f"net {net} has no direct-current path", nets=(net,))
+        found = estimate(growth, {"voltage": (lambda s: s.voltage(net), "V")})
+        return found if isinstance(found, Unsolved) else found["voltage"]
+
+    def _loops(self, controller: Controller) -> Loops:
+        """Return the loops of a controller, its amplifier output inside the control range."""
+        known = dict(self.known)
+        net = controller.net("feedback")
+        if net and net not in known:
+            reach = controller.profile.figure("feedback.control-range").spread()
+            label = f"{controller.reference} amplifier output"
+            known[net] = Potential(net, reach, "amplifier", Variation.RANGE, label=label)
+        return Loops(self.circuit, known, controller)
+
+    def _regulation(self, controller: Controller) -> Regulation | Unsolved | NoLoop:
+        amplifier = amplifier_for(self.amplifiers(controller), "voltage")
+        if amplifier is None:
+            return NoLoop(f"no amplifier of {controller.reference} senses an output through resistors")
+        if not amplifier.output:
+            return Unsolved(
+                f"amplifier {amplifier.number} reaches several nets: {', '.join(amplifier.outputs)}",
+                nets=amplifier.outputs,
+                needs=(self.missing(controller, "output"),),
+            )
+        return self._loops(controller).regulation(amplifier)
+
+    def _trip(self, controller: Controller, *, shorted: bool) -> Trip | Unsolved | NoLoop:
+        amplifier = amplifier_for(self.amplifiers(controller), "current")
+        if amplifier is None:
+            return NoLoop(f"no amplifier of {controller.reference} looks at a current-sense resistor")
+        return self._loops(controller).trip(amplifier, self._output_potential(controller, shorted=shorted))
+
+    def _output_potential(self, controller: Controller, *, shorted: bool) -> Potential | None:
+        amplifier = amplifier_for(self.amplifiers(controller), "voltage")
+        if amplifier is None or not amplifier.output:
+            return None
+        net = amplifier.output
+        if shorted:
+            return Potential(net, Spread.exact(0.0, "V"), "brief", assumption=f"{net} shorted to ground")
+        if net in self.known:
+            return None
+        found = self.regulation(controller)
+        if isinstance(found, Regulation):
+            return Potential(net, found.output.spread, "brief", assumption=f"{net} in regulation")
+        return None
+
+
+# Below the first the output-control pin reads as low, and as high within the second of the reference:
+# function table of the 494 class, "at ground" and "at the reference" (from memory).
+_LOW = 0.4
+_HIGH_DROP = 0.5

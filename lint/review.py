@@ -1,0 +1,125 @@
+"""Runs the rules over a design: every rule once per controller, or once per netlist."""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import replace
+from pathlib import Path
+
+from ..grammar import Netlist, Place, read, read_bytes
+from .brief import Brief, read_brief
+from .circuit.controllers import Controller
+from .controllers import generic_number
+from .design import Design
+from .parts_list import PartsList, read_parts_list
+from .pin_table import controller_review
+from .rule import Rule, load_rules
+from .verdict import Outcome, Review, Verdict
+
+STANDARD_INPUT = "-"
+
+
+def review(
+    netlist: str | Path,
+    *,
+    brief: str | Path | None = None,
+    parts_list: str | Path | None = None,
+    allow_include: Sequence[Path] = (),
+) -> Review:
+    """Review a netlist file and return everything that was found.
+
+    netlist:    a path, or "-" for standard input
+    brief:      the design intent (TOML); by default `board.brief.toml` beside `board.edf`, where it exists
+    parts_list: the ratings (CSV); by default `board.parts.csv` beside `board.edf`, where it exists
+    allow_include: folders besides the netlist's own from which a SPICE-style list may include
+    Raises NetlistError, or its kinds BriefError and PartsListError, for an input that cannot be read.
+    """
+    brief_path = brief if brief is not None else _beside(netlist, ".brief.toml")
+    parts_path = parts_list if parts_list is not None else _beside(netlist, ".parts.csv")
+    told = read_brief(brief_path) if brief_path is not None else None
+    listed = read_parts_list(parts_path) if parts_path is not None else None
+    return review_netlist(_read(netlist, allow_include), told, listed)
+
+
+def review_netlist(
+    netlist: Netlist,
+    brief: Brief | None = None,
+    parts_list: PartsList | None = None,
+    rules: Iterable[Rule] | None = None,
+) -> Review:
+    """Review a netlist that is already read; `rules` are all installed ones unless given."""
+    design = Design(netlist, brief, parts_list)
+    asked = load_rules() if rules is None else tuple(rules)
+    verdicts = tuple(verdict for one in asked for verdict in _ask(one, design))
+    return Review(
+        netlist=netlist.file,
+        format=netlist.format,
+        name=brief.name if brief is not None and brief.name else netlist.name,
+        brief=brief.file if brief is not None else None,
+        parts_list=parts_list.file if parts_list is not None else None,
+        controllers=tuple(controller_review(one, design, verdicts) for one in design.controllers),
+        verdicts=verdicts,
+    )
+
+
+def _read(netlist: str | Path, allow_include: Sequence[Path]) -> Netlist:
+    if str(netlist) == STANDARD_INPUT:
+        return read_bytes(sys.stdin.buffer.read(), "<standard input>", keep=_is_controller)
+    return read(netlist, keep=_is_controller, allow_include=allow_include)
+
+
+def _is_controller(name: str) -> bool:
+    return generic_number(name) is not None
+
+
+def _beside(netlist: str | Path, ending: str) -> Path | None:
+    """Return the file beside the netlist that has its name and another ending, where there is one."""
+    if str(netlist) == STANDARD_INPUT:
+        return None
+    path = Path(netlist)
+    beside = path.with_name(path.stem + ending)
+    return beside if beside.is_file() else None
+
+
+def _ask(one: Rule, design: Design) -> Iterator[Verdict]:
+    if one.of_netlist is not None:
+        for verdict in one.of_netlist(design):
+            yield _complete(verdict, one, design, None)
+    if one.of_controller is not None:
+        for controller in design.controllers:
+            for verdict in _ask_controller(one, controller, design):
+                yield _complete(verdict, one, design, controller)
+
+
+def _ask_controller(one: Rule, controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Ask a rule of a controller, unless an input that it needs is missing: then the engine says which."""
+    needs = tuple(filter(None, (design.missing(controller, need) for need in one.needs)))
+    if needs:
+        return (Verdict(outcome=Outcome.OPEN, message=one.question, needs=needs),)
+    assert one.of_controller is not None
+    return one.of_controller(controller, design)
+
+
+def _complete(verdict: Verdict, one: Rule, design: Design, controller: Controller | None) -> Verdict:
+    """Fill in what the rule leaves to the engine: its own name, the subject, the places."""
+    subject = verdict.subject or (controller.reference if controller is not None else design.netlist.file)
+    level = (verdict.level or one.level) if verdict.outcome is Outcome.FAIL else None
+    return replace(
+        verdict,
+        rule=one.id,
+        topic=one.topic,
+        subject=subject,
+        controller=controller.reference if controller is not None else "",
+        level=level,
+        places=verdict.places or _places(verdict, subject, design),
+    )
+
+
+def _places(verdict: Verdict, subject: str, design: Design) -> tuple[Place, ...]:
+    """Return where the verdict's parts stand, else its subject, else the netlist as a whole."""
+    parts = design.netlist.parts
+    named = [parts[reference].place for reference in verdict.parts if reference in parts]
+    if not named and subject in parts:
+        named = [parts[subject].place]
+    return tuple(named) or (Place(design.netlist.file, 0, 0),)

@@ -1,0 +1,116 @@
+"""What a rule module needs to become part of a review, and no more."""
+
+from __future__ import annotations
+
+import inspect
+import re
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+from importlib.metadata import entry_points
+from types import ModuleType
+from typing import TypeAlias
+
+from .circuit.controllers import Controller
+from .design import Design
+from .verdict import Level, Verdict
+
+ENTRY_POINT_GROUP = "pwmlint.rules"
+
+SECTIONS = ("What", "Why", "Formula", "Source", "Remedy")
+
+ControllerQuestion: TypeAlias = Callable[[Controller, Design], Iterable[Verdict]]
+NetlistQuestion: TypeAlias = Callable[[Design], Iterable[Verdict]]
+
+_ID = re.compile(r"[a-z0-9]+(?:-[a-z0-9]+)*\.[a-z0-9]+(?:-[a-z0-9]+)*")
+
+
+@dataclass(frozen=True, slots=True)
+class Rule:
+    """One question a reviewer asks.
+
+    id:    `topic.question`, never reused
+    level: what a failed verdict counts as, unless the verdict itself says otherwise
+    topic: the heading it stands under in a report
+    needs: inputs without which the question cannot be asked, in the words of `Design.missing`
+    ask:   the question as a function: of every controller, or once of the whole netlist
+    """
+
+    id: str
+    level: Level
+    topic: str
+    needs: tuple[str, ...]
+    of_controller: ControllerQuestion | None
+    of_netlist: NetlistQuestion | None
+
+    @property
+    def function(self) -> ControllerQuestion | NetlistQuestion:
+        """Return the rule's function."""
+        function = self.of_controller or self.of_netlist
+        assert function is not None
+        return function
+
+    @property
+    def question(self) -> str:
+        """Return the first line of the docstring: the question itself."""
+        return (inspect.getdoc(self.function) or "").partition("\n")[0]
+
+    @property
+    def sections(self) -> dict[str, str]:
+        """Return the docstring's sections by name, in the order of `SECTIONS`."""
+        text = inspect.getdoc(self.function) or ""
+        heading = re.compile(rf"^({'|'.join(SECTIONS)}):", re.MULTILINE)
+        pieces = heading.split(text)[1:]
+        return {name: inspect.cleandoc(body) for name, body in zip(pieces[::2], pieces[1::2], strict=True)}
+
+
+def rule(
+    id: str,  # noqa: A002 - the field's word for it, here and in SARIF
+    *,
+    level: str,
+    topic: str,
+    needs: tuple[str, ...] = (),
+) -> Callable[[ControllerQuestion], Rule]:
+    """Make a rule of a function of a controller and the design: it is asked once a controller."""
+
+    def make(function: ControllerQuestion) -> Rule:
+        return Rule(_checked(id), Level(level), topic, needs, function, None)
+
+    return make
+
+
+def netlist_rule(
+    id: str,  # noqa: A002 - as above
+    *,
+    level: str,
+    topic: str,
+) -> Callable[[NetlistQuestion], Rule]:
+    """Make a rule of a function of the design: it is asked once a netlist."""
+
+    def make(function: NetlistQuestion) -> Rule:
+        return Rule(_checked(id), Level(level), topic, (), None, function)
+
+    return make
+
+
+def rules_in(module: ModuleType) -> tuple[Rule, ...]:
+    """Return the rules of a module in the order in which they are written."""
+    return tuple(value for value in vars(module).values() if isinstance(value, Rule))
+
+
+def load_rules() -> tuple[Rule, ...]:
+    """Return every rule of every module that the entry-point group names, sorted by module, then as written.
+
+    Raises ValueError where two rules share an id.
+    """
+    found: dict[str, Rule] = {}
+    for entry in sorted(entry_points(group=ENTRY_POINT_GROUP), key=lambda entry: entry.name):
+        for one in rules_in(entry.load()):
+            if found.setdefault(one.id, one) is not one:
+                raise ValueError(f"two rules are called {one.id}")
+    return tuple(found.values())
+
+
+def _checked(identity: str) -> str:
+    if not _ID.fullmatch(identity):
+        raise ValueError(f"a rule's id reads topic.question in lower case, not {identity!r}")
+    return identity

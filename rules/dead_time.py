@@ -1,0 +1,207 @@
+"""Dead time: what a reviewer asks of the dead-time pin."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import replace
+
+from ..lint.brief import ControllerBrief
+from ..lint.circuit.controllers import Controller
+from ..lint.controllers import Figure
+from ..lint.design import Design
+from ..lint.estimate import Unsolved
+from ..lint.judge import judge, reports, unsolved
+from ..lint.quantity import Spread, engineering, percent
+from ..lint.rule import rule
+from ..lint.verdict import Limit, Outcome, Verdict
+
+_PIN = ("dead time",)
+_BOTH_OUTPUTS = ("push-pull", "half-bridge", "full-bridge")
+
+# Below this the pin is as good as grounded, and only the controller's own dead time is left.
+_AT_GROUND = 0.2
+
+
+@rule("dead-time.driven", level="error", topic="dead time")
+def driven(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is the dead-time pin held at a defined direct voltage?
+
+    What:
+        Looks for a direct-current path from the pin to ground, the reference or a rail. An open pin and
+        a pin with capacitors only have none.
+    Why:
+        The pin's bias current flows out of it and charges a lone capacitor up to the internal supply:
+        dead time drifts to 100 % and the outputs stay off, or it depends on leakage and humidity.
+    Formula:
+        offset [V] = bias current [A] x resistance to the driving point [ohm]
+    Source:
+        SLVS074 p.5 (input bias current of the dead-time control); common practice, no source (the rule).
+    Remedy:
+        Tie the pin to ground, or to a divider from the reference pin of a few kilo-ohms.
+    """
+    net = controller.net("dead time")
+    if net is None:
+        return
+    pin = controller.pins["dead time"]
+    if net and design.has_path(net):
+        yield Verdict(
+            outcome=Outcome.PASS, message=f"{pin.name} has a direct-current path", pins=_PIN, nets=(net,)
+        )
+        return
+    bias = controller.profile.figure("dead-time.bias-current")
+    yield Verdict(
+        outcome=Outcome.FAIL,
+        message=f"{pin.name} has no direct-current path: its bias current of up to "
+        f"{engineering(abs(bias.spread().minimum), 'A')} charges whatever hangs on it",
+        pins=_PIN,
+        nets=(net,) if net else (),
+        places=(pin.place,),
+        source=bias.source,
+        remedy=f"tie {pin.name} to ground, or to a divider from the reference pin",
+    )
+
+
+@rule("dead-time.range", level="error", topic="dead time")
+def voltage_range(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does the dead-time pin stay where it sets a usable dead time?
+
+    What:
+        Computes the pin's voltage over trimmer travel, tolerances, reference spread and bias current, and
+        holds it against the useful range and the absolute limits. A trimmer that can lift the pin above
+        the range can hold the outputs off: that is for a person to judge, unless the brief says
+        `shut_off_by_dead_time = true`.
+    Why:
+        Above the range no output pulse is left; below ground the input structure conducts.
+    Formula:
+        V [V] by nodal analysis of the network on the pin, bias current [A] included
+    Source:
+        SLVS074 p.5 (zero duty at 3 V typical, 3.3 V maximum) and p.11 (0 V to 3.3 V sweep dead time from
+        its minimum to 100 %).
+    Remedy:
+        Choose the divider, or a fixed resistor in series with the trimmer, so that the pin stays in range.
+    """
+    net = controller.net("dead time")
+    if not net or not design.has_path(net):
+        return  # dead-time.driven speaks of it
+    voltage = design.voltage(net)
+    if isinstance(voltage, Unsolved):
+        yield unsolved(voltage, "dead-time voltage", pins=_PIN)
+        return
+    profile = controller.profile
+    name = controller.pins["dead time"].name
+    says = f"{name} at {voltage.spread}"
+    absolute = profile.figure("dead-time.absolute-voltage")
+    if not absolute.limit().contains(voltage.spread):
+        yield judge(
+            voltage,
+            absolute.limit(),
+            f"{says}, beyond what the pin stands",
+            source=absolute.source,
+            rating=True,
+            pins=_PIN,
+            remedy=f"keep {name} between ground and the reference",
+        )
+        return
+    useful = profile.figure("dead-time.useful-voltage")
+    remedy = "lower the divider's tap, or add a resistor between the reference and the top of it, until "
+    remedy += f"{name} stays below {engineering(_top(useful), 'V')}"
+    verdict = judge(voltage, useful.limit(), says, source=useful.source, pins=_PIN, remedy=remedy)
+    yield _held_off(verdict, design.told(controller), _top(useful))
+
+
+def _top(figure: Figure) -> float:
+    assert figure.maximum is not None  # the profile's own test asks for it
+    return figure.maximum
+
+
+def _held_off(verdict: Verdict, told: ControllerBrief | None, top: float) -> Verdict:
+    """Turn a voltage that only somewhere exceeds the range into what it means: outputs held off there."""
+    measured = verdict.measured
+    assert measured is not None
+    if measured.maximum <= top or measured.nominal > top:
+        return verdict
+    if told is not None and told.shut_off_by_dead_time:
+        message = f"{verdict.message}: the outputs can be held off, as the brief wants"
+        return replace(verdict, outcome=Outcome.PASS, message=message, level=None, remedy="")
+    message = f"{verdict.message}: above {engineering(top, 'V')} no pulse is left"
+    return replace(verdict, outcome=Outcome.REVIEW, message=message, level=None)
+
+
+@rule("dead-time.minimum", level="error", topic="dead time")
+def least_dead_time(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is the dead time long enough for the switches, and no longer than wanted?
+
+    What:
+        Turns the pin's voltage into dead time: a share of the oscillator's period, and seconds at the
+        highest and lowest oscillator frequency. The published models disagree; the band covers them all.
+        Held against `dead_time` of the brief. Without one, two outputs that alternate with the pin at
+        ground are for a person to judge.
+    Why:
+        Where two switches share a winding or stand in one bridge leg, the one must be off before the
+        other turns on; only the dead time sees to it.
+    Formula:
+        dead time [s] = share(V) / oscillator frequency [Hz]; share = 0.03 + 0.97 V / 3.3 V (text model),
+        (V + 0.11 V) / 3.0 V (ramp model), never below the controller's own 3 % to 5 %
+    Source:
+        SLVS074 p.1 and p.11 (3 % and 5 % at 0 V, 100 % at 3.3 V).
+    Remedy:
+        Raise the pin's voltage with a divider from the reference.
+    """
+    net = controller.net("dead time")
+    voltage = design.voltage(net) if net and design.has_path(net) else None
+    if voltage is None or isinstance(voltage, Unsolved):
+        return  # dead-time.driven or dead-time.range speaks of it
+    found = design.dead_time(controller, voltage)
+    told = design.told(controller)
+    source = controller.profile.figure("dead-time.least").source
+    says = f"dead time {_percentages(found.share.spread)} of the period"
+    if found.seconds is None:
+        yield reports(found.share, says, pins=_PIN, source=source)
+        return
+    says += f", {found.seconds.spread}"
+    if told is not None and told.dead_time is not None:
+        wanted = told.dead_time
+        limit = Limit(wanted.minimum, wanted.maximum if wanted.maximum > wanted.minimum else None, "s")
+        yield judge(
+            found.seconds,
+            limit,
+            says,
+            source="brief",
+            pins=_PIN,
+            remedy=_wanted_voltage(controller, design, wanted),
+        )
+    elif _alternates(controller, design) and voltage.spread.nominal < _AT_GROUND:
+        yield replace(
+            reports(found.seconds, f"{says}: {_WARNING}", pins=_PIN, source=source),
+            outcome=Outcome.REVIEW,
+            remedy="compare it with the turn-off time of the switch and say `dead_time` in the brief",
+        )
+    else:
+        yield reports(found.seconds, says, pins=_PIN, source=source)
+
+
+_WARNING = "only the controller's own dead time stands between the two switches"
+
+
+def _percentages(share: Spread) -> str:
+    return f"{percent(share.nominal)} ({percent(share.minimum)} .. {percent(share.maximum)})"
+
+
+def _alternates(controller: Controller, design: Design) -> bool:
+    told = design.told(controller)
+    topology = told.topology if told is not None else None
+    return topology in _BOTH_OUTPUTS or design.output_mode(controller) == "push-pull"
+
+
+def _wanted_voltage(controller: Controller, design: Design, wanted: Spread) -> str:
+    """Return the pin voltage that makes the middle of the wanted dead time, by the mean of the models."""
+    timing = design.timing(controller)
+    if isinstance(timing, Unsolved):
+        return ""
+    share = wanted.nominal * timing.frequency.spread.nominal
+    models = controller.profile.dead_time_models
+    volts = sum((share - model.at_zero) / model.per_volt for model in models) / len(models)
+    name = controller.pins["dead time"].name
+    if not 0 < share < 1 or volts <= 0:
+        return f"{engineering(wanted.nominal, 's')} cannot be set at this frequency: change the timing parts"
+    return f"about {engineering(volts, 'V')} on {name} makes {engineering(wanted.nominal, 's')}"
