@@ -6,7 +6,8 @@ the practice that supplies, loads and trimmers are outer loops whose ends are ne
 - Extreme value: every parameter at its worst end at once. All corners up to `MOST_CORNER_PARAMETERS`;
   beyond, each quantity's ends are looked for along the signs of its sensitivities.
 - Root-sum-square: tolerances vary independently and each half-width counts as three sigma; for every
-  corner of the outer loops the half-widths of the result are root-summed about its centre.
+  corner of the outer loops the half-widths of the result are root-summed about its centre. What is bias
+  in a tolerance adds up in full: only the random share is root-summed.
 """
 
 from __future__ import annotations
@@ -41,7 +42,11 @@ class Variation(Enum):
 
 @dataclass(frozen=True, slots=True)
 class Parameter:
-    """Something that varies: `low <= nominal <= high`, in SI base units; `label` is for people."""
+    """Something that varies: `low <= nominal <= high`, in SI base units; `label` is for people.
+
+    random: the share (0 to 1) of a tolerance that varies from unit to unit on its own; the rest is bias
+            (temperature, ageing), which hits all units alike and is never root-summed
+    """
 
     name: str
     low: float
@@ -49,6 +54,7 @@ class Parameter:
     high: float
     variation: Variation = Variation.TOLERANCE
     label: str = ""
+    random: float = 1.0
 
     def __post_init__(self) -> None:
         """Refuse crossed ends."""
@@ -83,7 +89,7 @@ def analyse(
     evaluate:   (sample, size) to quantity name -> array of shape (size,)
     units:      quantity name to its unit
     """
-    samples = _Samples(parameters)
+    samples = Samples(parameters)
     rows = np.vstack([samples.nominal(), samples.corners(), samples.star()])
     values = evaluate(samples.as_sample(rows), len(rows))
     first_star = len(rows) - samples.star_rows
@@ -97,7 +103,7 @@ def analyse(
     return found
 
 
-class _Samples:
+class Samples:
     """Builds the rows of parameter values at which the quantities are evaluated."""
 
     def __init__(self, parameters: Sequence[Parameter]) -> None:
@@ -147,7 +153,7 @@ def _stations(parameter: Parameter) -> tuple[float, ...]:
     return (parameter.low, parameter.high)
 
 
-def _directed(samples: _Samples, evaluate: Evaluate, name: str, star: Array) -> Array:
+def _directed(samples: Samples, evaluate: Evaluate, name: str, star: Array) -> Array:
     """Return the values of one quantity at the two corners that its sensitivities point to.
 
     Used beyond MOST_CORNER_PARAMETERS, where trying every corner would take too long.
@@ -161,7 +167,7 @@ def _directed(samples: _Samples, evaluate: Evaluate, name: str, star: Array) -> 
     return evaluate(samples.as_sample(rows), 2)[name]
 
 
-def _outer_loops(samples: _Samples, evaluate: Evaluate) -> dict[str, tuple[Array, Array]]:
+def _outer_loops(samples: Samples, evaluate: Evaluate) -> dict[str, tuple[Array, Array]]:
     """Return, for each quantity, the centre of every outer corner and its root-summed half-width."""
     centres = samples.outer_corners()
     block = 1 + 2 * len(samples.tolerances)
@@ -169,17 +175,19 @@ def _outer_loops(samples: _Samples, evaluate: Evaluate) -> dict[str, tuple[Array
         [np.vstack([centre[None, :], samples.star_about(centre, samples.tolerances)]) for centre in centres]
     )
     values = evaluate(samples.as_sample(rows), len(rows))
+    random = np.array([samples.parameters[index].random for index in samples.tolerances], dtype=np.float64)
     loops: dict[str, tuple[Array, Array]] = {}
     for name, column in values.items():
         table = column.reshape(len(centres), block)
         with np.errstate(invalid="ignore"):
-            half_widths = (table[:, 2::2] - table[:, 1::2]) / 2
-        loops[name] = table[:, 0], np.sqrt(np.sum(half_widths**2, axis=1))
+            half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
+        root_sum = np.sqrt(np.sum((half_widths * random) ** 2, axis=1))
+        loops[name] = table[:, 0], root_sum + np.sum(half_widths * (1 - random), axis=1)
     return loops
 
 
 def _analysis(
-    samples: _Samples,
+    samples: Samples,
     nominal: float,
     corners: Array,
     star: Array,
@@ -204,7 +212,7 @@ def _finite_or(value: float, fallback: float) -> float:
     return value if np.isfinite(value) else fallback
 
 
-def _contributions(samples: _Samples, star: Array) -> tuple[tuple[str, float], ...]:
+def _contributions(samples: Samples, star: Array) -> tuple[tuple[str, float], ...]:
     with np.errstate(invalid="ignore"):
         widths = np.nan_to_num(np.abs(star[1::2] - star[0::2]), posinf=0.0)
     total = float(np.sum(widths))
