@@ -1,0 +1,36 @@
+"""Reference designators as parts lists write them: lists and ranges such as `R1-R4, R7`."""
+
+from __future__ import annotations
+
+import re
+
+_MOST_IN_A_RANGE = 10_000
+
+# A hyphen with blanks beside it, a dash, an ellipsis or a word: all are written as one hyphen first.
+_MARK = re.compile(r"\s*(?:[\N{EN DASH}\N{EM DASH}…]|\.\.\.?)\s*|\s+-\s*|-\s+|\s+to\s+", re.IGNORECASE)
+_RANGE = re.compile(
+    r"(?P<prefix>[^\s-]*?[A-Za-z_])(?P<first>[0-9]{1,9})-(?P<again>[^\s-]*?)(?P<last>[0-9]{1,9})"
+)
+
+
+def expand(text: str) -> list[str]:
+    """Return the reference designators that `text` lists: "R1-R3, C5" is ["R1", "R2", "R3", "C5"].
+
+    A hyphen between different prefixes is part of a name ("A1-R3"). Raises ValueError, with a sentence, for a
+    range that runs backwards or holds more than 10 000 parts.
+    """
+    items = re.split(r"[,;\s]+", _MARK.sub("-", text.strip()))
+    return [reference for item in items if item for reference in _one(item)]
+
+
+def _one(item: str) -> list[str]:
+    match = _RANGE.fullmatch(item)
+    if match is None or match["again"] not in ("", match["prefix"]):
+        return [item]
+    first, last = int(match["first"]), int(match["last"])
+    if last < first:
+        raise ValueError(f"the range {item} runs backwards")
+    if last - first >= _MOST_IN_A_RANGE:
+        raise ValueError(f"the range {item} holds more than {_MOST_IN_A_RANGE:,} parts")
+    width = len(match["first"]) if match["first"].startswith("0") else 0
+    return [f"{match['prefix']}{number:0{width}d}" for number in range(first, last + 1)]
