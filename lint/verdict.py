@@ -115,7 +115,7 @@ class Verdict:
     def fingerprint(self) -> str:
         """Return a name that stays the same while values and lines change: rule, subject, parts and nets."""
         identity = "\x1f".join([self.rule, self.subject, *sorted(self.parts), "\x1e", *sorted(self.nets)])
-        return hashlib.sha256(identity.encode()).hexdigest()[:16]
+        return hashlib.sha256(identity.encode(errors="surrogatepass")).hexdigest()[:16]
 
 
 @dataclass(frozen=True, slots=True)

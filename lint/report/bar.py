@@ -150,9 +150,10 @@ class Bar:
 def bar(spread: Spread, limit: Limit, cells: int) -> Bar | None:
     """Return `spread` on a scale of `cells` cells (12 or more), or None where no limit can be drawn.
 
-    The zone between the limits gets the most room. A side without a limit reaches to the farthest value, and
-    at least as far as the other limit is from zero. Beyond a limit the drawing reaches to the farthest value
-    and at most twice as far as the zone is wide, so that an absurd value leaves the limits legible.
+    A side without a limit reaches to the farthest value, and at least as far as the other limit is from zero.
+    Beyond a limit the drawing reaches to the farthest value and at most three times as far as the zone
+    between limits is wide, once where values lie beyond both: an absurd value leaves the limits legible.
+    Where only one value is allowed, the zone is as wide as that value.
     """
     low, high = _drawable(limit.minimum), _drawable(limit.maximum)
     finite = [value for value in (spread.minimum, spread.nominal, spread.maximum) if abs(value) < _HUGE]
@@ -165,11 +166,14 @@ def bar(spread: Spread, limit: Limit, cells: int) -> Bar | None:
         start, end = low, low + max(abs(low) or largest or 1.0, max(finite, default=low) - low)
     else:
         return None
-    reach = 2 * ((end - start) or abs(end) or largest or 1.0)
-    left = max(start - reach, spread.minimum) if low is not None and spread.minimum < low else start
-    right = min(end + reach, spread.maximum) if high is not None and spread.maximum > high else end
-    before = max(1, round(cells * (start - left) / (right - left))) if left < start else 0
-    after = max(1, round(cells * (right - end) / (right - left))) if right > end else 0
+    width = (end - start) or abs(end) or largest or 1.0
+    too_low = low is not None and spread.minimum < low
+    too_high = high is not None and spread.maximum > high
+    reach = width if too_low and too_high else 3 * width
+    left = max(start - reach, spread.minimum) if too_low else start
+    right = min(end + reach, spread.maximum) if too_high else end
+    shares = (start - left, width, right - end)
+    before, _, after = (max(1, round(cells * share / sum(shares))) if share else 0 for share in shares)
     first = before + (low is not None)
     room = cells - first - after - (high is not None)
     return Bar(

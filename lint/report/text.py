@@ -24,7 +24,11 @@ from .words import counts, word
 
 _LABEL = 12
 _INDENT = 11
-_WIDEST_FUNCTION, _WIDEST_NET, _WIDEST_WORD = 14, 20, 12
+_MARGIN = 2
+
+# The widest that the columns of the pin table become; the one of the states takes what the others leave.
+_WIDEST = (4, 14, 20, 0, 14)
+_STATE = 3
 
 
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
@@ -97,7 +101,7 @@ def _legend(page: Page) -> None:
         (glyphs.nominal, "green"),
         (" nominal   ", "dim"),
         ("%", ""),
-        (" room to the limit", "dim"),
+        (" margin", "dim"),
     )
 
 
@@ -134,13 +138,13 @@ def _pin_table(page: Page, pins: Sequence[PinRow]) -> None:
     for pin in sorted(pins, key=_pin_order):
         said = word(pin.outcome, pin.level) if pin.outcome else ("", "")
         rows.append(((pin.number, ""), (pin.function, ""), (pin.net, ""), (pin.state, ""), said))
-    number, function, net, _, verdict = (
-        max(cell_len(page.say(row[column][0])) for row in rows) for column in range(len(header))
-    )
-    widths = [number, min(function, _WIDEST_FUNCTION), min(net, _WIDEST_NET), 0, min(verdict, _WIDEST_WORD)]
-    widths[3] = page.width - 2 - sum(widths) - 2 * (len(widths) - 1)
+    widths = [
+        min(widest, max(cell_len(page.say(row[column][0])) for row in rows))
+        for column, widest in enumerate(_WIDEST)
+    ]
+    widths[_STATE] = page.width - _MARGIN - sum(widths) - 2 * (len(widths) - 1)
     for row in rows:
-        page.row(row, widths, indent=2)
+        page.row(row, widths, indent=_MARGIN)
 
 
 def _pin_order(pin: PinRow) -> tuple[bool, int, str]:
