@@ -1,0 +1,42 @@
+"""How long a review of a small design takes, measured against importing the libraries that it stands on."""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+from statistics import median
+from time import perf_counter
+
+import pytest
+
+EXAMPLE = Path(__file__).parents[2] / "examples" / "frost-fan.cir"
+
+IMPORTS = [sys.executable, "-c", "import lark, networkx, pint, numpy, rich.console"]
+
+REVIEW = [sys.executable, "-m", "pwmlint.lint", "review", "--gate", "never", str(EXAMPLE)]
+
+PAIRS = 7
+
+# The first requirement on speed: a review may cost half as much again as the imports alone.
+MOST = 1.5
+
+
+def test_a_review_takes_little_longer_than_the_imports(capsys: pytest.CaptureFixture[str]) -> None:
+    wall_time(IMPORTS), wall_time(REVIEW)  # compile and cache what the first run of each compiles
+    pairs = [(wall_time(IMPORTS), wall_time(REVIEW)) for _ in range(PAIRS)]
+    ratio = median(review / imports for imports, review in pairs)
+    imports, review = (median(times) for times in zip(*pairs, strict=True))
+    with capsys.disabled():
+        print(
+            f"\nreview {1000 * review:.0f} ms, imports {1000 * imports:.0f} ms, "
+            f"ratio {ratio:.2f} (median of {PAIRS} pairs, at most {MOST})"
+        )
+    assert ratio <= MOST
+
+
+def wall_time(command: Sequence[str]) -> float:
+    start = perf_counter()
+    subprocess.run(command, check=True, stdout=subprocess.DEVNULL)
+    return perf_counter() - start
