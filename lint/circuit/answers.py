@@ -2,22 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
-from typing import TypeAlias
 
 import numpy as np
 
 from ..estimate import Estimate, Unsolved
-from ..quantity import engineering
-from .growth import Diode, Growth
-from .solver import Array, Condition, Free, Network, Sample, Solution, solve
+from .growth import Growth
+from .solver import Array, Condition, Free, Network, Sample
+from .states import MOST_JUNCTIONS, Junction, Probe, State, read_with_states
 from .worst_case import Analysis, analyse
-
-Probe: TypeAlias = Callable[[Solution], Array]
-
-# A silicon junction conducts next to nothing up to here (from memory); beyond it "off" is not proved.
-_JUNCTION_OFF_UP_TO = 0.3
 
 
 def estimate(
@@ -35,18 +29,20 @@ def estimate(
     obstacle = _obstacle(growth)
     if obstacle is not None:
         return obstacle
-    network = replace(
-        _without_floating(growth.network(), free), free=tuple(free), conditions=tuple(conditions)
+    network = replace(growth.network(), free=tuple(free), conditions=tuple(conditions))
+    adrift = network.floating() & {net for c in conditions for net in (c.a, c.b)}
+    if adrift and not growth.diodes:
+        nets = tuple(sorted(adrift))
+        return Unsolved(f"no direct-current path to net {', '.join(nets)}", nets=nets)
+    evaluation = _Evaluation(
+        network, growth.junctions(), {name: probe for name, (probe, _) in probes.items()}
     )
-    diodes = [d for d in growth.diodes if {d.anode, d.cathode} <= {*network.nets(), *network.known}]
-    units = {name: unit for name, (_, unit) in probes.items()} | dict.fromkeys(map(_key, diodes), "V")
-    reads = {name: probe for name, (probe, _) in probes.items()}
-    reads |= {_key(diode): _forward_voltage(diode) for diode in diodes}
-    analyses = analyse(list(growth.parameters.values()), _evaluation(network, reads), units)
-    trouble = _trouble(growth, analyses, diodes)
+    units = {name: unit for name, (_, unit) in probes.items()}
+    analyses = analyse(list(growth.parameters.values()), evaluation, units)
+    trouble = _trouble(growth, analyses, evaluation)
     if trouble is not None:
         return trouble
-    return {name: _estimate(growth, analyses[name]) for name in probes}
+    return {name: _estimate(growth, analyses[name], evaluation) for name in probes}
 
 
 def _obstacle(growth: Growth) -> Unsolved | None:
@@ -56,6 +52,9 @@ def _obstacle(growth: Growth) -> Unsolved | None:
             parts=tuple(growth.valueless),
             needs=tuple(f"a value for {reference}" for reference in growth.valueless),
         )
+    if len(growth.diodes) > MOST_JUNCTIONS:
+        names = tuple(diode.part for diode in growth.diodes)
+        return Unsolved(f"too many diodes on one network: {', '.join(names)}", parts=names)
     if not growth.blocked:
         return None
     nets = dict.fromkeys(blocked.net for blocked in growth.blocked)
@@ -68,54 +67,44 @@ def _obstacle(growth: Growth) -> Unsolved | None:
     )
 
 
-def _without_floating(network: Network, free: Sequence[Free]) -> Network:
-    """Leave out what no conductive path joins to a known potential: it carries no current."""
-    floating = replace(network, free=tuple(free)).floating()
-    elements = tuple(e for e in network.elements if not ({e.a, e.b} & floating))
-    return replace(network, elements=elements)
+class _Evaluation:
+    """Evaluates the probes for the worst-case analysis, and keeps in mind which states were met."""
+
+    def __init__(self, network: Network, junctions: Sequence[Junction], probes: Mapping[str, Probe]) -> None:
+        self._network = network
+        self._junctions = junctions
+        self._probes = probes
+        self.states: dict[str, dict[State, None]] = {junction.part: {} for junction in junctions}
+        self.unsettled = False
+
+    def __call__(self, sample: Sample, size: int) -> Mapping[str, Array]:
+        answers = read_with_states(self._network, self._junctions, self._probes, sample, size)
+        for part, met in answers.states.items():
+            self.states[part].update(dict.fromkeys(met))
+        if self._junctions and any(np.isnan(column).any() for column in answers.values.values()):
+            self.unsettled = True
+        # A closed loop without a solution runs away: whatever it settles counts as infinite there.
+        return {name: np.where(np.isnan(column), np.inf, column) for name, column in answers.values.items()}
 
 
-def _key(diode: Diode) -> str:
-    return f"forward voltage of {diode.part}"
-
-
-def _forward_voltage(diode: Diode) -> Probe:
-    return lambda solution: solution.voltage(diode.anode, diode.cathode)
-
-
-def _evaluation(network: Network, reads: Mapping[str, Probe]) -> Callable[[Sample, int], Mapping[str, Array]]:
-    def evaluate(sample: Sample, size: int) -> Mapping[str, Array]:
-        solution = solve(network, sample, size)
-        return {
-            name: np.nan_to_num(np.broadcast_to(read(solution), (size,)), nan=np.inf, posinf=np.inf)
-            for name, read in reads.items()
-        }
-
-    return evaluate
-
-
-def _trouble(growth: Growth, analyses: Mapping[str, Analysis], diodes: Sequence[Diode]) -> Unsolved | None:
-    for diode in diodes:
-        forward = analyses[_key(diode)].spread.maximum
-        if not forward <= _JUNCTION_OFF_UP_TO:
-            return Unsolved(
-                f"{diode.part} would see {engineering(forward, 'V')} forward, which is not covered",
-                parts=(diode.part,),
-                nets=(diode.anode, diode.cathode),
-            )
+def _trouble(growth: Growth, analyses: Mapping[str, Analysis], evaluation: _Evaluation) -> Unsolved | None:
+    parts, nets = tuple(growth.parts), tuple(growth.nets)
+    if evaluation.unsettled:
+        names = ", ".join(evaluation.states)
+        return Unsolved(f"no state of {names} fits the network in every corner", parts=parts, nets=nets)
     for name, analysis in analyses.items():
         if not analysis.monotonic:
-            return Unsolved(
-                f"{name} is not monotonic in its parameters: its corners do not bound it",
-                parts=tuple(growth.parts),
-                nets=tuple(growth.nets),
-            )
+            reason = f"{name} is not monotonic in its parameters: its corners do not bound it"
+            return Unsolved(reason, parts=parts, nets=nets)
     return None
 
 
-def _estimate(growth: Growth, analysis: Analysis) -> Estimate:
+def _estimate(growth: Growth, analysis: Analysis, evaluation: _Evaluation) -> Estimate:
     assumptions = [*growth.assumptions]
-    assumptions += [f"{diode.part} blocks, as the solution bears out" for diode in growth.diodes]
+    for part, states in evaluation.states.items():
+        assumptions.append(
+            f"{part} {' or '.join(state.value for state in states)}, as the solution bears out"
+        )
     assumptions += [f"{part} taken as off" for part in growth.switches]
     return Estimate(
         spread=analysis.spread,

@@ -2,20 +2,23 @@
 
 What a part means to direct current is one small function a kind, in the table `_MEANINGS`. A part that
 linear analysis does not cover is never passed over: it lands in `blocked` (the answer cannot be had), in
-`valueless` (its value is missing), in `diodes` (taken as off, to be proved by the answer) or in `switches`
+`valueless` (its value is missing), in `diodes` (whether they conduct is solved for) or in `switches`
 (taken as off, and said so).
 """
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
 
 from ...grammar.netlist import Part, Pin
+from ..quantity import Spread, engineering, percent
 from .controllers import Controller, ControllerPin
 from .graph import Circuit, Connection
+from .parts import defaults
 from .potentials import Potential
 from .solver import (
     Array,
@@ -28,6 +31,7 @@ from .solver import (
     Value,
     VoltageSource,
 )
+from .states import Junction
 from .worst_case import Parameter, Variation
 
 GROUND = "\x00ground"  # the name of ground inside a network: no net of a file can have it
@@ -47,7 +51,7 @@ class Blocked:
 
 @dataclass(frozen=True, slots=True)
 class Diode:
-    """A diode on the network: taken as off, which the solution must bear out."""
+    """A diode on the network: whether it conducts is for the solution to tell."""
 
     part: str
     anode: str
@@ -95,6 +99,26 @@ class Growth:
     def network(self) -> Network:
         """Return the network grown so far, ready for the solver."""
         return Network(tuple(self.elements.values()), dict(self.potentials))
+
+    def junctions(self) -> tuple[Junction, ...]:
+        """Return the diodes on the network as junctions, their drops among the parameters."""
+        return tuple(self._junction(diode) for diode in self.diodes)
+
+    def _junction(self, diode: Diode) -> Junction:
+        drop = _spread_of("forward-drop")
+        name = f"{diode.part} forward drop"
+        value = self.add_parameter(Parameter(name, drop.minimum, drop.nominal, drop.maximum))
+        return Junction(diode.part, diode.anode, diode.cathode, value, self._breakdown(diode))
+
+    def _breakdown(self, diode: Diode) -> Value | None:
+        """Return the zener voltage that the part's value or model states, None for an ordinary diode."""
+        volts = zener_voltage(self.circuit.parts[diode.part])
+        if volts is None:
+            return None
+        ratio = float(defaults()["tolerance"]["zener"]["ratio"])
+        self.assume(f"{diode.part}: {engineering(volts, 'V')} ±{percent(ratio)} zener assumed")
+        name = f"{diode.part} zener voltage"
+        return self.add_parameter(Parameter(name, volts * (1 - ratio), volts, volts * (1 + ratio)))
 
     def add_parameter(self, parameter: Parameter) -> Value:
         """Register something that varies and return how its value is read from a sample."""
@@ -264,6 +288,24 @@ def _diode(growth: Growth, part: Part, net: str) -> None:
         growth.diodes.append(diode)
         growth.use(part)
         growth.follow(part)
+
+
+# A zener says its voltage as its value (15V) or at the end of a model's name (zener 5V1).
+_ZENER = re.compile(r"(?:^|[^0-9A-Z])(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V|V)(?![0-9A-Z])", re.IGNORECASE)
+
+
+def zener_voltage(part: Part) -> float | None:
+    """Return the zener voltage (V) that a diode's value or model states, None where neither does."""
+    for text in (part.value, part.model):
+        match = _ZENER.search(text)
+        if match is not None:
+            return float(f"{match[1]}.{match[2] or match[3] or '0'}")
+    return None
+
+
+def _spread_of(name: str) -> Spread:
+    row = defaults()["junction"][name]
+    return Spread(float(row["minimum"]), float(row["typical"]), float(row["maximum"]), "V")
 
 
 def diode_nets(part: Part) -> tuple[str, str]:

@@ -14,12 +14,13 @@ from math import isinf
 from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
 from .amplifiers import Amplifier
-from .answers import Probe, estimate
+from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import Growth
 from .potentials import Potential
 from .solver import Condition, FreeCurrent, FreePotential, Resistor
+from .states import Probe
 from .worst_case import Parameter, Variation
 
 

@@ -29,12 +29,17 @@ _IDLE = frozenset({"test point", "capacitor"})
 
 @dataclass(frozen=True, slots=True)
 class OutputTransistor:
-    """One of a controller's output transistors; an empty net is a pin that hangs open."""
+    """One of a controller's output transistors.
+
+    collector, emitter: their nets, empty for a pin without one
+    hanging: which of them hangs open, where the use is "incomplete"
+    """
 
     number: int
     collector: str
     emitter: str
     use: Use
+    hanging: str = ""
 
     @property
     def live(self) -> bool:
@@ -76,27 +81,33 @@ class _Reader:
         emitter = self.controller.net(f"output {number} emitter")
         if collector is None or emitter is None:
             return OutputTransistor(number, collector or "", emitter or "", "unmapped")
-        return OutputTransistor(number, collector, emitter, self._use(collector, emitter))
+        use = self._use(collector, emitter)
+        hanging = ("collector" if self._hangs_open(collector) else "emitter") if use == "incomplete" else ""
+        return OutputTransistor(number, collector, emitter, use, hanging)
 
     def _use(self, collector: str, emitter: str) -> Use:
-        if collector == emitter:
-            return "unused"
         opens = [net for net in (collector, emitter) if self._hangs_open(net)]
-        stiff = [net for net in (collector, emitter) if net in self.known]
-        if opens:
-            return "unused" if len(opens) + len(stiff) == 2 else "incomplete"
-        if len(stiff) == 2:
-            both_ground = self._is_ground(collector) and self._is_ground(emitter)
-            return "unused" if both_ground else "across"
-        if self._returns(emitter):
+        stiff = [net for net in (collector, emitter) if self._is_ground(net) or self._is_supply(net)]
+        if collector == emitter or len(opens) + len(stiff) == 2:
+            shorts = len(stiff) == 2 and collector != emitter
+            return "across" if shorts and not all(map(self._is_ground, stiff)) else "unused"
+        return "incomplete" if opens else self._loaded(collector, emitter)
+
+    def _loaded(self, collector: str, emitter: str) -> Use:
+        """Tell how a transistor with a load works: a stiff net tells, else one behind resistors."""
+        if self._is_ground(emitter):
             return "common emitter"
-        return "follower" if self._feeds(collector) else "floating"
+        if self._is_supply(collector):
+            return "follower"
+        if any(map(self._is_ground, self._behind_resistors(emitter))):
+            return "common emitter"
+        return "follower" if any(map(self._is_supply, self._behind_resistors(collector))) else "floating"
 
     def _hangs_open(self, net: str) -> bool:
         """Tell whether nothing is on the net but output pins of this controller and test points."""
         if not net:
             return True
-        if net in self.known:
+        if self._is_ground(net) or self._is_supply(net):
             return False
         roles = {f"output {number} {end}" for number in (1, 2) for end in ("collector", "emitter")}
         for connection in self.circuit.connections(net):
@@ -107,18 +118,9 @@ class _Reader:
                 return False
         return True
 
-    def _returns(self, net: str) -> bool:
-        """Tell whether a net is ground, or on it through nothing but resistors."""
-        return self._is_ground(net) or any(self._is_ground(end) for end in self._behind_resistors(net))
-
-    def _feeds(self, net: str) -> bool:
-        """Tell whether a net is a supply, or on one through nothing but resistors."""
-        ends = (net, *self._behind_resistors(net))
-        return any(self._is_supply(end) for end in ends)
-
     def _is_supply(self, net: str) -> bool:
         known = net in self.known and not self._is_ground(net)
-        return known or net == self.controller.net("supply")
+        return bool(net) and (known or net == self.controller.net("supply"))
 
     def _behind_resistors(self, net: str) -> tuple[str, ...]:
         """Return the nets behind the resistors of a net on which nothing else hangs; else nothing."""

@@ -7,12 +7,13 @@ from dataclasses import dataclass
 
 from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
-from .answers import Probe, estimate
+from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import Growth
 from .potentials import Potential
 from .solver import Element
+from .states import Probe
 
 
 @dataclass(frozen=True, slots=True)

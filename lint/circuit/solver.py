@@ -163,6 +163,11 @@ class Solution:
     _branches: dict[str, Array]
     _free: dict[str, Array] = field(default_factory=dict[str, Array])
 
+    @property
+    def nets(self) -> set[str]:
+        """Return the nets whose potential the solution tells."""
+        return set(self._potentials)
+
     def voltage(self, net: str, reference: str | None = None) -> Array:
         """Return the potential of `net` in volts, over ground or over another net."""
         if reference is None:
@@ -228,7 +233,7 @@ def _solve_each(matrix: Array, right: Array) -> Array:
     if matrix.shape[1] == 0:
         return np.zeros_like(right)
     try:
-        answer: Array = np.linalg.solve(matrix, right[..., None])[..., 0]
+        return np.asarray(np.linalg.solve(matrix, right[..., None])[..., 0], dtype=np.float64)
     except np.linalg.LinAlgError:
         answer = np.full_like(right, np.nan)
         for index in range(matrix.shape[0]):
@@ -236,7 +241,7 @@ def _solve_each(matrix: Array, right: Array) -> Array:
                 answer[index] = np.linalg.solve(matrix[index], right[index])
             except np.linalg.LinAlgError:
                 continue  # stays NaN: the caller reads it as "no solution in this corner"
-    return answer
+        return answer
 
 
 class _Equations:

@@ -115,9 +115,11 @@ class Samples:
         self.star_rows = 2 * len(self.varying)
 
     def as_sample(self, rows: Array) -> Sample:
+        """Return rows of parameter values as the sample that an evaluation takes."""
         return {p.name: rows[:, i] for i, p in enumerate(self.parameters)}
 
     def nominal(self) -> Array:
+        """Return one row: every parameter at its nominal value."""
         return self._nominal[None, :]
 
     def corners(self) -> Array:
@@ -126,6 +128,7 @@ class Samples:
         return self.combinations(indices[:MOST_CORNER_PARAMETERS])
 
     def outer_corners(self) -> Array:
+        """Return the corners of the outer loops, tolerances at their nominal values."""
         return self.combinations(self.outer[:MOST_CORNER_PARAMETERS])
 
     def star(self) -> Array:
@@ -133,6 +136,7 @@ class Samples:
         return self.star_about(self._nominal, self.varying)
 
     def star_about(self, centre: Array, indices: Sequence[int]) -> Array:
+        """Return two rows a parameter about any centre: it alone at its low end, then at its high end."""
         rows = np.repeat(centre[None, :], 2 * len(indices), axis=0)
         for position, index in enumerate(indices):
             rows[2 * position, index] = self.parameters[index].low
@@ -140,6 +144,7 @@ class Samples:
         return rows
 
     def combinations(self, indices: Sequence[int]) -> Array:
+        """Return every combination of the stations of the given parameters, the others nominal."""
         choices = [_stations(self.parameters[index]) for index in indices]
         rows = np.repeat(self.nominal(), int(np.prod([len(c) for c in choices])), axis=0)
         if indices:

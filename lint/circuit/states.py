@@ -1,0 +1,135 @@
+"""Piecewise-linear diodes: which of them conducts, found out sample by sample.
+
+A junction is off (open, its forward voltage below the drop), on (it holds the drop, its current forward) or,
+for a zener, in breakdown (it holds the zener voltage, its current backward). With few junctions every
+combination is tried; in each sample the one whose own conditions the solution bears out is kept. For a
+network of resistances and sources that combination is unique but on the edges between two.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, replace
+from enum import Enum
+from itertools import product
+from typing import TypeAlias
+
+import numpy as np
+from numpy.typing import NDArray
+
+from .solver import Array, Network, Sample, Solution, Value, VoltageSource, solve
+
+Probe: TypeAlias = Callable[[Solution], Array]
+Truth: TypeAlias = NDArray[np.bool_]
+
+MOST_JUNCTIONS = 5
+
+# Rounding of a current or voltage that is zero on the edge between two states.
+_EDGE = 1e-12
+
+
+class State(Enum):
+    """What a junction does."""
+
+    OFF = "blocks"
+    ON = "conducts"
+    BREAKDOWN = "is in breakdown"
+
+
+@dataclass(frozen=True, slots=True)
+class Junction:
+    """A diode on the network.
+
+    drop:      its forward voltage when it conducts, in V
+    breakdown: its zener voltage, in V; None for a diode that is not meant to break down
+    """
+
+    part: str
+    anode: str
+    cathode: str
+    drop: Value
+    breakdown: Value | None = None
+
+    @property
+    def states(self) -> tuple[State, ...]:
+        """Return the states it can be in, the likeliest first."""
+        return (State.OFF, State.ON) if self.breakdown is None else tuple(State)
+
+
+@dataclass(frozen=True, slots=True)
+class Answers:
+    """What the probes read in each sample, and in which states the junctions were.
+
+    values: probe to an array of shape (samples,); NaN where no solution exists
+    states: junction's part to the states met, in order of appearance
+    """
+
+    values: dict[str, Array]
+    states: dict[str, tuple[State, ...]]
+
+
+def read_with_states(
+    network: Network, junctions: Sequence[Junction], probes: Mapping[str, Probe], sample: Sample, size: int
+) -> Answers:
+    """Solve `network` in every sample with its junctions in the states that fit, and read the probes."""
+    values = {name: np.full(size, np.nan) for name in probes}
+    met: dict[str, dict[State, None]] = {junction.part: {} for junction in junctions}
+    settled: Truth = np.zeros(size, dtype=np.bool_)
+    for states in product(*(junction.states for junction in junctions)):
+        if settled.all():
+            break
+        solution = _solve_in(network, junctions, states, sample, size)
+        if solution is None:
+            continue
+        fits = ~settled & _borne_out(solution, junctions, states)
+        if not fits.any():
+            continue
+        settled |= fits
+        for junction, state in zip(junctions, states, strict=True):
+            met[junction.part][state] = None
+        for name, probe in probes.items():
+            values[name] = np.where(fits, np.broadcast_to(probe(solution), (size,)), values[name])
+    return Answers(values, {part: tuple(found) for part, found in met.items()})
+
+
+def _source(junction: Junction, state: State) -> VoltageSource:
+    """Return the source that stands for a conducting junction, positive towards the anode."""
+    if state is State.ON:
+        return VoltageSource(junction.part, junction.anode, junction.cathode, junction.drop)
+    assert junction.breakdown is not None
+    return VoltageSource(junction.part, junction.cathode, junction.anode, junction.breakdown)
+
+
+def _solve_in(
+    network: Network, junctions: Sequence[Junction], states: Sequence[State], sample: Sample, size: int
+) -> Solution | None:
+    """Return the solution with the junctions in given states, None where a loop's input then has no path."""
+    sources = [_source(j, s) for j, s in zip(junctions, states, strict=True) if s is not State.OFF]
+    whole = replace(network, elements=(*network.elements, *sources))
+    floating = whole.floating()
+    if floating & {net for condition in network.conditions for net in (condition.a, condition.b)}:
+        return None
+    kept = tuple(e for e in whole.elements if not ({e.a, e.b} & floating))
+    return solve(replace(whole, elements=kept), sample, size)
+
+
+def _borne_out(solution: Solution, junctions: Sequence[Junction], states: Sequence[State]) -> Truth:
+    """Tell, sample by sample, whether the solution agrees with the states it was made with."""
+    fits: Truth = np.ones(solution.size, dtype=np.bool_)
+    for junction, state in zip(junctions, states, strict=True):
+        fits &= _agrees(solution, junction, state)
+    return fits
+
+
+def _agrees(solution: Solution, junction: Junction, state: State) -> Truth:
+    if not {junction.anode, junction.cathode} <= solution.nets:
+        return np.full(solution.size, state is State.OFF)  # it hangs on a net without any path: no current
+    with np.errstate(invalid="ignore"):
+        if state is not State.OFF:
+            # Forward current in the on state, and towards the anode in breakdown: out of the source's plus.
+            return solution.current(_source(junction, state)) >= -_EDGE
+        forward = solution.voltage(junction.anode, junction.cathode)
+        fits = forward <= junction.drop(solution.sample) + _EDGE
+        if junction.breakdown is not None:
+            fits &= -forward <= junction.breakdown(solution.sample) + _EDGE
+        return fits
