@@ -48,7 +48,7 @@ def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
         shown = [verdict for verdict in about if verdict.outcome not in _ELSEWHERE]
         if not shown:
             continue
-        page.heading(topic or "other", "bold", page.glyphs.light, counts(about))
+        page.heading(topic or "other", page.glyphs.light, counts(about))
         page.blank()
         in_full = sorted((verdict for verdict in shown if asks(verdict)), key=badness)
         in_brief = sorted((verdict for verdict in shown if not asks(verdict)), key=badness)
@@ -103,6 +103,7 @@ def _details(verdict: Verdict) -> list[tuple[str, str]]:
         ("spread", shares),
         ("parts", (", ".join(verdict.parts) + on).strip()),
         ("at", _places(verdict.places)),
+        *(("needs", need) for need in verdict.needs),
         *(("assumed", sentence) for sentence in verdict.assumptions),
         ("source", verdict.source),
         ("remedy", verdict.remedy),

@@ -57,14 +57,14 @@ class Page:
         """Put an empty line."""
         self.line()
 
-    def heading(self, title: str, title_style: str, rule: str, notes: Sequence[Piece]) -> None:
+    def heading(self, title: str, rule: str, notes: Sequence[Piece] = ()) -> None:
         """Put `title`, a rule of the character `rule`, and `notes` at the right end of the line."""
         title = self.say(title)
         shown = [(self.say(text), style) for text, style in notes]
         taken = cell_len(title) + sum(cell_len(text) for text, _ in shown)
         gap = " " if shown else ""
         length = max(2, self.width - taken - 1 - len(gap))
-        self.line((title, title_style), (f" {rule * length}{gap}", "dim"), *shown)
+        self.line((title, "bold"), (f" {rule * length}{gap}", "dim"), *shown)
 
     def paragraph(self, text: str, indent: int, lead: Piece = ("", ""), style: str = "") -> None:
         """Put `text` wrapped at `indent`, with `lead` in the margin of its first line."""

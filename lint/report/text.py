@@ -59,7 +59,7 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
             if controller is not None:
                 _controller(page, controller)
             elif review.controllers:
-                page.heading("the rest of the board", "bold", glyphs.strong, [])
+                page.heading("the rest of the board", glyphs.strong)
                 page.blank()
             topics(page, verdicts)
         _not_checked(page, review.verdicts)
@@ -121,7 +121,7 @@ def _sections(review: Review) -> Iterator[tuple[ControllerReview | None, list[Ve
 def _controller(page: Page, controller: ControllerReview) -> None:
     """Print one controller: what it is, where it stands, its pins."""
     model = f", {controller.model}" if controller.model else ""
-    page.heading(controller.part, "bold", page.glyphs.strong, [(f"{controller.family} class{model}", "")])
+    page.heading(controller.part, page.glyphs.strong, [(f"{controller.family} class{model}", "")])
     page.paragraph(f"at {controller.place}", 2, style="dim")
     page.blank()
     _pin_table(page, controller.pins)
@@ -161,7 +161,7 @@ def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
     if not groups:
         return
     members = [verdict for group in groups.values() for verdict in group]
-    page.heading("could not be checked", "bold", page.glyphs.light, counts(members))
+    page.heading("could not be checked", page.glyphs.light, counts(members))
     page.blank()
     for needs, group in sorted(groups.items(), key=lambda item: (not item[0], -len(item[1]), item[0])):
         mark = lead(group[0])
@@ -182,7 +182,7 @@ def _taken_for_granted(page: Page, review: Review) -> None:
     unsaid = [sentence for sentence in dict.fromkeys(rest) if sentence not in set(said)]
     if not unsaid:
         return
-    page.heading("taken for granted", "bold", page.glyphs.light, [])
+    page.heading("taken for granted", page.glyphs.light)
     page.blank()
     for sentence in unsaid:
         page.paragraph(sentence, _INDENT, ("  assumed", "dim"))
@@ -192,7 +192,7 @@ def _taken_for_granted(page: Page, review: Review) -> None:
 def _cautions(page: Page, cautions: Sequence[str]) -> None:
     if not cautions:
         return
-    page.heading("cautions", "bold", page.glyphs.light, [])
+    page.heading("cautions", page.glyphs.light)
     page.blank()
     for caution in cautions:
         page.paragraph(caution, _INDENT, ("  caution", "bold yellow"))
