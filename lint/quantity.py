@@ -55,12 +55,23 @@ class Spread:
             quantity(self.maximum, self.unit),
         )
 
-    def __str__(self) -> str:
-        """Return `nominal (minimum .. maximum)`, or the value alone where it has no spread."""
+    def text(self, digits: int = 3) -> str:
+        """Return `nominal (minimum .. maximum)`, or the value alone where it has no spread.
+
+        The ends share one unit where they have the same prefix: "12.1 V (11.1 .. 13.1 V)".
+        """
+        nominal = engineering(self.nominal, self.unit, digits)
         if self.minimum == self.maximum:
-            return engineering(self.nominal, self.unit)
-        ends = f"{engineering(self.minimum, self.unit)} .. {engineering(self.maximum, self.unit)}"
-        return f"{engineering(self.nominal, self.unit)} ({ends})"
+            return nominal
+        low = engineering(self.minimum, self.unit, digits)
+        high = engineering(self.maximum, self.unit, digits)
+        number, _, unit = low.partition(" ")
+        shared = number if unit == high.partition(" ")[2] else low
+        return f"{nominal} ({shared} .. {high})"
+
+    def __str__(self) -> str:
+        """Return the spread as text, three digits a number."""
+        return self.text()
 
 
 def engineering(value: float, unit: str = "", digits: int = 3) -> str:

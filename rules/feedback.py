@@ -49,7 +49,7 @@ def output_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         yield unsolved(found, "output voltage", pins=pins)
         return
     rail = design.rail(amplifier.output)
-    says = f"{amplifier.output} regulates to {found.output.spread}"
+    says = f"{amplifier.output} regulates to {found.output.spread.text(4)}"
     band = _band(rail)
     if rail is None or band is None:
         yield reports(found.output, says, pins=pins)
