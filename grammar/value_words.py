@@ -105,31 +105,30 @@ Fact = (
     | SimulatedCode
 )
 
-_PREFIX_OR_UNIT = (
-    r"(?:(?:meg|[pnuμmkMG])?(?:ohms?|Ω|[RFHVAW]|VDC|VAC|volts?|watts?)|meg|[kMG]|%|ppm)(?![a-z0-9])"
-)
+_UNIT = r"(?:ohms?|Ω|farads?|henrys?|henries|volts?|VDC|VAC|amps?|amperes?|watts?|[RFHVAW])"
+_PREFIX_OR_UNIT = rf"(?:(?:meg|[pnuμmkMG])?{_UNIT}|meg|[kMG]|%|ppm)(?![a-z0-9])"
 
 # What belongs together is joined before the text is cut, in this order.
 _JOINS: tuple[tuple[re.Pattern[str], str], ...] = (
     (re.compile("\N{MINUS SIGN}"), "-"),
     (re.compile(r"\+/?-"), "±"),
-    (re.compile(r"(?<=ppm)\s*/\s*(?:K|deg|°)?\s*C?(?![a-z])", re.I), ""),
-    (re.compile(r"([+-][0-9.]+)\s*%?\s*/?\s*([+-][0-9.]+)\s*%"), r"\1\2%"),
+    (re.compile(r"(?<=ppm) ?/ ?(?:K|deg|°)? ?C?(?![a-z])", re.I), ""),
+    (re.compile(r"([+-][0-9.]+) ?%? ?/? ?([+-][0-9.]+) ?%"), r"\1\2%"),
     (
         re.compile(
             r"\b(?:not|no|do[ _]not)[ _-]?(?:fit|stuff|populate|place|install|mount)(?:t?ed|d)?\b", re.I
         ),
         "DNP",
     ),
-    (re.compile(r"(?<=±)\s+(?=[0-9.])"), ""),
-    (re.compile(r"(?<=\s)0,([0-9]+)(?=\s*%)"), r"0.\1"),
+    (re.compile(r"(?<=±) (?=[0-9.])"), ""),
+    (re.compile(r"(?<= )0,([0-9]+)(?= ?%)"), r"0.\1"),
 )
 _BLANK_BEFORE_UNIT = re.compile(rf"(?<=[0-9.])[ _]+(?={_PREFIX_OR_UNIT})", re.I)
-_FRACTION_OF_WATT = re.compile(r"(?<![0-9./])([1-3])/(2|3|4|5|8|10|12|16|20|32)\s*W(?![a-z])", re.I)
+_FRACTION_OF_WATT = re.compile(r"(?<![0-9./])([1-3])/(2|3|4|5|8|10|12|16|20|32) ?W(?![a-z])", re.I)
 
 # Blanks, commas and brackets part two words, and so does a hyphen after or before a letter (`0805-NC`,
 # `10k-1%`), but not the one of an exponent.
-_CUT = re.compile(r"[\s,;/_()\[\]{}\"']+|(?<=[A-Za-zΩμ])(?<![0-9.][eE])-|(?<=[0-9%])-(?=[A-Za-z])")
+_CUT = re.compile(r"[ ,;/_()\[\]{}\"']+|(?<=[A-Za-zΩμ])(?<![0-9.][eEdD])-|(?<=[0-9%])-(?=[A-Za-z])")
 
 # The comma is a decimal one where the unit of the part follows; elsewhere it parts two words.
 _DECIMAL_COMMA = {
@@ -149,7 +148,7 @@ def words(text: str, quantity: str) -> list[str]:
 
     `quantity` is empty for text of a SPICE-style list, where a blank or a comma always ends a number.
     """
-    text = unicodedata.normalize("NFKC", text).replace("\N{FRACTION SLASH}", "/")
+    text = " ".join(unicodedata.normalize("NFKC", text).replace("\N{FRACTION SLASH}", "/").split())
     for pattern, replacement in _JOINS:
         text = pattern.sub(replacement, text)
     text = _FRACTION_OF_WATT.sub(_watts, text)

@@ -87,7 +87,7 @@ class CsvTable:
         except csv.Error:  # a cell beyond all size is no heading
             return found
         for index, heading in enumerate(headings):
-            match = _HEADING.fullmatch(heading.strip())
+            match = _HEADING.fullmatch(" ".join(heading.split()))
             name = " ".join(re.sub(r"[_.\-]", " ", match["name"]).casefold().split()) if match else ""
             if match and name in self._kinds:
                 found[index] = Column(self._kinds[name], match["unit"] or "")
@@ -99,8 +99,7 @@ class CsvTable:
         position = 0
         for index, text in enumerate(texts):
             text = text.strip()
-            found = line.find(text, position)
-            # A cell with doubled quotes or on a further line is not found as it reads; its row then serves.
-            position = max(found, position)
+            # Doubled quotes at most double a cell; one on a further line is not found and gets column 1.
+            found = line.find(text, position, position + 2 * len(text) + 8)
             yield index, text, found + 1 if found >= 0 else 1
-            position += len(text) if found >= 0 else 0
+            position = max(found, position) + len(text)

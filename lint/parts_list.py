@@ -209,9 +209,11 @@ class _Reader:
 
     def _with_unit(self, cell: Cell, kind: str) -> str:
         """Return the text of a cell, with the unit of its column where it has none of its own."""
-        comma_is_decimal = self._table.delimiter != "," and _WITH_COMMA.fullmatch(cell.text)
-        text = cell.text.replace(",", ".") if comma_is_decimal else cell.text
+        text = cell.text.replace(",", ".") if self._has_decimal_comma(cell.text) else cell.text
         return f"{text} {cell.unit or _USUAL_UNITS[kind]}" if _BARE.fullmatch(text) else text
+
+    def _has_decimal_comma(self, text: str) -> bool:
+        return self._table.delimiter != "," and _WITH_COMMA.fullmatch(text) is not None
 
     def _mistake(self, message: str, place: Place, *, expected: str = "", remedy: str = "") -> None:
         excerpt = self._table.excerpt(place.line)

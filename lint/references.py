@@ -7,7 +7,7 @@ import re
 _MOST_IN_A_RANGE = 10_000
 
 # A hyphen with blanks beside it, a dash, an ellipsis or a word: all are written as one hyphen first.
-_MARK = re.compile(r"\s*(?:[\N{EN DASH}\N{EM DASH}…]|\.\.\.?)\s*|\s+-\s*|-\s+|\s+to\s+", re.IGNORECASE)
+_MARK = re.compile(r" ?(?:[\N{EN DASH}\N{EM DASH}…]|\.\.\.?) ?| - ?|- | to ", re.IGNORECASE)
 _RANGE = re.compile(
     r"(?P<prefix>[^\s-]*?[A-Za-z_])(?P<first>[0-9]{1,9})-(?P<again>[^\s-]*?)(?P<last>[0-9]{1,9})"
 )
@@ -19,7 +19,7 @@ def expand(text: str) -> list[str]:
     A hyphen between different prefixes is part of a name ("A1-R3"). Raises ValueError, with a sentence, for a
     range that runs backwards or holds more than 10 000 parts.
     """
-    items = re.split(r"[,;\s]+", _MARK.sub("-", text.strip()))
+    items = re.split(r"[,;\s]+", _MARK.sub("-", " ".join(text.split())))
     return [reference for item in items if item for reference in _one(item)]
 
 
