@@ -6,7 +6,7 @@ value; what the text means in ohms and which net is ground is for the floor abov
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import NamedTuple
 
@@ -45,7 +45,8 @@ class Part:
     element:    the element letter of a SPICE-style list, upper case; empty where the format has none
     value:      text of the value as written, empty where there is none
     model:      library cell, model or subcircuit name as written, empty where there is none
-    pins:       in the order of the file
+    pins:       in the order of the file: a tuple, or a sequence that makes its pins when first asked (the
+                SPICE-style reader's: seeking columns that nobody asks for would double the reading time)
     attributes: name (casefolded) to text, everything else that the file says of the part
     pins_known: how the numbers and names of the pins were learnt: "numbers" (the file states package pin
                 numbers), "names" (formal or port names), "positions" (only the order of the nodes)
@@ -56,7 +57,7 @@ class Part:
     element: str
     value: str
     model: str
-    pins: tuple[Pin, ...]
+    pins: Sequence[Pin]
     place: Place
     attributes: Mapping[str, str] = field(default_factory=dict[str, str])
     pins_known: str = "positions"

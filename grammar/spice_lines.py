@@ -1,0 +1,158 @@
+"""Physical lines of a SPICE-style list to logical lines, without losing where anything stands.
+
+Comments are overwritten with blanks and continuation lines are joined in place: the cleaned text is as long
+as the original, character for character, and a line end that was joined becomes a carriage return, which is
+white space to every later step. So an offset is a place in both texts and no table of positions is kept.
+"""
+
+from __future__ import annotations
+
+import re
+from bisect import bisect_right
+from collections.abc import Iterator
+from functools import cached_property
+from itertools import accumulate
+from typing import NamedTuple
+
+from .errors import NetlistError
+from .netlist import Place
+
+JOINED = "\r"
+"""Stands for the line end before a continuation line; the reader has removed all others before."""
+
+LONGEST_LINE = 1_000_000
+"""Characters of a logical line. A real card is far shorter; long tables belong into files of their own."""
+
+_COMMENT_LINE = re.compile(r"\n[^\S\n]*(?:[*#]|//)[^\n]*")
+_CONTINUATION = re.compile(r"\n[^\S\n]*\+")
+_QUOTED_OR_COMMENT = re.compile(
+    r"""
+      "[^"\n]*"
+    | (?<![^\s=(,]) '[^'\n]*'           # an apostrophe inside a name, as in in1', opens nothing
+    | \{ [^{}\n]* (?:\{[^{}\n]*\}[^{}\n]*)* \}
+    | (?P<semicolon> ; )
+    | (?<![^\s,]) (?P<slashes> // )
+    | (?<![^\s,]) (?P<dollar> \$ )
+    """,
+    re.VERBOSE,
+)
+# The names that one family of simulators generates; where they occur a dollar sign begins a name.
+_DOLLAR_NAME = re.compile(r"(?<![^\s,(])\$[A-Za-z]+_\w")
+
+
+class Line(NamedTuple):
+    """A logical line: its cleaned text, and the source and line number where it begins."""
+
+    source: Source
+    number: int
+    text: str
+
+    def place(self, index: int) -> Place:
+        """Return the place of the character at `index` of the text, on whichever physical line it stands."""
+        before = self.text.count(JOINED, 0, index)
+        return Place(self.source.file, self.number + before, index - self.text.rfind(JOINED, 0, index))
+
+    def error(self, index: int, message: str, expected: str, remedy: str) -> NetlistError:
+        """Return the error `message` at `index`, with the physical line as excerpt."""
+        return self.source.error(self.place(index), message, expected, remedy)
+
+
+class Source:
+    """The text of one file and its cleaned twin.
+
+    titled:       the first logical line is a title, and blank in the cleaned text
+    dollar_names: `$` begins names here; otherwise it begins a comment after a blank
+    """
+
+    def __init__(self, text: str, file: str, *, titled: bool) -> None:
+        if "\r" in text:
+            text = text.replace("\r\n", "\n").replace("\r", "\n")
+        self.file = file
+        self.text = text
+        self.dollar_names = "$" in text and _DOLLAR_NAME.search(text) is not None
+        self.title = Line(self, 1, "")
+        self.clean = _joined(_without_comments(text, dollar_names=self.dollar_names)) + "\n"
+        if titled:
+            end = self.clean.index("\n")
+            self.title = Line(self, 1, self.clean[:end])
+            self.clean = _blank(self.clean[:end]) + self.clean[end:]
+
+    @cached_property
+    def starts(self) -> list[int]:
+        """Offset of the first character of each physical line."""
+        return list(accumulate((len(line) + 1 for line in self.text.split("\n")), initial=0))[:-1]
+
+    def lines(self, start: int, end: int) -> Iterator[Line]:
+        """Yield the logical lines between two offsets, blank ones left out; `start` begins a line."""
+        number = bisect_right(self.starts, start)
+        for text in self.clean[start:end].split("\n"):
+            if text and not text.isspace():
+                yield Line(self, number, text)
+            number += 1 + (text.count(JOINED) if JOINED in text else 0)
+
+    def place(self, offset: int) -> Place:
+        """Return the place of the character at `offset`."""
+        number = bisect_right(self.starts, offset)
+        return Place(self.file, number, offset - self.starts[number - 1] + 1)
+
+    def error(self, place: Place, message: str, expected: str, remedy: str) -> NetlistError:
+        """Return the error `message` at `place`, with the physical line there as excerpt."""
+        start = self.starts[place.line - 1]
+        end = self.text.find("\n", start)
+        excerpt = self.text[start:] if end < 0 else self.text[start:end]
+        return NetlistError(message, place, excerpt=excerpt, expected=expected, remedy=remedy)
+
+
+def indent(line: Line) -> int:
+    """Return the index of the first character of a line that is not blank."""
+    return len(line.text) - len(line.text.lstrip())
+
+
+def _blank(text: str) -> str:
+    """Return as many blanks as `text` has characters, its joined line ends kept."""
+    if JOINED not in text:
+        return " " * len(text)
+    return JOINED.join(" " * len(piece) for piece in text.split(JOINED))
+
+
+def _without_comments(text: str, *, dollar_names: bool) -> str:
+    """Overwrite comments with blanks: whole lines, and the rest of a line after `;`, `//` or `$`."""
+    if "*" in text or "#" in text or "//" in text:
+        # With a line end before it the first line is like any other.
+        text = _COMMENT_LINE.sub(lambda match: "\n" + " " * (len(match[0]) - 1), "\n" + text)[1:]
+    marks = [mark for mark in (";", "//", "$") if mark in text]
+    if marks:
+        lines = text.split("\n")
+        for index, line in enumerate(lines):
+            if any(mark in line for mark in marks):
+                lines[index] = _cut(line, dollar_names=dollar_names)
+        text = "\n".join(lines)
+    return text
+
+
+def _cut(line: str, *, dollar_names: bool) -> str:
+    for match in _QUOTED_OR_COMMENT.finditer(line):
+        if match.lastgroup is None:
+            continue
+        followed = line[match.end() : match.end() + 1]
+        if match.lastgroup != "dollar" or not dollar_names or followed.isspace():
+            return line[: match.start()] + " " * (len(line) - match.start())
+    return line
+
+
+def _joined(text: str) -> str:
+    """Overwrite the line end and the `+` of each continuation line, and the blank lines before it."""
+    if "\\\\\n" in text:
+        text = text.replace("\\\\\n", "  " + JOINED)
+    pieces: list[str] = []
+    done = 0
+    for match in _CONTINUATION.finditer(text):
+        piece = text[done : match.start()]
+        content = piece.rstrip()
+        if not content and not pieces:
+            continue  # nothing comes before it; the reader of elements says so
+        gap = text[done + len(content) : match.end() - 1]
+        pieces += [content, gap.replace("\n", JOINED), " "]
+        done = match.end()
+    pieces.append(text[done:])
+    return "".join(pieces)
