@@ -1,0 +1,95 @@
+"""Reads EDIF 2 0 0, netlist views and schematic views alike, at the level of a board.
+
+Levels and versions other than 2 0 0 with the plain keywords are refused. Sources: EDIF 2 0 0 as its grammar was
+published, and what schematic tools write in its name, which the fixtures of the tests show piece by piece.
+"""
+
+from __future__ import annotations
+
+from lark import UnexpectedInput
+
+from .edif_budget import Budget
+from .edif_builder import parse
+from .edif_errors import check_beginning, check_dialect, explain
+from .edif_forms import Edif
+from .edif_hierarchy import FlatCircuit
+from .edif_library import Libraries, Source
+from .edif_netlist import write_netlist
+from .edif_places import Places
+from .errors import NetlistError
+from .netlist import Netlist, Note
+
+
+def read_edif(text: str, file: str) -> Netlist:
+    """Return the netlist that an EDIF text describes.
+
+    text: the whole file, decoded
+    file: its name, for places and messages
+
+    Raises NetlistError where the text is no EDIF 2 0 0, is damaged, or grows beyond all bounds.
+    """
+    places = Places(text, file)
+    check_beginning(text, places)
+    try:
+        edif = parse(text)
+    except UnexpectedInput as error:
+        raise explain(error, text, places) from None
+    check_dialect(edif, places)
+    budget = Budget(places, len(text))
+    libraries = Libraries(edif, budget)
+    notes: list[Note] = []
+    top = _choose_top(edif, libraries, places, notes)
+    flat = FlatCircuit(libraries, places, budget, has_designators=_has_designators(edif))
+    flat.flatten(top)
+    netlist = Netlist(file, "EDIF 2 0 0", _title(edif), notes=notes, files=[file])
+    write_netlist(flat, places, netlist)
+    for earlier, name, cell in libraries.collisions():
+        message = f"the cells {earlier} and {name} differ by letter case only; both are kept"
+        netlist.notes.append(Note("name-collision", message, places.at(cell.name.offset), name))
+    return netlist
+
+
+def _has_designators(edif: Edif) -> bool:
+    """Say whether the file marks parts by designators, so that what has none is a symbol."""
+    return any(
+        instance.designators
+        for library in edif.libraries
+        for cell in library.cells
+        for view in cell.views
+        for instance in view.contents.instances
+    )
+
+
+def _title(edif: Edif) -> str:
+    return edif.designs[0].name.display if edif.designs else edif.name.display
+
+
+def _choose_top(edif: Edif, libraries: Libraries, places: Places, notes: list[Note]) -> Source:
+    """Return the cell that is the whole circuit: of the first design at hand, else the last one with contents."""
+    found = [
+        (design, source)
+        for design in edif.designs
+        if design.cell and (source := libraries.find(design.cell, None))
+    ]
+    filled = [(design, source) for design, source in found if source.view.is_filled()]
+    if filled:
+        design, source = filled[0]
+        if len(edif.designs) > 1:
+            message = f"the file holds {len(edif.designs)} designs; {design.name.display} is read"
+            notes.append(Note("assumption", message, places.at(design.name.offset), design.name.display))
+        return source
+    last = libraries.last_filled()
+    if last is not None:
+        name = last.cell.name
+        message = f"no design form leads to a circuit; the last cell with contents, {name.display}, is read"
+        notes.append(Note("assumption", message, places.at(name.offset), name.display))
+        return last
+    if found:
+        return found[0][1]
+    raise NetlistError(
+        "the file holds no circuit, only a library of cells or nothing at all",
+        places.at(edif.name.offset),
+        excerpt=places.line_at(edif.name.offset),
+        expected="a cell with contents: instances and nets",
+        remedy="export the netlist of the schematic, not its library",
+    )

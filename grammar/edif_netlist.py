@@ -1,0 +1,113 @@
+"""The last step of reading EDIF: nets get their names, parts their pins, and both go into the Netlist."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable
+
+from .edif_hierarchy import FlatCircuit
+from .edif_parts import Built, PartBuilder
+from .edif_places import Places
+from .edif_sections import Package
+from .netlist import Net, Netlist, Note, Place
+
+_REWRITTEN_POINT = re.compile(r"[0-9]_[0-9]")
+
+
+def write_netlist(flat: FlatCircuit, places: Places, netlist: Netlist) -> None:
+    """Fill `netlist` from the flat circuit; notes go behind those that are there."""
+    netlist.notes += flat.notes
+    keys = _name_nets(flat, places, netlist)
+    find = flat.nets.find
+    builder = PartBuilder(places, lambda piece: keys[find(piece)], netlist.notes)
+    _add_parts([builder.build(end) for end in flat.parts], netlist)
+    for part in netlist.parts.values():
+        for i, pin in enumerate(part.pins):
+            if pin.net:
+                netlist.nets[pin.net].pins.append((part.reference, i))
+
+
+def _name_nets(flat: FlatCircuit, places: Places, netlist: Netlist) -> dict[int, str]:
+    """Add the nets that are drawn or reach a part, and return their keys by their first piece."""
+    find = flat.nets.find
+    roots = {find(piece) for piece in flat.drawn}
+    roots.update(find(connection.piece) for part in flat.parts for connection in part.connections)
+    unique = _UniqueNames()
+    keys: dict[int, str] = {}
+    for root in sorted(roots):
+        label = flat.nets.label(root)
+        key = keys[root] = unique.of(label.text)
+        netlist.nets[key] = Net(label.text, places.at(label.offset))
+        if key != label.text:
+            message = f"two nets bear the name {label.text}; the second is kept as {key}"
+            netlist.notes.append(Note("name-collision", message, places.at(label.offset), key))
+    _note_collisions(((key, net.place) for key, net in netlist.nets.items()), "nets", netlist.notes)
+    return keys
+
+
+def _add_parts(built: list[Built], netlist: Netlist) -> None:
+    """Add the parts: sections of one package as one, symbols not, doubles under a name of their own."""
+    has_references = any(entry.reference.is_stated for entry in built)
+    unique = _UniqueNames()
+    packages: dict[str, list[Package]] = {}
+    for entry in built:
+        if has_references and entry.is_symbol:
+            continue
+        reference = entry.part.reference
+        same = packages.setdefault(reference, [])
+        package = next((known for known in (*same[:1], *same[-1:]) if known.accepts(entry)), None)
+        if package:
+            package.add(entry, netlist.notes)
+            continue
+        entry.part.reference = unique.of(reference)
+        if same:
+            message = f"the reference designator {reference} is written twice; this one is kept as "
+            message += entry.part.reference
+            netlist.notes.append(Note("duplicate-reference", message, entry.part.place, entry.part.reference))
+        same.append(Package(entry))
+        netlist.parts[entry.part.reference] = entry.part
+    for same in packages.values():
+        for package in same:
+            package.close()
+    _note_parts(netlist)
+
+
+def _note_parts(netlist: Netlist) -> None:
+    for part in netlist.parts.values():
+        if not part.fitted:
+            message = f"{part.reference} is marked as not fitted, and left out of the circuit"
+            netlist.notes.append(Note("not-fitted", message, part.place, part.reference))
+        if _REWRITTEN_POINT.search(part.value):
+            message = (
+                f"the value {part.value} of {part.reference} may hold _ where the exporter found a point"
+            )
+            netlist.notes.append(Note("value-ambiguous", message, part.place, part.reference))
+    references = ((part.reference, part.place) for part in netlist.parts.values())
+    _note_collisions(references, "parts", netlist.notes)
+
+
+def _note_collisions(names: Iterable[tuple[str, Place]], what: str, notes: list[Note]) -> None:
+    """Note each name that differs from an earlier one by letter case only."""
+    first: dict[str, str] = {}
+    for name, place in names:
+        earlier = first.setdefault(name.casefold(), name)
+        if earlier != name:
+            message = f"the {what} {earlier} and {name} differ by letter case only; both are kept"
+            notes.append(Note("name-collision", message, place, name))
+
+
+class _UniqueNames:
+    """Hands out each name once: the second `R1` is `R1#2`."""
+
+    def __init__(self) -> None:
+        self._taken: set[str] = set()
+        self._counts: dict[str, int] = {}
+
+    def of(self, name: str) -> str:
+        """Return the name, or it with a number behind where it is taken."""
+        unique = name
+        while unique in self._taken:
+            self._counts[name] = self._counts.get(name, 1) + 1
+            unique = f"{name}#{self._counts[name]}"
+        self._taken.add(unique)
+        return unique
