@@ -19,9 +19,9 @@ from dataclasses import dataclass, field
 from typing import TypeAlias
 
 import numpy as np
-from numpy.typing import NDArray
 
-Array: TypeAlias = NDArray[np.float64]
+from .linear import Array, solve_each
+
 Sample: TypeAlias = Mapping[str, Array]
 Value: TypeAlias = Callable[[Sample], Array]
 
@@ -188,6 +188,8 @@ class Solution:
             control = self.voltage(element.control_a, element.control_b)
             return control * element.gain(self.sample)
         assert isinstance(element, Resistor)
+        if element.a == element.b:
+            return np.zeros(self.size)
         return self.voltage(element.a, element.b) / element.resistance(self.sample)
 
     def current_out_of(self, net: str) -> Array:
@@ -206,8 +208,8 @@ def solve(network: Network, sample: Sample, size: int) -> Solution:
 
     sample: parameter name to an array of shape (size,)
     Raises ValueError where the network is not well posed (a floating net, as many conditions as free
-    quantities wanted): the caller must have looked. A sample in which the closed loop has no solution
-    gives NaN in every answer of that sample.
+    quantities wanted): the caller must have looked. A sample without a solution (rails shorted, a
+    closed loop that nothing settles) gives NaN in every answer of that sample.
     """
     if len(network.free) != len(network.conditions):
         raise ValueError("a closed loop needs one condition for each free quantity")
@@ -220,28 +222,12 @@ def solve(network: Network, sample: Sample, size: int) -> Solution:
         equations.add_free(position, free)
     for position, condition in enumerate(network.conditions):
         equations.add_condition(position, condition)
-    answer = _solve_each(equations.matrix, equations.right)
+    answer = solve_each(equations.matrix, equations.right, equations.settled)
     return equations.solution(answer)
 
 
 def _array(value: Array | float, size: int) -> Array:
     return np.broadcast_to(np.asarray(value, dtype=np.float64), (size,))
-
-
-def _solve_each(matrix: Array, right: Array) -> Array:
-    """Solve a stack of systems; a singular one gives NaN instead of spoiling the whole stack."""
-    if matrix.shape[1] == 0:
-        return np.zeros_like(right)
-    try:
-        return np.asarray(np.linalg.solve(matrix, right[..., None])[..., 0], dtype=np.float64)
-    except np.linalg.LinAlgError:
-        answer = np.full_like(right, np.nan)
-        for index in range(matrix.shape[0]):
-            try:
-                answer[index] = np.linalg.solve(matrix[index], right[index])
-            except np.linalg.LinAlgError:
-                continue  # stays NaN: the caller reads it as "no solution in this corner"
-        return answer
 
 
 class _Equations:
@@ -268,6 +254,9 @@ class _Equations:
             if isinstance(free, FreePotential):
                 self.columns[free.net] = self.first_free + position
         count = self.first_free + len(network.free)
+        # How a current divides between shorts in parallel may stay open; nothing else may.
+        self.settled = np.ones(count, dtype=np.bool_)
+        self.settled[len(ordinary) : self.first_free] = False
         self.matrix: Array = np.zeros((size, count, count))
         self.right: Array = np.zeros((size, count))
 
@@ -278,7 +267,7 @@ class _Equations:
             self._transconductance(element)
         elif _has_branch(element):
             self._branch(element)
-        else:
+        elif element.a != element.b:
             assert isinstance(element, Resistor)
             self._conductance(element.a, element.b, 1.0 / element.resistance(self.sample))
 
@@ -354,7 +343,7 @@ class _Equations:
 def _has_branch(element: Element) -> bool:
     """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
     if isinstance(element, Resistor):
-        return element.may_be_zero
+        return element.may_be_zero and element.a != element.b  # a wiper tied to its end carries nothing
     return isinstance(element, VoltageSource) or (
         isinstance(element, ControlledSource) and element.kind == "voltage"
     )

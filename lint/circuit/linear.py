@@ -1,0 +1,66 @@
+"""Stacks of small linear systems: the ones without a single solution are told, never spoilt by rounding."""
+
+from __future__ import annotations
+
+from typing import TypeAlias
+
+import numpy as np
+from numpy.typing import NDArray
+
+Array: TypeAlias = NDArray[np.float64]
+Flags: TypeAlias = NDArray[np.bool_]
+
+# From this growth of a right-hand side on a matrix counts as singular: hardly four digits would be left.
+_MOST_GROWTH = 1e12
+
+# Numbers that ought to be zero may be off by this share of the greatest one: rounding.
+_ROUNDING = 1e-9
+
+
+def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
+    """Solve a stack of systems; one without a single solution gives NaN instead of spoiling the whole stack.
+
+    matrix, right: shapes (samples, unknowns, unknowns) and (samples, unknowns)
+    settled:       shape (unknowns,): False for an unknown that a solution may leave open
+    A matrix that is singular but for rounding would give huge numbers without a word. So each is asked a
+    second question, all ones, whose answer grows as the matrix nears the singular.
+    """
+    if matrix.shape[1] == 0:
+        return np.zeros_like(right)
+    rows = _greatest(matrix, axis=2)
+    matrix = matrix / rows[:, :, None]
+    columns = _greatest(matrix, axis=1)
+    matrix = matrix / columns[:, None, :]  # now siemens and ohms compare: the greatest coefficients are 1
+    right = right / rows
+    try:
+        answers = np.linalg.solve(matrix, np.stack([right, np.ones_like(right)], axis=2))
+    except np.linalg.LinAlgError:
+        return _solve_singular(matrix, right, settled) / columns
+    answer = answers[:, :, 0]
+    doubtful = np.max(np.abs(answers[:, :, 1]), axis=1) > _MOST_GROWTH
+    if doubtful.any():
+        answer[doubtful] = _solve_singular(matrix[doubtful], right[doubtful], settled)
+    return answer / columns
+
+
+def _greatest(matrix: Array, axis: int) -> Array:
+    greatest = np.max(np.abs(matrix), axis=axis)
+    return np.where(greatest == 0.0, 1.0, greatest)
+
+
+def _solve_singular(matrix: Array, right: Array, settled: Flags) -> Array:
+    """Solve a stack of systems some of which are singular, by singular value decomposition.
+
+    Shorts in parallel, or equal sources, leave open how a current divides between them: then the division
+    of least squares is taken, equal shares. NaN where the equations contradict each other (two rails
+    shorted), and where an unknown that a solution must settle stays open.
+    """
+    left, singular, across = np.linalg.svd(matrix)
+    null = singular * _MOST_GROWTH <= singular[:, :1]
+    shares = np.einsum("sji,sj->si", left, right)
+    contradicts = np.any(null & (np.abs(shares) > _ROUNDING * np.max(np.abs(right), axis=1)[:, None]), axis=1)
+    stays_open = np.any(null[:, :, None] & settled & (np.abs(across) > _ROUNDING), axis=(1, 2))
+    shares = np.where(null, 0.0, shares / np.where(null, 1.0, singular))
+    answer = np.einsum("sji,sj->si", across, shares)
+    answer[contradicts | stays_open] = np.nan
+    return answer
