@@ -8,11 +8,9 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
-from itertools import product
 from math import isinf
 
 from ..estimate import Estimate, Unsolved
-from ..quantity import Spread
 from .amplifiers import Amplifier
 from .answers import estimate
 from .controllers import Controller
@@ -21,7 +19,8 @@ from .growth import Growth
 from .potentials import Potential
 from .solver import Condition, FreeCurrent, FreePotential, Resistor
 from .states import Probe
-from .worst_case import Parameter, Variation
+from .trimming import settable, trimmers
+from .worst_case import Parameter
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,9 +80,8 @@ class Loops:
                 parts=found["output"].parts,
                 nets=(output, amplifier.plus, amplifier.minus),
             )
-        trimmers = tuple(p.name for p in growth.parameters.values() if p.variation is Variation.TRAVEL)
-        settable = _settable(growth, probes, output, condition) if trimmers else None
-        return Regulation(found["output"], found["inputs"], trimmers, settable)
+        reach = settable(growth, probes, "output", [FreePotential(output)], [condition])
+        return Regulation(found["output"], found["inputs"], trimmers(growth), reach)
 
     def trip(self, amplifier: Amplifier, output: Potential | None = None) -> Trip | Unsolved:
         """Return the sense current at which the current amplifier's inputs are equal.
@@ -147,21 +145,3 @@ def _trip_probes(resistor: Resistor) -> dict[str, tuple[Probe, str]]:
         "threshold": (lambda s: s.voltage(resistor.a, resistor.b), "V"),
         "dissipation": (lambda s: s.voltage(resistor.a, resistor.b) * s.current(resistor), "W"),
     }
-
-
-def _settable(
-    growth: Growth, probes: Mapping[str, tuple[Probe, str]], output: str, condition: Condition
-) -> tuple[float, float] | None:
-    """Return the voltages between which every unit can be set, each end from the least favourable unit."""
-    travel = [p for p in growth.parameters.values() if p.variation is Variation.TRAVEL]
-    ends: list[Spread] = []
-    for positions in product((0.0, 1.0), repeat=len(travel)):
-        fixed = {p.name: replace(p, low=x, nominal=x, high=x) for p, x in zip(travel, positions, strict=True)}
-        growth.parameters.update(fixed)
-        found = estimate(growth, probes, [FreePotential(output)], [condition])
-        if isinstance(found, Unsolved):
-            return None
-        ends.append(found["output"].spread)
-    lowest = min(ends, key=lambda end: end.nominal)
-    highest = max(ends, key=lambda end: end.nominal)
-    return lowest.maximum, highest.minimum

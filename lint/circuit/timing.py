@@ -15,6 +15,8 @@ from .graph import Circuit
 from .growth import GROUND, Growth
 from .potentials import Potential
 from .solver import Array, CurrentSource, Solution
+from .states import Probe
+from .trimming import settable, trimmers
 from .worst_case import Parameter
 
 # A resistance is read as the voltage that this current makes across it; any value does for a linear network.
@@ -23,11 +25,19 @@ _TEST_CURRENT = 1e-3
 
 @dataclass(frozen=True, slots=True)
 class Timing:
-    """The timing resistance (ohm), the timing capacitance (F) and the oscillator's frequency (Hz)."""
+    """What the timing parts make, trimmers swept end to end.
+
+    resistance, capacitance, frequency: at the timing pins (ohm, F), and of the oscillator (Hz)
+    trimmers: what can be set on the bench
+    settable: the lowest and the highest frequency (Hz) to which every unit can be set; None without a
+              trimmer, crossed where no frequency is within reach of every unit
+    """
 
     resistance: Estimate
     capacitance: Estimate
     frequency: Estimate
+    trimmers: tuple[str, ...] = ()
+    settable: tuple[float, float] | None = None
 
 
 def timing(circuit: Circuit, known: Mapping[str, Potential], controller: Controller) -> Timing | Unsolved:
@@ -45,7 +55,7 @@ def timing(circuit: Circuit, known: Mapping[str, Potential], controller: Control
     for part in capacitors:
         growth.part_value(part)
         growth.use(part)
-    if not capacitors or not growth.elements:
+    if not capacitors or not (growth.elements or growth.valueless):
         what = "timing capacitor" if not capacitors else "timing resistor"
         net = capacitor_net if not capacitors else resistor_net
         return Unsolved(f"no {what} from {net} to ground", nets=(net,))
@@ -62,21 +72,21 @@ def timing(circuit: Circuit, known: Mapping[str, Potential], controller: Control
         return np.sum([solution.sample[part.reference] for part in capacitors], axis=0)
 
     def frequency(solution: Solution) -> Array:
-        return solution.sample["k"] / (resistance(solution) * capacitance(solution))
+        with np.errstate(divide="ignore"):  # a trimmer may leave no resistance at all: infinitely fast
+            return solution.sample["k"] / (resistance(solution) * capacitance(solution))
 
-    if growth.network().floating():
+    if not growth.valueless and growth.network().floating():
         return Unsolved(f"no resistor from {resistor_net} to ground", nets=(resistor_net,))
-    found = estimate(
-        growth,
-        {
-            "resistance": (resistance, "ohm"),
-            "capacitance": (capacitance, "F"),
-            "frequency": (frequency, "Hz"),
-        },
-    )
+    probes: dict[str, tuple[Probe, str]] = {
+        "resistance": (resistance, "ohm"),
+        "capacitance": (capacitance, "F"),
+        "frequency": (frequency, "Hz"),
+    }
+    found = estimate(growth, probes)
     if isinstance(found, Unsolved):
         return found
-    return Timing(found["resistance"], found["capacitance"], found["frequency"])
+    reach = settable(growth, probes, "frequency")
+    return Timing(found["resistance"], found["capacitance"], found["frequency"], trimmers(growth), reach)
 
 
 def _to_ground(circuit: Circuit, known: Mapping[str, Potential], net: str) -> list[Part]:
