@@ -96,4 +96,5 @@ def engineering(value: float, unit: str = "", digits: int = 3) -> str:
 
 def percent(ratio: float, digits: int = 3) -> str:
     """Return a ratio as a percentage without idle zeros: `percent(0.0451)` is "4.51 %"."""
-    return f"{100 * ratio:.{digits}g} %"
+    number = engineering(100 * ratio, "", digits)
+    return f"{number.rstrip('0').rstrip('.') if '.' in number else number} %"

@@ -31,7 +31,8 @@ _EXPECTED = {
 _LONGEST_TEXT = 200
 _RANGE = re.compile(r"\s*(?:\.\.\.?|…)\s*")
 _NUMBER_AND_UNIT = re.compile(
-    r"(?P<number>[+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]{1,3})?)\s*(?P<unit>%|°?[A-Za-zµμΩΩ]*)"
+    r"(?P<number>[+-]?(?:[0-9]+(?:\.[0-9]+)?|\.[0-9]+)(?:[eE][+-]?[0-9]{1,3})?)\s*"
+    r"(?P<unit>%|°?[A-Za-z\N{MICRO SIGN}\N{GREEK SMALL LETTER MU}\N{GREEK CAPITAL LETTER OMEGA}]*)"
 )
 
 
@@ -70,6 +71,7 @@ def read_range(text: str, unit: str) -> Spread:
     """
     if len(text) > _LONGEST_TEXT:
         raise QuantityTextError("the text is too long for a quantity", expected=_EXPECTED[unit])
+    text = text.replace("\N{OHM SIGN}", "\N{GREEK CAPITAL LETTER OMEGA}")
     mark = _RANGE.search(text)
     if mark is None:
         return Spread.exact(_read(text, 0, len(text), unit, ""), unit)

@@ -371,9 +371,13 @@ def test_hostile_texts_cost_little(filler: str) -> None:
     assert time.perf_counter() - start < 2.0
 
 
+def _parsed_again(word: str, kind: str) -> None:
+    pytest.fail(f"{word} parsed again as {kind}")
+
+
 def test_a_text_is_parsed_once(monkeypatch: pytest.MonkeyPatch) -> None:
     read("4k7 1% 77V")
-    monkeypatch.setattr(pwmlint.grammar.values, "read_word", lambda *_: pytest.fail("parsed again"))
+    monkeypatch.setattr(pwmlint.grammar.values, "read_word", _parsed_again)
     assert read("4k7 1% 77V").voltage == 77.0
     with pytest.raises(ValueTextError):
         read("")

@@ -1,5 +1,8 @@
 """The series of IEC 60063 against an independent list of them (the package `eseries`)."""
 
+from math import log
+from typing import cast
+
 import eseries
 import pytest
 from pwmlint.lint.preferred import nearest, series
@@ -7,22 +10,23 @@ from pwmlint.lint.preferred import nearest, series
 NAMES = ("E3", "E6", "E12", "E24", "E48", "E96", "E192")
 
 
+def listed(name: str) -> list[float]:
+    """Return the series of the package from 1 to below 10."""
+    values = cast("tuple[int, ...]", eseries.series(getattr(eseries, name)))  # pyright: ignore[reportUnknownMemberType]  # untyped package
+    return [value / values[0] for value in values]
+
+
 @pytest.mark.parametrize("name", NAMES)
 def test_series_agrees_with_an_independent_list(name: str) -> None:
-    listed = [float(value) for value in eseries.series(getattr(eseries, name))]
-    scale = listed[0]
-    assert series(name) == pytest.approx([value / scale for value in listed], rel=1e-12)
+    assert series(name) == pytest.approx(listed(name), rel=1e-12)
 
 
 @pytest.mark.parametrize("name", NAMES)
 @pytest.mark.parametrize("value", [0.0137, 0.5, 1.04, 7.77, 33.5, 417.0, 4949.0, 98.7e3, 1.234e6])
-def test_nearest_agrees_with_an_independent_list_up_to_the_scale_of_nearness(name: str, value: float) -> None:
-    """That package measures the distance by difference, we by ratio: they differ between the means."""
-    theirs = eseries.find_nearest(getattr(eseries, name), value)
-    ours = nearest(value, name)
-    if ours != pytest.approx(theirs):
-        low, high = sorted((ours, theirs))
-        assert (low * high) ** 0.5 <= value <= (low + high) / 2
+def test_nearest_is_the_nearest_by_ratio_of_an_independent_list(name: str, value: float) -> None:
+    every = [mantissa * 10.0**decade for decade in range(-3, 8) for mantissa in listed(name)]
+    best = min(every, key=lambda one: abs(log(one / value)))
+    assert nearest(value, name) == pytest.approx(best)
 
 
 def test_the_exception_of_e192_is_in_it() -> None:
