@@ -1,0 +1,361 @@
+"""Reference: what it is asked to deliver, what holds it still, and whether it is exact enough."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import replace
+
+from ..grammar.netlist import Part
+from ..lint.brief import Rail
+from ..lint.circuit.controllers import Controller
+from ..lint.circuit.loops import Regulation
+from ..lint.circuit.potentials import named_voltage
+from ..lint.circuit.reference_load import ReferenceLoad
+from ..lint.design import Design
+from ..lint.estimate import Estimate, Unsolved
+from ..lint.judge import judge, unsolved
+from ..lint.preferred import neighbours
+from ..lint.quantity import Spread, engineering, percent
+from ..lint.rule import rule
+from ..lint.verdict import Limit, Outcome, Verdict
+from .bypass import bypass_of, bypass_verdict
+
+_PIN = ("reference",)
+
+
+@rule("reference.load", level="error", topic="reference")
+def load(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is the reference asked for no more current than it can deliver?
+
+    What:
+        Solves everything that hangs on the reference pin, trimmers at their worst, the output-control pin
+        included where it is tied there, and adds up the branches. What other parts draw (an integrated
+        circuit, a connector) is taken from `load` of the rail in the brief; untold it leaves the question
+        open, unless the rest is too much already.
+    Why:
+        Beyond its limit the reference sags, and the output voltage, the dead time and the current limit
+        move with it; the part also heats up.
+    Formula:
+        I [A] = sum of the branch currents, each by nodal analysis at the highest reference voltage
+    Source:
+        7500 class data sheet of a second source (10 mA); SLVS074 p.5 (3.5 mA into the output-control pin).
+    Remedy:
+        Raise the resistance of the greatest branch to the printed value, or feed it from the supply.
+    """
+    net = controller.net("reference")
+    if not net:
+        return
+    found = design.reference_load(controller)
+    if isinstance(found, Unsolved):
+        yield unsolved(found, "load of the reference", pins=_PIN)
+        return
+    total, unknown = _with_told(found, design.rail(net))
+    figure = controller.profile.figure("reference.load")
+    assert figure.maximum is not None  # the profile's own tests ask for it
+    says = f"{net} delivers {total.spread}{_listed(found)}"
+    remedy = _less(found, design, net, figure.maximum)
+    verdict = judge(total, figure.limit(), says, source=figure.source, rating=True, pins=_PIN, remedy=remedy)
+    if unknown and verdict.outcome is Outcome.PASS:
+        need = f'brief: [rails.{net}] load = "..."'
+        message = f"{says}; {'; '.join(unknown)}"
+        verdict = replace(verdict, outcome=Outcome.OPEN, message=message, needs=(need,))
+    yield verdict
+
+
+def _with_told(found: ReferenceLoad, rail: Rail | None) -> tuple[Estimate, tuple[str, ...]]:
+    """Return the total, with what the brief tells of parts that cannot be solved, and what is untold."""
+    total = found.total.because(f"{_added(found)} = {found.total.spread}")
+    if not found.unknown or rail is None or rail.load is None:
+        return total, found.unknown
+    more = rail.load
+    told = f"the brief's load of {rail.net}, {more}, is what parts other than resistors draw"
+    return replace(
+        total,
+        spread=_sum(total.spread, more),
+        statistical=_sum(total.statistical, more),
+        assumptions=(*total.assumptions, told),
+        formula=f"{total.formula} + {more} by the brief",
+    ), ()
+
+
+def _added(found: ReferenceLoad) -> str:
+    """Return the branches as a sum."""
+    return " + ".join(f"{name} {current.spread.text(2)}" for name, current in found.branches) or "nothing"
+
+
+def _sum(one: Spread, other: Spread) -> Spread:
+    ends = (one.minimum + other.minimum, one.nominal + other.nominal, one.maximum + other.maximum)
+    return Spread(*ends, "A")
+
+
+_MOST_LISTED = 4
+
+
+def _listed(found: ReferenceLoad) -> str:
+    """Return the greatest branches, each at its worst."""
+    greatest = [
+        f"{name} {engineering(i.spread.maximum, 'A', 2)}" for name, i in found.branches[:_MOST_LISTED]
+    ]
+    return f"; at most {', '.join(greatest)}" if greatest else ""
+
+
+def _less(found: ReferenceLoad, design: Design, net: str, limit: float) -> str:
+    """Return the resistor value that brings the load under its limit."""
+    excess = found.total.spread.maximum - limit
+    for name, current in found.branches:
+        part = design.netlist.parts.get(name)
+        left = current.spread.maximum - excess
+        if part is not None and design.circuit.kind(part) == "resistor" and left > 0:
+            return _raised(part, current.spread.maximum / left, design, net)
+    factor = found.total.spread.maximum / limit
+    return f"raise the resistances of all branches {engineering(factor)} times, or feed some from the supply"
+
+
+def _raised(part: Part, factor: float, design: Design, net: str) -> str:
+    """Return one resistor at the next preferred value above `factor` times its own."""
+    value = design.nominal(part)
+    assert value is not None  # it has a branch current
+    _, above = neighbours(value * factor, "E24")
+    remedy = f"raise {part.reference} from {engineering(value, 'ohm')} to {engineering(above, 'ohm')} (E24)"
+    straight = all(design.is_ground(other) for other in design.circuit.other_nets(part, net))
+    return remedy if straight else f"{remedy}, and the rest of its branch in the same ratio"
+
+
+@rule("reference.bypass", level="warning", topic="reference")
+def bypass(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is the reference pin bypassed to ground by a capacitor of the usual size?
+
+    What:
+        Adds up the capacitors that stand straight between the reference net and ground, electrolytic ones
+        left out; one without a marked dielectric counts up to 10 uF. More than usual is for a person to
+        judge.
+    Why:
+        Every threshold comes from this pin: what couples into it becomes jitter of the pulses. A very
+        large capacitor delays the reference at switch-on, while the supply is up already.
+    Formula:
+        100 nF <= sum of C [F] <= 10 uF
+    Source:
+        common practice, no source
+    Remedy:
+        Put 100 nF to 1 uF, ceramic, from the reference pin to the ground pin.
+    """
+    net = controller.net("reference")
+    if not net or design.is_ground(net):
+        return
+    practice = controller.profile.practice("reference.bypass")
+    assert practice.minimum is not None  # the profile's own tests ask for both
+    assert practice.maximum is not None
+    found = bypass_of(design, net, practice.maximum)
+    remedy = f"put {engineering(practice.minimum, 'F')} to 1 µF, ceramic, from the reference pin to ground"
+    verdict = bypass_verdict(
+        controller, "reference", found, practice.limit(), source=practice.source, remedy=remedy
+    )
+    large = verdict.outcome is Outcome.FAIL and found.total > practice.maximum
+    yield replace(verdict, outcome=Outcome.REVIEW, level=None) if large else verdict
+
+
+@rule("reference.back-fed", level="error", topic="reference")
+def back_fed(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does anything but the controller drive its reference?
+
+    What:
+        Looks for ground, a source, another controller's reference or the supply pin on the reference net,
+        straight or through a link, and for resistors that feed more current into the net than what hangs
+        on it takes away.
+    Why:
+        The reference can deliver current but not take any. Lifted from outside, it moves every threshold
+        with the foreign rail; shorted, it delivers its short-circuit current until the part is too hot.
+    Formula:
+        current out of the pin [A], by nodal analysis, not below -0.1 mA in any corner
+    Source:
+        SLVS074 p.4 (short circuit of the reference: one second at most); the 0.1 mA that the controller's
+        inside takes up: common practice, no source.
+    Remedy:
+        Take the foreign rail off the net; feed pull-ups to it from the reference itself.
+    """
+    net = controller.net("reference")
+    if not net:
+        return
+    foreign = _foreign(controller, design, net)
+    for what, parts, nets in foreign:
+        yield Verdict(
+            outcome=Outcome.FAIL,
+            message=f"the reference net {net} {what}",
+            parts=parts,
+            nets=nets,
+            pins=_PIN,
+            source=controller.profile.figure("reference.short-circuit").source,
+            remedy=f"take it off {net}: the controller alone drives this net",
+        )
+    if foreign:
+        return
+    found = design.reference_load(controller)
+    if not isinstance(found, Unsolved):  # else reference.load speaks of it
+        yield _fed_by_resistors(found, net)
+
+
+# What the circuits inside a controller take from its reference at least.
+_TAKEN_UP = -100e-6
+
+
+def _fed_by_resistors(found: ReferenceLoad, net: str) -> Verdict:
+    feeding = [name for name, current in found.branches if current.spread.minimum < _TAKEN_UP]
+    total = found.total.because(f"{_added(found)} = {found.total.spread}")
+    limit = Limit(_TAKEN_UP, None, "A")
+    says = f"nothing drives {net} but the controller"
+    if not limit.contains(total.spread):
+        says = f"{', '.join(feeding)} can feed current into {net}: {total.spread} out of the pin"
+    return judge(
+        total,
+        limit,
+        says,
+        source="common practice, no source",
+        rating=True,
+        pins=_PIN,
+        remedy=f"feed {', '.join(feeding)} from {net} itself, or raise its resistance",
+    )
+
+
+_Foreign = tuple[str, tuple[str, ...], tuple[str, ...]]
+
+# Parts that join two nets into one, as far as direct current is concerned.
+_LINKS = frozenset({"jumper", "fuse", "inductor"})
+
+
+def _foreign(controller: Controller, design: Design, net: str) -> list[_Foreign]:
+    """Return what else drives the reference net: how, the parts and the nets."""
+    if design.is_ground(net):
+        return [("is shorted to ground", (), (net,))]
+    found: list[_Foreign] = []
+    if net == controller.net("supply"):
+        found.append(("is the supply net as well", (), (net,)))
+    for other in design.controllers:
+        if other is not controller and other.net("reference") == net:
+            found.append((f"is the reference of {other.reference} as well", (other.reference,), (net,)))
+    found += _other_voltage(controller, design, net)
+    for connection in design.circuit.connections(net):
+        part = connection.part
+        # A source towards a net of unknown potential is an ammeter of the simulation.
+        ends = [other for other in design.circuit.other_nets(part, net) if design.potential(other)]
+        joint = _joint(design, part)
+        if joint:
+            found += [(f"{joint} {end} by {part.reference}", (part.reference,), (net, end)) for end in ends]
+    return found
+
+
+def _other_voltage(controller: Controller, design: Design, net: str) -> list[_Foreign]:
+    """Return the voltage that the brief or the net's own name gives the reference net, where it differs."""
+    reference = controller.profile.figure("reference.voltage").spread()
+    rail, volts = design.rail(net), named_voltage(net)
+    told = rail.band if rail is not None else None
+    if told is None and volts is not None:
+        told = Spread.exact(volts, "V")
+    if told is None or (told.minimum <= reference.maximum and told.maximum >= reference.minimum):
+        return []
+    return [(f"is {told} by {'the brief' if rail is not None else 'its name'}", (), (net,))]
+
+
+def _joint(design: Design, part: Part) -> str:
+    """Return how a part binds the potentials of its two nets, empty where it does not."""
+    kind = design.circuit.kind(part)
+    if len(part.pins) != 2:
+        return ""
+    if kind in ("voltage source", "battery"):
+        return "is driven against"
+    link = kind in _LINKS or (kind == "resistor" and design.nominal(part) == 0)
+    return "is linked to" if link else ""
+
+
+@rule("reference.needed-accuracy", level="warning", topic="reference")
+def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Are the reference and the dividers exact enough for the output's tolerance?
+
+    What:
+        Takes the spread of the regulated output about its own nominal value and holds it against the
+        output's tolerance in the brief, with the share of every part in it. Whether the nominal value is
+        the right one is another question (feedback.output-voltage).
+    Why:
+        It says which part to buy better: no resistor mends a reference that alone fills the tolerance.
+    Formula:
+        deviation = output / output(nominal) - 1, extreme values by nodal analysis
+    Source:
+        the brief (tolerance); 494 class: SLVS074 p.4 (reference 4.75 V to 5.25 V), 594: SLVS052 p.4
+        (4.95 V to 5.05 V).
+    Remedy:
+        Better the part that is named first, or add a trimmer.
+    """
+    found = design.regulation(controller)
+    if not isinstance(found, Regulation) or found.output.spread.nominal <= 0:
+        return  # feedback.output-voltage or feedback.complete speaks of it
+    output = next((a.output for a in design.amplifiers(controller) if a.use == "voltage"), "")
+    rail = design.rail(output)
+    allowed = _allowed(rail)
+    if rail is None or allowed is None:
+        need = f'brief: [rails.{output}] tolerance = "..."'
+        yield Verdict(outcome=Outcome.OPEN, message=f"accuracy of {output}: no tolerance told", needs=(need,))
+        return
+    deviation = _deviation(found.output)
+    nominal = engineering(found.output.spread.nominal, "V")
+    says = f"{output} spreads {_percentages(deviation.spread)} about {nominal}"
+    if found.trimmers:
+        yield Verdict(
+            outcome=Outcome.NOT_APPLICABLE,
+            message=f"{output} is set on the bench by {', '.join(found.trimmers)}",
+            parts=found.trimmers,
+            nets=(output,),
+            pins=_PIN,
+        )
+        return
+    reference = controller.profile.figure("reference.voltage").spread()
+    remedy = _better(deviation, reference, allowed)
+    verdict = judge(deviation, allowed, says + _shares(deviation), source="brief", pins=_PIN, remedy=remedy)
+    yield verdict
+
+
+def _allowed(rail: Rail | None) -> Limit | None:
+    """Return the deviation that the brief allows a rail, None where it tells no width."""
+    if rail is None or rail.band.minimum == rail.band.maximum or rail.voltage.nominal <= 0:
+        return None
+    nominal = rail.voltage.nominal
+    return Limit(rail.band.minimum / nominal - 1, rail.band.maximum / nominal - 1, "")
+
+
+def _deviation(output: Estimate) -> Estimate:
+    """Return an output voltage's deviation from its nominal value, as a ratio."""
+    nominal = output.spread.nominal
+
+    def about_nominal(spread: Spread) -> Spread:
+        return Spread(spread.minimum / nominal - 1, 0.0, spread.maximum / nominal - 1, "")
+
+    ends = f"{engineering(output.spread.minimum, 'V', 4)} .. {engineering(output.spread.maximum, 'V', 4)}"
+    return replace(
+        output,
+        spread=about_nominal(output.spread),
+        statistical=about_nominal(output.statistical),
+        formula=f"({ends}) / {engineering(nominal, 'V', 4)} - 1",
+    )
+
+
+def _percentages(spread: Spread) -> str:
+    return f"{percent(spread.minimum)} .. +{percent(spread.maximum)}"
+
+
+_MOST_SHARES = 3
+
+
+def _shares(deviation: Estimate) -> str:
+    greatest = [f"{name} {percent(share, 2)}" for name, share in deviation.contributions[:_MOST_SHARES]]
+    return f"; of it {', '.join(greatest)}" if greatest else ""
+
+
+def _better(deviation: Estimate, reference: Spread, allowed: Limit) -> str:
+    """Return which part to buy better."""
+    alone = max(reference.maximum / reference.nominal - 1, 1 - reference.minimum / reference.nominal)
+    assert allowed.maximum is not None
+    if alone > allowed.maximum:
+        return (
+            f"the reference alone may be off by {percent(alone)}: take a controller with a tighter one, "
+            "an external reference, or a trimmer"
+        )
+    first = next((name for name, _ in deviation.contributions), "the dividers")
+    return f"take a tighter {first}: it has the greatest share"
