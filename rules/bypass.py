@@ -2,18 +2,19 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
+from ..lint.controllers import Figure
 from ..lint.design import Design
 from ..lint.estimate import Estimate
 from ..lint.judge import judge
 from ..lint.quantity import Spread, engineering
-from ..lint.verdict import Limit, Outcome, Verdict
+from ..lint.verdict import Outcome, Verdict
 
 # Dielectrics whose resistance and inductance keep them from working at high frequency.
-_SLOW = ("electrolytic", "tantalum", "polymer")
+_SLOW = ("alumin", "electrolytic", "tantalum", "polymer")
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,10 +68,15 @@ def _is_slow(design: Design, part: Part, value: float, most_unmarked: float) -> 
 
 
 def bypass_verdict(
-    controller: Controller, role: str, found: Bypass, limit: Limit, *, source: str, remedy: str
+    controller: Controller, design: Design, role: str, practice: Figure, most_unmarked: float, *, remedy: str
 ) -> Verdict:
-    """Return the verdict on a pin's bypass: its sum, as marked on the parts, against the limit."""
-    pin = controller.pins[role]
+    """Return the verdict on a pin's bypass: its sum, as marked on the parts, against the practice.
+
+    A drawing with a bypass at neither pin is a sketch that leaves them out, or lacks both: who knows it
+    must judge.
+    """
+    pin, limit = controller.pins[role], practice.limit()
+    found = bypass_of(design, pin.net, most_unmarked)
     if found.valueless and not limit.holds(found.total):
         return Verdict(
             outcome=Outcome.OPEN,
@@ -88,4 +94,14 @@ def bypass_verdict(
     spread = Spread.exact(found.total, "F")
     parts = tuple(reference for reference, _ in found.fast) or found.slow
     estimate = Estimate(spread, spread, parts=parts, nets=(pin.net,), formula=listed)
-    return judge(estimate, limit, says, source=source, pins=(role,), remedy=remedy)
+    verdict = judge(estimate, limit, says, source=practice.source, pins=(role,), remedy=remedy)
+    if verdict.outcome is Outcome.PASS or not _is_sketch(controller, design, most_unmarked):
+        return verdict
+    message = f"{says}, nor has any other pin: drawn without them, or forgotten"
+    return replace(verdict, outcome=Outcome.REVIEW, level=None, message=message)
+
+
+def _is_sketch(controller: Controller, design: Design, most_unmarked: float) -> bool:
+    """Tell whether neither the supply nor the reference has a capacitor to ground for high frequency."""
+    nets = [controller.net(role) for role in ("supply", "reference")]
+    return not any(bypass_of(design, net, most_unmarked).fast for net in nets if net)

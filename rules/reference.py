@@ -18,7 +18,7 @@ from ..lint.preferred import neighbours
 from ..lint.quantity import Spread, engineering, percent
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
-from .bypass import bypass_of, bypass_verdict
+from .bypass import bypass_verdict
 
 _PIN = ("reference",)
 
@@ -117,8 +117,10 @@ def _raised(part: Part, factor: float, design: Design, net: str) -> str:
     assert value is not None  # it has a branch current
     _, above = neighbours(value * factor, "E24")
     remedy = f"raise {part.reference} from {engineering(value, 'ohm')} to {engineering(above, 'ohm')} (E24)"
-    straight = all(design.is_ground(other) for other in design.circuit.other_nets(part, net))
-    return remedy if straight else f"{remedy}, and the rest of its branch in the same ratio"
+    nets = [other for other in design.circuit.other_nets(part, net) if not design.is_ground(other)]
+    rest = [connection.part for other in nets for connection in design.circuit.connections(other)]
+    more = [p.reference for p in rest if p is not part and design.circuit.kind(p) in ("resistor", "trimmer")]
+    return f"{remedy}, and {', '.join(more)} in the same ratio" if more else remedy
 
 
 @rule("reference.bypass", level="warning", topic="reference")
@@ -145,12 +147,9 @@ def bypass(controller: Controller, design: Design) -> Iterable[Verdict]:
     practice = controller.profile.practice("reference.bypass")
     assert practice.minimum is not None  # the profile's own tests ask for both
     assert practice.maximum is not None
-    found = bypass_of(design, net, practice.maximum)
     remedy = f"put {engineering(practice.minimum, 'F')} to 1 µF, ceramic, from the reference pin to ground"
-    verdict = bypass_verdict(
-        controller, "reference", found, practice.limit(), source=practice.source, remedy=remedy
-    )
-    large = verdict.outcome is Outcome.FAIL and found.total > practice.maximum
+    verdict = bypass_verdict(controller, design, "reference", practice, practice.maximum, remedy=remedy)
+    large = verdict.measured is not None and verdict.measured.nominal > practice.maximum
     yield replace(verdict, outcome=Outcome.REVIEW, level=None) if large else verdict
 
 
@@ -298,10 +297,11 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
     nominal = engineering(found.output.spread.nominal, "V")
     says = f"{output} spreads {_percentages(deviation.spread)} about {nominal}"
     if found.trimmers:
+        trimmers = tuple(name.removesuffix(" travel") for name in found.trimmers)
         yield Verdict(
             outcome=Outcome.NOT_APPLICABLE,
-            message=f"{output} is set on the bench by {', '.join(found.trimmers)}",
-            parts=found.trimmers,
+            message=f"{output} is set on the bench by {', '.join(trimmers)}",
+            parts=trimmers,
             nets=(output,),
             pins=_PIN,
         )

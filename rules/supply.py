@@ -12,7 +12,7 @@ from ..lint.judge import judge, unsolved
 from ..lint.quantity import Spread, engineering
 from ..lint.rule import rule
 from ..lint.verdict import Outcome, Verdict
-from .bypass import bypass_of, bypass_verdict
+from .bypass import bypass_verdict
 
 _PIN = ("supply",)
 
@@ -41,8 +41,9 @@ def supply_range(controller: Controller, design: Design) -> Iterable[Verdict]:
         return  # connections.pin-open or connections.controller-found speaks of it
     voltage = design.voltage(net)
     if isinstance(voltage, Unsolved):
-        needs = voltage.needs or (f'brief: [rails.{net}] voltage = "..."',)
-        yield unsolved(replace(voltage, needs=needs), "supply voltage", pins=_PIN)
+        need = f'brief: [rails.{net}] voltage = "..."'
+        reason = f"neither the brief, a source nor the name tells the voltage of net {net}"
+        yield unsolved(Unsolved(reason, nets=(net,), needs=(need,)), "supply voltage", pins=_PIN)
         return
     name = controller.pins["supply"].name
     absolute = controller.profile.figure("supply.absolute")
@@ -110,5 +111,4 @@ def bypass(controller: Controller, design: Design) -> Iterable[Verdict]:
     assert practice.minimum is not None  # the profile's own tests ask for both
     assert unmarked is not None
     remedy = f"put {engineering(practice.minimum, 'F')}, ceramic, from the supply pin to ground beside it"
-    found = bypass_of(design, net, unmarked)
-    yield bypass_verdict(controller, "supply", found, practice.limit(), source=practice.source, remedy=remedy)
+    yield bypass_verdict(controller, design, "supply", practice, unmarked, remedy=remedy)

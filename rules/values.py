@@ -16,7 +16,7 @@ from ..lint.circuit.loops import Regulation, Trip
 from ..lint.design import Design
 from ..lint.estimate import Unsolved
 from ..lint.parts_list import PartsList
-from ..lint.preferred import is_preferred, neighbours
+from ..lint.preferred import is_preferred, nearest
 from ..lint.quantity import engineering, percent
 from ..lint.rule import netlist_rule, rule
 from ..lint.verdict import Level, Outcome, Verdict
@@ -163,14 +163,14 @@ def _outside(part: Part, design: Design) -> Verdict:
     value, names, tolerance = _nominal(part, design), _series(part, design), _tolerance(part, design)
     unit = "ohm" if design.circuit.kind(part) == "resistor" else "F"
     told = f" at {percent(tolerance)}" if tolerance is not None else ""
-    near = " or ".join(engineering(one, unit) for one in neighbours(value, "E24"))
+    near = [f"{engineering(nearest(value, name), unit)} ({name})" for name in names if name != "E48"]
     return Verdict(
         outcome=Outcome.REVIEW,
-        message=f"{part.reference}, {engineering(value, unit, 4)}{told}, is not of {' or '.join(names)}",
+        message=f"{part.reference}, {engineering(value, unit, 4)}{told}, is not of {', '.join(names)}",
         subject=part.reference,
         parts=(part.reference,),
         source="IEC 60063",
-        remedy=f"E24 has {near}",
+        remedy=f"take {' or '.join(near)}",
     )
 
 
@@ -236,7 +236,8 @@ def value_conflict(design: Design) -> Iterable[Verdict]:
 
     What:
         Compares the value of each part in the two, as numbers: 4k7 and 4700 agree. Rows without a part
-        and fitted parts without a row are listed. Nothing is asked where there is no parts list.
+        are listed, and so are fitted resistors, trimmers, capacitors and inductors without a row. Nothing
+        is asked where there is no parts list.
     Why:
         The board is built from the parts list and reviewed from the netlist: where they differ, another
         circuit is built than the one reviewed.
@@ -291,17 +292,17 @@ def _conflict(part: Part, design: Design, listed: PartsList) -> Verdict | None:
 
 def _strays(design: Design, listed: PartsList) -> list[str]:
     """Return what stands in one document only, each as a sentence."""
-    fitted = [p.reference for p in design.circuit.parts.values() if design.circuit.kind(p) not in _NOT_BOUGHT]
+    parts = [p.reference for p in design.circuit.parts.values() if design.circuit.kind(p) in _RATED]
     sentences: list[str] = []
     if rows := listed.unmatched(design.netlist.parts):
         sentences.append(f"in the parts list only: {_some(rows)}")
-    if parts := listed.missing(fitted):
-        sentences.append(f"in the netlist only: {_some(parts)}")
+    if unlisted := listed.missing(parts):
+        sentences.append(f"in the netlist only: {_some(unlisted)}")
     return sentences
 
 
-# A simulation's sources and the marks on a board are on no parts list.
-_NOT_BOUGHT = frozenset({"test point", "voltage source", "current source", "controlled source", "coupling"})
+# Parts whose ratings are asked for; a list of ratings need not name any other.
+_RATED = frozenset({"resistor", "trimmer", "capacitor", "inductor"})
 
 _MOST_NAMED = 12
 
