@@ -17,6 +17,7 @@ from pathlib import Path
 from typing import Any
 
 from ..grammar.errors import NetlistError, printable
+from .estimate import Method
 from .report import FORMATS, Gate
 from .report.delivery import STANDARD_OUTPUT, DeliveryError, Target, deliver, send
 from .verdict import Level, Review
@@ -125,6 +126,12 @@ def _add_review_options(parser: argparse.ArgumentParser) -> None:
         help="the least level of a failed verdict that gives exit status 1 (error)",
     )
     parser.add_argument(
+        "--worst-case",
+        choices=[method.value for method in Method],
+        default=Method.EXTREME.value,
+        help="the analysis that decides: every parameter at its end at once, root-sum-square, or draws (extreme)",
+    )
+    parser.add_argument(
         "--strict", action="store_true", help="let open verdicts, and those for a person to judge, do so too"
     )
 
@@ -163,6 +170,7 @@ def _review_each(netlists: Iterable[str], options: argparse.Namespace) -> list[R
                     brief=options.brief,
                     parts_list=options.parts_list,
                     allow_include=options.allow_include,
+                    method=Method(options.worst_case),
                 )
             )
         except NetlistError as error:

@@ -6,7 +6,7 @@ kept, so that ten rules may ask the same without solving ten times.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import TypeVar, cast
 
@@ -23,7 +23,7 @@ from .circuit.potentials import Potential, known_potentials
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.timing import Timing, timing
 from .circuit.worst_case import Variation
-from .estimate import Estimate, Unsolved
+from .estimate import Estimate, Method, Unsolved
 from .parts_list import PartsList
 from .quantity import Spread
 
@@ -41,13 +41,17 @@ class Design:
     """A netlist with its brief and parts list, and the answers to what a reviewer asks of them."""
 
     def __init__(
-        self, netlist: Netlist, brief: Brief | None = None, parts_list: PartsList | None = None
+        self,
+        netlist: Netlist,
+        brief: Brief | None = None,
+        parts_list: PartsList | None = None,
+        method: Method = Method.EXTREME,
     ) -> None:
         self.netlist = netlist
         self.brief = brief
         self.parts_list = parts_list
-        self.circuit = Circuit(netlist, parts_list)
-        told = brief.controllers if brief is not None else {}
+        self.circuit = Circuit(netlist, parts_list, method)
+        told: Mapping[str, ControllerBrief] = brief.controllers if brief is not None else {}
         pins = {reference: entry.pins for reference, entry in told.items() if entry.pins}
         self.controllers = find_controllers(netlist, pins)
         self.known = known_potentials(self.circuit, brief, self.controllers)

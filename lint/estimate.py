@@ -3,8 +3,17 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field, replace
+from enum import StrEnum
 
 from .quantity import Spread
+
+
+class Method(StrEnum):
+    """Which worst-case analysis decides a verdict."""
+
+    EXTREME = "extreme"
+    RSS = "rss"
+    MONTE_CARLO = "monte-carlo"
 
 
 @dataclass(frozen=True, slots=True)

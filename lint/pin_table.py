@@ -85,7 +85,9 @@ def _voltage(controller: Controller, net: str, design: Design) -> str:
             if amplifier.use == "voltage" and net in (amplifier.plus, amplifier.minus):
                 return str(regulation.inputs.spread)
     for amplifier in design.amplifiers(controller):
-        if amplifier.sense is not None and net == amplifier.sense.near:
-            return "follows the current"
+        if amplifier.sense is not None and net in (amplifier.plus, amplifier.minus):
+            reach = design.reach(controller, net)
+            if amplifier.sense.near in (*reach.nets, *reach.ends):
+                return "follows the current"
     voltage = design.voltage(net)
     return "not computed" if isinstance(voltage, Unsolved) else str(voltage.spread)

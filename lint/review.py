@@ -12,6 +12,7 @@ from .brief import Brief, read_brief
 from .circuit.controllers import Controller
 from .controllers import generic_number
 from .design import Design
+from .estimate import Method
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
 from .rule import Rule, load_rules
@@ -26,6 +27,7 @@ def review(
     brief: str | Path | None = None,
     parts_list: str | Path | None = None,
     allow_include: Sequence[Path] = (),
+    method: Method = Method.EXTREME,
 ) -> Review:
     """Review a netlist file and return everything that was found.
 
@@ -33,13 +35,14 @@ def review(
     brief:      the design intent (TOML); by default `board.brief.toml` beside `board.edf`, where it exists
     parts_list: the ratings (CSV); by default `board.parts.csv` beside `board.edf`, where it exists
     allow_include: folders besides the netlist's own from which a SPICE-style list may include
+    method:     the worst-case analysis that decides
     Raises NetlistError, or its kinds BriefError and PartsListError, for an input that cannot be read.
     """
     brief_path = brief if brief is not None else _beside(netlist, ".brief.toml")
     parts_path = parts_list if parts_list is not None else _beside(netlist, ".parts.csv")
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
-    return review_netlist(_read(netlist, allow_include), told, listed)
+    return review_netlist(_read(netlist, allow_include), told, listed, method=method)
 
 
 def review_netlist(
@@ -47,9 +50,10 @@ def review_netlist(
     brief: Brief | None = None,
     parts_list: PartsList | None = None,
     rules: Iterable[Rule] | None = None,
+    method: Method = Method.EXTREME,
 ) -> Review:
     """Review a netlist that is already read; `rules` are all installed ones unless given."""
-    design = Design(netlist, brief, parts_list)
+    design = Design(netlist, brief, parts_list, method)
     asked = load_rules() if rules is None else tuple(rules)
     verdicts = tuple(verdict for one in asked for verdict in _ask(one, design))
     return Review(

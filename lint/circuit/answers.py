@@ -4,11 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
+from math import isfinite
 
 import numpy as np
 
-from ..estimate import Estimate, Unsolved
+from ..estimate import Estimate, Method, Unsolved
 from .growth import Growth
+from .monte_carlo import monte_carlo, statement
 from .solver import Array, Condition, Free, Network, Sample
 from .states import MOST_JUNCTIONS, Junction, Probe, State, read_with_states
 from .worst_case import Analysis, analyse
@@ -30,7 +32,7 @@ def estimate(
     if obstacle is not None:
         return obstacle
     network = replace(growth.network(), free=tuple(free), conditions=tuple(conditions))
-    adrift = network.floating() & {net for c in conditions for net in (c.a, c.b)}
+    adrift = network.floating() & network.steering()
     if adrift and not growth.diodes:
         nets = tuple(sorted(adrift))
         return Unsolved(f"no direct-current path to net {', '.join(nets)}", nets=nets)
@@ -42,7 +44,23 @@ def estimate(
     trouble = _trouble(growth, analyses, evaluation)
     if trouble is not None:
         return trouble
-    return {name: _estimate(growth, analyses[name], evaluation) for name in probes}
+    decided = _decided(growth, analyses, evaluation, units)
+    return {name: _estimate(growth, decided[name], evaluation) for name in probes}
+
+
+def _decided(
+    growth: Growth, analyses: Mapping[str, Analysis], evaluation: _Evaluation, units: Mapping[str, str]
+) -> Mapping[str, Analysis]:
+    """Return the analyses with the spread of the method that is to decide."""
+    if growth.circuit.method is Method.EXTREME:
+        return analyses
+    if growth.circuit.method is Method.RSS:
+        return {name: replace(found, spread=found.statistical) for name, found in analyses.items()}
+    drawn = monte_carlo(list(growth.parameters.values()), evaluation, units)
+    growth.assume(statement())
+    return {
+        name: replace(found, spread=drawn[name], statistical=drawn[name]) for name, found in analyses.items()
+    }
 
 
 def _obstacle(growth: Growth) -> Unsolved | None:
@@ -76,6 +94,7 @@ class _Evaluation:
         self._probes = probes
         self.states: dict[str, dict[State, None]] = {junction.part: {} for junction in junctions}
         self.unsettled = False
+        self.closed = bool(network.conditions)
 
     def __call__(self, sample: Sample, size: int) -> Mapping[str, Array]:
         answers = read_with_states(self._network, self._junctions, self._probes, sample, size)
@@ -93,6 +112,8 @@ def _trouble(growth: Growth, analyses: Mapping[str, Analysis], evaluation: _Eval
         names = ", ".join(evaluation.states)
         return Unsolved(f"no state of {names} fits the network in every corner", parts=parts, nets=nets)
     for name, analysis in analyses.items():
+        if not evaluation.closed and not isfinite(analysis.spread.nominal):
+            return Unsolved("the sources and shorts on the network contradict each other", parts, nets)
         if not analysis.monotonic:
             reason = f"{name} is not monotonic in its parameters: its corners do not bound it"
             return Unsolved(reason, parts=parts, nets=nets)

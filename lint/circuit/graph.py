@@ -11,6 +11,7 @@ from typing import TypeAlias
 import networkx as nx
 
 from ...grammar.netlist import Netlist, Part, Pin
+from ..estimate import Method
 from ..parts_list import PartsList
 from .parts import PartReader, PartValue
 
@@ -36,11 +37,15 @@ class Connection:
 class Circuit:
     """A netlist as a circuit: who is connected to what, and what each part is worth.
 
-    Parts that are not fitted are left out; the netlist's notes say which.
+    Parts that are not fitted are left out; the netlist's notes say which. `method` is the worst-case
+    analysis whose spread decides.
     """
 
-    def __init__(self, netlist: Netlist, parts_list: PartsList | None = None) -> None:
+    def __init__(
+        self, netlist: Netlist, parts_list: PartsList | None = None, method: Method = Method.EXTREME
+    ) -> None:
         self.netlist = netlist
+        self.method = method
         self.parts = {name: part for name, part in netlist.parts.items() if part.fitted}
         self._reader = PartReader(netlist, parts_list)
 

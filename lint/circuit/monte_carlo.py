@@ -54,6 +54,15 @@ def _spread(column: Array, unit: str) -> Spread:
     return Spread(float(np.min(column)), nominal, float(np.max(column)), unit)
 
 
+def statement(samples: int = DEFAULT_SAMPLES, seed: int = DEFAULT_SEED) -> str:
+    """Return what the draws prove, as a sentence for a report."""
+    share = f"{100 * coverage(samples):.2f} %"
+    return (
+        f"Monte Carlo: {samples} draws at each question, even distributions, seed {seed}; with "
+        f"{100 * CONFIDENCE:.0f} % confidence {share} of all units lie within (Wilks 1941)"
+    )
+
+
 def coverage(samples: int, confidence: float = CONFIDENCE) -> float:
     """Return the share of all units that lies, with `confidence`, between the least and greatest draw.
 
