@@ -32,7 +32,7 @@ def estimate(
     if obstacle is not None:
         return obstacle
     network = replace(growth.network(), free=tuple(free), conditions=tuple(conditions))
-    adrift = network.floating() & network.steering()
+    adrift = network.floating() & network.needed()
     if adrift and not growth.diodes:
         nets = tuple(sorted(adrift))
         return Unsolved(f"no direct-current path to net {', '.join(nets)}", nets=nets)

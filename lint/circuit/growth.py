@@ -11,6 +11,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
+from math import isfinite
 
 import numpy as np
 
@@ -182,8 +183,9 @@ class Growth:
             self.blocked.append(blocked)
 
     def add(self, element: Element) -> None:
-        """Put an element in, once."""
-        self.elements.setdefault(element.name, element)
+        """Put an element in, once; a resistor with both ends on one net changes nothing and stays out."""
+        if not isinstance(element, Resistor) or element.a != element.b:
+            self.elements.setdefault(element.name, element)
 
     def use(self, part: Part) -> None:
         """Note that a part takes part in the answer."""
@@ -209,6 +211,21 @@ def _is_ground(potential: Potential | None) -> bool:
     return potential is not None and potential.origin == "ground"
 
 
+# Below this a resistance is solved by its current as a short is: its conductance would drown all others.
+_SMALL = 1.0
+
+
+def _ends(part: Part) -> tuple[str, str]:
+    """Return the nets of a two-terminal part."""
+    first, second = part.pins
+    return _terminal(part, first), _terminal(part, second)
+
+
+def _terminal(part: Part, pin: Pin) -> str:
+    """Return a pin's net; an unconnected pin is alone on a net that nothing else is on."""
+    return pin.net or f"\x00{part.reference} pin {pin.number}"
+
+
 def _resistor(growth: Growth, part: Part, net: str) -> None:
     if len(part.pins) != 2:
         _opaque(growth, part, net)
@@ -216,8 +233,8 @@ def _resistor(growth: Growth, part: Part, net: str) -> None:
     value = growth.part_value(part)
     if value is not None:
         growth.use(part)
-        zero = growth.parameters[part.reference].low <= 0
-        growth.add(Resistor(part.reference, part.pins[0].net, part.pins[1].net, value, may_be_zero=zero))
+        small = growth.parameters[part.reference].low < _SMALL
+        growth.add(Resistor(part.reference, *_ends(part), value, may_be_zero=small))
         growth.follow(part)
 
 
@@ -229,7 +246,7 @@ def _trimmer(growth: Growth, part: Part, net: str) -> None:
     growth.use(part)
     name = f"{part.reference} travel"
     travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL))
-    top, wiper, bottom = (pin.net for pin in in_trimmer_order(part))
+    top, wiper, bottom = (_terminal(part, pin) for pin in in_trimmer_order(part))
     growth.add(
         Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True)
     )
@@ -268,9 +285,7 @@ def _short(growth: Growth, part: Part, net: str) -> None:
         _opaque(growth, part, net)
         return
     growth.use(part)
-    growth.add(
-        Resistor(part.reference, part.pins[0].net, part.pins[1].net, lambda _: np.zeros(1), may_be_zero=True)
-    )
+    growth.add(Resistor(part.reference, *_ends(part), lambda _: np.zeros(1), may_be_zero=True))
     growth.follow(part)
 
 
@@ -333,18 +348,24 @@ _WINDINGS = frozenset({"inductor", "transformer", "relay"})
 
 
 def _voltage_source(growth: Growth, part: Part, net: str) -> None:
+    if len(part.pins) != 2:
+        _opaque(growth, part, net)
+        return
     value = growth.part_value(part)
     if value is not None:
         growth.use(part)
-        growth.add(VoltageSource(part.reference, part.pins[0].net, part.pins[1].net, value))
+        growth.add(VoltageSource(part.reference, *_ends(part), value))
         growth.follow(part)
 
 
 def _current_source(growth: Growth, part: Part, net: str) -> None:
+    if len(part.pins) != 2:
+        _opaque(growth, part, net)
+        return
     value = growth.part_value(part)
     if value is not None:
         growth.use(part)
-        growth.add(CurrentSource(part.reference, part.pins[0].net, part.pins[1].net, value))
+        growth.add(CurrentSource(part.reference, *_ends(part), value))
         growth.follow(part)
 
 
@@ -355,7 +376,7 @@ def _controlled_source(growth: Growth, part: Part, net: str) -> None:
         _opaque(growth, part, net)
         return
     growth.use(part)
-    a, b, control_a, control_b = (pin.net for pin in part.pins)
+    a, b, control_a, control_b = (_terminal(part, pin) for pin in part.pins)
     kind = "voltage" if part.element == "E" else "current"
     growth.add(ControlledSource(part.reference, a, b, control_a, control_b, lambda _: np.full(1, gain), kind))
     growth.follow(part)
@@ -363,9 +384,10 @@ def _controlled_source(growth: Growth, part: Part, net: str) -> None:
 
 def _constant(text: str) -> float | None:
     try:
-        return float(text)
+        number = float(text)
     except ValueError:
         return None
+    return number if isfinite(number) else None
 
 
 def _opaque(growth: Growth, part: Part, net: str) -> None:

@@ -14,7 +14,7 @@ Every value is an array of shape (samples,), in volts, amperes and ohms, or a pl
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from typing import TypeAlias
 
@@ -126,6 +126,12 @@ class Network:
             seen.update(dict.fromkeys((condition.a, condition.b)))
         return list(seen)
 
+    def needed(self) -> set[str]:
+        """Return the nets that must have a path: what steers a source or a loop, what a current is driven into."""
+        sources = [e for e in self.elements if isinstance(e, CurrentSource | ControlledSource)]
+        nets = {net for source in sources for net in _terminals(source)}
+        return nets | {net for condition in self.conditions for net in (condition.a, condition.b)}
+
     def floating(self) -> set[str]:
         """Return the nets that no conductive path joins to a known or free potential."""
         neighbours: dict[str, set[str]] = {}
@@ -188,9 +194,9 @@ class Solution:
             control = self.voltage(element.control_a, element.control_b)
             return control * element.gain(self.sample)
         assert isinstance(element, Resistor)
-        if element.a == element.b:
-            return np.zeros(self.size)
-        return self.voltage(element.a, element.b) / element.resistance(self.sample)
+        volts, ohms = np.broadcast_arrays(self.voltage(element.a, element.b), element.resistance(self.sample))
+        beyond = np.where(volts == 0.0, 0.0, np.copysign(np.inf, volts))  # a short from one rail to another
+        return np.divide(volts, ohms, out=beyond, where=ohms != 0.0)
 
     def current_out_of(self, net: str) -> Array:
         """Return the sum of the currents that leave `net` through the network's elements, in amperes."""
@@ -247,7 +253,7 @@ class _Equations:
         ordinary = [net for net in network.nets() if net not in self.known and net not in free_nets]
         self.rows = {net: index for index, net in enumerate(ordinary)}
         self.columns = dict(self.rows)
-        self.branches = [element for element in network.elements if _has_branch(element)]
+        self.branches = [element for element in network.elements if self._has_branch(element)]
         self.branch_index = {b.name: len(ordinary) + i for i, b in enumerate(self.branches)}
         self.first_free = len(ordinary) + len(self.branches)
         for position, free in enumerate(network.free):
@@ -265,9 +271,9 @@ class _Equations:
             self._inject(element.a, element.b, element.current(self.sample))
         elif isinstance(element, ControlledSource) and element.kind == "current":
             self._transconductance(element)
-        elif _has_branch(element):
+        elif element.name in self.branch_index:
             self._branch(element)
-        elif element.a != element.b:
+        elif not self._settles_nothing(element):
             assert isinstance(element, Resistor)
             self._conductance(element.a, element.b, 1.0 / element.resistance(self.sample))
 
@@ -295,6 +301,18 @@ class _Equations:
             if isinstance(free, FreeCurrent)
         }
         return Solution(self.network, self.sample, self.size, potentials, branches, free)
+
+    def _has_branch(self, element: Element) -> bool:
+        """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
+        if isinstance(element, Resistor):
+            return element.may_be_zero and not self._settles_nothing(element)
+        return isinstance(element, VoltageSource) or (
+            isinstance(element, ControlledSource) and element.kind == "voltage"
+        )
+
+    def _settles_nothing(self, element: Element) -> bool:
+        """Tell whether both ends are on one net (a wiper tied to its end), or each on a known one."""
+        return element.a == element.b or {element.a, element.b} <= self.known.keys()
 
     def _potential(self, row: int, net: str, factor: Array | float) -> None:
         """Add `factor` times the potential of `net` to the left side of equation `row`."""
@@ -338,17 +356,3 @@ class _Equations:
             gain = element.gain(self.sample)
             self._potential(index, element.control_a, -gain)
             self._potential(index, element.control_b, gain)
-
-
-def _has_branch(element: Element) -> bool:
-    """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
-    if isinstance(element, Resistor):
-        return element.may_be_zero and element.a != element.b  # a wiper tied to its end carries nothing
-    return isinstance(element, VoltageSource) or (
-        isinstance(element, ControlledSource) and element.kind == "voltage"
-    )
-
-
-def names_in(elements: Sequence[Element]) -> tuple[str, ...]:
-    """Return the names of `elements` without repetition, in order."""
-    return tuple(dict.fromkeys(element.name for element in elements))

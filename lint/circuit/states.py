@@ -103,11 +103,11 @@ def _source(junction: Junction, state: State) -> VoltageSource:
 def _solve_in(
     network: Network, junctions: Sequence[Junction], states: Sequence[State], sample: Sample, size: int
 ) -> Solution | None:
-    """Return the solution with the junctions in given states, None where a loop's input then has no path."""
+    """Return the solution with the junctions in given states, None where a net that needs a path then floats."""
     sources = [_source(j, s) for j, s in zip(junctions, states, strict=True) if s is not State.OFF]
     whole = replace(network, elements=(*network.elements, *sources))
     floating = whole.floating()
-    if floating & {net for condition in network.conditions for net in (condition.a, condition.b)}:
+    if floating & whole.needed():
         return None
     kept = tuple(e for e in whole.elements if not ({e.a, e.b} & floating))
     return solve(replace(whole, elements=kept), sample, size)
