@@ -36,6 +36,11 @@ def resistor_power(ambient: float, policy: str = DEFAULT_POLICY) -> Derating:
     return Derating(float(table["factor"]) * left, policy, str(table["source"]))
 
 
+def ageing_of(kind: str, policy: str = DEFAULT_POLICY) -> float:
+    """Return the drift (ratio) over life that a policy adds to the tolerance of a kind of part."""
+    return float(_tables()[policy]["ageing"].get(kind, 0.0))
+
+
 @cache
 def _tables() -> dict[str, Any]:
     return tomllib.loads(files("pwmlint.lint").joinpath("derating.toml").read_text(encoding="utf-8"))

@@ -14,6 +14,7 @@ from ..grammar.netlist import Netlist, Part, Place
 from .brief import Brief, ControllerBrief, Rail
 from .circuit.amplifiers import Amplifier, AmplifierReader, Reach, amplifier_for
 from .circuit.answers import estimate
+from .circuit.conditions import Conditions
 from .circuit.controllers import Controller, find_controllers
 from .circuit.dead_time import DeadTime, dead_time
 from .circuit.graph import Circuit
@@ -23,6 +24,7 @@ from .circuit.potentials import Potential, known_potentials
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.timing import Timing, timing
 from .circuit.worst_case import Variation
+from .derating import DEFAULT_POLICY
 from .estimate import Estimate, Method, Unsolved
 from .parts_list import PartsList
 from .quantity import Spread
@@ -50,7 +52,12 @@ class Design:
         self.netlist = netlist
         self.brief = brief
         self.parts_list = parts_list
-        self.circuit = Circuit(netlist, parts_list, method)
+        conditions = Conditions(
+            method,
+            brief.ambient if brief is not None else None,
+            brief.derating if brief is not None and brief.derating else DEFAULT_POLICY,
+        )
+        self.circuit = Circuit(netlist, parts_list, conditions)
         told: Mapping[str, ControllerBrief] = brief.controllers if brief is not None else {}
         pins = {reference: entry.pins for reference, entry in told.items() if entry.pins}
         self.controllers = find_controllers(netlist, pins)

@@ -52,9 +52,9 @@ def _decided(
     growth: Growth, analyses: Mapping[str, Analysis], evaluation: _Evaluation, units: Mapping[str, str]
 ) -> Mapping[str, Analysis]:
     """Return the analyses with the spread of the method that is to decide."""
-    if growth.circuit.method is Method.EXTREME:
+    if growth.circuit.conditions.method is Method.EXTREME:
         return analyses
-    if growth.circuit.method is Method.RSS:
+    if growth.circuit.conditions.method is Method.RSS:
         return {name: replace(found, spread=found.statistical) for name, found in analyses.items()}
     drawn = monte_carlo(list(growth.parameters.values()), evaluation, units)
     growth.assume(statement())

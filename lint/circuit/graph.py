@@ -11,8 +11,8 @@ from typing import TypeAlias
 import networkx as nx
 
 from ...grammar.netlist import Netlist, Part, Pin
-from ..estimate import Method
 from ..parts_list import PartsList
+from .conditions import STANDARD_CONDITIONS, Conditions
 from .parts import PartReader, PartValue
 
 Node: TypeAlias = tuple[str, str]  # ("part", reference) or ("net", name)
@@ -37,17 +37,20 @@ class Connection:
 class Circuit:
     """A netlist as a circuit: who is connected to what, and what each part is worth.
 
-    Parts that are not fitted are left out; the netlist's notes say which. `method` is the worst-case
-    analysis whose spread decides.
+    Parts that are not fitted are left out; the netlist's notes say which. `conditions` are what every
+    part is judged under.
     """
 
     def __init__(
-        self, netlist: Netlist, parts_list: PartsList | None = None, method: Method = Method.EXTREME
+        self,
+        netlist: Netlist,
+        parts_list: PartsList | None = None,
+        conditions: Conditions = STANDARD_CONDITIONS,
     ) -> None:
         self.netlist = netlist
-        self.method = method
+        self.conditions = conditions
         self.parts = {name: part for name, part in netlist.parts.items() if part.fitted}
-        self._reader = PartReader(netlist, parts_list)
+        self._reader = PartReader(netlist, parts_list, conditions)
 
     @cached_property
     def graph(self) -> nx.MultiGraph[Node]:

@@ -204,7 +204,9 @@ class Growth:
             return None
         self.assume(*value.assumptions)
         s = value.spread
-        return self.add_parameter(Parameter(part.reference, s.minimum, s.nominal, s.maximum))
+        return self.add_parameter(
+            Parameter(part.reference, s.minimum, s.nominal, s.maximum, random=value.random)
+        )
 
 
 def _is_ground(potential: Potential | None) -> bool:

@@ -12,9 +12,11 @@ from typing import Any
 
 from ...grammar.netlist import Netlist, Part
 from ...grammar.values import Value, ValueTextError, read_value
+from ..derating import ageing_of
 from ..parts_list import PartData, PartsList
 from ..preferred import is_preferred
 from ..quantity import Spread, percent
+from .conditions import Conditions
 
 _LETTERS = re.compile(r"[A-Za-z]+")
 
@@ -39,16 +41,23 @@ _ATTRIBUTES = {
     "dielectric": ("dielectric",),
 }
 
+_PER_MILLION = 1e-6
+_NONE = {"ratio_per_kelvin": 0.0}
+
 # A bare tolerance below this is a ratio (0.01), above it a percentage (1): nobody buys 0.05 % by accident.
 _RATIO_BELOW = 0.05
 
 
 @dataclass(frozen=True, slots=True)
 class PartValue:
-    """The value of a part with its tolerance: `spread` in its SI unit, and what was assumed for it."""
+    """The value of a part with its tolerance: `spread` in its SI unit, and what was assumed for it.
+
+    random: the share of the spread that varies from unit to unit; the rest is drift, the same for all
+    """
 
     spread: Spread
     assumptions: tuple[str, ...] = ()
+    random: float = 1.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,8 +71,9 @@ class Rating:
 class PartReader:
     """Reads kinds, values and ratings of the parts of one netlist; the parts list has the last word."""
 
-    def __init__(self, netlist: Netlist, parts_list: PartsList | None = None) -> None:
+    def __init__(self, netlist: Netlist, parts_list: PartsList | None, conditions: Conditions) -> None:
         self._netlist = netlist
+        self._conditions = conditions
         self._rows: Mapping[str, PartData] = parts_list.rows if parts_list is not None else {}
         self._values: dict[str, PartValue | None] = {}
 
@@ -141,12 +151,36 @@ class PartReader:
             return None
         unit = _QUANTITIES[self.kind(part)][1]
         minus, plus, assumed = self._tolerance(part, value)
+        drift, drifts = self._drift(part)
         nominal = value.number
-        ends = sorted((nominal * (1 + minus), nominal * (1 + plus)))
-        assumptions = [assumed] if assumed else []
+        ends = sorted((nominal * (1 + minus - drift), nominal * (1 + plus + drift)))
+        assumptions = [*filter(None, (assumed,)), *drifts]
         if value.ambiguous:
             assumptions.append(f"{part.reference}: {value.ambiguous}")
-        return PartValue(Spread(ends[0], nominal, ends[1], unit), tuple(assumptions))
+        random = (plus - minus) / (plus - minus + 2 * drift) if drift else 1.0
+        return PartValue(Spread(ends[0], nominal, ends[1], unit), tuple(assumptions), random)
+
+    def _drift(self, part: Part) -> tuple[float, list[str]]:
+        """Return the drift with temperature and age as a ratio, and what was assumed for it."""
+        kind, drift, assumptions = self.kind(part), 0.0, list[str]()
+        row = self._rows.get(part.reference)
+        told = row.temperature_coefficient if row is not None else None
+        table = defaults()["temperature_coefficient"]
+        key = kind if kind != "capacitor" else self.attribute(part, "dielectric").upper()
+        coefficient = (
+            told * _PER_MILLION if told is not None else float(table.get(key, _NONE)["ratio_per_kelvin"])
+        )
+        if coefficient and self._conditions.excursion:
+            drift += coefficient * self._conditions.excursion
+            if told is None:
+                assumptions.append(f"{part.reference}: {coefficient / _PER_MILLION:g} ppm/K assumed")
+        ageing = ageing_of(kind, self._conditions.policy)
+        if ageing:
+            drift += ageing
+            assumptions.append(
+                f"{part.reference}: ageing {percent(ageing)} by policy {self._conditions.policy}"
+            )
+        return drift, assumptions
 
     def _tolerance(self, part: Part, value: Value) -> tuple[float, float, str]:
         """Return the relative tolerance downwards and upwards, and the assumption behind it if any."""

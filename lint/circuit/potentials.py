@@ -25,6 +25,7 @@ class Potential:
     origin: "ground", "reference", "brief", "source" (a voltage source of the list), "name" (the net's own
             name) or "amplifier" (held inside the control range while the loop regulates)
     assumption: a sentence where it was taken for granted, else empty
+    random:     the share of its spread that varies from unit to unit
     """
 
     net: str
@@ -33,14 +34,14 @@ class Potential:
     variation: Variation = Variation.RANGE
     assumption: str = ""
     label: str = ""
+    random: float = 1.0
 
     @property
     def parameter(self) -> Parameter:
         """Return what varies about it, for the worst case."""
-        s = self.spread
-        return Parameter(
-            f"V({self.net})", s.minimum, s.nominal, s.maximum, self.variation, self.label or self.net
-        )
+        s, label = self.spread, self.label or self.net
+        name = f"V({self.net})"
+        return Parameter(name, s.minimum, s.nominal, s.maximum, self.variation, label, self.random)
 
 
 def known_potentials(
@@ -79,10 +80,29 @@ def _references(controllers: Sequence[Controller]) -> dict[str, Potential]:
     for controller in controllers:
         net = controller.net("reference")
         if net:
-            spread = controller.profile.figure("reference.voltage").spread()
-            label = f"{controller.reference} reference"
-            found[net] = Potential(net, spread, "reference", Variation.TOLERANCE, label=label)
+            found[net] = _reference(controller, net)
     return found
+
+
+def _reference(controller: Controller, net: str) -> Potential:
+    """Return a reference over its whole duty: spread from unit to unit, and regulation, which is bias."""
+    profile = controller.profile
+    initial = profile.figure("reference.voltage").spread()
+    regulation = sum(
+        profile.figure(name).spread().maximum
+        for name in ("reference.line-regulation", "reference.load-regulation")
+    )
+    spread = Spread(initial.minimum - regulation, initial.nominal, initial.maximum + regulation, "V")
+    return Potential(
+        net,
+        spread,
+        "reference",
+        Variation.TOLERANCE,
+        assumption=f"{controller.reference}: line and load regulation of the reference at their limits, "
+        f"{engineering(regulation, 'V')}",
+        label=f"{controller.reference} reference",
+        random=(initial.maximum - initial.minimum) / (spread.maximum - spread.minimum),
+    )
 
 
 def _rails(circuit: Circuit, brief: Brief | None) -> dict[str, Potential]:
