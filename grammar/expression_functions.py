@@ -14,6 +14,10 @@ def _signed_power(base: float, exponent: float) -> float:
     return math.copysign(math.pow(abs(base), exponent), base)
 
 
+def _copied_sign(x: float, y: float = 1.0) -> float:
+    return math.copysign(x, y)
+
+
 def _sign(x: float) -> float:
     return math.copysign(1.0, x) if x else 0.0
 
@@ -24,7 +28,7 @@ def _nominal(value: float, *_: float) -> float:
 
 
 def _limited(x: float, *bounds: float) -> float:
-    """Return `x` between two bounds; with one argument more than `x`, `x` is a nominal value and it its spread."""
+    """Return `x` between two bounds; with only one more argument `x` is a nominal value with its spread."""
     return x if len(bounds) < 2 else min(max(x, min(bounds)), max(bounds))
 
 
@@ -40,7 +44,7 @@ OPERATORS: Mapping[str, Callable[[float, float], float]] = {
     "+": operator.add,
     "-": operator.sub,
     "*": operator.mul,
-    "/": operator.truediv,
+    "/": lambda a, b: a / b,
     "%": math.fmod,
     "<": _as_number(operator.lt),
     "<=": _as_number(operator.le),
@@ -61,61 +65,67 @@ SIGNS: Mapping[str, Callable[[float], float]] = {
     "~": lambda x: float(not x),
 }
 
-FUNCTIONS: Mapping[str, tuple[Callable[..., float], int, int]] = {
-    "abs": (abs, 1, 1),
-    "acos": (math.acos, 1, 1),
-    "acosh": (math.acosh, 1, 1),
+_OF_ONE: Mapping[str, Callable[[float], float]] = {
+    "abs": abs,
+    "acos": math.acos,
+    "acosh": math.acosh,
+    "arccos": math.acos,
+    "arcsin": math.asin,
+    "arctan": math.atan,
+    "asin": math.asin,
+    "asinh": math.asinh,
+    "atan": math.atan,
+    "atanh": math.atanh,
+    "buf": lambda x: float(x > 0.5),
+    "cbrt": math.cbrt,
+    "ceil": math.ceil,
+    "cos": math.cos,
+    "cosh": math.cosh,
+    "db": lambda x: 20 * math.log10(abs(x)),
+    "exp": math.exp,
+    "fabs": abs,
+    "floor": math.floor,
+    "int": math.trunc,
+    "inv": lambda x: float(x <= 0.5),
+    "ln": math.log,
+    "log": math.log,
+    "log10": math.log10,
+    "nint": round,
+    "par": lambda x: x,
+    "round": round,
+    "sgn": _sign,
+    "sin": math.sin,
+    "sinh": math.sinh,
+    "sqrt": math.sqrt,
+    "stp": lambda x: float(x > 0),
+    "tan": math.tan,
+    "tanh": math.tanh,
+    "trunc": math.trunc,
+    "u": lambda x: float(x > 0),
+    "uramp": lambda x: max(x, 0.0),
+    "ustep": lambda x: float(x > 0),
+}
+
+_OF_TWO: Mapping[str, Callable[[float, float], float]] = {
+    "atan2": math.atan2,
+    "fmod": math.fmod,
+    "hypot": lambda x, y: math.hypot(x, y),
+    "pow": math.pow,
+    "pwr": _signed_power,
+    "pwrs": _signed_power,
+}
+
+_OF_MORE: Mapping[str, tuple[Callable[..., float], int, int]] = {
     "agauss": (_nominal, 1, 4),
-    "arccos": (math.acos, 1, 1),
-    "arcsin": (math.asin, 1, 1),
-    "arctan": (math.atan, 1, 1),
-    "asin": (math.asin, 1, 1),
-    "asinh": (math.asinh, 1, 1),
-    "atan": (math.atan, 1, 1),
-    "atan2": (math.atan2, 2, 2),
-    "atanh": (math.atanh, 1, 1),
     "aunif": (_nominal, 1, 3),
-    "buf": (lambda x: float(x > 0.5), 1, 1),
-    "cbrt": (math.cbrt, 1, 1),
-    "ceil": (math.ceil, 1, 1),
-    "cos": (math.cos, 1, 1),
-    "cosh": (math.cosh, 1, 1),
-    "db": (lambda x: 20 * math.log10(abs(x)), 1, 1),
-    "exp": (math.exp, 1, 1),
-    "fabs": (abs, 1, 1),
-    "floor": (math.floor, 1, 1),
-    "fmod": (math.fmod, 2, 2),
     "gauss": (_nominal, 1, 4),
-    "hypot": (math.hypot, 2, 2),
     "if": (_if, 3, 3),
-    "int": (math.trunc, 1, 1),
-    "inv": (lambda x: float(x <= 0.5), 1, 1),
     "limit": (_limited, 2, 3),
-    "ln": (math.log, 1, 1),
-    "log": (math.log, 1, 1),
-    "log10": (math.log10, 1, 1),
-    "max": (max, 2, _ANY),
+    "max": (lambda *numbers: float(max(numbers)), 2, _ANY),
     "mc": (_nominal, 1, 2),
-    "min": (min, 2, _ANY),
-    "nint": (round, 1, 1),
-    "par": (_nominal, 1, 1),
-    "pow": (math.pow, 2, 2),
-    "pwr": (_signed_power, 2, 2),
-    "pwrs": (_signed_power, 2, 2),
-    "round": (round, 1, 1),
-    "sgn": (_sign, 1, 1),
-    "sign": (lambda x, y=1.0: math.copysign(x, y), 1, 2),
-    "sin": (math.sin, 1, 1),
-    "sinh": (math.sinh, 1, 1),
-    "sqrt": (math.sqrt, 1, 1),
-    "stp": (lambda x: float(x > 0), 1, 1),
-    "tan": (math.tan, 1, 1),
-    "tanh": (math.tanh, 1, 1),
-    "trunc": (math.trunc, 1, 1),
-    "u": (lambda x: float(x > 0), 1, 1),
+    "min": (lambda *numbers: float(min(numbers)), 2, _ANY),
+    "sign": (_copied_sign, 1, 2),
     "unif": (_nominal, 1, 2),
-    "uramp": (lambda x: max(x, 0.0), 1, 1),
-    "ustep": (lambda x: float(x > 0), 1, 1),
 }
 
 CONSTANTS: Mapping[str, float] = {
@@ -128,3 +138,12 @@ CONSTANTS: Mapping[str, float] = {
     "yes": 1.0,
     "no": 0.0,
 }
+
+
+def function_named(name: str) -> tuple[Callable[..., float], int, int] | None:
+    """Return a function with the least and the most arguments that it takes, or None where there is none."""
+    if name in _OF_ONE:
+        return _OF_ONE[name], 1, 1
+    if name in _OF_TWO:
+        return _OF_TWO[name], 2, 2
+    return _OF_MORE.get(name)

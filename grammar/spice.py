@@ -12,6 +12,7 @@ import re
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
+from .collector import collector_paused
 from .errors import NetlistError
 from .netlist import Netlist, Place
 from .spice_blocks import Definition
@@ -52,12 +53,19 @@ def read_spice(
     Raises NetlistError, the first error with up to 19 others beside it, where the list cannot be read.
     """
     refuse_binary(text, file)
+    with collector_paused():
+        return _read(text, file, include_root, allow_include, keep or (lambda _: False))
+
+
+def _read(
+    text: str, file: str, root: Path | None, allowed: Sequence[Path], keep: Callable[[str], bool]
+) -> Netlist:
     problems, notes = Problems(file), Notes()
     netlist = Netlist(file, FORMAT)
     source = Source(text, file, titled=True)
-    files = Files(file, include_root, allow_include, problems, notes)
+    files = Files(file, root, allowed, problems, notes)
     scope = Scope(files, problems, notes)
-    expansion = Expansion(netlist, files, problems, notes, keep or (lambda _: False), _BYTES_ALLOWED * len(text))
+    expansion = Expansion(netlist, files, problems, notes, keep, _BYTES_ALLOWED * len(text))
     try:
         items = files.parse(source)
         expansion.expand(Level(scope), items)

@@ -10,13 +10,14 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import cache
 from pathlib import Path
-from typing import TYPE_CHECKING, NamedTuple, TypeAlias
+from typing import TYPE_CHECKING, NamedTuple, TypeAlias, cast
 
 from lark import Lark, ParseTree, Token, UnexpectedInput, UnexpectedToken
 
 from .errors import NetlistError
 from .spice_lines import Line, Source, indent
 from .spice_words import Assignment, split
+from .unexpected import in_words, offending
 
 if TYPE_CHECKING:
     from .spice_problems import Problems
@@ -98,10 +99,10 @@ def parse(source: Source, problems: Problems) -> list[Item]:
         """Report the token and go on without it; behind the end of the file nothing is left to go on with."""
         assert isinstance(error, UnexpectedToken), "the terminals cover every line"
         problems.add(_unexpected(source, error))
-        return error.token.type != "$END"
+        return offending(error).type != "$END"
 
     try:
-        tree = _grammar().parse(source.clean, on_error=recover)
+        tree = _grammar().parse(source.clean, on_error=recover)  # pyright: ignore[reportUnknownMemberType]
     except UnexpectedToken:
         return []
     return _Builder(source, problems).build(tree)
@@ -115,12 +116,12 @@ def _grammar() -> Lark:
 
 def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:
     """Return the error for a card that fits no open block, or for a block that the file leaves open."""
-    kind = error.token.type
-    words = sorted(_WORDS[name] for name in error.expected if name in _WORDS)
-    expected = "an element line, another card, or " + ", ".join(words)
+    token = offending(error)
+    kind = token.type
+    expected = "an element line, another card, or " + in_words(error.expected, _WORDS)
     opened = _innermost_open(error)
     if kind not in ("$END", "END") or opened is None:
-        card = _card(source, error.token)
+        card = _card(source, token)
         return card.line.error(
             indent(card.line),
             f"`.{card.keyword}` without its {_OPENED_BY.get(kind, 'block')}",
@@ -140,7 +141,8 @@ def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:
 
 def _innermost_open(error: UnexpectedToken) -> Token | None:
     """Return the token of the innermost block that is open where the parser stopped."""
-    for value in reversed(error.interactive_parser.parser_state.value_stack):
+    stack = cast("list[object]", error.interactive_parser.parser_state.value_stack)  # pyright: ignore[reportUnknownMemberType]
+    for value in reversed(stack):
         if isinstance(value, Token) and value.type in _CLOSED_BY:
             return value
     return None

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from .spice_elements import Element, is_value
+from .spice_element import Element, is_value
 from .spice_nets import Level
 from .spice_parameters import Written
 

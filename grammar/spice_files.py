@@ -32,7 +32,7 @@ class Files:
 
     read:   the files, in the order of their first reading
     models: `.model` name to its type, both casefolded, of every file read so far
-    known:  the names of models and subcircuits, casefolded
+    known:  the names of models and subcircuits, casefolded; subcircuits: the names of these alone
     """
 
     def __init__(
@@ -41,6 +41,7 @@ class Files:
         self.read: list[str] = [file]
         self.models: dict[str, str] = {}
         self.known: set[str] = set()
+        self.subcircuits: set[str] = set()
         self._root = root
         self._trees = [tree.resolve() for tree in ([root, *allowed] if root else [])]
         self._problems = problems
@@ -57,12 +58,13 @@ class Files:
                 if isinstance(item, Card) and item.keyword == "model":
                     self._remember_model(item.line.text)
                 elif isinstance(item, Definition):
-                    self.known.add(item.name.casefold())
+                    self.subcircuits.add(item.name.casefold())
                     pending.append(item.items)
                 elif isinstance(item, Section):
                     pending.append(item.items)
                 elif isinstance(item, Conditional):
                     pending += [branch.items for branch in item.branches]
+        self.known |= self.subcircuits
         return items
 
     def _remember_model(self, text: str) -> None:
@@ -89,7 +91,9 @@ class Files:
         index, readings = _readings(card)
         if not readings:
             self._problems.add(
-                card.line.error(index, f"`.{card.keyword}` without a file", "the name of a file", "name the file")
+                card.line.error(
+                    index, f"`.{card.keyword}` without a file", "the name of a file", "name the file"
+                )
             )
             return None
         refusal = ""
@@ -122,7 +126,11 @@ class Files:
         name = text.replace("\\", "/")
         outside = False
         # Exporters write the path of the computer they ran on; the file may lie beside the netlist.
-        for candidate in [folder / name, *(tree / name for tree in self._trees), folder / PurePath(name).name]:
+        for candidate in [
+            folder / name,
+            *(tree / name for tree in self._trees),
+            folder / PurePath(name).name,
+        ]:
             try:
                 real = candidate.resolve()
                 inside = any(real.is_relative_to(tree) for tree in self._trees)

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Callable, Sequence
 
 from .errors import NetlistError
 from .netlist import Netlist, Part
 from .spice_blocks import Body, Definition, Item
-from .spice_elements import Element, read_element
+from .spice_element import Element
+from .spice_elements import read_element
 from .spice_evaluate import evaluated, given_parameters
 from .spice_files import Files
 from .spice_names import recovered, sheet_name
@@ -50,7 +52,8 @@ class Expansion:
         self._left = EXPANSION + allowance
         self._elements: dict[Body, list[Element]] = {}
         self._nets = Nets(netlist, notes)
-        self._references: dict[str, int] = {}
+        self._references: set[str] = set()
+        self._copies: Counter[str] = Counter()
         self._duplicates = 0
         self._missing: set[str] = set()
 
@@ -112,7 +115,9 @@ class Expansion:
         least = len(definition.formals)
         if least <= len(element.nodes) <= least + len(definition.optional):
             return True
-        message = f"{element.reference} has {len(element.nodes)} nodes, the subcircuit {definition.name} {least}"
+        message = (
+            f"{element.reference} has {len(element.nodes)} nodes, the subcircuit {definition.name} {least}"
+        )
         self._notes.add("pin-mismatch", f"{message}: it stays a part", element.place, element.reference)
         return False
 
@@ -173,8 +178,12 @@ class Expansion:
             net.pins.append((reference, at))
         if element.assumption:
             self._notes.add("assumption", f"{reference}: {element.assumption}", element.place, reference)
-        pins_known, names = self._pin_names(level, element) if element.model else ("positions", ())
-        value, attributes = evaluated(element, level)
+        pins_known, names = "positions", ()
+        if element.model.casefold() in self._files.subcircuits:
+            pins_known, names = self._pin_names(level, element)
+        value, attributes = element.value, element.attributes
+        if attributes or not value[:1].isdecimal():
+            value, attributes = evaluated(element, level)
         self._netlist.parts[reference] = Part(
             reference,
             element.letter,
@@ -189,9 +198,10 @@ class Expansion:
     def _unique(self, element: Element, reference: str) -> str:
         """Return a reference that no part or path has: a number is added to one that is taken."""
         folded = reference.casefold()
-        count = self._references[folded] = self._references.get(folded, 0) + 1
-        if count == 1:
+        if folded not in self._references:
+            self._references.add(folded)
             return reference
+        self._copies[folded] += 1
         self._duplicates += 1
         if self._duplicates > MOST_DUPLICATES:
             raise element.line.error(
@@ -201,7 +211,7 @@ class Expansion:
                 "check that this is the list of one board",
             )
         slash = "/" if reference.endswith("/") else ""
-        new = f"{reference.removesuffix('/')}#{count}{slash}"
+        new = f"{reference.removesuffix('/')}#{self._copies[folded] + 1}{slash}"
         message = f"{reference} is written more than once: this one is called {new}"
         self._notes.add("duplicate-reference", message, element.place, reference)
         return self._unique(element, new)

@@ -49,6 +49,8 @@ class Line(NamedTuple):
 
     def place(self, index: int) -> Place:
         """Return the place of the character at `index` of the text, on whichever physical line it stands."""
+        if JOINED not in self.text:
+            return Place(self.source.file, self.number, index + 1)
         before = self.text.count(JOINED, 0, index)
         return Place(self.source.file, self.number + before, index - self.text.rfind(JOINED, 0, index))
 

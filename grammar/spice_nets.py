@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from .netlist import Net, Netlist
 from .spice_blocks import Definition
-from .spice_elements import Element
+from .spice_element import Element
 from .spice_names import sheet_name
 from .spice_problems import Notes
 from .spice_scope import Scope
@@ -55,7 +55,8 @@ class Nets:
             if level is not top and self._is_global(folded, level):
                 net = self.of(top, element, index)
             else:
-                net = self._inside(level, node) or self._named(level, element, index)
+                inside = self._inside(level, node) if level.sheets else None
+                net = inside or self._named(level, element, index)
             level.nets[folded] = net
         elif level is top and net.name != node:
             self._note_spelling(net, element, index)
@@ -75,8 +76,7 @@ class Nets:
         net = self._found.get(key)
         if net is None:
             name = level.path + node
-            net = self._found[key] = Net(name, element.node_place(index))
-            self._netlist.nets[name] = net
+            net = self._found[key] = self._netlist.nets[name] = Net(name, element.node_place(index))
         elif root == "0" and not self._ground_noted:
             self._ground_noted = True
             message = f"{net.name} and {node} are taken as one net, ground"

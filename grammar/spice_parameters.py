@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import NamedTuple
 
-from .expression import ExpressionError, Function, evaluate, names_in
+from .expression import Function, evaluate, names_in
+from .expression_grammar import ExpressionError
 from .spice_lines import Line
 from .spice_problems import Problems
 

@@ -6,7 +6,7 @@ from collections.abc import Iterator, Sequence
 from typing import overload
 
 from .netlist import Net, Pin
-from .spice_elements import Element
+from .spice_element import Element
 
 
 class ListedPins(Sequence[Pin]):

@@ -29,7 +29,9 @@ class Problems:
         """Raise the first error, the others beside it; return where there is none."""
         if not self._errors:
             return
-        errors = sorted(self._errors.values(), key=lambda error: (error.place.file != self._file, error.place))
+        errors = sorted(
+            self._errors.values(), key=lambda error: (error.place.file != self._file, error.place)
+        )
         errors[0].also = tuple(errors[1:])
         raise errors[0]
 

@@ -13,16 +13,35 @@ from .spice_files import Files
 from .spice_lines import indent
 from .spice_parameters import Parameters, Written
 from .spice_problems import Notes, Problems
-from .spice_words import Assignment, split
+from .spice_words import split
 
 # Cards that steer a simulation and say nothing of the circuit; every other card that is skipped is noted.
 _ANALYSES = frozenset(
-    "ac dc tran op noise disto four fourier tf sens pz sp pss hb mc wcase measure meas save probe print plot"
-    " option options opt temp width ic nodeset backanno prot unprot protect unprotect csparam preprocess"
-    " global_param lin wave machine endmachine autostop four distribution".split()
+    (
+        *(
+            "ac",
+            "dc",
+            "tran",
+            "op",
+            "noise",
+            "disto",
+            "four",
+            "fourier",
+            "tf",
+            "sens",
+            "pz",
+            "sp",
+            "pss",
+            "hb",
+        ),
+        *("mc", "wcase", "measure", "meas", "save", "probe", "print", "plot", "wave", "autostop", "text"),
+        *("option", "options", "opt", "temp", "width", "ic", "nodeset", "distribution", "csparam"),
+        *("preprocess", "backanno", "prot", "unprot", "protect", "unprotect"),
+    )
 )
+_STEP_WORDS = ("param", "list", "dec", "oct", "lin")
 _FUNCTION = re.compile(r"\s*\.\w+\s+([^\W\d]\w*)\s*\(([^()]*)\)\s*=?\s*")
-_LIKE_FUNCTION = re.compile(r"\s*\.param\s+[^\W\d]\w*\s*\([^()]*\)\s*=", re.IGNORECASE)
+_LIKE_FUNCTION = re.compile(r"\s*\.\w+\s+[^\W\d]\w*\s*\([^()]*\)\s*=", re.IGNORECASE)
 
 
 class Scope:
@@ -136,10 +155,9 @@ class Scope:
     def _take(self, card: Card) -> None:
         line = card.line
         match card.keyword:
-            case "param" | "params" | "parameter" if not _LIKE_FUNCTION.match(line.text):
-                for pair in split(line).assignments:
-                    self._parameter(card, pair)
-            case "func" | "function" | "param":
+            case "param" | "params" | "parameter":
+                self._parameters(card)
+            case "func" | "function":
                 self._function(card)
             case "step":
                 self._step(card)
@@ -148,7 +166,7 @@ class Scope:
             case "connect":
                 self._connect(split(line).texts[1:])
             case "title":
-                self.title = line.text.split(maxsplit=1)[1].strip() if len(line.text.split()) > 1 else ""
+                self.title = " ".join(line.text.split()[1:])
             case "model" | "end":
                 pass  # a model was taken in with its file
             case "alter":
@@ -158,8 +176,12 @@ class Scope:
             case _:
                 pass
 
-    def _parameter(self, card: Card, pair: Assignment) -> None:
-        self.parameters.define(pair.key, Written(card.line, pair.value, pair.start))
+    def _parameters(self, card: Card) -> None:
+        if _LIKE_FUNCTION.match(card.line.text):
+            self._function(card)
+            return
+        for pair in split(card.line).assignments:
+            self.parameters.define(pair.key, Written(card.line, pair.value, pair.start))
 
     def _function(self, card: Card) -> None:
         text = card.line.text
@@ -180,7 +202,11 @@ class Scope:
 
     def _step(self, card: Card) -> None:
         """Take the first value of a stepped parameter, unless it has a value of its own."""
-        words = [word for word in split(card.line).texts[1:] if word.casefold() not in ("param", "dec", "oct", "lin")]
+        words = [
+            word
+            for word in split(card.line).texts[1:]
+            if word.casefold() not in ("param", "dec", "oct", "lin")
+        ]
         numbers = [word for word in words[1:] if word.casefold() != "list"]
         if not numbers or self.parameters.has(words[0].casefold()):
             return

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Iterator
+from itertools import zip_longest
 from typing import NamedTuple
 
 from .spice_lines import LONGEST_LINE, Line
@@ -36,6 +38,15 @@ class Assignment(NamedTuple):
     value: str
     start: int
     section: str = ""
+
+
+class _Key(NamedTuple):
+    """The name before an equals sign, its start and the end of the sign; for `PARAMS:` the name is empty."""
+
+    name: str
+    start: int
+    end: int
+    section: str
 
 
 class Words(NamedTuple):
@@ -89,47 +100,48 @@ def _scan(line: Line) -> tuple[list[str], list[int], list[Assignment]]:
         text = _GROUP.sub(r"\1 \2 ", text)
     texts: list[str] = []
     indexes: list[int] = []
-    keys: list[tuple[str, int, int, str]] = []
-    section = None
+    keys: list[_Key] = []
+    section = ""
     depth = 0
-    word, start, end = "", 0, 0
-    position = 0
-    while match := _WORD.search(text, position):
-        before, before_start = word, start
-        word, start, end = match[0], match.start(), match.end()
-        if word == "{":
-            end = _closing_brace(line, text, start)
-            word = text[start:end]
-        position = end
-        if word == "(":
-            depth += 1
-        elif word == ")":
-            depth -= 1
-        elif word in ("'", '"', "}"):
-            raise _unbalanced(line, start)
-        elif word == "=" and depth <= 0 and _NAME.fullmatch(before):
-            if section is None and not keys:
-                texts.pop()
-                indexes.pop()
-            keys.append((before.casefold(), before_start, end, section or ""))
+    before, before_start = "", 0
+    for word, start in _tokens(line, text):
+        if word in ("(", ")"):
+            depth += 1 if word == "(" else -1
+        elif word == "=":
+            if depth <= 0 and _NAME.fullmatch(before):
+                if not keys:
+                    del texts[-1], indexes[-1]
+                keys.append(_Key(before.casefold(), before_start, start + 1, section))
         elif word.casefold() in _SECTIONS:
             section = _SECTIONS[word.casefold()]
-            keys.append(("", start, end, section))
-        elif not keys and word != "=":
+            keys.append(_Key("", start, start + len(word), section))
+        elif not keys:
             texts.append(word)
             indexes.append(start)
+        before, before_start = word, start
     return texts, indexes, _assignments(text, keys)
 
 
-def _assignments(text: str, keys: list[tuple[str, int, int, str]]) -> list[Assignment]:
+def _tokens(line: Line, text: str) -> Iterator[tuple[str, int]]:
+    """Yield each word, bracket and sign of `text` with its index; `line` is for errors."""
+    position = 0
+    while match := _WORD.search(text, position):
+        word, start, position = match[0], match.start(), match.end()
+        if word == "{":
+            position = _closing_brace(line, text, start)
+            word = text[start:position]
+        elif word in ("'", '"', "}"):
+            raise _unbalanced(line, start)
+        yield word, start
+
+
+def _assignments(text: str, keys: list[_Key]) -> list[Assignment]:
+    """Return the pairs: each value runs from its equals sign to the next name."""
     found: list[Assignment] = []
-    if not keys:
-        return found
-    ends = [start for _, start, _, _ in keys[1:]] + [len(text)]
-    for (key, _, start, section), end in zip(keys, ends, strict=True):
-        value = text[start:end].strip(" \t\r,")
-        if key and section != "text":
-            found.append(Assignment(key, value, text.find(value, start), section))
+    for key, following in zip_longest(keys, keys[1:]):
+        if key.name and key.section != "text":
+            value = text[key.end : following.start if following else len(text)].strip(" \t\r,")
+            found.append(Assignment(key.name, value, text.find(value, key.end), key.section))
     return found
 
 

@@ -1,0 +1,171 @@
+"""An element of a SPICE-style list as written, and the steps that the readers of all letters share."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import lru_cache
+from types import MappingProxyType
+from typing import NoReturn
+
+from .netlist import Place
+from .spice_lines import Line, indent
+from .spice_words import Words, is_plain, split
+
+NOTHING: Mapping[str, str] = MappingProxyType({})
+"""The attributes of a part that has none; shared, for most parts have none."""
+
+
+@dataclass(slots=True)
+class Element:
+    """An element line as written; nothing is evaluated and no name is looked up.
+
+    reference:  as written, an exporter's prefix included
+    letter:     upper case; empty for a part that has no letter's shape
+    nodes:      in the order of the line
+    value:      text, an expression with its braces
+    model:      name of a model or subcircuit
+    attributes: the pairs at the end of the line, and what the letter adds
+    line:       for places
+    first:      index among the line's positional words of the first node
+    assumption: what the line leaves open and was decided here, else empty
+    """
+
+    reference: str
+    letter: str
+    nodes: tuple[str, ...]
+    value: str
+    model: str
+    attributes: Mapping[str, str]
+    line: Line
+    first: int = 1
+    assumption: str = ""
+
+    @property
+    def place(self) -> Place:
+        """Return the place of the reference."""
+        return self.line.place(indent(self.line) if self.line.text[0].isspace() else 0)
+
+    def node_places(self) -> list[Place]:
+        """Return the place of each node."""
+        indexes = split(self.line, exact=True).indexes[self.first :]
+        return [self.line.place(index) for index, _ in zip(indexes, self.nodes, strict=False)]
+
+    def node_place(self, at: int) -> Place:
+        """Return the place of one node."""
+        text = self.line.text
+        word = at + self.first
+        if word < 8 and is_plain(text):
+            return self.line.place(len(text) - len(text.split(None, word)[word]))
+        return self.node_places()[at]
+
+    def index_of(self, text: str) -> int:
+        """Return where `text` stands on the line, behind the nodes: the place for an error about it."""
+        indexes = split(self.line, exact=True).indexes
+        behind = indexes[min(self.first + len(self.nodes), len(indexes)) - 1]
+        return max(0, self.line.text.find(text, behind))
+
+
+_VALUE = re.compile(
+    r"""
+      (?! [1-4][NS]\d{2,} )                    # a type number of JEDEC or JIS: 1N4148 is not in nano
+      (?: [+-]? (?:\d+\.?\d*|\.\d+) (?:[eEdD][+-]?\d+)? [a-zA-ZµμΩΩ%]*
+        | \d+ [a-zA-ZµμΩΩ]{1,3} \d{1,3} [A-Z]?  # a marking code: 4k7
+        | [RKMGTLpnuµμ] \d{1,3} [A-Z]?           # R47
+      )
+    | [{'] .*                                  # an expression
+    """,
+    re.VERBOSE | re.DOTALL,
+)
+_PREFIX = re.compile(r"[^\W\d_]+(?=\d+[A-Za-z]?$)")
+
+# Reference prefixes of common practice whose first letter is another element's, to the letter that holds.
+PREFIXES = {
+    "LED": "D",
+    "CR": "D",
+    "ZD": "D",
+    "IC": "U",
+    **dict.fromkeys(("BAT", "BR", "BT", "CN", "CON", "DS", "DSP", "FB", "FID", "FL", "FU", "HS", "ISO"), ""),
+    **dict.fromkeys(("JP", "KL", "LS", "MH", "MOV", "MT", "OC", "OK", "OPT", "PC", "RL", "RN"), ""),
+    **dict.fromkeys(("SW", "TP", "TR"), ""),
+}
+_ONE_NODE = ("TP", "MH", "MT", "FID", "HS")
+
+_SHAPES = {
+    "D": "anode, cathode and a model",
+    "Q": "collector, base, emitter and a model",
+    "M": "drain, gate, source, perhaps bulk, and a model",
+    "Z": "three nodes and a model",
+    "X": "the nodes and the name of a subcircuit",
+    "K": "two inductors or more and a coefficient",
+}
+
+
+@lru_cache(maxsize=4096)
+def is_value(word: str) -> bool:
+    """Return whether `word` reads as a value: a number with its unit, a marking code or an expression.
+
+    Remembered, for a board has few values and many parts.
+    """
+    return _VALUE.fullmatch(word) is not None
+
+
+def prefix_of(words: Words) -> str:
+    """Return the letters before the number of a reference, in capitals; empty where it has no number."""
+    match = _PREFIX.match(words.texts[0])
+    return match[0].upper() if match else ""
+
+
+def attributes_of(words: Words) -> dict[str, str]:
+    """Return the pairs at the end of a line; of two with one name the last counts."""
+    return {pair.key: unquoted(pair.value) for pair in words.assignments}
+
+
+def unquoted(text: str) -> str:
+    """Return `text` without the double quotes around it, if it has any."""
+    return text[1:-1] if len(text) >= 2 and text[0] == text[-1] == '"' else text
+
+
+def too_few(words: Words, letter: str, shape: str = "") -> NoReturn:
+    """Raise the error for a line that is too short for its letter; `shape` tells what belongs on it."""
+    shape = shape or _SHAPES.get(letter, "at least one node and a model")
+    count = len(words.texts) - 1
+    raise words.line.error(
+        indent(words.line),
+        f"{words.texts[0]} has too few nodes: {count} {'word follows' if count == 1 else 'words follow'}",
+        f"{shape} after the name",
+        "add what is missing; a line may be continued with `+` as the first character of the next",
+    )
+
+
+def made(
+    words: Words,
+    letter: str,
+    nodes: int,
+    value: str = "",
+    model: str = "",
+    extra: Mapping[str, str] = NOTHING,
+    assumption: str = "",
+) -> Element:
+    """Return the element whose first `nodes` words behind the reference are its nodes."""
+    attributes: Mapping[str, str] = NOTHING
+    if words.assignments or extra:
+        attributes = attributes_of(words) | dict(extra)
+    texts = words.texts
+    return Element(
+        texts[0], letter, tuple(texts[1 : 1 + nodes]), value, model, attributes, words.line, 1, assumption
+    )
+
+
+def part(words: Words, letter: str = "") -> Element:
+    """Read a part of any kind: its nodes, then its model, or its value where it has no letter."""
+    texts = words.texts
+    if len(texts) == 2 and prefix_of(words) in _ONE_NODE:
+        return made(words, letter, 1)
+    if len(texts) < 3:
+        too_few(words, letter)
+    last = texts[-1]
+    if not letter and is_value(last):
+        return made(words, letter, len(texts) - 2, value=last)
+    return made(words, letter, len(texts) - 2, model=unquoted(last))
