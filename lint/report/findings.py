@@ -33,7 +33,11 @@ _WALK = (
 _INDENT = 11
 _LABEL = 9
 _SHORTEST_BAR, _LONGEST_BAR = 14, 60
-_PLACES = 4
+_PLACES, _SHARES = 4, 5
+_LEAST_SHARE = 0.01
+
+# A margin beyond this many times its limit has no more to say.
+_GREATEST_MARGIN = 9.99
 
 # Between the columns of a small bar: rule, low limit, bar, high limit, margin.
 _GAPS = 2 + 1 + 1 + 2
@@ -94,20 +98,28 @@ def _full(page: Page, verdict: Verdict) -> None:
 
 def _details(verdict: Verdict) -> list[tuple[str, str]]:
     """Return what stands below the message, each with its label; an empty text is not to be printed."""
-    shares = ", ".join(f"{percent(share, 2)} from {source}" for source, share in verdict.contributions)
-    on = f" on {', '.join(verdict.nets)}" if verdict.nets else ""
+    parts, nets = ", ".join(verdict.parts), ", ".join(verdict.nets)
     return [
         ("measured", str(verdict.measured) if verdict.measured and not verdict.limit else ""),
         ("margin", _margin(verdict)),
         ("formula", verdict.formula),
-        ("spread", shares),
-        ("parts", (", ".join(verdict.parts) + on).strip()),
+        ("spread", _shares(verdict.contributions)),
+        ("parts", f"{parts} on {nets}" if parts and nets else parts),
+        ("nets", "" if parts else nets),
         ("at", _places(verdict.places)),
         *(("needs", need) for need in verdict.needs),
         *(("assumed", sentence) for sentence in verdict.assumptions),
         ("source", verdict.source),
         ("remedy", verdict.remedy),
     ]
+
+
+def _shares(contributions: Sequence[tuple[str, float]]) -> str:
+    """Return what the spread comes from, without the crumbs."""
+    named = [(source, share) for source, share in contributions if share >= _LEAST_SHARE][:_SHARES]
+    texts = [f"{percent(share, 2)} from {source}" for source, share in named]
+    rest = len(contributions) - len(named)
+    return ", ".join(texts) + (f", less from {rest} more" if texts and rest else "")
 
 
 def _places(places: Sequence[Place]) -> str:
@@ -177,7 +189,12 @@ def _high(verdict: Verdict) -> str:
 
 
 def _margin(verdict: Verdict) -> str:
-    return "" if verdict.margin is None else percent(verdict.margin, 2)
+    margin = verdict.margin
+    if margin is None:
+        return ""
+    if abs(margin) > _GREATEST_MARGIN:
+        return f"{'>' if margin > 0 else '< -'}{percent(_GREATEST_MARGIN)}"
+    return percent(margin, 2)
 
 
 def _pad(text: str, width: int) -> str:

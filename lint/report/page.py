@@ -21,9 +21,9 @@ from .glyphs import ASCII, Glyphs, spelt_out
 # Stands for a space at which no line may break. `printable` never leaves one in a text from a file.
 _GLUE = "\u00a0"
 
-# A number stays on the line of its unit, and `..` on the line of its lower end.
+# A number stays on the line of its unit, and a range on one line.
 _UNIT = re.compile(r"(?<=\d) (?=(?:[pnuµmkMG]?(?:V|A|ohm|Ω|F|H|s|Hz|W|J)|%|°C|degC|deg|K|ppm/K)(?!\w))")
-_RANGE = re.compile(r" (?=\.\. )")
+_RANGE = re.compile(r" (?=\.\. )|(?<= \.\.) ")
 
 
 class Page:

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import os
 from collections.abc import Iterator, Sequence
+from dataclasses import replace
 from io import StringIO
 from typing import TextIO
 
@@ -54,6 +55,7 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
     for number, review in enumerate(reviews):
         if number:
             page.blank()
+        review = _named_briefly(review)
         _title(page, review)
         for controller, verdicts in _sections(review):
             if controller is not None:
@@ -71,6 +73,15 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
         passed = sum(gate.passes(review) for review in reviews)
         told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
         _answer(page, told, gate, passed == len(reviews))
+
+
+def _named_briefly(review: Review) -> Review:
+    """Return the review without the netlist's path as a subject: it stands at the top of the report."""
+    verdicts = (
+        replace(verdict, subject="") if verdict.subject == review.netlist else verdict
+        for verdict in review.verdicts
+    )
+    return replace(review, verdicts=tuple(verdicts))
 
 
 def _title(page: Page, review: Review) -> None:

@@ -12,6 +12,7 @@ import pytest
 from pwmlint.grammar.errors import NetlistError
 from pwmlint.grammar.netlist import Place
 from pwmlint.lint import cli
+from pwmlint.lint.estimate import Method
 from pwmlint.lint.verdict import Level, Outcome, Review, Verdict
 
 Asked = list[dict[str, object]]
@@ -51,6 +52,7 @@ def asked(monkeypatch: pytest.MonkeyPatch) -> Asked:
         brief: str | None = None,
         parts_list: str | None = None,
         allow_include: Sequence[Path] = (),
+        method: Method = Method.EXTREME,
     ) -> Review:
         calls.append(
             {
@@ -58,6 +60,7 @@ def asked(monkeypatch: pytest.MonkeyPatch) -> Asked:
                 "brief": brief,
                 "parts_list": parts_list,
                 "allow_include": list(allow_include),
+                "method": method,
             }
         )
         if netlist == "crash.cir":
@@ -108,13 +111,14 @@ def test_one_of_several_that_stops_is_enough() -> None:
 
 def test_what_is_passed_on(asked: Asked) -> None:
     arguments = ["review", "sound.cir", "--brief", "b.toml", "--parts-list", "p.csv"]
-    cli.main([*arguments, "--allow-include", "models", "--allow-include", "more"])
+    cli.main([*arguments, "--allow-include", "models", "--allow-include", "more", "--worst-case", "rss"])
     assert asked == [
         {
             "netlist": "sound.cir",
             "brief": "b.toml",
             "parts_list": "p.csv",
             "allow_include": [Path("models"), Path("more")],
+            "method": Method.RSS,
         }
     ]
 

@@ -18,10 +18,10 @@ from rich.console import Console
         ("one two three", 7, ["one two", "three"]),
         ("abcdefghij", 4, ["abcd", "efgh", "ij"]),
         ("x abcdefghij", 4, ["x", "abcd", "efgh", "ij"]),
-        # A number keeps its unit, and a lower end its dots.
+        # A number keeps its unit, and a range its ends.
         ("it is 12.5 kΩ", 10, ["it is", "12.5 kΩ"]),
         ("is 28 % of", 6, ["is", "28 %", "of"]),
-        ("5 V .. 6 V", 8, ["5 V ..", "6 V"]),
+        ("from 5 V .. 6 V", 11, ["from", "5 V .. 6 V"]),
         # Two cells a character.
         ("梨梨梨梨", 4, ["梨梨", "梨梨"]),
     ],
