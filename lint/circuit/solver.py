@@ -127,7 +127,7 @@ class Network:
         return list(seen)
 
     def needed(self) -> set[str]:
-        """Return the nets that must have a path: what steers a source or a loop, what a current is driven into."""
+        """Return the nets that cannot do without a path: they steer something, or a current is driven in."""
         sources = [e for e in self.elements if isinstance(e, CurrentSource | ControlledSource)]
         nets = {net for source in sources for net in _terminals(source)}
         return nets | {net for condition in self.conditions for net in (condition.a, condition.b)}

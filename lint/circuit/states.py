@@ -103,7 +103,7 @@ def _source(junction: Junction, state: State) -> VoltageSource:
 def _solve_in(
     network: Network, junctions: Sequence[Junction], states: Sequence[State], sample: Sample, size: int
 ) -> Solution | None:
-    """Return the solution with the junctions in given states, None where a net that needs a path then floats."""
+    """Return the solution with the junctions in given states, None where a net that needs a path floats."""
     sources = [_source(j, s) for j, s in zip(junctions, states, strict=True) if s is not State.OFF]
     whole = replace(network, elements=(*network.elements, *sources))
     floating = whole.floating()
