@@ -129,7 +129,7 @@ def _add_review_options(parser: argparse.ArgumentParser) -> None:
         "--worst-case",
         choices=[method.value for method in Method],
         default=Method.EXTREME.value,
-        help="the analysis that decides: every parameter at its end at once, root-sum-square, or draws (extreme)",
+        help="the analysis that decides: all parameters at their ends, root-sum-square, or draws (extreme)",
     )
     parser.add_argument(
         "--strict", action="store_true", help="let open verdicts, and those for a person to judge, do so too"

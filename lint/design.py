@@ -12,7 +12,7 @@ from typing import TypeVar, cast
 
 from ..grammar.netlist import Netlist, Part, Place
 from .brief import Brief, ControllerBrief, Rail
-from .circuit.amplifiers import Amplifier, AmplifierReader, Reach, amplifier_for
+from .circuit.amplifiers import Amplifier, AmplifierReader, Reach, SenseResistor, amplifier_for
 from .circuit.answers import estimate
 from .circuit.conditions import Conditions
 from .circuit.controllers import Controller, find_controllers
@@ -22,6 +22,8 @@ from .circuit.growth import Growth
 from .circuit.loops import Loops, Regulation, Trip
 from .circuit.potentials import Potential, known_potentials
 from .circuit.reference_load import ReferenceLoad, reference_load
+from .circuit.regimes import Operation, Regime, potentials_in
+from .circuit.time_constants import time_constant
 from .circuit.timing import Timing, timing
 from .circuit.worst_case import Variation
 from .derating import DEFAULT_POLICY
@@ -98,10 +100,32 @@ class Design:
         """Return the direct voltage of a net over ground, loops standing still."""
         return self._keep("voltage", net, lambda: self._voltage(net))
 
+    def voltage_in(self, regime: Regime, controller: Controller, net: str) -> Estimate | Unsolved:
+        """Return the direct voltage of a net over ground while a controller's converter is in a regime."""
+        return self._keep(f"voltage in {regime}", net, lambda: self._voltage_in(regime, controller, net))
+
+    def time_constant(self, capacitor: Part) -> Estimate | Unsolved:
+        """Return the time constant (s) of a capacitor with the resistance that it sees."""
+        return self._keep(
+            "time constant",
+            capacitor.reference,
+            lambda: time_constant(self.circuit, self.known, self.controllers, capacitor),
+        )
+
+    def full_load(self, controller: Controller) -> float | None:
+        """Return the greatest load (A) that the brief puts on a controller's output, None if untold."""
+        told = self.told(controller)
+        output = told.output if told is not None and told.output else ""
+        outputs = [output] if output else [a.output for a in self.amplifiers(controller) if a.output]
+        rails = [self.rail(net) for net in outputs]
+        return max(
+            (rail.load.maximum for rail in rails if rail is not None and rail.load is not None), default=None
+        )
+
     def has_path(self, net: str) -> bool:
         """Tell whether a direct-current path joins a net to a known potential."""
         growth = Growth(self.circuit, self.known, self.controllers).grow(net)
-        return bool(growth.blocked) or net not in growth.network().floating()
+        return bool(growth.blocked or growth.valueless) or net not in growth.network().floating()
 
     def reference_load(self, controller: Controller) -> ReferenceLoad | Unsolved:
         """Return the current out of a controller's reference pin, in all and by branch."""
@@ -193,15 +217,51 @@ class Design:
         return AmplifierReader(self.circuit, self.known, controller, output)
 
     def _voltage(self, net: str) -> Estimate | Unsolved:
-        potential = self.known.get(net)
+        return self._solved_voltage(Growth(self.circuit, self.known, self.controllers), net)
+
+    @staticmethod
+    def _solved_voltage(growth: Growth, net: str) -> Estimate | Unsolved:
+        potential = growth.known.get(net)
         if potential is not None:
             assumptions = (potential.assumption,) if potential.assumption else ()
             return Estimate(potential.spread, potential.spread, nets=(net,), assumptions=assumptions)
-        growth = Growth(self.circuit, self.known, self.controllers).grow(net)
-        if not growth.blocked and net in growth.network().floating():
+        growth.grow(net)
+        if not (growth.blocked or growth.valueless) and net in growth.network().floating():
             return Unsolved(f"net {net} has no direct-current path", nets=(net,))
         found = estimate(growth, {"voltage": (lambda s: s.voltage(net), "V")})
         return found if isinstance(found, Unsolved) else found["voltage"]
+
+    def _voltage_in(self, regime: Regime, controller: Controller, net: str) -> Estimate | Unsolved:
+        known = potentials_in(regime, self.known, controller, self._operation(controller))
+        empty = regime is Regime.START_UP
+        growth = Growth(self.circuit, known, self.controllers, empty_capacitors=empty)
+        return self._solved_voltage(growth, net)
+
+    def _operation(self, controller: Controller) -> Operation:
+        return self._keep("operation", controller.reference, lambda: self._operated(controller))
+
+    def _operated(self, controller: Controller) -> Operation:
+        """Return what is known of the converter in operation: output, threshold, full load."""
+        voltage = amplifier_for(self.amplifiers(controller), "voltage")
+        current = amplifier_for(self.amplifiers(controller), "current")
+        regulation, trip = self.regulation(controller), self.trip(controller)
+        shorted = self.trip(controller, shorted=True)
+        sense = current.sense if current is not None else None
+        load = self.full_load(controller)
+        return Operation(
+            output=voltage.output if voltage is not None else "",
+            regulated=regulation.output.spread if isinstance(regulation, Regulation) else None,
+            sense=sense,
+            threshold=trip.threshold.spread if isinstance(trip, Trip) else None,
+            threshold_shorted=shorted.threshold.spread if isinstance(shorted, Trip) else None,
+            full_load=self._drop(sense, load) if sense is not None and load is not None else None,
+        )
+
+    def _drop(self, sense: SenseResistor, load: float) -> Spread | None:
+        value = self.circuit.value(sense.part)
+        if value is None:
+            return None
+        return Spread(0.0, load * value.spread.nominal / 2, load * value.spread.maximum, "V")
 
     def _loops(self, controller: Controller) -> Loops:
         """Return the loops of a controller, its amplifier output inside the control range."""

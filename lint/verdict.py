@@ -36,7 +36,7 @@ class Level(StrEnum):
 
 @dataclass(frozen=True, slots=True)
 class Limit:
-    """What a measured quantity is held against; None on a side that has no limit. Unit as the measured one."""
+    """What a quantity is held against, in its own unit; None on a side that has no limit."""
 
     minimum: float | None
     maximum: float | None

@@ -89,18 +89,8 @@ def _wanted(design: Design, controller: Controller) -> tuple[Limit | None, str]:
         wanted = told.current_limit
         top = wanted.maximum if wanted.maximum > wanted.minimum else None
         return Limit(wanted.minimum, top, "A"), "brief: current_limit"
-    load = _full_load(design, controller)
+    load = design.full_load(controller)
     return (Limit(load, None, "A"), "brief: load") if load is not None else (None, "")
-
-
-def _full_load(design: Design, controller: Controller) -> float | None:
-    """Return the greatest load (A) that the brief puts on the controller's output."""
-    told = design.told(controller)
-    output = told.output if told is not None and told.output else ""
-    outputs = [output] if output else [a.output for a in design.amplifiers(controller) if a.output]
-    rails = [design.rail(net) for net in outputs]
-    loads = [rail.load.maximum for rail in rails if rail is not None and rail.load is not None]
-    return max(loads, default=None)
 
 
 def _resistor_for(found: Trip, limit: Limit, sense: SenseResistor) -> str:
@@ -176,7 +166,7 @@ def _derating(design: Design) -> tuple[Derating, str]:
 
 
 def _at_full_load(design: Design, controller: Controller, sense: Part) -> str:
-    load = _full_load(design, controller)
+    load = design.full_load(controller)
     resistance = design.nominal(sense)
     if load is None or resistance is None:
         return ""

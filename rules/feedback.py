@@ -244,7 +244,7 @@ def _lone_half(design: Design, amplifier: Amplifier) -> Verdict | None:
         if ends and all(design.is_ground(end) for end in ends):
             return Verdict(
                 outcome=Outcome.FAIL,
-                message=f"amplifier {amplifier.number} {name} has a resistor to ground and none to the output",
+                message=f"amplifier {amplifier.number} {name} has a resistor to ground, none to the output",
                 parts=tuple(part.reference for part in resistors),
                 nets=(net,),
                 pins=(f"amplifier {amplifier.number} {name}",),

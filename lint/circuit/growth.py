@@ -65,12 +65,14 @@ class Growth:
 
     stops: nets at which growth ends although their potential is not known (what the caller replaces by a
            free quantity or drives himself); nothing on them is called an obstacle
+    empty_capacitors: capacitors hold no charge yet, and count as shorts
     """
 
     circuit: Circuit
     known: Mapping[str, Potential]
     controllers: Sequence[Controller]
     stops: frozenset[str] = frozenset()
+    empty_capacitors: bool = False
     elements: dict[str, Element] = field(default_factory=dict[str, Element])
     parameters: dict[str, Parameter] = field(default_factory=dict[str, Parameter])
     potentials: dict[str, Value] = field(default_factory=dict[str, Value])
@@ -292,7 +294,13 @@ def _short(growth: Growth, part: Part, net: str) -> None:
 
 
 def _open(growth: Growth, part: Part, net: str) -> None:
-    """Take a capacitor, test point or coupling as open: no direct current flows in it."""
+    """Take a test point or coupling as open: no direct current flows in it."""
+
+
+def _capacitor(growth: Growth, part: Part, net: str) -> None:
+    """Take a capacitor as open, or as a short while it holds no charge."""
+    if growth.empty_capacitors:
+        _short(growth, part, net)
 
 
 def _diode(growth: Growth, part: Part, net: str) -> None:
@@ -399,7 +407,7 @@ def _opaque(growth: Growth, part: Part, net: str) -> None:
 _MEANINGS: dict[str, Callable[[Growth, Part, str], None]] = {
     "resistor": _resistor,
     "trimmer": _trimmer,
-    "capacitor": _open,
+    "capacitor": _capacitor,
     "coupling": _open,
     "test point": _open,
     "inductor": _short,
