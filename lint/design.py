@@ -21,6 +21,7 @@ from .circuit.graph import Circuit
 from .circuit.growth import Growth
 from .circuit.loops import Loops, Regulation, Trip
 from .circuit.potentials import Potential, known_potentials
+from .circuit.power_stage import NotRecognised, PowerStage, PowerStageReader
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.regimes import Operation, Regime, potentials_in
 from .circuit.time_constants import time_constant
@@ -171,6 +172,12 @@ class Design:
     def regulation(self, controller: Controller) -> Regulation | Unsolved | NoLoop:
         """Return the output voltage that a controller's voltage loop regulates to."""
         return self._keep("regulation", controller.reference, lambda: self._regulation(controller))
+
+    def power_stage(self, controller: Controller) -> PowerStage | NotRecognised:
+        """Return the power stage that a controller's outputs drive, or why none was recognised."""
+        amplifiers = self.amplifiers(controller)
+        reader = PowerStageReader(self.circuit, self.known, controller, amplifiers)
+        return self._keep("power stage", controller.reference, reader.read)
 
     def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
         """Return the current at which a controller's current loop takes over.

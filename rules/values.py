@@ -28,8 +28,7 @@ def value_missing(controller: Controller, design: Design) -> Iterable[Verdict]:
 
     What:
         Solves the networks round the controller, as the other questions do, and names the parts whose
-        value keeps them from being solved. A value written as an expression that the list does not
-        resolve is `open`.
+        value keeps them from being solved.
     Why:
         Without it the dead time, the output voltage or the current limit is unknown, here and on the
         bench; and what is bought for it is somebody's guess.
@@ -42,17 +41,14 @@ def value_missing(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     problems = _unread(controller, design)
     for reference, problem in problems.items():
-        part = design.part(reference)
-        expression = part.value.startswith(("{", "'"))
-        need = f"a value for {reference}"
+        nets = [pin.net for pin in design.part(reference).pins if pin.net]
         yield Verdict(
-            outcome=Outcome.OPEN if expression else Outcome.FAIL,
+            outcome=Outcome.FAIL,
             message=problem,
             subject=reference,
             parts=(reference,),
-            nets=tuple(dict.fromkeys(pin.net for pin in part.pins if pin.net)),
-            needs=(need,) if expression else (),
-            remedy="" if expression else f"write the value of {reference} beside it, with its unit",
+            nets=tuple(dict.fromkeys(nets)),
+            remedy=f"write the value of {reference} beside it, with its unit",
         )
     if not problems:
         says = f"every part in the networks round {controller.reference} has a value"
