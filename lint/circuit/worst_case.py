@@ -3,8 +3,9 @@
 Published methods: ECSS-Q-HB-30-01A (extreme value analysis, root-sum-square, what a report must say) and
 the practice that supplies, loads and trimmers are outer loops whose ends are never root-summed.
 
-- Extreme value: every parameter at its worst end at once. All corners up to `MOST_CORNER_PARAMETERS`;
-  beyond, each quantity's ends are looked for along the signs of its sensitivities.
+- Extreme value: every parameter at its worst end at once. All corners while they are few; beyond, each
+  quantity's ends are looked for along the signs of its sensitivities, at every corner of the outer loops,
+  and followed until no single parameter at its other end makes the result any worse.
 - Root-sum-square: tolerances vary independently and each half-width counts as three sigma; for every
   corner of the outer loops the half-widths of the result are root-summed about its centre. What is bias
   in a tolerance adds up in full: only the random share is root-summed.
@@ -16,6 +17,7 @@ from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from enum import Enum, auto
 from itertools import product
+from math import prod
 from typing import TypeAlias
 
 import numpy as np
@@ -24,9 +26,16 @@ from ..quantity import Spread
 from .solver import Array, Sample
 
 MOST_CORNER_PARAMETERS = 12
+_MOST_CORNERS = 25_600  # twelve parameters, two of them trimmers
+_MOST_OUTER_CORNERS = 625  # four trimmers
+_MOST_ROWS_AT_ONCE = 4_096  # more would take memory without taking less time
+_MOST_STEPS = 20  # of the search for a worst corner
 
 # A trimmer is looked at along its travel, not only at the ends: between them a result may turn round.
 _TRAVEL = (0.0, 0.25, 0.5, 0.75, 1.0)
+
+# A parameter whose share of the spread is less is rounding, not a contribution.
+_LEAST_SHARE = 1e-9
 
 # A result may leave the corners by this share of its size before it counts as not monotonic (rounding).
 _ROUNDING = 1e-9
@@ -90,17 +99,38 @@ def analyse(
     units:      quantity name to its unit
     """
     samples = Samples(parameters)
+    evaluate = _in_slices(evaluate)
     rows = np.vstack([samples.nominal(), samples.corners(), samples.star()])
     values = evaluate(samples.as_sample(rows), len(rows))
     first_star = len(rows) - samples.star_rows
-    outer = _outer_loops(samples, evaluate)
+    loops = _OuterLoops(samples, evaluate)
     found: dict[str, Analysis] = {}
     for name, column in values.items():
         nominal, corners, star = column[0], column[1:first_star], column[first_star:]
-        if len(samples.varying) > MOST_CORNER_PARAMETERS:
-            corners = np.concatenate([corners, _directed(samples, evaluate, name, star)])
-        found[name] = _analysis(samples, float(nominal), corners, star, outer[name], units[name])
+        settled = True
+        if not samples.has_all_corners:
+            searched, settled = _searched(loops, name)
+            corners = np.concatenate([corners, searched])
+        analysis = _analysis(float(nominal), corners, star, loops.statistical(name), units[name])
+        contributions = _contributions(samples, star)
+        found[name] = Analysis(*analysis[:2], contributions, monotonic=settled and analysis[2])
     return found
+
+
+def _in_slices(evaluate: Evaluate) -> Evaluate:
+    """Return `evaluate` with its memory bounded: a slice of the samples at a time."""
+
+    def sliced(sample: Sample, size: int) -> Mapping[str, Array]:
+        if size <= _MOST_ROWS_AT_ONCE:
+            return evaluate(sample, size)
+        starts = range(0, size, _MOST_ROWS_AT_ONCE)
+        parts = [
+            evaluate({name: column[i : i + _MOST_ROWS_AT_ONCE] for name, column in sample.items()}, length)
+            for i, length in ((i, min(_MOST_ROWS_AT_ONCE, size - i)) for i in starts)
+        ]
+        return {name: np.concatenate([part[name] for part in parts]) for name in parts[0]}
+
+    return sliced
 
 
 class Samples:
@@ -122,14 +152,37 @@ class Samples:
         """Return one row: every parameter at its nominal value."""
         return self._nominal[None, :]
 
+    @property
+    def has_all_corners(self) -> bool:
+        """Tell whether `corners` are all there are."""
+        few = len(self.varying) <= MOST_CORNER_PARAMETERS
+        return few and _grid_size(self._choices(self.varying)) <= _MOST_CORNERS
+
+    @property
+    def has_all_outer_corners(self) -> bool:
+        """Tell whether `outer_corners` holds every combination of the ends of the outer loops."""
+        return 2 ** len(self.outer) <= _MOST_OUTER_CORNERS
+
     def corners(self) -> Array:
         """Return all corners, or only the outer ones where there are too many parameters for all."""
-        indices = self.varying if len(self.varying) <= MOST_CORNER_PARAMETERS else self.outer
-        return self.combinations(indices[:MOST_CORNER_PARAMETERS])
+        return (
+            self.combinations(self._choices(self.varying)) if self.has_all_corners else self.outer_corners()
+        )
 
     def outer_corners(self) -> Array:
-        """Return the corners of the outer loops, tolerances at their nominal values."""
-        return self.combinations(self.outer[:MOST_CORNER_PARAMETERS])
+        """Return the corners of the outer loops, trimmers in between as well while that is not too much.
+
+        Where even the ends are too many to combine: nominal, all low, all high, and each alone at its ends.
+        """
+        choices = self._choices(self.outer)
+        if _grid_size(choices) <= _MOST_OUTER_CORNERS:
+            return self.combinations(choices)
+        ends = {i: (self.parameters[i].low, self.parameters[i].high) for i in self.outer}
+        if self.has_all_outer_corners:
+            return self.combinations(ends)
+        together = np.repeat(self.nominal(), 2, axis=0)
+        together[:, self.outer] = np.array(list(ends.values())).T
+        return np.vstack([self.nominal(), together, self.star_about(self._nominal, self.outer)])
 
     def star(self) -> Array:
         """Return two rows a varying parameter: it alone at its low end, then at its high end."""
@@ -143,13 +196,19 @@ class Samples:
             rows[2 * position + 1, index] = self.parameters[index].high
         return rows
 
-    def combinations(self, indices: Sequence[int]) -> Array:
-        """Return every combination of the stations of the given parameters, the others nominal."""
-        choices = [_stations(self.parameters[index]) for index in indices]
-        rows = np.repeat(self.nominal(), int(np.prod([len(c) for c in choices])), axis=0)
-        if indices:
-            rows[:, list(indices)] = list(product(*choices))
+    def combinations(self, choices: Mapping[int, Sequence[float]]) -> Array:
+        """Return a row for every combination of the given values of parameters, the others at nominal."""
+        rows = np.repeat(self.nominal(), _grid_size(choices), axis=0)
+        if choices:
+            rows[:, list(choices)] = list(product(*choices.values()))
         return rows
+
+    def _choices(self, indices: Sequence[int]) -> dict[int, Sequence[float]]:
+        return {index: _stations(self.parameters[index]) for index in indices}
+
+
+def _grid_size(choices: Mapping[int, Sequence[float]]) -> int:
+    return prod(len(values) for values in choices.values())
 
 
 def _stations(parameter: Parameter) -> tuple[float, ...]:
@@ -158,59 +217,95 @@ def _stations(parameter: Parameter) -> tuple[float, ...]:
     return (parameter.low, parameter.high)
 
 
-def _directed(samples: Samples, evaluate: Evaluate, name: str, star: Array) -> Array:
-    """Return the values of one quantity at the two corners that its sensitivities point to.
+class _OuterLoops:
+    """The outer corners, each with its tolerances one at a time at their ends: centre, low, high, low, ..."""
 
-    Used beyond MOST_CORNER_PARAMETERS, where trying every corner would take too long.
-    """
-    rows = np.repeat(samples.nominal(), 2, axis=0)
-    for position, index in enumerate(samples.varying):
-        low, high = samples.parameters[index].low, samples.parameters[index].high
-        rises = star[2 * position + 1] >= star[2 * position]
-        rows[0, index] = low if rises else high
-        rows[1, index] = high if rises else low
-    return evaluate(samples.as_sample(rows), 2)[name]
+    def __init__(self, samples: Samples, evaluate: Evaluate) -> None:
+        self.samples = samples
+        self.evaluate = evaluate
+        self.centres = samples.outer_corners()
+        blocks = [np.vstack([c[None, :], samples.star_about(c, samples.tolerances)]) for c in self.centres]
+        rows = np.vstack(blocks)
+        self._values = evaluate(samples.as_sample(rows), len(rows))
 
+    def table(self, name: str) -> Array:
+        """Return the values of one quantity, a row for each outer corner."""
+        return self._values[name].reshape(len(self.centres), -1)
 
-def _outer_loops(samples: Samples, evaluate: Evaluate) -> dict[str, tuple[Array, Array]]:
-    """Return, for each quantity, the centre of every outer corner and its root-summed half-width."""
-    centres = samples.outer_corners()
-    block = 1 + 2 * len(samples.tolerances)
-    rows = np.vstack(
-        [np.vstack([centre[None, :], samples.star_about(centre, samples.tolerances)]) for centre in centres]
-    )
-    values = evaluate(samples.as_sample(rows), len(rows))
-    random = np.array([samples.parameters[index].random for index in samples.tolerances], dtype=np.float64)
-    loops: dict[str, tuple[Array, Array]] = {}
-    for name, column in values.items():
-        table = column.reshape(len(centres), block)
+    def statistical(self, name: str) -> tuple[float, float]:
+        """Return the least and the greatest value by root-sum-square, NaN where they are not to be had."""
+        if not self.samples.has_all_outer_corners:
+            return np.nan, np.nan
+        table = self.table(name)
+        random = np.array(
+            [self.samples.parameters[i].random for i in self.samples.tolerances], dtype=np.float64
+        )
         with np.errstate(invalid="ignore"):
             half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
-        root_sum = np.sqrt(np.sum((half_widths * random) ** 2, axis=1))
-        loops[name] = table[:, 0], root_sum + np.sum(half_widths * (1 - random), axis=1)
-    return loops
+            root_sum = np.sqrt(np.sum((half_widths * random) ** 2, axis=1))
+            half_width = root_sum + np.sum(half_widths * (1 - random), axis=1)
+            return float(np.min(table[:, 0] - half_width)), float(np.max(table[:, 0] + half_width))
+
+    def directed(self, name: str) -> tuple[Array, Array]:
+        """Return, for each outer corner, where its sensitivities put the least value, and the greatest."""
+        table = self.table(name)
+        rises = table[:, 2::2] >= table[:, 1::2]
+        ends = [
+            (self.samples.parameters[i].low, self.samples.parameters[i].high) for i in self.samples.tolerances
+        ]
+        low, high = np.array(ends, dtype=np.float64).reshape(-1, 2).T
+        least, most = self.centres.copy(), self.centres.copy()
+        least[:, self.samples.tolerances] = np.where(rises, low, high)
+        most[:, self.samples.tolerances] = np.where(rises, high, low)
+        return least, most
+
+
+def _searched(loops: _OuterLoops, name: str) -> tuple[Array, bool]:
+    """Return the worst values of one quantity at both ends, and whether the search for them came to rest.
+
+    Used where trying every corner would take too long.
+    """
+    found: list[Array] = []
+    settled = True
+    for rows, sign in zip(loops.directed(name), (-1.0, 1.0), strict=True):
+        values = sign * loops.evaluate(loops.samples.as_sample(rows), len(rows))[name]
+        start = int(np.argmax(values))
+        end, came_to_rest = _climbed(loops, name, rows[start], float(values[start]), sign)
+        found += [sign * values, np.array([sign * end])]
+        settled &= came_to_rest
+    return np.concatenate(found), settled
+
+
+def _climbed(loops: _OuterLoops, name: str, row: Array, value: float, sign: float) -> tuple[float, bool]:
+    """Move one corner on, each parameter to its other end that makes `sign` times the quantity greater."""
+    samples = loops.samples
+    for _ in range(_MOST_STEPS):
+        star = samples.star_about(row, samples.varying)
+        around = sign * loops.evaluate(samples.as_sample(star), len(star))[name]
+        better = around > value + _ROUNDING * abs(value)
+        if not better.any():
+            return value, True
+        together = row.copy()
+        for position in np.flatnonzero(better):
+            together[samples.varying[position // 2]] = star[position, samples.varying[position // 2]]
+        steps = np.vstack([together, star[int(np.argmax(around))]])
+        values = sign * loops.evaluate(samples.as_sample(steps), 2)[name]
+        row, value = steps[int(np.argmax(values))], float(np.max(values))
+    return value, False
 
 
 def _analysis(
-    samples: Samples,
-    nominal: float,
-    corners: Array,
-    star: Array,
-    outer: tuple[Array, Array],
-    unit: str,
-) -> Analysis:
+    nominal: float, corners: Array, star: Array, statistical: tuple[float, float], unit: str
+) -> tuple[Spread, Spread, bool]:
+    """Return the spread, the statistical one, and whether the corners bound what lies between them."""
     low, high = float(np.min(corners)), float(np.max(corners))
     inside = np.append(star, nominal)
     slack = _ROUNDING * max(abs(low), abs(high), abs(nominal), 1e-30)
     finite = bool(np.isfinite([low, high, nominal]).all())
     monotonic = not finite or bool(np.all(inside >= low - slack) and np.all(inside <= high + slack))
     spread = Spread(min(low, nominal), nominal, max(high, nominal), unit)
-    centre, half_width = outer
-    with np.errstate(invalid="ignore"):
-        least = _finite_or(float(np.min(centre - half_width)), spread.minimum)
-        most = _finite_or(float(np.max(centre + half_width)), spread.maximum)
-    statistical = Spread(min(least, nominal), nominal, max(most, nominal), unit)
-    return Analysis(spread, statistical, _contributions(samples, star), monotonic)
+    least, most = _finite_or(statistical[0], spread.minimum), _finite_or(statistical[1], spread.maximum)
+    return spread, Spread(min(least, nominal), nominal, max(most, nominal), unit), monotonic
 
 
 def _finite_or(value: float, fallback: float) -> float:
@@ -225,4 +320,4 @@ def _contributions(samples: Samples, star: Array) -> tuple[tuple[str, float], ..
         return ()
     labels = [samples.parameters[i].label or samples.parameters[i].name for i in samples.varying]
     ranked = sorted(zip(labels, (float(w) / total for w in widths), strict=True), key=lambda x: (-x[1], x[0]))
-    return tuple((label, share) for label, share in ranked if share > 0)
+    return tuple((label, share) for label, share in ranked if share > _LEAST_SHARE)
