@@ -29,18 +29,14 @@ _RANGE = re.compile(r" (?=\.\. )|(?<= \.\.) ")
 class Page:
     """A console that lines are put on one after another.
 
-    console: its width is the width of every line
+    width:   the cells of a line, as many as the console's
     glyphs:  the characters to draw with; with `ASCII`, texts are spelt out in ASCII as well
     """
 
     def __init__(self, console: Console, glyphs: Glyphs) -> None:
         self.console = console
         self.glyphs = glyphs
-
-    @property
-    def width(self) -> int:
-        """Return the cells of a line."""
-        return self.console.width
+        self.width = console.width
 
     def say(self, text: str) -> str:
         """Return a text from outside as it may be printed."""

@@ -39,6 +39,7 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     console = Console(
         file=sheet,
         width=colour.width(stream, os.environ),
+        height=1,  # of no meaning here, but asked of the terminal at every line where it is not given
         color_system="standard" if coloured else None,
         force_terminal=coloured,
         force_jupyter=False,
