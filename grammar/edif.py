@@ -39,7 +39,7 @@ def read_edif(text: str, file: str) -> Netlist:
     libraries = Libraries(edif, budget)
     notes: list[Note] = []
     top = _choose_top(edif, libraries, places, notes)
-    flat = FlatCircuit(libraries, places, budget, has_designators=_has_designators(edif))
+    flat = FlatCircuit(text, libraries, places, budget)
     flat.flatten(top)
     netlist = Netlist(file, "EDIF 2 0 0", _title(edif), notes=notes, files=[file])
     write_netlist(flat, places, netlist)
@@ -47,17 +47,6 @@ def read_edif(text: str, file: str) -> Netlist:
         message = f"the cells {earlier} and {name} differ by letter case only; both are kept"
         netlist.notes.append(Note("name-collision", message, places.at(cell.name.offset), name))
     return netlist
-
-
-def _has_designators(edif: Edif) -> bool:
-    """Say whether the file marks parts by designators, so that what has none is a symbol."""
-    return any(
-        instance.designators
-        for library in edif.libraries
-        for cell in library.cells
-        for view in cell.views
-        for instance in view.contents.instances
-    )
 
 
 def _title(edif: Edif) -> str:

@@ -7,11 +7,12 @@ rule is the token that opens the list.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable
 from decimal import Decimal
-from functools import cache
+from functools import cache, lru_cache
 from importlib import import_module
 import pathlib
+import re
 from typing import Any, TypeVar, cast
 
 from lark import Lark, Token, Transformer
@@ -27,6 +28,7 @@ from .edif_forms import (
     GlobalRef,
     Instance,
     Joined,
+    JoinedRun,
     KeywordLevel,
     Library,
     LibraryRef,
@@ -42,11 +44,12 @@ from .edif_forms import (
     Unit,
     Version,
     View,
+    ViewKind,
 )
 from .edif_names import Name, identifier, integer, scaled
 from .edif_runs import (
-    JoinedRun,
-    PropertyRun,
+    read_instance,
+    read_net,
     read_pin_number,
     read_property,
     read_quoted,
@@ -79,7 +82,7 @@ def _parser() -> Lark:
 def build_parser(plugins: dict[str, Any]) -> Lark:
     """Return a new parser with the given plugins of lark; none for plain lark."""
     grammar = pathlib.Path(__file__).with_name("edif.lark").read_text(encoding="utf-8")
-    return Lark(grammar, parser="lalr", start="edif", transformer=FormBuilder(), _plugins=plugins)
+    return Lark(grammar, parser="lalr", start="edif", transformer=FormBuilder(), g_regex_flags=re.ASCII, _plugins=plugins)
 
 
 def _of(kind: type[_Form], items: Iterable[object]) -> list[_Form]:
@@ -102,10 +105,6 @@ def _sizes(items: _Items) -> tuple[int, ...]:
 class FormBuilder(Transformer[Token, Edif]):
     """Makes the forms, innermost first."""
 
-    def __init__(self) -> None:
-        super().__init__()
-        self._view_refs: dict[str, CellRef] = {}
-
     # ------------------------------------------------------------------------------------------ terminals
 
     def ATOM(self, token: Token) -> Name:
@@ -119,39 +118,41 @@ class FormBuilder(Transformer[Token, Edif]):
 
     def RENAME_SIMPLY(self, token: Token) -> Name:
         """`(rename identifier "text")`."""
-        return Name(*read_rename(token.value), _start(token))
+        return read_rename(token.value, _start(token))
 
     def DESIGNATOR_SIMPLY(self, token: Token) -> Designator:
         """`(designator "text")`."""
         return Designator(read_quoted(token.value))
 
-    def PLAIN_PROPERTIES(self, token: Token) -> PropertyRun:
-        """A run of properties with an identifier and a string each."""
-        return PropertyRun(token.value)
-
     def PROPERTY_SIMPLY(self, token: Token) -> Property:
-        """One property with a string, renamed or displayed."""
-        return Property(*read_property(token.value))
+        """A property with a string."""
+        return read_property(token.value)
 
     def PORT_INSTANCE_SIMPLY(self, token: Token) -> PinNumber:
         """`(portInstance port (designator "number") ...)`."""
-        return PinNumber(*read_pin_number(token.value))
+        return read_pin_number(token.value)
 
     def VIEW_REF_SIMPLY(self, token: Token) -> CellRef:
-        """`(viewRef view (cellRef cell (libraryRef library)))`, the same text a thousand times over."""
-        known = self._view_refs.get(token.value)
-        if known is None:
-            view, cell, library = read_view_ref(token.value)
-            known = self._view_refs[token.value] = CellRef(cell, library, view)
-        return known
+        """`(viewRef view (cellRef cell (libraryRef library)))`."""
+        return _cell_ref(token.value)
 
     def PORT_REFS(self, token: Token) -> JoinedRun:
         """A run of `(portRef port (instanceRef instance))`."""
-        return JoinedRun(token.value, _start(token))
+        return JoinedRun(_start(token), _start(token) + len(token.value))
 
     def JOINED_SIMPLY(self, token: Token) -> JoinedRun:
         """A whole `joined` form that holds such a run and nothing else."""
-        return JoinedRun(token.value, _start(token))
+        return JoinedRun(_start(token), _start(token) + len(token.value))
+
+    def NET_SIMPLY(self, token: Token) -> Net:
+        """A whole net in the usual spelling."""
+        name, joined = read_net(token.value, _start(token))
+        return Net(name, [joined])
+
+    def INSTANCE_SIMPLY(self, token: Token) -> Instance:
+        """A whole instance in the usual spelling."""
+        name, view_ref, items = read_instance(token.value, _start(token))
+        return Instance(name, _cell_ref(view_ref), items)
 
     # -------------------------------------------------------------------------------------------- names
 
@@ -232,18 +233,24 @@ class FormBuilder(Transformer[Token, Edif]):
     def cell(self, items: _Items) -> Cell:
         """`(cell name (cellType ...) (view ...) ...)`."""
         kind = _first(CellKind, items)
-        return Cell(items[1], kind.text if kind else "GENERIC", _of(View, items), _properties(items))
+        return Cell(items[1], kind.text if kind else "GENERIC", _of(View, items), _of(Property, items))
 
     def cell_type(self, items: _Items) -> CellKind:
         """`(cellType GENERIC)`."""
         return CellKind("".join(_words(items)).upper())
 
+    def view_type(self, items: _Items) -> ViewKind:
+        """`(viewType SCHEMATIC)`."""
+        return ViewKind("".join(_words(items)).upper())
+
     def view(self, items: _Items) -> View:
         """`(view name (viewType ...) (interface ...) (contents ...))`."""
         view = _first(View, items) or View(items[1])
+        kind = _first(ViewKind, items)
         view.name = items[1]
+        view.kind = kind.text if kind else ""
         view.contents = _gather(items)
-        view.properties += _properties(items)
+        view.properties += _of(Property, items)
         return view
 
     def interface(self, items: _Items) -> View:
@@ -253,14 +260,14 @@ class FormBuilder(Transformer[Token, Edif]):
             Name("", "", _start(items[0])),
             ports=_of(Port, items),
             joined=_joined(items),
-            properties=_properties(items),
+            properties=_of(Property, items),
             prefix=prefix.text if prefix else "",
         )
 
     def port(self, items: _Items) -> Port:
         """`(port name (direction ...) (designator ...) ...)`."""
         designator = _first(Designator, items)
-        return Port(items[1], designator.text if designator else "", _properties(items))
+        return Port(items[1], designator.text if designator else "", _of(Property, items))
 
     def port_bundle(self, items: _Items) -> Port:
         """`(portBundle name (listOfPorts ...))`."""
@@ -295,17 +302,12 @@ class FormBuilder(Transformer[Token, Edif]):
 
     def off_page(self, items: _Items) -> Port:
         """`(offPageConnector name ...)`."""
-        return Port(items[1], properties=_properties(items))
+        return Port(items[1], properties=_of(Property, items))
 
     def instance(self, items: _Items) -> Instance:
         """`(instance name (viewRef ...) ...)`."""
-        return Instance(
-            items[1],
-            _first(CellRef, items),
-            [designator.text for designator in _of(Designator, items)],
-            _properties(items),
-            _of(PinNumber, items),
-        )
+        said = tuple(item for item in items if isinstance(item, (Property, Designator, PinNumber)))
+        return Instance(items[1], _first(CellRef, items), said)
 
     def port_instance(self, items: _Items) -> PinNumber | None:
         """`(portInstance port ...)` with its designator anywhere or nowhere."""
@@ -333,7 +335,7 @@ class FormBuilder(Transformer[Token, Edif]):
 
     def port_list(self, items: _Items) -> PortList:
         """`(portList ...)`."""
-        return PortList(tuple(_port_refs(items[1:])))
+        return PortList(tuple(item for item in items if isinstance(item, (PortRef, JoinedRun))))
 
     def port_ref(self, items: _Items) -> PortRef:
         """`(portRef port ...)`; a port in a bundle is known by its own name."""
@@ -409,13 +411,15 @@ class FormBuilder(Transformer[Token, Edif]):
         """A list without meaning for a netlist, and all that is in it."""
 
 
+@lru_cache(maxsize=4096)
+def _cell_ref(view_ref: str) -> CellRef:
+    """Return what a `viewRef` refers to, which is the same text a thousand times over."""
+    return read_view_ref(view_ref)
+
+
 def _start(token: Token) -> int:
     """Return where a token starts; one that was read from text always knows."""
     return token.start_pos or 0
-
-
-def _properties(items: _Items) -> list[PropertyRun | Property]:
-    return [item for item in items if isinstance(item, (PropertyRun, Property))]
 
 
 def _joined(items: _Items) -> list[JoinedRun | Joined]:
@@ -432,16 +436,6 @@ def _gather(items: _Items) -> Contents:
 
 def _member(item: Name | Member) -> Member:
     return item if isinstance(item, Member) else Member(item.identifier, None, item.offset)
-
-
-def _port_refs(items: _Items) -> Iterator[PortRef]:
-    for item in items:
-        if isinstance(item, PortRef):
-            yield item
-        elif isinstance(item, JoinedRun):
-            for port, instance, offset in item.references():
-                path = (Member(instance, None, offset),) if instance else ()
-                yield PortRef(Member(port, None, offset), path)
 
 
 def _number(item: object) -> str | Decimal:

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from abc import ABC, abstractmethod
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from typing import NamedTuple
 
 from .edif_budget import Budget
-from .edif_forms import Instance, Library, PortRef
+from .edif_forms import Instance, PortRef
+from .edif_instances import Description
 from .edif_library import Source
 from .edif_nets import NetPieces
 from .property_names import fold
@@ -34,14 +35,14 @@ class End(ABC):
 class PartEnd(End):
     """An occurrence of a part: it notes what is on its ports."""
 
-    __slots__ = ("connections", "home", "instance", "path", "source", "suffix")
+    __slots__ = ("connections", "instance", "path", "said", "source", "suffix")
 
     def __init__(
-        self, instance: Instance, source: Source | None, home: Library, path: str, suffix: str
+        self, instance: Instance, said: Description, source: Source | None, path: str, suffix: str
     ) -> None:
         self.instance = instance
+        self.said = said
         self.source = source
-        self.home = home
         self.path = path
         self.suffix = suffix
         self.connections: list[Connection] = []
@@ -72,6 +73,13 @@ class SheetEnd(End):
         self.is_entered = False
         self.deferred: list[tuple[PortRef, Sequence[int]]] = []
         self._bits: dict[str, int] = {}
+
+    def chain(self) -> Iterator[SheetEnd]:
+        """Yield this sheet and those it is in, up to the top."""
+        sheet: SheetEnd | None = self
+        while sheet:
+            yield sheet
+            sheet = sheet.outer
 
     def connect(self, port: str, index: int | None, pieces: Sequence[int], offset: int) -> bool:
         """Join the pieces to those inside, port by port."""

@@ -8,7 +8,20 @@ from decimal import Decimal
 from typing import NamedTuple
 
 from .edif_names import Name
-from .edif_runs import JoinedRun, PropertyRun
+
+
+class JoinedRun(NamedTuple):
+    """A span of the text that is a run of `(portRef port (instanceRef instance))`; see edif_runs.py."""
+
+    start: int
+    end: int
+
+
+class InstanceRun(NamedTuple):
+    """A span of the text that holds the items of an instance behind its view; see edif_runs.py."""
+
+    start: int
+    end: int
 
 
 class Member(NamedTuple):
@@ -41,7 +54,7 @@ class GlobalRef(NamedTuple):
 class PortList(NamedTuple):
     """Ports in order, each for one bit of the net that joins the list."""
 
-    ports: tuple[PortRef, ...]
+    references: tuple[PortRef | JoinedRun, ...]
 
 
 class Joined(NamedTuple):
@@ -97,6 +110,12 @@ class CellKind(NamedTuple):
     text: str
 
 
+class ViewKind(NamedTuple):
+    """What a view shows: NETLIST, SCHEMATIC, GRAPHIC and others."""
+
+    text: str
+
+
 class Scales(NamedTuple):
     """For each kind of unit what one unit of the file is in the SI."""
 
@@ -123,20 +142,17 @@ class Port:
 
     name: Name
     designator: str = ""
-    properties: list[PropertyRun | Property] = field(default_factory=list[PropertyRun | Property])
+    properties: list[Property] = field(default_factory=list[Property])
     members: list[Port] = field(default_factory=list["Port"])
 
 
 @dataclass(slots=True)
 class Instance:
-    """One use of a cell; `drawn_in_net` for one that stands inside a net form, such as a junction dot."""
+    """One use of a cell, and what is said of it."""
 
     name: Name
-    cell: CellRef | None = None
-    designators: list[str] = field(default_factory=list[str])
-    properties: list[PropertyRun | Property] = field(default_factory=list[PropertyRun | Property])
-    pin_numbers: list[PinNumber] = field(default_factory=list[PinNumber])
-    drawn_in_net: bool = False
+    cell: CellRef | None
+    items: InstanceRun | tuple[Property | Designator | PinNumber, ...]
 
 
 @dataclass(slots=True)
@@ -165,13 +181,14 @@ class Contents:
 
 @dataclass(slots=True)
 class View:
-    """One view of a cell: the ports outside and the contents inside."""
+    """One view of a cell: the ports outside and the contents inside; `kind` is NETLIST, SCHEMATIC or another."""
 
     name: Name
+    kind: str = ""
     ports: list[Port] = field(default_factory=list[Port])
     joined: list[JoinedRun | Joined] = field(default_factory=list[JoinedRun | Joined])
     contents: Contents = field(default_factory=Contents)
-    properties: list[PropertyRun | Property] = field(default_factory=list[PropertyRun | Property])
+    properties: list[Property] = field(default_factory=list[Property])
     prefix: str = ""
 
     def is_filled(self) -> bool:
@@ -196,7 +213,7 @@ class Cell:
     name: Name
     kind: str = "GENERIC"
     views: list[View] = field(default_factory=list[View])
-    properties: list[PropertyRun | Property] = field(default_factory=list[PropertyRun | Property])
+    properties: list[Property] = field(default_factory=list[Property])
 
 
 @dataclass(slots=True)

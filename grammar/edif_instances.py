@@ -7,14 +7,44 @@ from collections.abc import Iterable, Iterator, Mapping
 from decimal import Decimal
 from typing import NamedTuple
 
-from .edif_forms import Instance, Property
+from .edif_forms import Designator, Instance, InstanceRun, PinNumber, Property
 from .edif_library import Source
 from .edif_names import quantity
-from .edif_runs import PropertyRun
-from .property_names import fold, meaning, symbol_words
+from .edif_ports import is_number
+from .edif_runs import instance_items
+from .property_names import fold, meaning, read_properties, symbol_words
 
-_TEXT_FIELD = re.compile(r"field[0-9]+value", re.IGNORECASE)
 _LONGEST_SECTION = 2  # letters of a section: U5A .. U5Z, U5AA ..
+_TEXT_FIELD = re.compile(r"field[0-9]+value", re.IGNORECASE)
+
+
+class Description(NamedTuple):
+    """What the items of an instance say.
+
+    designators: those that are not blank
+    properties:  by meaning, see property_names.py
+    pin_numbers: port to number
+    """
+
+    designators: tuple[str, ...]
+    properties: dict[str, str]
+    pin_numbers: dict[str, str]
+
+
+def describe(instance: Instance, text: str, scales: Mapping[str, Decimal]) -> Description:
+    """Return what an instance says; `scales` are those of the library it is in."""
+    items = instance.items
+    designators: list[str] = []
+    properties: list[Property] = []
+    pin_numbers: dict[str, str] = {}
+    for item in instance_items(text, items) if isinstance(items, InstanceRun) else items:
+        if isinstance(item, Property):
+            properties.append(item)
+        elif isinstance(item, PinNumber):
+            pin_numbers[item.port] = item.number.strip()
+        elif item.text.strip():
+            designators.append(item.text.strip())
+    return Description(tuple(designators), read_properties(property_pairs(properties, scales)), pin_numbers)
 
 
 class Symbol(NamedTuple):
@@ -32,18 +62,13 @@ class Reference(NamedTuple):
     is_stated: bool
 
 
-def property_pairs(
-    properties: Iterable[PropertyRun | Property], scales: Mapping[str, Decimal]
-) -> Iterator[tuple[str, str]]:
-    """Yield names and values as text, numbers with their unit in the SI; `scales` is of the library."""
-    for entry in properties:
-        if isinstance(entry, PropertyRun):
-            for name, text in entry.pairs():
-                yield _named_inside(name, text) if "=" in text else (name, text)
-        elif isinstance(entry.value, Decimal):
-            yield entry.name, quantity(entry.value * scales.get(entry.unit, Decimal(1)), entry.unit)
+def property_pairs(properties: Iterable[Property], scales: Mapping[str, Decimal]) -> Iterator[tuple[str, str]]:
+    """Yield names and values as text, numbers with their unit in the SI."""
+    for name, value, unit in properties:
+        if isinstance(value, Decimal):
+            yield name, quantity(value * scales.get(unit, Decimal(1)), unit)
         else:
-            yield entry.name, entry.value
+            yield _named_inside(name, value) if "=" in value else (name, value)
 
 
 def _named_inside(name: str, text: str) -> tuple[str, str]:
@@ -54,52 +79,41 @@ def _named_inside(name: str, text: str) -> tuple[str, str]:
     return name, text
 
 
-def names_itself(instance: Instance) -> bool:
-    """Say whether an instance has a reference designator of its own."""
-    return any(text.strip() for text in instance.designators)
-
-
-def reference_of(instance: Instance, properties: Mapping[str, str]) -> Reference:
+def reference_of(instance: Instance, said: Description) -> Reference:
     """Return the reference designator: of the instance, else of a property, else its display name.
 
     Of two designators such as U5C and U5 the second is the package and C the section in it.
     """
-    stated = [text.strip() for text in instance.designators if text.strip()]
-    section = properties.get("section", "")
-    if stated:
-        first, last = stated[0], stated[-1]
+    section = said.properties.get("section", "")
+    if said.designators:
+        first, last = said.designators[0], said.designators[-1]
         package, whole = (first, last) if len(first) < len(last) else (last, first)
         letters = whole[len(package) :]
         if whole.startswith(package) and letters.isalpha() and len(letters) <= _LONGEST_SECTION:
             return Reference(package, letters, True)
         return Reference(first, section, True)
-    stated_by_property = properties.get("reference", "")
-    return Reference(stated_by_property or instance.name.display, section, bool(stated_by_property))
+    stated = said.properties.get("reference", "")
+    return Reference(stated or instance.name.display, section, bool(stated))
 
 
-def symbol_of(instance: Instance, source: Source | None) -> Symbol | None:
+def symbol_of(said: Description, source: Source | None) -> Symbol | None:
     """Return what a power symbol or an off-page symbol says, None for any other instance.
 
-    Both have one pin at most. Exporters mark them by a property of the port or by the name of the cell.
+    Both have one pin at most and no reference designator, and netlist views have none of them. Exporters mark
+    them by a property of the port or by the name of the cell.
     """
-    if source is None or len(source.ports.bits) > 1:
+    if source is None or len(source.ports.bits) > 1 or said.designators or source.view.kind == "NETLIST":
         return None
     words = symbol_words()
     title = f"{source.library.name.display} {source.cell.name.display}".casefold()
-    is_power = any(bit.is_implicit for bit in source.ports.bits) or any(w in title for w in words.power_words)
-    is_off_page = any(word in title for word in words.off_page_words)
-    if not (is_power or is_off_page):
-        return None
-    name = _symbol_name(instance, source, is_power=is_power and not is_off_page)
-    return Symbol(name, is_power and not is_off_page) if name else None
+    if any(word in title for word in words.off_page_words):
+        name = _symbol_name(said)
+        return Symbol(name, False) if name else None
+    if any(bit.is_implicit for bit in source.ports.bits) or any(word in title for word in words.power_words):
+        ports = [bit.display for bit in source.ports.bits if not is_number(bit.display)]
+        return Symbol(_symbol_name(said) or (ports[0] if ports else source.cell.name.display), True)
+    return None
 
 
-def _symbol_name(instance: Instance, source: Source, *, is_power: bool) -> str:
-    stated = {fold(name): text.strip() for name, text in property_pairs(instance.properties, {})}
-    for name in symbol_words().name:
-        if stated.get(fold(name)):
-            return stated[fold(name)]
-    if not is_power:
-        return ""
-    ports = [bit.display for bit in source.ports.bits if not bit.display.isdecimal()]
-    return ports[0] if ports else source.cell.name.display
+def _symbol_name(said: Description) -> str:
+    return next((said.properties[key] for key in symbol_words().name if key in said.properties), "")

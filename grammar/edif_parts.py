@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from typing import NamedTuple
 
-from .edif_ends import Connection, PartEnd
+from .edif_ends import PartEnd
 from .edif_instances import Reference, property_pairs, reference_of
 from .edif_library import Source
 from .edif_places import Places
-from .edif_ports import PortBit
+from .edif_ports import PortBit, is_number
 from .netlist import Note, Part, Pin, Place
 from .property_names import is_fitted, read_properties
 
@@ -41,7 +41,7 @@ class PartBuilder:
     def build(self, end: PartEnd) -> Built:
         """Return the part for one occurrence."""
         properties = self._properties(end)
-        reference = reference_of(end.instance, properties)
+        reference = reference_of(end.instance, end.said)
         name = f"{end.path}{reference.text}{end.suffix}"
         place = self._places.at(end.instance.name.offset)
         value = properties.get("value", "")
@@ -65,7 +65,7 @@ class PartBuilder:
 
     def _properties(self, end: PartEnd) -> Mapping[str, str]:
         """Return the properties of the instance, and where it is silent those of its cell."""
-        own = read_properties(property_pairs(end.instance.properties, end.home.scales))
+        own = end.said.properties
         if end.source is None:
             return own
         view, cell = end.source.view, end.source.cell
@@ -84,37 +84,27 @@ class PartBuilder:
 
     def _pins(self, end: PartEnd, name: str, place: Place) -> list[Pin]:
         """Return the pins in the order of the cell's ports, then those that only the nets name."""
-        reached = self._reached(end, name)
-        numbers = _numbers(end)
+        reached = self._reached(end)
+        numbers = {_key(end.source, port): number for port, number in end.said.pin_numbers.items()}
         pins: list[Pin] = []
-        for bit in _bits(end, reached, numbers):
+        for bit in _bits(end.source, reached, numbers):
             number = numbers.get(bit.key) or bit.number
-            for connection in reached.get(bit.key, _UNCONNECTED):
-                if connection is None:
-                    pins.append(Pin(number, bit.display, "", place))
-                else:
-                    net = self._net_at(connection.piece)
-                    pins.append(Pin(number, bit.display, net, self._places.at(connection.offset)))
+            nets = reached.get(bit.key)
+            if not nets:
+                pins.append(Pin(number, bit.display, "", place))
+                continue
+            pins += [Pin(number, bit.display, net, self._places.at(at)) for net, at in nets.items()]
+            if len(nets) > 1:
+                message = f"pin {number or bit.display} of {name} is on {len(nets)} nets: {' and '.join([*nets][:2])}"
+                self._notes.append(Note("pin-mismatch", message, pins[-1].place, name))
         return pins
 
-    def _reached(self, end: PartEnd, name: str) -> dict[str, list[Connection]]:
-        """Return what nets reach by key of the port, each net once."""
-        reached: dict[str, list[Connection]] = {}
-        for connection in end.connections:
-            key = _key(end.source, connection.port)
-            others = reached.setdefault(key, [])
-            nets = {self._net_at(other.piece) for other in others}
-            net = self._net_at(connection.piece)
-            if net in nets:
-                continue
-            if nets:
-                message = f"pin {key} of {name} is on two nets, {others[0] and self._net_at(others[0].piece)} and {net}"
-                self._notes.append(Note("pin-mismatch", message, self._places.at(connection.offset), name))
-            others.append(connection)
+    def _reached(self, end: PartEnd) -> dict[str, dict[str, int]]:
+        """Return for each port by its key the nets on it, and where each is said first."""
+        reached: dict[str, dict[str, int]] = {}
+        for port, piece, offset in end.connections:
+            reached.setdefault(_key(end.source, port), {}).setdefault(self._net_at(piece), offset)
         return reached
-
-
-_UNCONNECTED: list[Connection | None] = [None]
 
 
 def _model(end: PartEnd) -> str:
@@ -128,21 +118,16 @@ def _key(source: Source | None, port: str) -> str:
     return keys[0] if keys else port
 
 
-def _numbers(end: PartEnd) -> Mapping[str, str]:
-    """Return the pin numbers that the instance itself gives, by key of the port."""
-    return {_key(end.source, pin.port): pin.number.strip() for pin in end.instance.pin_numbers}
-
-
-def _bits(end: PartEnd, reached: Mapping[str, list[Connection]], numbers: Mapping[str, str]) -> list[PortBit]:
+def _bits(
+    source: Source | None, reached: Mapping[str, object], numbers: Mapping[str, str]
+) -> Iterable[PortBit]:
     """Return the pins of the cell, and behind them those that only the nets or the instance know.
 
-    Where the cell is not defined there are only these; numbers among them are put in order.
+    Where the cell is not defined there are only these; when all are numbers they are put in order.
     """
-    known = end.source.ports.bits if end.source else []
-    if end.source and len(reached) <= len(known) and all(end.source.ports.bit(key) for key in reached):
-        return known
+    known = source.ports.bits if source else []
     keys = {bit.key for bit in known}
     others = [key for key in dict.fromkeys([*reached, *numbers]) if key not in keys]
-    if not known and all(key.isdecimal() for key in others):
+    if not known and all(is_number(key) for key in others):
         others.sort(key=int)
-    return known + [PortBit(key, key, key if key.isdecimal() else "", False, 0) for key in others]
+    return known + [PortBit(key, key, key if is_number(key) else "", False, 0) for key in others]

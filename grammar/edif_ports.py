@@ -6,9 +6,11 @@ from math import prod
 from typing import NamedTuple
 
 from .edif_budget import Budget
-from .edif_forms import Port, Property, View
+from .edif_forms import Port, View
 from .edif_names import Name, bit_names
 from .property_names import symbol_words
+
+_LONGEST_NUMBER = 6
 
 
 class PortBit(NamedTuple):
@@ -19,6 +21,11 @@ class PortBit(NamedTuple):
     number: str
     is_implicit: bool
     offset: int
+
+
+def is_number(text: str) -> bool:
+    """Say whether a port's name is a pin number, as far as a package has pins."""
+    return len(text) <= _LONGEST_NUMBER and text.isascii() and text.isdecimal()
 
 
 def width(name: Name, budget: Budget) -> int:
@@ -52,7 +59,7 @@ class PortTable:
         self._keys[name.identifier] = keys
         implicit = _is_implicit(port)
         for key, display in zip(keys, displays, strict=True):
-            number = port.designator or (display if display.isdecimal() else "")
+            number = port.designator or (display if is_number(display) else "")
             self.bits.append(PortBit(key, display, number, implicit, name.offset))
 
     def _add_bundles(self, view: View, budget: Budget) -> None:
@@ -92,11 +99,4 @@ class PortTable:
 def _is_implicit(port: Port) -> bool:
     """Say whether a port stands for a global net, such as a supply that no symbol has a pin for."""
     words = symbol_words().power_properties
-    return any(
-        isinstance(entry, Property) and entry.name.casefold() in words for entry in port.properties
-    ) or any(
-        name.casefold() in words
-        for entry in port.properties
-        if not isinstance(entry, Property)
-        for name, _ in entry.pairs()
-    )
+    return any(entry.name.casefold() in words for entry in port.properties)

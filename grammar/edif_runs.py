@@ -1,91 +1,149 @@
 """What stands inside the coarse tokens of edif.lark, read when it is needed.
 
-The grammar has already checked the shape of such a token, so that these patterns only take it apart.
-Kept as text until then, a run of forms takes a fraction of the memory, and nothing at all is spent on the
-cells that a design does not use.
+The grammar has already checked the shape of such a token, so these patterns only take it apart. Until then a
+token is kept as a span of the text: that takes little memory, and nothing at all is spent on the cells that a
+design does not use.
 """
 
 from __future__ import annotations
 
 import re
 from collections.abc import Iterator
-from typing import NamedTuple
 
-from .edif_names import decode, identifier
+from .edif_forms import CellRef, Designator, InstanceRun, JoinedRun, Member, PinNumber, PortList, PortRef, Property
+from .edif_names import Name, decode, identifier
 
-_WORD = r'([^\s()"]+)\s*'
-_RENAME = rf'\(\s*rename\s+{_WORD}"([^"]*)"\s*\)\s*'
-_DISPLAYED = r'(?:\(\s*stringdisplay\s*)?"([^"]*)"'
-_PORT_REF = re.compile(rf"\(\s*portref\s+{_WORD}(?:\(\s*instanceref\s+{_WORD}\)\s*)?\)", re.IGNORECASE)
-_PLAIN_PROPERTY = re.compile(rf'\(\s*[a-z]+\s+{_WORD}\(\s*string\s*"([^"]*)"\s*\)\s*\)', re.IGNORECASE)
-_PROPERTY = re.compile(rf"\(\s*[a-z]+\s*(?:{_WORD}|{_RENAME})\(\s*string\s*{_DISPLAYED}", re.IGNORECASE)
-_PORT_INSTANCE = re.compile(
-    rf"\(\s*portinstance\s*(?:{_WORD}|\(\s*name\s+{_WORD}.*?)\(\s*designator\s*{_DISPLAYED}",
-    re.IGNORECASE | re.DOTALL,
-)
-_QUOTED = re.compile(r'"([^"]*)"')
-_RENAMED = re.compile(_RENAME, re.IGNORECASE)
-_VIEW_REF = re.compile(
-    rf"\(\s*viewref\s+{_WORD}(?:\(\s*cellref\s+{_WORD}(?:\(\s*libraryref\s+{_WORD})?)?", re.IGNORECASE
-)
+_DEEPEST = 6  # as the terminal LIST
 
 
-class JoinedRun(NamedTuple):
-    """A run of `(portRef port (instanceRef instance))` that starts at `offset` of the file."""
-
-    text: str
-    offset: int
-
-    def references(self) -> Iterator[tuple[str, str, int]]:
-        """Yield port, instance (empty where a port of the cell itself is meant) and offset."""
-        for match in _PORT_REF.finditer(self.text):
-            port, instance = match.groups("")
-            yield identifier(port), instance and identifier(instance), self.offset + match.start()
+def _list(depth: int) -> str:
+    """Return a pattern for a list with lists nested in it to this depth; strings may hold parentheses."""
+    inner = ""
+    for _ in range(depth):
+        inner = rf'\((?:[^()"]++|"[^"]*+"{inner and "|" + inner})*+\)'
+    return rf"{inner}\s*+"
 
 
-class PropertyRun(NamedTuple):
-    """A run of `(property name (string "value"))`."""
+_LIST = _list(_DEEPEST)
+_LISTS = rf"(?:{_LIST})*+"
+_WORD = r'([^\s()"]++)\s*+'
+_RENAME = rf'\(\s*+rename\s++{_WORD}"([^"]*+)"\s*+\)\s*+'
+_NAMED = rf"\(\s*+name\s++{_WORD}{_LISTS}\)\s*+"
+_DISPLAYED = rf'(?:"([^"]*+)"\s*+|\(\s*+stringdisplay\s*+"([^"]*+)"\s*+{_LISTS}\)\s*+)'
+_LIBRARY_REF = rf"\(\s*+libraryref\s++{_WORD}\)\s*+"
+_CELL_REF = rf"\(\s*+cellref\s++{_WORD}(?:{_LIBRARY_REF})?+\)\s*+"
+_VIEW_REF = rf"\(\s*+viewref\s++{_WORD}(?:{_CELL_REF})?+\)\s*+"
+_TEXT = rf"\(\s*+string\s*+{_DISPLAYED}\)\s*+"
+_PROPERTY = rf"\(\s*+(?:property|parameter(?:assign)?+)\s*+(?:{_WORD}|{_RENAME}){_TEXT}{_LISTS}\)\s*+"
+_DESIGNATOR = rf"\(\s*+designator\s*+{_DISPLAYED}\)\s*+"
+_PORT_INSTANCE = rf"\(\s*+portinstance\s*+(?:{_WORD}|{_NAMED}){_DESIGNATOR}{_LISTS}\)\s*+"
 
-    text: str
 
-    def pairs(self) -> Iterator[tuple[str, str]]:
-        """Yield the names and the decoded values."""
-        for name, value in _PLAIN_PROPERTY.findall(self.text):
-            yield identifier(name), decode(value)
+def _compiled(pattern: str) -> re.Pattern[str]:
+    return re.compile(pattern, re.IGNORECASE | re.ASCII)
 
 
-def read_property(text: str) -> tuple[str, str]:
-    """Return the display name and the decoded value of a property with a string, as it starts in `text`."""
-    match = _PROPERTY.match(text)
+_QUOTED_FORM = _compiled(r'"([^"]*+)"')
+_RENAME_FORM = _compiled(_RENAME)
+_VIEW_REF_FORM = _compiled(_VIEW_REF)
+_PROPERTY_FORM = _compiled(_PROPERTY)
+_PORT_INSTANCE_FORM = _compiled(_PORT_INSTANCE)
+_PORT_REF_FORM = _compiled(rf"\(\s*+portref\s++{_WORD}(?:\(\s*+instanceref\s++{_WORD}\)\s*+)?+\)\s*+")
+_JOINED_FORM = _compiled(r"\(\s*+joined\s*+")
+_NET_FORM = _compiled(rf"\(\s*+net\s*+(?:{_WORD}|{_RENAME})(?:(?!\(\s*+joined){_LIST})*+")
+_INSTANCE_FORM = _compiled(rf"\(\s*+instance\s*+(?:{_WORD}|{_NAMED}|{_RENAME})({_VIEW_REF})")
+_ITEM_FORM = _compiled(f"{_PROPERTY}|{_DESIGNATOR}|{_PORT_INSTANCE}|{_LIST}")
+_PROPERTY_GROUPS = (4, 5)  # the last group that has matched tells which of the four it is
+_DESIGNATOR_GROUPS = (6, 7)
+_PORT_INSTANCE_GROUPS = (10, 11)
+
+
+def port_references(text: str, run: JoinedRun) -> Iterator[tuple[str, str, int]]:
+    """Yield port, instance (empty where a port of the cell itself is meant) and offset of each `portRef`."""
+    for match in _PORT_REF_FORM.finditer(text, run.start, run.end):
+        port, instance = match.groups("")
+        yield identifier(port), instance and identifier(instance), match.start()
+
+
+def listed_ports(text: str, ports: PortList) -> Iterator[PortRef]:
+    """Yield the ports of a list one by one."""
+    for reference in ports.references:
+        if isinstance(reference, PortRef):
+            yield reference
+        else:
+            for port, instance, offset in port_references(text, reference):
+                yield PortRef(Member(port, None, offset), (Member(instance, None, offset),) if instance else ())
+
+
+def instance_items(text: str, run: InstanceRun) -> Iterator[Property | Designator | PinNumber]:
+    """Yield what the items of an instance say, in the order of the file."""
+    for match in _ITEM_FORM.finditer(text, run.start, run.end):
+        last = match.lastindex
+        if last in _PROPERTY_GROUPS:
+            plain, _, renamed, *_ = match.groups()
+            yield Property(identifier(plain) if plain else decode(renamed), decode(match[last]))
+        elif last in _PORT_INSTANCE_GROUPS:
+            yield PinNumber(identifier(match[8] or match[9]), decode(match[last]))
+        elif last:
+            yield Designator(decode(match[last]))
+
+
+def read_instance(token: str, start: int) -> tuple[Name, str, InstanceRun]:
+    """Return the name of an instance, its `viewRef` as written, and the span of its items."""
+    match = _INSTANCE_FORM.match(token)
     assert match is not None  # the terminal has the same shape
-    plain, _, renamed, value = match.groups()
-    return identifier(plain) if plain else decode(renamed), decode(value)
+    plain, named, renamed, display, view_ref, *_ = match.groups()
+    word = identifier(plain or named or renamed)
+    group = 1 if plain else 2 if named else 3
+    name = Name(word, word if display is None else decode(display), start + match.start(group))
+    return name, view_ref, InstanceRun(start + match.end(), start + len(token))
 
 
-def read_pin_number(text: str) -> tuple[str, str]:
-    """Return the port and its designator from a `portInstance` with its designator in front."""
-    match = _PORT_INSTANCE.match(text)
+def read_net(token: str, start: int) -> tuple[Name, JoinedRun]:
+    """Return the name of a net and the span in which its ports are."""
+    match = _NET_FORM.match(token)
     assert match is not None
-    return identifier(match[1] or match[2]), decode(match[3])
+    plain, renamed, display = match.groups()
+    word = identifier(plain or renamed)
+    name = Name(word, word if display is None else decode(display), start + match.start(1 if plain else 2))
+    joined = _JOINED_FORM.match(token, match.end())
+    assert joined is not None
+    return name, JoinedRun(start + joined.end(), start + len(token))
 
 
-def read_quoted(text: str) -> str:
-    """Return the first string in `text`, decoded."""
-    match = _QUOTED.search(text)
+def read_property(token: str) -> Property:
+    """Return a property with a string by its display name."""
+    match = _PROPERTY_FORM.match(token)
+    assert match is not None
+    plain, _, renamed, text, displayed = match.groups()
+    return Property(identifier(plain) if plain else decode(renamed), decode(displayed if text is None else text))
+
+
+def read_pin_number(token: str) -> PinNumber:
+    """Return the port and its designator from a `portInstance` with its designator in front."""
+    match = _PORT_INSTANCE_FORM.match(token)
+    assert match is not None
+    plain, named, text, displayed = match.groups()
+    return PinNumber(identifier(plain or named), decode(displayed if text is None else text))
+
+
+def read_quoted(token: str) -> str:
+    """Return the first string in a token."""
+    match = _QUOTED_FORM.search(token)
     assert match is not None
     return decode(match[1])
 
 
-def read_rename(text: str) -> tuple[str, str]:
-    """Return the identifier and the decoded display text of a rename."""
-    match = _RENAMED.match(text)
+def read_rename(token: str, start: int) -> Name:
+    """Return the name that a rename defines."""
+    match = _RENAME_FORM.match(token)
     assert match is not None
-    return identifier(match[1]), decode(match[2])
+    return Name(identifier(match[1]), decode(match[2]), start + match.start(1))
 
 
-def read_view_ref(text: str) -> tuple[str, str, str]:
-    """Return the identifiers of view, cell and library; empty where they are not named."""
-    match = _VIEW_REF.match(text)
+def read_view_ref(token: str) -> CellRef:
+    """Return the cell that a `viewRef` names, its library and the view."""
+    match = _VIEW_REF_FORM.match(token)
     assert match is not None
     view, cell, library = match.groups()
-    return identifier(view), identifier(cell) if cell else "", identifier(library) if library else ""
+    return CellRef(identifier(cell) if cell else "", identifier(library) if library else "", identifier(view))

@@ -121,6 +121,7 @@ def is_fitted(value: str, properties: Mapping[str, str]) -> bool:
     return not any(map(leaves_out, (value, fit, properties.get("state", ""))))
 
 
+@lru_cache(maxsize=4096)
 def leaves_out(text: str) -> bool:
     """Say whether a value such as `10K,1%,DNI` says that the part is left out."""
     words = fit_words()
