@@ -15,6 +15,9 @@ from .solver import Array, Condition, Free, Network, Sample
 from .states import MOST_JUNCTIONS, Junction, Probe, State, read_with_states
 from .worst_case import Analysis, analyse
 
+# The name under which the direction of the closed loops is read beside the probes.
+_DIRECTION = "direction of the loop"
+
 
 def estimate(
     growth: Growth,
@@ -36,10 +39,10 @@ def estimate(
     if adrift and not growth.diodes:
         nets = tuple(sorted(adrift))
         return Unsolved(f"no direct-current path to net {', '.join(nets)}", nets=nets)
-    evaluation = _Evaluation(
-        network, growth.junctions(), {name: probe for name, (probe, _) in probes.items()}
-    )
-    units = {name: unit for name, (_, unit) in probes.items()}
+    reads: dict[str, Probe] = {name: probe for name, (probe, _) in probes.items()}
+    reads[_DIRECTION] = lambda solution: solution.loop_direction
+    evaluation = _Evaluation(network, growth.junctions(), reads)
+    units = {name: unit for name, (_, unit) in probes.items()} | {_DIRECTION: ""}
     analyses = analyse(list(growth.parameters.values()), evaluation, units)
     trouble = _trouble(growth, analyses, evaluation)
     if trouble is not None:
@@ -111,6 +114,10 @@ def _trouble(growth: Growth, analyses: Mapping[str, Analysis], evaluation: _Eval
     if evaluation.unsettled:
         names = ", ".join(evaluation.states)
         return Unsolved(f"no state of {names} fits the network in every corner", parts=parts, nets=nets)
+    direction = analyses[_DIRECTION].spread
+    if direction.minimum < 0 < direction.maximum:
+        reason = "the feedback changes its sign within the tolerances, so that nothing bounds the loop"
+        return Unsolved(reason, parts, nets)
     for name, analysis in analyses.items():
         if not evaluation.closed and not isfinite(analysis.spread.nominal):
             return Unsolved("the sources and shorts on the network contradict each other", parts, nets)

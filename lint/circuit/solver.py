@@ -160,7 +160,10 @@ def _terminals(element: Element) -> tuple[str, ...]:
 
 @dataclass(slots=True)
 class Solution:
-    """Voltages and currents of one network, arrays of shape (samples,). Where no solution exists: NaN."""
+    """Voltages and currents of one network, arrays of shape (samples,). Where no solution exists: NaN.
+
+    loop_direction: in which direction (1 or -1) the free quantities move what the conditions compare
+    """
 
     network: Network
     sample: Sample
@@ -168,6 +171,7 @@ class Solution:
     _potentials: dict[str, Array]
     _branches: dict[str, Array]
     _free: dict[str, Array] = field(default_factory=dict[str, Array])
+    loop_direction: Array = field(default_factory=lambda: np.zeros(1))
 
     @property
     def nets(self) -> set[str]:
@@ -300,7 +304,17 @@ class _Equations:
             for position, free in enumerate(self.network.free)
             if isinstance(free, FreeCurrent)
         }
-        return Solution(self.network, self.sample, self.size, potentials, branches, free)
+        direction = self._loop_direction() if self.network.free else np.ones(1)
+        return Solution(self.network, self.sample, self.size, potentials, branches, free, direction)
+
+    def _loop_direction(self) -> Array:
+        """Return the sign of the determinant, that of the branches taken out.
+
+        The determinant is linear in every single resistance or gain. So where it has one sign in all corners
+        it is zero nowhere between them, and the closed loop runs away nowhere between them.
+        """
+        sign, _ = np.linalg.slogdet(self.matrix)
+        return sign * (-1.0) ** len(self.branches)
 
     def _has_branch(self, element: Element) -> bool:
         """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
