@@ -14,6 +14,7 @@ from ..grammar.netlist import Netlist, Part, Place
 from .brief import Brief, ControllerBrief, Rail
 from .circuit.amplifiers import Amplifier, AmplifierReader, Reach, SenseResistor, amplifier_for
 from .circuit.answers import estimate
+from .circuit.compensation import Compensation, compensation
 from .circuit.conditions import Conditions
 from .circuit.controllers import Controller, find_controllers
 from .circuit.dead_time import DeadTime, dead_time
@@ -105,6 +106,20 @@ class Design:
         """Return the direct voltage of a net over ground while a controller's converter is in a regime."""
         return self._keep(f"voltage in {regime}", net, lambda: self._voltage_in(regime, controller, net))
 
+    def difference(self, net: str, other: str) -> Estimate | Unsolved:
+        """Return by how much (V) the direct voltage of a net stands above that of another."""
+        return self._keep("difference", f"{net} - {other}", lambda: self._difference(net, other))
+
+    def feedback_current(self, controller: Controller) -> Estimate | Unsolved:
+        """Return the current (A) out of a controller's feedback pin, its voltage anywhere in its range."""
+        return self._keep(
+            "feedback current", controller.reference, lambda: self._loops(controller).feedback_current()
+        )
+
+    def compensation(self, output: str, inverting: str) -> Compensation | None:
+        """Return the feedback path from an amplifier's output net to its inverting input's net."""
+        return compensation(self.circuit, self.known, output, inverting)
+
     def time_constant(self, capacitor: Part) -> Estimate | Unsolved:
         """Return the time constant (s) of a capacitor with the resistance that it sees."""
         return self._keep(
@@ -175,9 +190,12 @@ class Design:
 
     def power_stage(self, controller: Controller) -> PowerStage | NotRecognised:
         """Return the power stage that a controller's outputs drive, or why none was recognised."""
-        amplifiers = self.amplifiers(controller)
-        reader = PowerStageReader(self.circuit, self.known, controller, amplifiers)
-        return self._keep("power stage", controller.reference, reader.read)
+
+        def read() -> PowerStage | NotRecognised:
+            amplifiers = self.amplifiers(controller)
+            return PowerStageReader(self.circuit, self.known, controller, amplifiers).read()
+
+        return self._keep("power stage", controller.reference, read)
 
     def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
         """Return the current at which a controller's current loop takes over.
@@ -217,6 +235,11 @@ class Design:
         if key not in self._answers:
             self._answers[key] = answer()
         return cast(_Answer, self._answers[key])
+
+    def _difference(self, net: str, other: str) -> Estimate | Unsolved:
+        growth = Growth(self.circuit, self.known, self.controllers).grow(net, other)
+        found = estimate(growth, {"difference": (lambda s: s.voltage(net, other), "V")})
+        return found if isinstance(found, Unsolved) else found["difference"]
 
     def _amplifier_reader(self, controller: Controller) -> AmplifierReader:
         told = self.told(controller)

@@ -18,6 +18,9 @@ _PREFIXES = {-12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G"
 # Units that are never written with a prefix.
 _PLAIN_UNITS = frozenset({"%", "degC", "K", "ppm/K", ""})
 
+# Less than a thousandth of a picofarad or picoampere is the rounding of a zero.
+_LEAST_SHOWN = 1e-15
+
 _SYMBOLS = {"ohm": "Ω", "degC": "°C"}
 
 
@@ -84,7 +87,7 @@ def engineering(value: float, unit: str = "", digits: int = 3) -> str:
         return f"{'-' if value < 0 else ''}∞ {symbol}".strip()
     if not isfinite(value):
         raise ValueError("not a number")
-    if value == 0:
+    if abs(value) < _LEAST_SHOWN:
         return f"0 {symbol}".strip()
     rounded = float(f"{value:.{digits - 1}e}")
     exponent = floor(log10(abs(rounded)))

@@ -125,6 +125,15 @@ class Loops:
             )
         return Trip(found["current"], found["threshold"], found["dissipation"])
 
+    def feedback_current(self) -> Estimate | Unsolved:
+        """Return the current (A) out of the feedback pin into what hangs on it, over its control range."""
+        net = self.controller.net("feedback")
+        if not net:
+            return Unsolved(f"the feedback pin of {self.controller.reference} is not mapped")
+        growth = Growth(self.circuit, self.known, (self.controller,)).grow(net, from_known=True)
+        found = estimate(growth, {"current": (lambda s: s.current_out_of(net), "A")})
+        return found if isinstance(found, Unsolved) else found["current"]
+
     def _without(self, net: str) -> dict[str, Potential]:
         return {name: potential for name, potential in self.known.items() if name != net}
 

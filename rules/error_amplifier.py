@@ -1,0 +1,374 @@
+"""Error amplifiers: their inputs, their polarity, their feedback, and what is left unused."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import replace
+
+from ..lint.circuit.amplifiers import Amplifier
+from ..lint.circuit.controllers import Controller
+from ..lint.circuit.loops import Regulation
+from ..lint.circuit.regimes import Regime
+from ..lint.design import Design
+from ..lint.estimate import Estimate, Unsolved
+from ..lint.judge import judge, missing, unsolved
+from ..lint.quantity import Spread, engineering, percent
+from ..lint.rule import rule
+from ..lint.verdict import Limit, Outcome, Verdict
+
+
+def _pins(amplifier: Amplifier) -> tuple[str, str]:
+    return f"amplifier {amplifier.number} in+", f"amplifier {amplifier.number} in-"
+
+
+def _inputs(amplifier: Amplifier) -> tuple[tuple[str, str], ...]:
+    """Return the role and the net of both inputs."""
+    plus, minus = _pins(amplifier)
+    return (plus, amplifier.plus), (minus, amplifier.minus)
+
+
+def _driven(amplifier: Amplifier, design: Design) -> bool:
+    """Tell whether both inputs have a direct-current path: amplifier.input-open speaks of those without."""
+    return design.has_path(amplifier.plus) and design.has_path(amplifier.minus)
+
+
+def _mapped(controller: Controller, design: Design) -> list[Amplifier]:
+    return [a for a in design.amplifiers(controller) if a.use != "unmapped"]
+
+
+@rule("amplifier.input-open", level="error", topic="error amplifier")
+def input_open(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does every amplifier input have a direct-current path?
+
+    What:
+        Looks for a path through resistive parts from each input to ground, the reference, a rail or the
+        power path. An input with capacitors only, or with nothing, has none.
+    Why:
+        An input without a path drifts on its own bias current, and the amplifier it belongs to can hold
+        the outputs off, or fail to.
+    Formula:
+        none: connectivity
+    Source:
+        SLVS074 p.4 (input bias current); common practice, no source (the rule).
+    Remedy:
+        Tie the input: in+ of an unused amplifier to ground, its in- to the reference.
+    """
+    inputs = {
+        role: net
+        for a in _mapped(controller, design)
+        for role, net in zip(_pins(a), (a.plus, a.minus), strict=True)
+    }
+    adrift = {role: net for role, net in inputs.items() if not design.has_path(net)}
+    if inputs and not adrift:
+        yield Verdict(
+            outcome=Outcome.PASS,
+            message="every amplifier input has a direct-current path",
+            pins=tuple(inputs),
+        )
+    for role, net in adrift.items():
+        yield Verdict(
+            outcome=Outcome.FAIL,
+            message=f"{controller.pins[role].name} has no direct-current path on net {net}",
+            nets=(net,),
+            pins=(role,),
+            places=(controller.pins[role].place,),
+            source=controller.profile.figure("amplifier.bias-current").source,
+            remedy=f"join {net} to a defined potential by a resistor",
+        )
+
+
+@rule("amplifier.unused", level="error", topic="error amplifier")
+def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is an amplifier that is not used tied off so that its output stays off?
+
+    What:
+        Computes how far in- stands above in+ on an amplifier that senses neither an output nor a current.
+    Why:
+        The amplifiers share one output, and the one that asks for the shorter pulse wins. An unused one
+        whose inputs are joined, or nearly equal, is decided by its own offset: some boards run, some
+        never start.
+    Formula:
+        V(in-) - V(in+) [V] by nodal analysis, at least five times the greatest offset
+    Source:
+        SLVS074 p.4 (offset 10 mV); the margin is common practice, no source.
+    Remedy:
+        Tie in+ to ground and in- to the reference.
+    """
+    least = controller.profile.practice("amplifier.unused-difference")
+    for amplifier in _mapped(controller, design):
+        if amplifier.use != "unused" or not (
+            design.has_path(amplifier.plus) and design.has_path(amplifier.minus)
+        ):
+            continue
+        found = design.difference(amplifier.minus, amplifier.plus)
+        if isinstance(found, Unsolved):
+            yield unsolved(found, f"tie-off of unused amplifier {amplifier.number}", pins=_pins(amplifier))
+            continue
+        yield judge(
+            found,
+            least.limit(),
+            f"unused amplifier {amplifier.number}: in- stands {found.spread} above in+",
+            source=f"{controller.profile.figure('amplifier.offset').source}; {least.source}",
+            rating=True,
+            pins=_pins(amplifier),
+            remedy=f"tie {controller.pins[_pins(amplifier)[0]].name} to ground and "
+            f"{controller.pins[_pins(amplifier)[1]].name} to the reference",
+        )
+
+
+_REGIMES = (
+    Regime.START_UP,
+    Regime.LOWEST_INPUT,
+    Regime.HIGHEST_INPUT,
+    Regime.NO_LOAD,
+    Regime.CURRENT_LIMIT,
+    Regime.SHORT_CIRCUIT,
+)
+
+
+@rule("amplifier.common-mode", level="error", topic="error amplifier")
+def common_mode(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Do both inputs of each amplifier stay where the amplifier works, in every regime?
+
+    What:
+        Computes both inputs at start-up, in regulation at the lowest and highest supply, without load,
+        in current limit and into a short circuit, and holds the extremes against the common-mode range
+        at the lowest supply.
+    Why:
+        Outside the range the amplifier's output may turn over: a loop that regulates on the bench latches
+        at start-up or in a short circuit.
+    Formula:
+        -0.3 V <= V(in) <= V(supply, lowest) - 2 V
+    Source:
+        SLVS074 p.4 (common-mode input range).
+    Remedy:
+        Divide the input down, or sense on the low side.
+    """
+    supply = controller.net("supply")
+    voltage = design.voltage(supply) if supply else None
+    if voltage is None:
+        return
+    if isinstance(voltage, Unsolved):
+        yield missing(f'brief: [rails.{supply}] voltage = "..."', "common-mode range of the amplifiers")
+        return
+    low = controller.profile.figure("amplifier.common-mode-low")
+    headroom = controller.profile.figure("amplifier.common-mode-headroom").minimum or 0.0
+    limit = Limit(low.minimum, voltage.spread.minimum - headroom, "V")
+    for amplifier in _mapped(controller, design):
+        for role, net in _inputs(amplifier):
+            if design.has_path(net):
+                yield _within(controller, design, role, net, limit, low.source)
+
+
+def _within(
+    controller: Controller, design: Design, role: str, net: str, limit: Limit, source: str
+) -> Verdict:
+    found = {regime: design.voltage_in(regime, controller, net) for regime in _REGIMES}
+    lost = [answer for answer in found.values() if isinstance(answer, Unsolved)]
+    if lost:
+        return unsolved(lost[0], f"range of {controller.pins[role].name}", pins=(role,))
+    solved = {regime: answer for regime, answer in found.items() if isinstance(answer, Estimate)}
+    least = min(solved, key=lambda regime: solved[regime].spread.minimum)
+    most = max(solved, key=lambda regime: solved[regime].spread.maximum)
+    everywhere = _over(solved[least], solved[most], solved[Regime.NO_LOAD])
+    where = f"lowest at {least}, highest at {most}" if least is not most else f"both ends at {least}"
+    return judge(
+        everywhere,
+        limit,
+        f"{controller.pins[role].name} {everywhere.spread}: {where}",
+        source=source,
+        rating=True,
+        pins=(role,),
+        remedy=f"divide {net} down, or sense on the low side",
+    )
+
+
+def _over(least: Estimate, most: Estimate, usual: Estimate) -> Estimate:
+    """Return an estimate from the least to the most of several regimes, nominal as in the usual one."""
+
+    def joined(low: Spread, high: Spread) -> Spread:
+        nominal = min(max(usual.spread.nominal, low.minimum), high.maximum)
+        return Spread(low.minimum, nominal, high.maximum, "V")
+
+    return replace(
+        usual,
+        spread=joined(least.spread, most.spread),
+        statistical=joined(least.statistical, most.statistical),
+        assumptions=tuple(dict.fromkeys((*least.assumptions, *most.assumptions))),
+    )
+
+
+@rule("amplifier.polarity", level="error", topic="error amplifier")
+def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does more output, or more current, shorten the pulse?
+
+    What:
+        Computes the difference of the inputs with the output shorted (voltage amplifier) or without load
+        (current amplifier). There the amplifier must ask for the longest pulse: in+ below in-.
+    Why:
+        In this class a high amplifier output shortens the pulse, the reverse of other families. With the
+        inputs exchanged the loop drives the output up to the rail instead of holding it.
+    Formula:
+        V(in+) - V(in-) [V] < 0 with the output at 0 V, or with no current in the sense resistor
+    Source:
+        SLVS074 p.4 and its block diagram (the amplifiers' outputs raise FEEDBACK).
+    Remedy:
+        Exchange the two inputs: sensed quantity to in+, reference to in-.
+    """
+    for amplifier in _mapped(controller, design):
+        regime = {"voltage": Regime.SHORT_CIRCUIT, "current": Regime.NO_LOAD}.get(amplifier.use)
+        if regime is None or not _driven(amplifier, design):
+            continue
+        plus = design.voltage_in(regime, controller, amplifier.plus)
+        minus = design.voltage_in(regime, controller, amplifier.minus)
+        if isinstance(plus, Unsolved) or isinstance(minus, Unsolved):
+            continue  # amplifier.common-mode names what stands in the way
+        yield _direction(controller, amplifier, regime, plus, minus)
+
+
+def _direction(
+    controller: Controller, amplifier: Amplifier, regime: Regime, plus: Estimate, minus: Estimate
+) -> Verdict:
+    names = [controller.pins[role].name for role in _pins(amplifier)]
+    right = plus.spread.nominal < minus.spread.nominal
+    values = f"{engineering(plus.spread.nominal, 'V')} against {engineering(minus.spread.nominal, 'V')}"
+    more = "output voltage" if amplifier.use == "voltage" else "current"
+    does = "shortens" if right else "lengthens"
+    return Verdict(
+        outcome=Outcome.PASS if right else Outcome.FAIL,
+        message=f"at {regime} {names[0]} stands at {values} on {names[1]}: more {more} {does} the pulse",
+        parts=tuple(dict.fromkeys((*plus.parts, *minus.parts))),
+        nets=(amplifier.plus, amplifier.minus),
+        pins=_pins(amplifier),
+        source="SLVS074 p.4",
+        remedy="" if right else f"exchange {names[0]} and {names[1]}",
+    )
+
+
+@rule("amplifier.compensation", level="warning", topic="error amplifier")
+def compensation(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does the amplifier that regulates have a feedback path of its own?
+
+    What:
+        Looks for resistors and capacitors from FEEDBACK to the inverting input of the voltage amplifier,
+        and prints them with the corner frequencies they make.
+    Why:
+        Without one the amplifier works at its full gain of thousands: with the output filter behind it
+        the loop oscillates.
+    Formula:
+        corner [Hz] = 1 / (2 pi R [ohm] C [F]) of each resistor and capacitor in series
+    Source:
+        common practice, no source.
+    Remedy:
+        Put a resistor and a capacitor in series from FEEDBACK to in-.
+    """
+    net = controller.net("feedback")
+    if not net:
+        return
+    for amplifier in _mapped(controller, design):
+        if amplifier.use == "voltage":
+            yield _feedback_path(controller, design, amplifier, net)
+
+
+def _feedback_path(controller: Controller, design: Design, amplifier: Amplifier, net: str) -> Verdict:
+    found = design.compensation(net, amplifier.minus)
+    pins = ("feedback", _pins(amplifier)[1])
+    names = [controller.pins[role].name for role in pins]
+    if found is None:
+        return Verdict(
+            outcome=Outcome.FAIL,
+            message=f"nothing joins {names[0]} to {names[1]}: the loop runs at the amplifier's full gain",
+            nets=(net, amplifier.minus),
+            pins=pins,
+            source="common practice, no source",
+            remedy=f"put a resistor and a capacitor in series from {names[0]} to {names[1]}",
+        )
+    corners = [f"{r} and {c} at {engineering(f, 'Hz')}" for r, c, f in found.corners]
+    gain = "finite gain at rest" if found.direct else "integrating"
+    return Verdict(
+        outcome=Outcome.PASS,
+        message=f"{', '.join(found.parts)} from {names[0]} to {names[1]}, {gain}"
+        + (f"; corner of {', '.join(corners)}" if corners else ""),
+        parts=found.parts,
+        nets=(net, amplifier.minus),
+        pins=pins,
+        source="common practice, no source",
+    )
+
+
+@rule("amplifier.feedback-pin", level="warning", topic="error amplifier")
+def feedback_pin(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Can the amplifiers and their inner sink move the feedback pin against what hangs on it?
+
+    What:
+        Computes the direct current between the pin and the parts on it over the whole control range.
+    Why:
+        The amplifiers can only lift the pin and a small inner sink lowers it. A resistor that feeds more
+        into the pin than the sink takes holds the outputs off; one that draws too much to ground keeps
+        the amplifiers from shortening the pulse.
+    Formula:
+        I [A] out of the pin by nodal analysis, the pin anywhere in its control range
+    Source:
+        7500 class data sheet of a second source (0.3 mA into the pin); SLVS052 p.4 (2 mA out of it).
+    Remedy:
+        Raise the resistance of what hangs on the pin.
+    """
+    net = controller.net("feedback")
+    if not net:
+        return
+    found = design.feedback_current(controller)
+    if isinstance(found, Unsolved):
+        yield unsolved(found, "current at the feedback pin", pins=("feedback",))
+        return
+    into = controller.profile.figure("feedback.external-sink")
+    out = controller.profile.figure("feedback.source")
+    yield judge(
+        found,
+        Limit(-(into.maximum or 0.0), out.minimum, "A"),
+        f"{controller.pins['feedback'].name} delivers {found.spread} to what hangs on it",
+        source=f"{into.source}; {out.source}",
+        rating=True,
+        pins=("feedback",),
+        remedy="raise the resistances on the pin",
+    )
+
+
+@rule("amplifier.input-error", level="note", topic="error amplifier")
+def input_error(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """How much of the output's error do the bias currents make, which lower resistances would cure?
+
+    What:
+        Takes the share of the two bias currents from the budget of the output voltage.
+    Why:
+        A bias current through unequal source resistances moves the set point; the offset, which no
+        resistor cures, is told beside it.
+    Formula:
+        error = bias current [A] x difference of the source resistances [ohm] / set point [V]
+    Source:
+        SLVS074 p.4 (bias current, offset); the limit of 0.5 % is common practice, no source.
+    Remedy:
+        Make the resistance seen by both inputs alike, or lower the divider's resistance.
+    """
+    found = design.regulation(controller)
+    if not isinstance(found, Regulation):
+        return
+    amplifier = next(a for a in design.amplifiers(controller) if a.use == "voltage")
+    spread = found.output.spread
+    half_width = (spread.maximum - spread.minimum) / 2 / spread.nominal
+    bias = half_width * sum(
+        share for label, share in found.output.contributions if label.endswith(" current")
+    )
+    offset = half_width * sum(
+        share for label, share in found.output.contributions if label.endswith(" offset")
+    )
+    error = Spread(0.0, bias, bias, "")
+    practice = controller.profile.practice("amplifier.set-point-error")
+    verdict = judge(
+        Estimate(error, error, parts=found.output.parts),
+        practice.limit(),
+        f"bias currents move the output by up to {percent(bias)}, the offset by {percent(offset)}",
+        source=practice.source,
+        pins=_pins(amplifier),
+        remedy="lower the divider's resistances, or make both inputs see the same",
+    )
+    yield replace(verdict, measured=None, limit=None) if verdict.outcome is Outcome.PASS else verdict
