@@ -244,7 +244,7 @@ def _foreign(controller: Controller, design: Design, net: str) -> list[_Foreign]
 
 def _other_voltage(controller: Controller, design: Design, net: str) -> list[_Foreign]:
     """Return the voltage that the brief or the net's own name gives the reference net, where it differs."""
-    reference = controller.profile.figure("reference.voltage").spread()
+    reference = _voltage(controller, design)
     rail, volts = design.rail(net), named_voltage(net)
     told = rail.band if rail is not None else None
     if told is None and volts is not None:
@@ -306,10 +306,15 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
             pins=_PIN,
         )
         return
-    reference = controller.profile.figure("reference.voltage").spread()
-    remedy = _better(deviation, reference, allowed)
+    remedy = _better(deviation, _voltage(controller, design), allowed)
     verdict = judge(deviation, allowed, says + _shares(deviation), source="brief", pins=_PIN, remedy=remedy)
     yield verdict
+
+
+def _voltage(controller: Controller, design: Design) -> Spread:
+    """Return the reference's own voltage, its line and load regulation included where they are known."""
+    known = design.potential(controller.net("reference") or "")
+    return known.spread if known is not None else controller.profile.figure("reference.voltage").spread()
 
 
 def _allowed(rail: Rail | None) -> Limit | None:

@@ -57,7 +57,9 @@ def test_without_a_controller_it_is_open_and_lists_what_was_looked_for(ask: Ask)
 
 
 def test_a_part_with_the_number_but_few_pins_is_named(ask: Ask) -> None:
-    (verdict,) = ask("connections.controller-found", "orchard gate\nU7 A B 0 494\nR1 A B 1k\nR2 B 0 1k\n.end\n")
+    (verdict,) = ask(
+        "connections.controller-found", "orchard gate\nU7 A B 0 494\nR1 A B 1k\nR2 B 0 1k\n.end\n"
+    )
     assert verdict.outcome is Outcome.OPEN
     assert "U7 has the number but only 3 pins" in verdict.message
 

@@ -64,6 +64,7 @@ def test_nets_of_two_pins_pass(ask: Ask) -> None:
     "part",
     [
         pytest.param("TP3 PROBE", id="test point"),
+        pytest.param("MH1 HOLE", id="mounting hole"),
         pytest.param("J3 OUT SPARE AUX TERMINAL", id="connector"),
         pytest.param("BEFF ETA 0 V=V(OUT)/24", id="a simulation's own net"),
     ],

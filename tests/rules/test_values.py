@@ -68,7 +68,9 @@ def test_a_part_in_a_solved_network_without_a_value_fails(ask: Ask, reference: s
 
 
 def test_a_sense_resistor_without_a_value_fails(ask: Ask) -> None:
-    text = board("R20 RTN SNS 1k", "R21 RTN 0", "R22 OUT RTN 2").replace("VREF VREF 0 494", "VREF VREF SNS 494")
+    text = board("R20 RTN SNS 1k", "R21 RTN 0", "R22 OUT RTN 2").replace(
+        "VREF VREF 0 494", "VREF VREF SNS 494"
+    )
     (verdict,) = ask("connections.value-missing", text)
     assert (verdict.outcome, verdict.subject) == (Outcome.FAIL, "R21")
 
