@@ -219,6 +219,30 @@ def test_an_unbounded_value_is_drawn_and_named(sound: Review, printed: Printed) 
     assert "∞ A" in report
 
 
+def test_crumbs_and_absurd_margins_are_left_out(sound: Review, printed: Printed) -> None:
+    measured, limit = Spread(1, 2, 3, "V"), Limit(None, 0.001, "V")
+    verdict = Verdict(
+        outcome=Outcome.FAIL,
+        level=Level.ERROR,
+        message="Far out.",
+        measured=measured,
+        limit=limit,
+        margin=limit.margin(measured),
+        contributions=(("R1", 0.97), ("R2", 0.02999), ("R3", 1e-5), ("R4", 0.0)),
+        nets=("VOUT",),
+        topic="supply",
+        rule="supply.range",
+        subject=sound.netlist,
+    )
+    report = printed(replace(sound, verdicts=(verdict,)))
+    assert "spread   97 % from R1, 3 % from R2, less from 2 more\n" in report
+    assert "margin   < -999 %\n" in report
+    assert "nets     VOUT\n" in report
+    assert report.count(sound.netlist) == 1
+    verdict = replace(verdict, outcome=Outcome.PASS, level=None, limit=Limit(0.001, None, "V"), margin=999.0)
+    assert ">999 %\n" in printed(replace(sound, verdicts=(verdict,)))
+
+
 def test_a_long_rule_leaves_its_line_to_the_bar(sound: Review, printed: Printed) -> None:
     limit = Limit(0, 3.3, "V")
     measured = Spread(1, 2, 3, "V")
