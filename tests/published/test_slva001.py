@@ -10,7 +10,7 @@ from pathlib import Path
 
 import pytest
 from pwmlint.grammar import read
-from pwmlint.lint import Level, Outcome, Review, review
+from pwmlint.lint import Outcome, Review, review
 from pwmlint.lint.circuit.loops import Regulation, Trip
 from pwmlint.lint.circuit.timing import Timing
 from pwmlint.lint.design import Design
@@ -108,11 +108,14 @@ class TestTiming:
 
 
 class TestReview:
-    def test_no_error_on_a_published_design(self, reviewed: Review):
-        assert reviewed.passes(Level.ERROR)
-        failed = [verdict.rule for verdict in reviewed.verdicts if verdict.outcome is Outcome.FAIL]
-        # SLVA001 from memory: the figure shows no ceramic capacitor at VCC, none at REF: warnings.
-        assert sorted(failed) == ["reference.bypass", "supply.bypass"]
+    def test_nothing_fails_on_a_published_design(self, reviewed: Review):
+        assert [verdict.rule for verdict in reviewed.verdicts if verdict.outcome is Outcome.FAIL] == []
+
+    def test_what_the_figure_leaves_out_is_for_a_person_to_judge(self, reviewed: Review):
+        # SLVA001 from memory: the figure shows no ceramic capacitor at VCC and none at REF; 50 kohm at RT and
+        # 4 kohm at the threshold are the values as computed, not as sold.
+        judged = {verdict.rule for verdict in reviewed.verdicts if verdict.outcome is Outcome.REVIEW}
+        assert judged == {"reference.bypass", "supply.bypass", "connections.value-preferred"}
 
     def test_the_sense_resistor_needs_a_wattage_and_one_is_named(self, reviewed: Review):
         (found,) = [v for v in reviewed.verdicts if v.rule == "current-limit.sense-dissipation"]
