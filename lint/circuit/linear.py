@@ -32,12 +32,15 @@ def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
     columns = _greatest(matrix, axis=1)
     matrix = matrix / columns[:, None, :]  # now siemens and ohms compare: the greatest coefficients are 1
     right = right / rows
+    questions = np.stack([right, np.ones_like(right)], axis=2)
     try:
-        answers = np.linalg.solve(matrix, np.stack([right, np.ones_like(right)], axis=2))
-    except np.linalg.LinAlgError:
-        return _solve_singular(matrix, right, settled) / columns
+        answers = np.linalg.solve(matrix, questions)
+        doubtful = np.max(np.abs(answers[:, :, 1]), axis=1) > _MOST_GROWTH
+    except np.linalg.LinAlgError:  # an exactly singular one, which hides the answers of all others
+        doubtful = np.any(_vanishing(np.linalg.svd(matrix, compute_uv=False)), axis=1)
+        answers = np.zeros_like(questions)
+        answers[~doubtful] = np.linalg.solve(matrix[~doubtful], questions[~doubtful])
     answer = answers[:, :, 0]
-    doubtful = np.max(np.abs(answers[:, :, 1]), axis=1) > _MOST_GROWTH
     if doubtful.any():
         answer[doubtful] = _solve_singular(matrix[doubtful], right[doubtful], settled)
     return answer / columns
@@ -48,6 +51,11 @@ def _greatest(matrix: Array, axis: int) -> Array:
     return np.where(greatest == 0.0, 1.0, greatest)
 
 
+def _vanishing(singular: Array) -> Flags:
+    """Tell which singular values are zero but for rounding."""
+    return singular * _MOST_GROWTH <= singular[:, :1]
+
+
 def _solve_singular(matrix: Array, right: Array, settled: Flags) -> Array:
     """Solve a stack of systems some of which are singular, by singular value decomposition.
 
@@ -56,7 +64,7 @@ def _solve_singular(matrix: Array, right: Array, settled: Flags) -> Array:
     shorted), and where an unknown that a solution must settle stays open.
     """
     left, singular, across = np.linalg.svd(matrix)
-    null = singular * _MOST_GROWTH <= singular[:, :1]
+    null = _vanishing(singular)
     shares = np.einsum("sji,sj->si", left, right)
     contradicts = np.any(null & (np.abs(shares) > _ROUNDING * np.max(np.abs(right), axis=1)[:, None]), axis=1)
     stays_open = np.any(null[:, :, None] & settled & (np.abs(across) > _ROUNDING), axis=(1, 2))

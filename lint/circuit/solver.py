@@ -162,7 +162,8 @@ def _terminals(element: Element) -> tuple[str, ...]:
 class Solution:
     """Voltages and currents of one network, arrays of shape (samples,). Where no solution exists: NaN.
 
-    loop_direction: in which direction (1 or -1) the free quantities move what the conditions compare
+    loop_direction: in which direction (1 or -1) the free quantities move what the conditions compare; 0 where
+                    they do not
     """
 
     network: Network
@@ -304,7 +305,7 @@ class _Equations:
             for position, free in enumerate(self.network.free)
             if isinstance(free, FreeCurrent)
         }
-        direction = self._loop_direction() if self.network.free else np.ones(1)
+        direction = np.where(np.isnan(answer).any(axis=1), 0.0, self._loop_direction())
         return Solution(self.network, self.sample, self.size, potentials, branches, free, direction)
 
     def _loop_direction(self) -> Array:
@@ -313,8 +314,10 @@ class _Equations:
         The determinant is linear in every single resistance or gain. So where it has one sign in all corners
         it is zero nowhere between them, and the closed loop runs away nowhere between them.
         """
+        if not self.network.free:
+            return np.ones(self.size)
         sign, _ = np.linalg.slogdet(self.matrix)
-        return sign * (-1.0) ** len(self.branches)
+        return np.asarray(sign, dtype=np.float64) * (-1.0) ** len(self.branches)
 
     def _has_branch(self, element: Element) -> bool:
         """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
