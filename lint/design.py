@@ -22,7 +22,8 @@ from .circuit.graph import Circuit
 from .circuit.growth import Growth
 from .circuit.loops import Loops, Regulation, Trip
 from .circuit.potentials import Potential, known_potentials
-from .circuit.power_stage import NotRecognised, PowerStage, PowerStageReader
+from .circuit.power_stage import NotRecognised, PowerStage
+from .circuit.power_stage_reader import PowerStageReader
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.regimes import Operation, Regime, potentials_in
 from .circuit.time_constants import time_constant
