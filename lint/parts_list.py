@@ -103,6 +103,7 @@ class _Reader:
         self._file = file
         self._table = CsvTable(text, file, _kinds(), "reference")
         self._rows: dict[str, PartData] = {}
+        self._listed = 0
         self._mistakes: list[PartsListError] = []
 
     def parts_list(self) -> PartsList:
@@ -137,7 +138,8 @@ class _Reader:
         except ValueError as problem:
             self._mistake(str(problem), listed.place, expected="references such as R1-R4, R7")
             return
-        if len(self._rows) + len(references) > _MOST_REFERENCES:
+        self._listed += len(references)  # counted with repeats: a small file can list a range very often
+        if self._listed > _MOST_REFERENCES:
             self._mistake(f"more than {_MOST_REFERENCES:,} parts", listed.place)
             return
         part = PartData(
@@ -167,9 +169,8 @@ class _Reader:
     def _value(self, row: Mapping[str, Cell]) -> str:
         """Return the text of the value, a decimal comma made a point where the comma cuts no cells."""
         text = _text(row, "value")
-        return (
-            text.replace(",", ".") if self._table.delimiter != "," and _WITH_COMMA.fullmatch(text) else text
-        )
+        # "10,1%" is a value and its tolerance, whatever cuts the cells.
+        return text.replace(",", ".") if "%" not in text and self._has_decimal_comma(text) else text
 
     def _quantity(self, row: Mapping[str, Cell], kind: str) -> float | None:
         """Return a rating in its SI base unit; a bare number has the heading's unit, else the usual one."""

@@ -18,8 +18,10 @@ from .toml_places import KeyPath, TomlPlaces
 from .units import QuantityTextError, read_range
 
 _LARGEST_FILE = 1_000_000
-_LONGEST_LINE = 4_000
+_LONGEST_LINE = 2_000
 _MOST_ERRORS = 20
+
+_QUOTED = re.compile(r"(?P<quote>[\"'])(?!(?P=quote))")
 
 _Kind = TypeVar("_Kind")
 
@@ -46,6 +48,11 @@ class TomlDocument:
             first, *others = sorted(self._mistakes, key=lambda mistake: mistake.place)
             first.also = tuple(others[: _MOST_ERRORS - 1])
             raise first
+
+    @property
+    def has_enough(self) -> bool:
+        """Tell whether as many mistakes are known as will be shown: a search for more is idle."""
+        return len(self._mistakes) >= _MOST_ERRORS
 
     def place(self, path: KeyPath) -> Place:
         """Return where a key stands."""
@@ -74,7 +81,7 @@ class TomlDocument:
             return tomllib.loads(text)
         except RecursionError:
             raise self._made("brackets are nested too deeply", Place(self.file, 0, 0)) from None
-        except ValueError as problem:  # TOMLDecodeError, or an integer of thousands of digits
+        except tomllib.TOMLDecodeError as problem:
             message, place = self._problem(str(problem))
             remedy = 'write every quantity as a text with its unit: key = "12 V"'
             raise self._made(message, place, expected="TOML", remedy=remedy) from None
@@ -85,10 +92,8 @@ class TomlDocument:
         found = re.match(r"line (\d+), column (\d+)", where)
         if found:
             return f"not TOML: {message}", Place(self.file, int(found[1]), int(found[2]))
-        if where.startswith("end of document"):
-            end = Place(self.file, len(self._lines), len(self._lines[-1]) + 1)
-            return f"not TOML: {message}, at the end of the file", end
-        return f"not TOML: {problem}", Place(self.file, 0, 0)
+        end = Place(self.file, len(self._lines), len(self._lines[-1]) + 1)
+        return f"not TOML: {message or problem}, at the end of the file", end
 
 
 class Table:
@@ -107,7 +112,7 @@ class Table:
     def know(self, keys: Sequence[str]) -> None:
         """Note a mistake for each key that is not among `keys`."""
         for key in self._content:
-            if key not in keys:
+            if key not in keys and not self._document.has_enough:
                 near = get_close_matches(key.casefold(), keys, n=1)
                 self._document.mistake(
                     f'unknown key "{key}"' + (f" in [{'.'.join(self._path)}]" if self._path else ""),
@@ -128,8 +133,10 @@ class Table:
 
     def tables(self) -> Iterator[tuple[str, Table]]:
         """Yield each table right below this one with its key."""
-        for key in self._content:
-            yield key, self.table(key)
+        for key, content in self._content.items():
+            table = self.table(key)
+            if isinstance(content, dict):
+                yield key, table
 
     def text(self, key: str, expected: str = "a text in quotes") -> str | None:
         """Return a text that says something."""
@@ -194,9 +201,8 @@ class Table:
     ) -> None:
         """Note a mistake in the value of `key`; `offset` counts characters from the quote of a text."""
         place = self._document.value_place((*self._path, key))
-        # Only a text in its plain quotes is counted into; an escape or three quotes shift the columns.
-        plain = self._document.excerpt(place)[place.column - 1 : place.column + 2] not in ('"""', "'''")
-        if offset and plain:
+        # Only a text in single quote marks can be counted into; of others, its beginning is shown.
+        if offset and _QUOTED.match(self._document.excerpt(place), place.column - 1):
             place = place._replace(column=place.column + offset)
         self._document.mistake(message, place, expected=expected, remedy=remedy)
 

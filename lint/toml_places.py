@@ -16,6 +16,9 @@ _KEYS = rf"{_KEY}(?:[ \t]*\.[ \t]*{_KEY})*"
 _HEADER = re.compile(rf"[ \t]*\[{{1,2}}[ \t]*(?P<keys>{_KEYS})[ \t]*\]")
 _ASSIGNMENT = re.compile(rf"[ \t]*(?P<keys>{_KEYS})[ \t]*=[ \t]*")
 
+# Places are kept to this depth; what lies deeper has the place of what encloses it.
+_DEEPEST = 8
+
 # A value ends with its line, unless a bracket or a string is still open there.
 _PIECE = re.compile(
     r'"""(?:[^\\]|\\.)*?"""+|\'\'\'.*?\'\'\'+'
@@ -56,19 +59,19 @@ class TomlPlaces:
             header = _HEADER.match(text, position)
             assignment = None if header else _ASSIGNMENT.match(text, position)
             if header:
-                table = _path(f"[{header['keys']}]")
+                table = _path(f"[{header['keys']}]")[:_DEEPEST]
                 self._note(table, header.start("keys"))
                 position = header.end()
             elif assignment:
                 path = table + _path(f"{assignment['keys']} = 0")
                 self._note(path, assignment.start("keys"))
-                self._values.setdefault(path, assignment.end())
+                self._values.setdefault(path[:_DEEPEST], assignment.end())
                 position = assignment.end()
             position = _end_of_line(text, position)
 
     def _note(self, path: KeyPath, offset: int) -> None:
         """Note the place of a key, and of the tables that it implies, where it stands first."""
-        for length in range(len(path), 0, -1):
+        for length in range(min(len(path), _DEEPEST), 0, -1):
             self._keys.setdefault(path[:length], offset)
 
 
