@@ -28,6 +28,7 @@ FAULTY = {
         "supply.range",
         "reference.load",
         "dead-time.driven",
+        "soft-start.wiring",
         "output-mode.wiring",
         "feedback.output-voltage",
         "feedback.divider-ratio",
