@@ -11,6 +11,7 @@ import os
 import sys
 import traceback
 from collections.abc import Iterable, Sequence
+from contextlib import suppress
 from difflib import get_close_matches
 from importlib.metadata import version
 from pathlib import Path
@@ -137,17 +138,8 @@ def _add_review_options(parser: argparse.ArgumentParser) -> None:
 
 
 def _review(options: argparse.Namespace) -> int:
-    parser: argparse.ArgumentParser = options.parser
     netlists: list[str] = options.netlists
-    if netlists.count(STANDARD_INPUT) > 1:
-        parser.error("standard input can be read once only: give - once")
-    pairs: list[dict[str, str]] = options.pairs or [{}]
-    targets = [Target(**pair) for pair in pairs]
-    outputs = [target.output for target in targets]
-    for output in outputs:
-        if outputs.count(output) > 1:
-            where = "standard output" if output == STANDARD_OUTPUT else output
-            parser.error(f"two reports would go to {where}: give each --format its own --output")
+    targets = _targets(options)
     gate = Gate(None if options.gate == NEVER else Level(options.gate), options.strict)
 
     reviews = _review_each(netlists, options)
@@ -155,6 +147,29 @@ def _review(options: argparse.Namespace) -> int:
     if len(reviews) < len(netlists) or not all(written):
         return TROUBLE
     return PASSED if all(gate.passes(review) for review in reviews) else NOT_PASSED
+
+
+def _targets(options: argparse.Namespace) -> list[Target]:
+    """Return the reports that are asked for; wrong usage ends here."""
+    parser: argparse.ArgumentParser = options.parser
+    if options.netlists.count(STANDARD_INPUT) > 1:
+        parser.error("standard input can be read once only: give - once")
+    pairs: list[dict[str, str]] = options.pairs or [{}]
+    targets = [Target(**pair) for pair in pairs]
+    outputs = [target.output for target in targets]
+    inputs = [path for path in (*options.netlists, options.brief, options.parts_list) if path]
+    for output in outputs:
+        where = "standard output" if output == STANDARD_OUTPUT else output
+        if outputs.count(output) > 1:
+            parser.error(f"two reports would go to {where}: give each --format its own --output")
+        if any(_same_file(output, path) for path in inputs):
+            parser.error(f"the report would overwrite what is reviewed: {where}")
+    return targets
+
+
+def _same_file(one: str, other: str) -> bool:
+    """Tell whether two paths lead to one file; what does not exist yet is no other's file."""
+    return os.path.exists(one) and os.path.exists(other) and os.path.samefile(one, other)
 
 
 def _review_each(netlists: Iterable[str], options: argparse.Namespace) -> list[Review]:
@@ -236,5 +251,6 @@ def _internal(error: Exception) -> int:
 
 
 def _tell(message: str) -> None:
-    """Print a message on standard error, characters that it cannot carry as escapes."""
-    print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go
+    """Print a message on standard error; where nobody listens any more there is nobody to tell."""
+    with suppress(BrokenPipeError):
+        print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go

@@ -214,6 +214,22 @@ def test_a_report_that_cannot_be_written_does_not_hide_the_others(
     assert json.loads(kept.read_text("utf-8"))["schema"] == 1
 
 
+@pytest.mark.parametrize("option", ["--brief", "--parts-list"])
+def test_a_report_never_overwrites_what_is_reviewed(
+    option: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    for name in ("sound.cir", "beside"):
+        Path(name).write_text("precious")
+    Path("link").symlink_to("beside")
+    for output in ("./sound.cir", "beside", "link"):
+        with pytest.raises(SystemExit) as stop:
+            cli.main(["review", "sound.cir", option, "beside", "--output", output])
+        assert stop.value.code == 2
+        assert "overwrite" in capsys.readouterr().err
+    assert {path.read_text() for path in tmp_path.iterdir()} == {"precious"}
+
+
 def test_interrupted(capsys: pytest.CaptureFixture[str]) -> None:
     assert cli.main(["review", "interrupt.cir"]) == 130
     assert capsys.readouterr().err == "interrupted\n"
