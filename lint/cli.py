@@ -162,7 +162,7 @@ def _targets(options: argparse.Namespace) -> list[Target]:
         where = "standard output" if output == STANDARD_OUTPUT else output
         if outputs.count(output) > 1:
             parser.error(f"two reports would go to {where}: give each --format its own --output")
-        if any(_same_file(output, path) for path in inputs):
+        if output != STANDARD_OUTPUT and any(_same_file(output, path) for path in inputs):
             parser.error(f"the report would overwrite what is reviewed: {where}")
     return targets
 
