@@ -37,7 +37,8 @@ def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
         answers = np.linalg.solve(matrix, questions)
         doubtful = np.max(np.abs(answers[:, :, 1]), axis=1) > _MOST_GROWTH
     except np.linalg.LinAlgError:  # an exactly singular one, which hides the answers of all others
-        doubtful = np.any(_vanishing(np.linalg.svd(matrix, compute_uv=False)), axis=1)
+        singular = np.asarray(np.linalg.svd(matrix, compute_uv=False), dtype=np.float64)
+        doubtful = np.any(_vanishing(singular), axis=1)
         answers = np.zeros_like(questions)
         answers[~doubtful] = np.linalg.solve(matrix[~doubtful], questions[~doubtful])
     answer = answers[:, :, 0]
