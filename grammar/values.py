@@ -90,14 +90,14 @@ def read_value(text: str, quantity: str, *, spice: bool) -> Value:
 def read_tolerance(text: str) -> tuple[float, float]:
     """Return a tolerance as fractions (low, high): "5 %", "±5%", "-20/+80 %", the letter "J", or "5" for 5 %.
 
-    Raises ValueTextError for anything else, and for a tolerance of 100 % or more.
+    Raises ValueTextError for anything else, and for a tolerance that leaves nothing of the value.
     """
     letter = text.strip()
     if letter in TOLERANCE_LETTERS:
         return tolerance_of(letter, 1.0, "")
     found = words(text, "ratio") if len(text) <= _LONGEST_TEXT else []
     match read_word(found[0], "word") if len(found) == 1 else None:
-        case Tolerance(low, high) if max(-low, high) < 1:
+        case Tolerance(low, high) if low > -1 and isfinite(high):
             return low, high
         case Bare(digits) if 0 <= float(digits) < 100:
             return -float(digits) / 100, float(digits) / 100
@@ -139,23 +139,28 @@ def _facts(texts: list[str], quantity: str, spice: bool) -> tuple[Number | None,
     found: Number | None = None
     beside: list[Fact] = []
     for word in texts:
+        fact = read_word(word, "simulated" if spice and found is None else "word")
         if found is None:
-            fact = read_word(word, "simulated" if spice else "word")
             found = number_of(fact, quantity, word)
             if found is not None:
-                if isinstance(fact, Measures):
-                    beside.append(Measures(fact.measures[1:]))
+                beside += _behind_the_first(fact)
                 continue
-        fact = read_word(word, "word")
+            if spice:
+                fact = read_word(word, "word")
         if fact is not None:
             beside.append(fact)
     return found, beside
 
 
+def _behind_the_first(fact: Fact | None) -> list[Fact]:
+    """Return what is written against the value without anything between, as in `150OHM800mA`."""
+    return [Measures(fact.measures[1:])] if isinstance(fact, Measures) else []
+
+
 def _with(value: Value, fact: Fact) -> Value:
     """Return `value` with what a word beside it says; the first of two ratings stands."""
     match fact:
-        case Tolerance(low, high):
+        case Tolerance(low, high) if low > -1:  # a larger percentage is a note on something else
             return replace(value, tolerance=(low, high))
         case AbsoluteTolerance(measure) if measure.unit == value.unit and value.number > 0:
             share = measured(measure) / value.number

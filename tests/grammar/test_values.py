@@ -120,6 +120,8 @@ def test_property_text(text: str, quantity: str, number: float, unit: str) -> No
         ("2p ±0.5pF", "capacitance", Value(2e-12, "F", (-0.25, 0.25))),
         ("2p +/- 10 %", "capacitance", Value(2e-12, "F", (-0.1, 0.1))),
         ("2p ±0.5V", "capacitance", Value(2e-12, "F")),
+        ("10k 100%", "resistance", Value(10e3, "ohm")),
+        ("10u -10/+100%", "capacitance", Value(10e-6, "F", (-0.1, 1.0))),
         ("RES 10k 0805 50ppm", "resistance", Value(10e3, "ohm")),
     ],
 )
@@ -292,7 +294,7 @@ def test_tolerances(text: str, low: float, high: float) -> None:
 
 
 @pytest.mark.parametrize(
-    "text", ["", "X", "loose", "-5", "100", "150 %", "1e400 %", "5 V", "5 % 1 W", "9" * 500]
+    "text", ["", "X", "loose", "-5", "100", "150 %", "1e400 %", "+1e400%", "5 V", "5 % 1 W", "9" * 500]
 )
 def test_no_tolerance(text: str) -> None:
     with pytest.raises(ValueTextError, match="not a tolerance"):
