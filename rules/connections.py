@@ -5,6 +5,7 @@ Nets and grounds are asked about in `nets`, the texts of the values in `values`;
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterable, Iterator
 
 from ..grammar.netlist import Part
@@ -224,27 +225,30 @@ def shorted_part(design: Design) -> Iterable[Verdict]:
     Remedy:
         Find the label or the wire that joins the two ends.
     """
-    shorted = [part for part in design.circuit.parts.values() if _is_shorted(part, design)]
-    for part in shorted:
+    shorted = list(_shorted(design))
+    for part, net in shorted:
+        ends = "both ends" if len(part.pins) == 2 else f"all {len(part.pins)} pins"
         yield Verdict(
             outcome=Outcome.FAIL,
-            message=f"both ends of {part.reference} are on net {part.pins[0].net}"
-            if len(part.pins) == 2
-            else f"all {len(part.pins)} pins of {part.reference} are on net {part.pins[0].net}",
+            message=f"{ends} of {part.reference} are on net {net}",
             subject=part.reference,
             parts=(part.reference,),
-            nets=(part.pins[0].net,),
+            nets=(net,),
             remedy=f"find the label or the wire that joins the ends of {part.reference}",
         )
     if not shorted:
         yield Verdict(outcome=Outcome.PASS, message="no part has all its ends on one net")
 
 
-def _is_shorted(part: Part, design: Design) -> bool:
-    nets = {pin.net for pin in part.pins}
-    if len(part.pins) < 2 or len(nets) > 1 or nets == {""}:
-        return False
-    return design.circuit.kind(part) in _USELESS_WHEN_SHORTED and not _is_link(part, design)
+def _shorted(design: Design) -> Iterator[tuple[Part, str]]:
+    """Yield every part that has all its pins on one net and should not, with the net."""
+    for name, net in design.netlist.nets.items():
+        for reference, count in Counter(reference for reference, _ in net.pins).items():
+            part = design.circuit.parts.get(reference)
+            if part is None or count < 2 or count < len(part.pins):
+                continue
+            if design.circuit.kind(part) in _USELESS_WHEN_SHORTED and not _is_link(part, design):
+                yield part, name
 
 
 def _is_link(part: Part, design: Design) -> bool:

@@ -63,15 +63,24 @@ def single_pin_net(design: Design) -> Iterable[Verdict]:
 def _loose_ends(design: Design) -> Iterator[tuple[Part, Pin]]:
     """Yield every pin that leads nowhere, of fitted parts whose kind should lead on."""
     controllers = {controller.reference for controller in design.controllers}
+    for reference, index in _single_pins(design):
+        part = design.circuit.parts.get(reference)
+        if part is None or reference in controllers or len(part.pins) < 2:
+            continue  # not fitted, asked about elsewhere, or a mounting hole, a fiducial mark, an aerial
+        if design.circuit.kind(part) not in _SIMULATION_ONLY | _ENDS_MEANT_TO_BE_LOOSE:
+            yield part, part.pins[index]
+
+
+def _single_pins(design: Design) -> Iterator[tuple[str, int]]:
+    """Yield every pin that is alone on its net, or on none, as (part reference, index into its pins)."""
+    for net in design.netlist.nets.values():
+        if len(net.pins) == 1:
+            yield net.pins[0]
     for part in design.circuit.parts.values():
-        kind = design.circuit.kind(part)
-        if part.reference in controllers or kind in _SIMULATION_ONLY | _ENDS_MEANT_TO_BE_LOOSE:
-            continue
-        if len(part.pins) < 2:
-            continue  # a mounting hole, a fiducial mark, an aerial
-        for pin in part.pins:
-            if not pin.net or len(design.netlist.nets[pin.net].pins) == 1:
-                yield part, pin
+        # Where only the order of the nodes is known, each pin has its node: no need to look.
+        for index, pin in enumerate(part.pins if part.pins_known != "positions" else ()):
+            if not pin.net:
+                yield part.reference, index
 
 
 def _loose_end(part: Part, pin: Pin) -> Verdict:

@@ -100,7 +100,8 @@ def value_preferred(design: Design) -> Iterable[Verdict]:
         Take a neighbour of the series, or two parts that make the value.
     """
     asked = [part for part in design.circuit.parts.values() if _sold_in_series(part, design)]
-    others = [part for part in asked if not is_preferred(_nominal(part, design), _series(part, design))]
+    rarer = [part for part in asked if not is_preferred(_nominal(part, design), ("E24",))]
+    others = [part for part in rarer if not is_preferred(_nominal(part, design), _series(part, design))]
     yield from (_outside(part, design) for part in others)
     if asked and not others:
         yield Verdict(
@@ -120,19 +121,19 @@ def _sold_in_series(part: Part, design: Design) -> bool:
     kind = design.circuit.kind(part)
     if kind not in ("resistor", "capacitor") or _OF_SIMULATION.search(part.reference):
         return False
-    value = design.circuit.value(part)
+    value = design.circuit.reader.written(part)
     if value is None:
         return False
     if kind == "resistor":
-        return value.spread.nominal > _LARGEST_SENSE_RESISTOR
+        return value.number > _LARGEST_SENSE_RESISTOR
     least, most = _CAPACITORS_IN_SERIES
-    return least <= value.spread.nominal < most
+    return least <= value.number < most
 
 
 def _nominal(part: Part, design: Design) -> float:
-    value = design.circuit.value(part)
+    value = design.circuit.reader.written(part)
     assert value is not None  # `_sold_in_series` asks for it
-    return value.spread.nominal
+    return value.number
 
 
 def _tolerance(part: Part, design: Design) -> float | None:

@@ -5,7 +5,10 @@ from __future__ import annotations
 from collections.abc import Callable
 
 import pytest
+from pwmlint.grammar.netlist import Net, Netlist, Part, Pin, Place
 from pwmlint.lint import Outcome, Verdict
+from pwmlint.lint.review import review_netlist
+from pwmlint.rules.nets import single_pin_net
 
 Ask = Callable[..., list[Verdict]]
 
@@ -79,6 +82,19 @@ def test_spare_pins_of_larger_parts_are_only_listed(ask: Ask) -> None:
     assert verdict.outcome is Outcome.INFORMATIONAL
     assert verdict.message == "taken as unused: U7 pin 2, U7 pin 5"
     assert verdict.nets == ("N7", "N8")
+
+
+def test_a_pin_that_the_file_leaves_out_of_all_nets_fails() -> None:
+    place = Place("scale.edf", 9, 5)
+    netlist = Netlist("scale.edf", "EDIF 2 0 0")
+    for reference, nets in (("R1", ("A", "")), ("R2", ("A", "B")), ("U3", ("A", "B", ""))):
+        pins = [Pin(str(number), "", net, place) for number, net in enumerate(nets, 1)]
+        netlist.parts[reference] = Part(reference, "", "1k", "", pins, place, pins_known="numbers")
+    netlist.nets["A"] = Net("A", place, [("R1", 0), ("R2", 0), ("U3", 0)])
+    netlist.nets["B"] = Net("B", place, [("R2", 1), ("U3", 1)])
+    fail, unused = review_netlist(netlist, rules=[single_pin_net]).verdicts
+    assert (fail.outcome, fail.message) == (Outcome.FAIL, "pin 2 of R1 is not connected")
+    assert (unused.outcome, unused.message) == (Outcome.INFORMATIONAL, "taken as unused: U3 pin 3")
 
 
 def test_an_option_that_is_not_fitted_leaves_no_loose_end(ask: Ask) -> None:
