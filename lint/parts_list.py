@@ -41,6 +41,8 @@ _DOUBTFUL_TOLERANCE = 0.2
 
 _NOTHING = frozenset({"", "-", "--", "\N{EN DASH}", "\N{EM DASH}", "n/a", "none", "?"})
 
+_REMEDY = "correct the cell, or leave it empty where the figure is not known"
+
 
 class PartsListError(NetlistError):
     """A parts list that cannot be read, or that contradicts itself."""
@@ -181,7 +183,7 @@ class _Reader:
         try:
             number = read_value(text, kind, spice=False).number
         except ValueTextError as problem:
-            self._mistake(f"{kind}: {problem}", cell.place, expected=problem.expected)
+            self._mistake(f"{kind}: {problem}", cell.place, expected=problem.expected, remedy=_REMEDY)
             return None
         if number < 0 and kind != "temperature coefficient":
             self._mistake(f"{kind}: a rating below zero", cell.place)
@@ -196,7 +198,7 @@ class _Reader:
         try:
             found = read_tolerance(text)
         except ValueTextError as problem:
-            self._mistake(str(problem), cell.place, expected=problem.expected)
+            self._mistake(str(problem), cell.place, expected=problem.expected, remedy=_REMEDY)
             return None
         if bare and 0 < 100 * found[1] <= _DOUBTFUL_TOLERANCE:
             self._mistake(

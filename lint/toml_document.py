@@ -179,7 +179,8 @@ class Table:
         try:
             found = read_range(text, unit)
         except QuantityTextError as problem:
-            self.mistake(key, str(problem), expected=problem.expected, offset=problem.column)
+            remedy = 'correct the number or its unit; a range reads "10 V .. 15 V"'
+            self.mistake(key, str(problem), expected=problem.expected, remedy=remedy, offset=problem.column)
             return None
         if found.minimum < least or found.maximum > most:
             limits = [f"at least {least:g} {unit}".strip()] if least > -inf else []
