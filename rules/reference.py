@@ -8,14 +8,13 @@ from dataclasses import replace
 from ..grammar.netlist import Part
 from ..lint.brief import Rail
 from ..lint.circuit.controllers import Controller
-from ..lint.circuit.loops import Regulation
 from ..lint.circuit.potentials import named_voltage
 from ..lint.circuit.reference_load import ReferenceLoad
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, unsolved
 from ..lint.preferred import neighbours
-from ..lint.quantity import Spread, engineering, percent
+from ..lint.quantity import Spread, engineering
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
 from .bypass import bypass_verdict
@@ -244,7 +243,7 @@ def _foreign(controller: Controller, design: Design, net: str) -> list[_Foreign]
 
 def _other_voltage(controller: Controller, design: Design, net: str) -> list[_Foreign]:
     """Return the voltage that the brief or the net's own name gives the reference net, where it differs."""
-    reference = _voltage(controller, design)
+    reference = controller.profile.figure("reference.voltage").spread()
     rail, volts = design.rail(net), named_voltage(net)
     told = rail.band if rail is not None else None
     if told is None and volts is not None:
@@ -263,104 +262,3 @@ def _joint(design: Design, part: Part) -> str:
         return "is driven against"
     link = kind in _LINKS or (kind == "resistor" and design.nominal(part) == 0)
     return "is linked to" if link else ""
-
-
-@rule("reference.needed-accuracy", level="warning", topic="reference")
-def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]:
-    """Are the reference and the dividers exact enough for the output's tolerance?
-
-    What:
-        Takes the spread of the regulated output about its own nominal value and holds it against the
-        output's tolerance in the brief, with the share of every part in it. Whether the nominal value is
-        the right one is another question (feedback.output-voltage).
-    Why:
-        It says which part to buy better: no resistor mends a reference that alone fills the tolerance.
-    Formula:
-        deviation = output / output(nominal) - 1, extreme values by nodal analysis
-    Source:
-        the brief (tolerance); 494 class: SLVS074 p.4 (reference 4.75 V to 5.25 V), 594: SLVS052 p.4
-        (4.95 V to 5.05 V).
-    Remedy:
-        Better the part that is named first, or add a trimmer.
-    """
-    found = design.regulation(controller)
-    if not isinstance(found, Regulation) or found.output.spread.nominal <= 0:
-        return  # feedback.output-voltage or feedback.complete speaks of it
-    output = next((a.output for a in design.amplifiers(controller) if a.use == "voltage"), "")
-    rail = design.rail(output)
-    allowed = _allowed(rail)
-    if rail is None or allowed is None:
-        need = f'brief: [rails.{output}] tolerance = "..."'
-        yield Verdict(outcome=Outcome.OPEN, message=f"accuracy of {output}: no tolerance told", needs=(need,))
-        return
-    deviation = _deviation(found.output)
-    nominal = engineering(found.output.spread.nominal, "V")
-    says = f"{output} spreads {_percentages(deviation.spread)} about {nominal}"
-    if found.trimmers:
-        trimmers = tuple(name.removesuffix(" travel") for name in found.trimmers)
-        yield Verdict(
-            outcome=Outcome.NOT_APPLICABLE,
-            message=f"{output} is set on the bench by {', '.join(trimmers)}",
-            parts=trimmers,
-            nets=(output,),
-            pins=_PIN,
-        )
-        return
-    remedy = _better(deviation, _voltage(controller, design), allowed)
-    verdict = judge(deviation, allowed, says + _shares(deviation), source="brief", pins=_PIN, remedy=remedy)
-    yield verdict
-
-
-def _voltage(controller: Controller, design: Design) -> Spread:
-    """Return the reference's own voltage, its line and load regulation included where they are known."""
-    known = design.potential(controller.net("reference") or "")
-    return known.spread if known is not None else controller.profile.figure("reference.voltage").spread()
-
-
-def _allowed(rail: Rail | None) -> Limit | None:
-    """Return the deviation that the brief allows a rail, None where it tells no width."""
-    if rail is None or rail.band.minimum == rail.band.maximum or rail.voltage.nominal <= 0:
-        return None
-    nominal = rail.voltage.nominal
-    return Limit(rail.band.minimum / nominal - 1, rail.band.maximum / nominal - 1, "")
-
-
-def _deviation(output: Estimate) -> Estimate:
-    """Return an output voltage's deviation from its nominal value, as a ratio."""
-    nominal = output.spread.nominal
-
-    def about_nominal(spread: Spread) -> Spread:
-        return Spread(spread.minimum / nominal - 1, 0.0, spread.maximum / nominal - 1, "")
-
-    ends = f"{engineering(output.spread.minimum, 'V', 4)} .. {engineering(output.spread.maximum, 'V', 4)}"
-    return replace(
-        output,
-        spread=about_nominal(output.spread),
-        statistical=about_nominal(output.statistical),
-        formula=f"({ends}) / {engineering(nominal, 'V', 4)} - 1",
-    )
-
-
-def _percentages(spread: Spread) -> str:
-    return f"{percent(spread.minimum)} .. +{percent(spread.maximum)}"
-
-
-_MOST_SHARES = 3
-
-
-def _shares(deviation: Estimate) -> str:
-    greatest = [f"{name} {percent(share, 2)}" for name, share in deviation.contributions[:_MOST_SHARES]]
-    return f"; of it {', '.join(greatest)}" if greatest else ""
-
-
-def _better(deviation: Estimate, reference: Spread, allowed: Limit) -> str:
-    """Return which part to buy better."""
-    alone = max(reference.maximum / reference.nominal - 1, 1 - reference.minimum / reference.nominal)
-    assert allowed.maximum is not None
-    if alone > allowed.maximum:
-        return (
-            f"the reference alone may be off by {percent(alone)}: take a controller with a tighter one, "
-            "an external reference, or a trimmer"
-        )
-    first = next((name for name, _ in deviation.contributions), "the dividers")
-    return f"take a tighter {first}: it has the greatest share"
