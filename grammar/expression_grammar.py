@@ -183,6 +183,8 @@ class _Nodes(Transformer[Token, Node]):
 
     def chain(self, *children: Node | Token) -> Node:
         parts = tuple(child for child in children if isinstance(child, Node))
+        if len(parts) == 1:
+            return parts[0]  # nothing was chained at this precedence
         marks = " ".join(child for child in children if isinstance(child, Token))
         return _node("chain", parts[0].start, marks, parts)
 

@@ -16,6 +16,7 @@ from .collector import collector_paused
 from .errors import NetlistError
 from .netlist import Netlist, Place
 from .spice_blocks import Definition
+from .spice_element import is_value
 from .spice_elements import read_element
 from .spice_files import Files
 from .spice_hierarchy import Expansion
@@ -116,10 +117,11 @@ def _note_title(title: Line, files: Files, notes: Notes) -> None:
 
 def _is_element(line: Line, files: Files) -> bool:
     try:
-        read_element(line, files.known)
+        element = read_element(line, files.known)
     except NetlistError:
         return False
-    return True
+    # "Rev2 of the fan" has the shape of a resistor, but no value.
+    return element.letter not in ("R", "C", "L") or is_value(element.value or "0")
 
 
 def _no_parts(source: Source) -> NetlistError:

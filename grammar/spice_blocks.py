@@ -120,7 +120,7 @@ def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:
     kind = token.type
     expected = "an element line, another card, or " + in_words(error.expected, _WORDS)
     opened = _innermost_open(error)
-    if kind not in ("$END", "END") or opened is None:
+    if opened is None:
         card = _card(source, token)
         return card.line.error(
             indent(card.line),
@@ -131,6 +131,14 @@ def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:
         )
     line = _card(source, opened).line
     closing = _CLOSED_BY[opened.type]
+    if kind not in ("$END", "END"):
+        card = _card(source, token)
+        return card.line.error(
+            indent(card.line),
+            f"`.{card.keyword}` inside the `{line.text.split()[0]}` of line {line.number}",
+            expected,
+            f"close the inner block with `{closing}` first, or remove the card",
+        )
     return line.error(
         indent(line),
         f"`{line.text.split()[0]}` is never closed",

@@ -10,6 +10,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable, Collection
 
+from .errors import NetlistError
 from .spice_element import NOTHING, PREFIXES, Element, is_value, made, part, prefix_of, too_few, unquoted
 from .spice_lines import Line, indent
 from .spice_semiconductors import diode, is_size, junction_transistor, transistor
@@ -27,30 +28,30 @@ def read_element(line: Line, models: Collection[str]) -> Element:
 
     Raises NetlistError where the line has no element's shape.
     """
-    text = line.text.lstrip()
-    letter = text[0].upper()
+    letter = line.text.lstrip()[0].upper()
     words = split(line, exact=letter in _NEED_INDEXES)
-    return _READERS.get(letter, _unknown)(words, models)
+    if not words.texts or not words.texts[0][0].isalpha():
+        raise _neither(line)
+    return _READERS.get(words.texts[0][0].upper(), _unknown)(words, models)
 
 
-def _unknown(words: Words, models: Collection[str]) -> Element:
-    name = words.texts[0] if words.texts else words.line.text.strip()
-    letter = name[0].upper()
-    if letter.isalpha():
-        if len(words.texts) == 5 and _TRIMMER.match(name) and is_value(words.texts[4]):
-            return made(words, "R", 3, value=words.texts[4])
-        return part(words, letter if len(letter) == 1 else "")
-    if letter == "+":
+def _neither(line: Line) -> NetlistError:
+    """Return the error for a line that begins with no reference designator."""
+    if line.text.lstrip().startswith("+"):
         message, remedy = "`+` continues nothing", "put the line that it continues before it"
     else:
         message = "neither an element nor a card"
         remedy = "begin a comment with `*`; check that this is a netlist"
-    raise words.line.error(
-        indent(words.line),
-        message,
-        "a reference designator that begins with a letter, or a dot card",
-        remedy,
-    )
+    expected = "a reference designator that begins with a letter, or a dot card"
+    return line.error(indent(line), message, expected, remedy)
+
+
+def _unknown(words: Words, models: Collection[str]) -> Element:
+    """Read a part whose letter has no reader: a trimmer that goes by P, or its nodes and its model."""
+    texts = words.texts
+    if len(texts) == 5 and _TRIMMER.match(texts[0]) and is_value(texts[4]):
+        return made(words, "R", 3, value=texts[4])
+    return part(words, texts[0][0].upper())
 
 
 def _two_nodes(words: Words, models: Collection[str]) -> Element:

@@ -9,7 +9,8 @@ from .spice_nets import Level
 from .spice_parameters import Written
 
 # What the reader of elements adds is text for people, whatever it begins with.
-_TEXT = frozenset({"expression", "waveform", "couples", "through", "timing", "library", "area"})
+_TEXT = frozenset({"expression", "waveform", "timing", "library", "area"})
+_REFERENCES = frozenset({"couples", "through"})
 
 
 def evaluated(element: Element, level: Level) -> tuple[str, Mapping[str, str]]:
@@ -40,6 +41,8 @@ def given_parameters(element: Element, level: Level) -> dict[str, float | None]:
 
 
 def _text_of(text: str, key: str, element: Element, level: Level) -> str:
+    if key in _REFERENCES:
+        return " ".join(level.path + level.names.get(word, word) for word in text.split())
     if key in _TEXT or text[:1] not in ("{", "'"):
         return text
     number = level.scope.parameters.number(Written(element.line, text, element.index_of(text)))

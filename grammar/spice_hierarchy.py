@@ -130,11 +130,12 @@ class Expansion:
         width = len(element.nodes) + len(definition.parameters)
         self._charge(element, 1000 + (len(path) + 200) * width)
         scope = self.scope_of(definition, outer, given_parameters(element, level))
-        nets = {
-            formal.casefold(): self._nets.of(level, element, index)
-            for index, formal in enumerate([*definition.formals, *(pair.key for pair in definition.optional)])
-            if index < len(element.nodes)
-        }
+        formals = [*definition.formals, *(pair.key for pair in definition.optional)]
+        connected = zip(formals, range(len(element.nodes)), strict=False)
+        nets = {formal.casefold(): self._nets.of(level, element, at) for formal, at in connected}
+        for pair in definition.optional:
+            if pair.key not in nets:
+                nets[pair.key] = self._nets.default(level, pair.value, element)
         self.expand(Level(scope, path, nets, (*level.chain, definition)), definition.items)
 
     def scope_of(self, definition: Definition, outer: Scope, given: dict[str, float | None]) -> Scope:

@@ -56,7 +56,7 @@ class Nets:
                 net = self.of(top, element, index)
             else:
                 inside = self._inside(level, node) if level.sheets else None
-                net = inside or self._named(level, element, index)
+                net = inside or self._named(level, node, element, index)
             level.nets[folded] = net
         elif level is top and net.name != node:
             self._note_spelling(net, element, index)
@@ -67,8 +67,11 @@ class Nets:
     def _is_global(folded: str, level: Level) -> bool:
         return folded in _GROUND or folded in level.scope.globals or folded.startswith(_GLOBAL_PREFIX)
 
-    def _named(self, level: Level, element: Element, index: int) -> Net:
-        node = element.nodes[index]
+    def default(self, level: Level, node: str, element: Element) -> Net:
+        """Return the net that an optional node of the instance `element` is on unless connected."""
+        return self._named(self._top or level, node, element, None)
+
+    def _named(self, level: Level, node: str, element: Element, index: int | None) -> Net:
         root = level.scope.root(node.casefold())
         if root in _GROUND and not level.path:
             root = "0"
@@ -76,11 +79,12 @@ class Nets:
         net = self._found.get(key)
         if net is None:
             name = level.path + node
-            net = self._found[key] = self._netlist.nets[name] = Net(name, element.node_place(index))
+            place = element.place if index is None else element.node_place(index)
+            net = self._found[key] = self._netlist.nets[name] = Net(name, place)
         elif root == "0" and not self._ground_noted:
             self._ground_noted = True
             message = f"{net.name} and {node} are taken as one net, ground"
-            self._notes.add("assumption", message, element.node_place(index), net.name)
+            self._notes.add("assumption", message, element.place, net.name)
         return net
 
     def _inside(self, level: Level, node: str) -> Net | None:

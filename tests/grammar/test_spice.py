@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import pytest
-
 from pwmlint.grammar.errors import NetlistError
 from pwmlint.grammar.netlist import Netlist, Place
 from pwmlint.grammar.spice import read_spice
