@@ -18,15 +18,16 @@ from .circuit.compensation import Compensation, compensation
 from .circuit.conditions import Conditions
 from .circuit.controllers import Controller, find_controllers
 from .circuit.dead_time import DeadTime, dead_time
+from .circuit.duty import needed_duty
 from .circuit.graph import Circuit
 from .circuit.growth import Growth
-from .circuit.loops import Loops, Regulation, Trip
+from .circuit.loops import Fault, Loops, Regulation, Trip
 from .circuit.potentials import Potential, known_potentials
 from .circuit.power_stage import NotRecognised, PowerStage
 from .circuit.power_stage_reader import PowerStageReader
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.regimes import Operation, Regime, potentials_in
-from .circuit.time_constants import time_constant
+from .circuit.time_constants import source_resistance, time_constant
 from .circuit.timing import Timing, timing
 from .circuit.worst_case import Variation
 from .derating import DEFAULT_POLICY
@@ -106,6 +107,16 @@ class Design:
     def voltage_in(self, regime: Regime, controller: Controller, net: str) -> Estimate | Unsolved:
         """Return the direct voltage of a net over ground while a controller's converter is in a regime."""
         return self._keep(f"voltage in {regime}", net, lambda: self._voltage_in(regime, controller, net))
+
+    def needed_duty(self, controller: Controller) -> Spread | None:
+        """Return the duty (0 to 1) that the recognised power stage needs over its rails, None if untold."""
+        stage = self.power_stage(controller)
+        if isinstance(stage, NotRecognised):
+            return None
+        supply, output = self.known.get(stage.input), self.known.get(stage.output)
+        if supply is None or output is None:
+            return None
+        return needed_duty(stage.topology, supply.spread, output.spread)
 
     def difference(self, net: str, other: str) -> Estimate | Unsolved:
         """Return by how much (V) the direct voltage of a net stands above that of another."""
@@ -197,6 +208,19 @@ class Design:
             return PowerStageReader(self.circuit, self.known, controller, amplifiers).read()
 
         return self._keep("power stage", controller.reference, read)
+
+    def output_after(self, controller: Controller, amplifier: Amplifier, fault: Fault) -> float:
+        """Return the output (V) after a resistor has failed: infinite where the loop loses it upwards."""
+        return self._loops(controller).output_after(amplifier, fault)
+
+    def source_resistance(self, controller: Controller, net: str) -> Estimate | Unsolved:
+        """Return the resistance (ohm) that a net is driven from in operation, sources still."""
+        known = potentials_in(Regime.NO_LOAD, self.known, controller, self._operation(controller))
+        return self._keep(
+            "source resistance",
+            net,
+            lambda: source_resistance(self.circuit, known, self.controllers, net),
+        )
 
     def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
         """Return the current at which a controller's current loop takes over.

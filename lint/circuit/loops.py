@@ -8,9 +8,12 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
-from math import isinf
+from math import inf, isinf
+
+import numpy as np
 
 from ..estimate import Estimate, Unsolved
+from ..quantity import Spread
 from .amplifiers import Amplifier
 from .answers import estimate
 from .controllers import Controller
@@ -21,6 +24,20 @@ from .solver import Condition, FreeCurrent, FreePotential, Resistor
 from .states import Probe
 from .trimming import settable, trimmers
 from .worst_case import Parameter
+
+
+@dataclass(frozen=True, slots=True)
+class Fault:
+    """One resistor that has failed: open, or shorted."""
+
+    part: str
+    shorted: bool
+
+    def strike(self, growth: Growth) -> None:
+        """Change a grown network as the fault does."""
+        element = growth.elements.pop(self.part)
+        if self.shorted:
+            growth.add(Resistor(self.part, element.a, element.b, lambda _: np.zeros(1), may_be_zero=True))
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,11 +64,13 @@ class Trip:
     current:     the current in the power path at which the amplifier's inputs are equal
     threshold:   the voltage across the sense resistor at that moment
     dissipation: the power in the sense resistor at that moment
+    reversed:    the current must flow from the far end of the sense resistor to the near one
     """
 
     current: Estimate
     threshold: Estimate
     dissipation: Estimate
+    reversed: bool = False
 
 
 @dataclass(slots=True)
@@ -62,10 +81,15 @@ class Loops:
     known: Mapping[str, Potential]
     controller: Controller
 
-    def regulation(self, amplifier: Amplifier) -> Regulation | Unsolved:
-        """Return the output voltage at which the voltage amplifier's inputs are equal."""
+    def regulation(self, amplifier: Amplifier, fault: Fault | None = None) -> Regulation | Unsolved:
+        """Return the output voltage at which the voltage amplifier's inputs are equal.
+
+        fault: a part of the network that has failed
+        """
         output = amplifier.output
         growth = self._grow(amplifier, self._without(output), frozenset({output}))
+        if fault is not None:
+            fault.strike(growth)
         condition = self._inputs_equal(growth, amplifier)
         probes: dict[str, tuple[Probe, str]] = {
             "output": (lambda s: s.voltage(output), "V"),
@@ -82,6 +106,24 @@ class Loops:
             )
         reach = settable(growth, probes, "output", [FreePotential(output)], [condition])
         return Regulation(found["output"], found["inputs"], trimmers(growth), reach)
+
+    def output_after(self, amplifier: Amplifier, fault: Fault) -> float:
+        """Return the output (V) that the loop goes to after a fault, nominal parts otherwise.
+
+        Where no output makes the inputs equal any more, the loop is lost: upwards without bound when the
+        amplifier then asks for the longest pulse, down to nothing when it asks for none.
+        """
+        found = self.regulation(amplifier, fault)
+        if isinstance(found, Regulation):
+            return max(0.0, found.output.spread.nominal)
+        output = amplifier.output
+        zero = Potential(output, Spread.exact(0.0, "V"), "regime")
+        growth = self._grow(amplifier, {**self.known, output: zero}, frozenset())
+        fault.strike(growth)
+        plus, minus = amplifier.plus, amplifier.minus
+        left = estimate(growth, {"difference": (lambda s: s.voltage(plus, minus), "V")})
+        lost_downwards = not isinstance(left, Unsolved) and left["difference"].spread.nominal > 0
+        return 0.0 if lost_downwards else inf
 
     def trip(self, amplifier: Amplifier, output: Potential | None = None) -> Trip | Unsolved:
         """Return the sense current at which the current amplifier's inputs are equal.
@@ -110,7 +152,8 @@ class Loops:
         found = estimate(
             growth, _trip_probes(resistor), [FreeCurrent("load", sense.far, sense.near)], [condition]
         )
-        if not isinstance(found, Unsolved) and found["current"].spread.nominal < 0:
+        turned = not isinstance(found, Unsolved) and found["current"].spread.nominal < 0
+        if turned:
             # The current flows the other way: sensed below ground, or on the way out of the high side.
             growth.elements[resistor.name] = resistor = replace(resistor, a=sense.far, b=sense.near)
             reverse = FreeCurrent("load", sense.near, sense.far)
@@ -123,7 +166,7 @@ class Loops:
                 parts=found["current"].parts,
                 nets=(amplifier.plus, amplifier.minus),
             )
-        return Trip(found["current"], found["threshold"], found["dissipation"])
+        return Trip(found["current"], found["threshold"], found["dissipation"], turned)
 
     def feedback_current(self) -> Estimate | Unsolved:
         """Return the current (A) out of the feedback pin into what hangs on it, over its control range."""

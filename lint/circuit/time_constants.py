@@ -13,7 +13,7 @@ from ..quantity import Spread
 from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
-from .growth import Growth
+from .growth import GROUND, Growth
 from .potentials import Potential
 from .solver import Array, CurrentSource, Resistor, Solution
 
@@ -29,22 +29,12 @@ def time_constant(
     Nets of known potential count as stiff, other capacitors as open. That is the first-order picture; a
     second capacitor on the same network makes it an estimate.
     """
-    quiet = {
-        net: replace(potential, spread=Spread.exact(0.0, "V"), assumption="")
-        for net, potential in known.items()
-    }
     a, b = (pin.net for pin in capacitor.pins)
-    growth = Growth(circuit, quiet, controllers).grow(a, b)
-    growth.elements = {name: e for name, e in growth.elements.items() if isinstance(e, Resistor)}
+    growth = _quiet(circuit, known, controllers, a, b)
     capacitance = growth.part_value(capacitor)
     growth.use(capacitor)
-    growth.add(CurrentSource("test current", b, a, lambda _: np.full(1, _TEST_CURRENT)))
-    adrift = growth.network().floating() & {a, b}
-    if adrift:
-        net = adrift.pop()
-        return Unsolved(
-            f"no resistance joins {net} to a known potential: {capacitor.reference} sees none", nets=(net,)
-        )
+    if growth.network().floating() & {a, b}:
+        return Unsolved(f"{capacitor.reference} sees no resistance: one of its ends has no path", nets=(a, b))
 
     def constant(solution: Solution) -> Array:
         assert capacitance is not None  # a capacitor without a value has stopped `estimate`
@@ -52,3 +42,26 @@ def time_constant(
 
     found = estimate(growth, {"time constant": (constant, "s")})
     return found if isinstance(found, Unsolved) else found["time constant"]
+
+
+def source_resistance(
+    circuit: Circuit, known: Mapping[str, Potential], controllers: Sequence[Controller], net: str
+) -> Estimate | Unsolved:
+    """Return the resistance (ohm) that a net is driven from, every source still (Thevenin's)."""
+    growth = _quiet(circuit, known, controllers, net, GROUND)
+    if net in growth.network().floating():
+        return Unsolved(f"net {net} has no direct-current path", nets=(net,))
+    found = estimate(growth, {"resistance": (lambda s: s.voltage(net) / _TEST_CURRENT, "ohm")})
+    return found if isinstance(found, Unsolved) else found["resistance"]
+
+
+def _quiet(
+    circuit: Circuit, known: Mapping[str, Potential], controllers: Sequence[Controller], a: str, b: str
+) -> Growth:
+    """Return the resistances round two nets, every source still, with the test current from `b` to `a`."""
+    zero = Spread.exact(0.0, "V")
+    quiet = {net: replace(potential, spread=zero, assumption="") for net, potential in known.items()}
+    growth = Growth(circuit, quiet, controllers).grow(*(net for net in (a, b) if net != GROUND))
+    growth.elements = {name: e for name, e in growth.elements.items() if isinstance(e, Resistor)}
+    growth.add(CurrentSource("test current", b, a, lambda _: np.full(1, _TEST_CURRENT)))
+    return growth
