@@ -9,7 +9,7 @@ from ..lint.brief import ControllerBrief
 from ..lint.circuit.controllers import Controller
 from ..lint.controllers import Figure
 from ..lint.design import Design
-from ..lint.estimate import Unsolved
+from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
 from ..lint.quantity import Spread, engineering, percent
 from ..lint.rule import rule
@@ -205,3 +205,104 @@ def _wanted_voltage(controller: Controller, design: Design, wanted: Spread) -> s
     if not 0 < share < 1 or volts <= 0:
         return f"{engineering(wanted.nominal, 's')} cannot be set at this frequency: change the timing parts"
     return f"about {engineering(volts, 'V')} on {name} makes {engineering(wanted.nominal, 's')}"
+
+
+@rule("dead-time.source", level="warning", topic="dead time")
+def fed_from(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is the dead-time pin fed from the reference, and not from something that ripples?
+
+    What:
+        Names the nets of known potential that the pin's network leads to, ground and the reference left
+        out.
+    Why:
+        The pin's comparator looks at the ramp directly: ripple on a supply comes out as jitter of every
+        pulse, and a supply that rises with the line changes the dead time with it.
+    Formula:
+        none: connectivity
+    Source:
+        common practice, no source.
+    Remedy:
+        Take the top of the divider to the reference pin.
+    """
+    net = controller.net("dead time")
+    voltage = design.voltage(net) if net and design.has_path(net) else None
+    if voltage is None or isinstance(voltage, Unsolved):
+        return  # dead-time.driven or dead-time.range speaks of it
+    reference = controller.net("reference")
+    others = [n for n in voltage.nets if n not in (net, reference) and _is_rail(design, n)]
+    name = controller.pins["dead time"].name
+    if others:
+        yield Verdict(
+            outcome=Outcome.REVIEW,
+            message=f"{name} is fed from {', '.join(others)}, whose ripple reaches the comparator",
+            parts=voltage.parts,
+            nets=tuple(others),
+            pins=_PIN,
+            source="common practice, no source",
+            remedy="take the top of the divider to the reference pin",
+        )
+    else:
+        message = f"{name} is fed from nothing but the reference and ground"
+        yield Verdict(outcome=Outcome.PASS, message=message, parts=voltage.parts, pins=_PIN)
+
+
+def _is_rail(design: Design, net: str) -> bool:
+    potential = design.potential(net)
+    return potential is not None and potential.origin not in ("ground", "reference")
+
+
+@rule("dead-time.duty-headroom", level="error", topic="dead time")
+def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does the dead time leave the duty that the output needs at the lowest input?
+
+    What:
+        Subtracts the greatest dead time from the whole period and compares the rest with the duty that
+        the recognised power stage needs over its rails, ideal parts taken. Stages with a transformer need
+        its turns ratio, which a netlist does not tell; there `maximum_duty` of the brief is compared.
+    Why:
+        At the lowest input the converter needs its widest pulse. What the dead time takes away is missing
+        from the output voltage.
+    Formula:
+        1 - dead time share >= duty; buck Vo / Vi, boost 1 - Vi / Vo, inverting |Vo| / (Vi + |Vo|)
+    Source:
+        volt-second balance of the inductor; SLVS074 p.11 (dead time over the pin's voltage).
+    Remedy:
+        Lower the voltage on the dead-time pin.
+    """
+    net = controller.net("dead time")
+    voltage = design.voltage(net) if net and design.has_path(net) else None
+    if voltage is None or isinstance(voltage, Unsolved):
+        return
+    wanted, source = _wanted_duty(controller, design)
+    if wanted is None:
+        return
+    left = _duty_left(design.dead_time(controller, voltage).share, design.output_mode(controller))
+    yield judge(
+        left,
+        Limit(wanted, None, ""),
+        f"the dead time leaves {_percentages(left.spread)} of duty, {percent(wanted)} is needed",
+        source=source,
+        pins=_PIN,
+        remedy=f"lower the voltage on {controller.pins['dead time'].name}",
+    )
+
+
+def _wanted_duty(controller: Controller, design: Design) -> tuple[float | None, str]:
+    """Return the greatest duty that the brief or the power stage asks for, and where that is from."""
+    needed = design.needed_duty(controller)
+    if needed is not None:
+        return needed.maximum, "volt-second balance of the recognised power stage"
+    told = design.told(controller)
+    if told is not None and told.maximum_duty is not None:
+        return told.maximum_duty.maximum, "brief: maximum_duty"
+    return None, ""
+
+
+def _duty_left(share: Estimate, mode: str | None) -> Estimate:
+    """Return the duty each output has left: half of it where two outputs alternate."""
+    part = 0.5 if mode == "push-pull" else 1.0
+
+    def left(dead: Spread) -> Spread:
+        return Spread(part * (1 - dead.maximum), part * (1 - dead.nominal), part * (1 - dead.minimum), "")
+
+    return replace(share, spread=left(share.spread), statistical=left(share.statistical))
