@@ -23,35 +23,10 @@ _LONGEST_INDENT = 200
 
 # The terminals of edif.lark in the words of the format.
 _EXPECTATIONS = {
-    "a name": {"ATOM", "_ATOM"},
-    "a string": {"STRING", "_STRING"},
-    "a closing parenthesis": {"_CLOSE"},
-}
-_KEYWORDS = {
-    "EDIF": "edif",
-    "LIBRARY": "library",
-    "DESIGN": "design",
-    "CELL": "cell",
-    "VIEW": "view",
-    "INTERFACE": "interface",
-    "CONTENTS": "contents",
-    "PORT": "port",
-    "INSTANCE": "instance",
-    "NET": "net",
-    "JOINED": "joined",
-    "PORT_REF": "portRef",
-    "INSTANCE_REF": "instanceRef",
-    "VIEW_REF": "viewRef",
-    "CELL_REF": "cellRef",
-    "DESIGNATOR": "designator",
-    "PROPERTY": "property",
-    "TEXT": "string",
-    "NUMBERS": "number",
-    "NAME": "name",
-    "RENAME": "rename",
-    "ARRAY": "array",
-    "MEMBER": "member",
-    "STRING_DISPLAY": "stringDisplay",
+    "ATOM": "a name",
+    "STRING": 'a string in "quotes"',
+    "_CLOSE": "a closing parenthesis",
+    "_OPEN": "a form with a keyword",
 }
 
 
@@ -193,9 +168,7 @@ def _expected(error: UnexpectedInput) -> str:
         names = set(error.expected)
     elif isinstance(error, UnexpectedCharacters):
         names = set(error.allowed)
-    words = [word for word, terminals in _EXPECTATIONS.items() if names & terminals]
-    forms = sorted(f"({_KEYWORDS[name]}" for name in names & _KEYWORDS.keys())
-    return ", ".join(words + forms) or "another form"
+    return ", ".join(word for terminal, word in _EXPECTATIONS.items() if terminal in names)
 
 
 def _open_forms(text: str, end: int) -> list[int]:

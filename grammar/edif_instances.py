@@ -62,7 +62,9 @@ class Reference(NamedTuple):
     is_stated: bool
 
 
-def property_pairs(properties: Iterable[Property], scales: Mapping[str, Decimal]) -> Iterator[tuple[str, str]]:
+def property_pairs(
+    properties: Iterable[Property], scales: Mapping[str, Decimal]
+) -> Iterator[tuple[str, str]]:
     """Yield names and values as text, numbers with their unit in the SI."""
     for name, value, unit in properties:
         if isinstance(value, Decimal):

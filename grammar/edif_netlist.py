@@ -8,7 +8,7 @@ from collections.abc import Iterable
 from .edif_hierarchy import FlatCircuit
 from .edif_parts import Built, PartBuilder
 from .edif_places import Places
-from .edif_sections import Package
+from .edif_sections import merge_sections
 from .netlist import Net, Netlist, Note, Place
 
 _REWRITTEN_POINT = re.compile(r"[0-9]_[0-9]")
@@ -46,29 +46,24 @@ def _name_nets(flat: FlatCircuit, places: Places, netlist: Netlist) -> dict[int,
 
 
 def _add_parts(built: list[Built], netlist: Netlist) -> None:
-    """Add the parts: sections of one package as one, symbols not, doubles under a name of their own."""
+    """Add the parts: sections of one package as one, doubles under a name of their own, symbols not at all.
+
+    What has one pin and no reference designator, where other parts have one, is a symbol.
+    """
     has_references = any(entry.reference.is_stated for entry in built)
-    unique = _UniqueNames()
-    packages: dict[str, list[Package]] = {}
+    groups: dict[str, list[Built]] = {}
     for entry in built:
-        if has_references and entry.is_symbol:
-            continue
-        reference = entry.part.reference
-        same = packages.setdefault(reference, [])
-        package = next((known for known in (*same[:1], *same[-1:]) if known.accepts(entry)), None)
-        if package:
-            package.add(entry, netlist.notes)
-            continue
-        entry.part.reference = unique.of(reference)
-        if same:
-            message = f"the reference designator {reference} is written twice; this one is kept as "
-            message += entry.part.reference
-            netlist.notes.append(Note("duplicate-reference", message, entry.part.place, entry.part.reference))
-        same.append(Package(entry))
-        netlist.parts[entry.part.reference] = entry.part
-    for same in packages.values():
-        for package in same:
-            package.close()
+        if not (has_references and entry.is_symbol):
+            groups.setdefault(entry.part.reference, []).append(entry)
+    unique = _UniqueNames()
+    for reference, entries in groups.items():
+        for part in merge_sections(entries, netlist.notes):
+            part.reference = unique.of(reference)
+            netlist.parts[part.reference] = part
+            if part.reference != reference:
+                message = f"the reference designator {reference} is written twice; this part is kept as "
+                message += part.reference
+                netlist.notes.append(Note("duplicate-reference", message, part.place, part.reference))
     _note_parts(netlist)
 
 

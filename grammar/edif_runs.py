@@ -10,10 +10,20 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 
-from .edif_forms import CellRef, Designator, InstanceRun, JoinedRun, Member, PinNumber, PortList, PortRef, Property
+from .edif_forms import (
+    CellRef,
+    Designator,
+    InstanceRun,
+    JoinedRun,
+    Member,
+    PinNumber,
+    PortList,
+    PortRef,
+    Property,
+)
 from .edif_names import Name, decode, identifier
 
-_DEEPEST = 6  # as the terminal LIST
+_DEEPEST = 8  # as the terminal LIST
 
 
 def _list(depth: int) -> str:
@@ -25,18 +35,18 @@ def _list(depth: int) -> str:
 
 
 _LIST = _list(_DEEPEST)
-_LISTS = rf"(?:{_LIST})*+"
 _WORD = r'([^\s()"]++)\s*+'
 _RENAME = rf'\(\s*+rename\s++{_WORD}"([^"]*+)"\s*+\)\s*+'
-_NAMED = rf"\(\s*+name\s++{_WORD}{_LISTS}\)\s*+"
-_DISPLAYED = rf'(?:"([^"]*+)"\s*+|\(\s*+stringdisplay\s*+"([^"]*+)"\s*+{_LISTS}\)\s*+)'
+_NAMED = rf"\(\s*+name\s++{_WORD}(?:{_LIST})*+\)\s*+"
+_DISPLAYED = r'(?:\(\s*+stringdisplay\s*+)?+"([^"]*+)"'
 _LIBRARY_REF = rf"\(\s*+libraryref\s++{_WORD}\)\s*+"
 _CELL_REF = rf"\(\s*+cellref\s++{_WORD}(?:{_LIBRARY_REF})?+\)\s*+"
 _VIEW_REF = rf"\(\s*+viewref\s++{_WORD}(?:{_CELL_REF})?+\)\s*+"
-_TEXT = rf"\(\s*+string\s*+{_DISPLAYED}\)\s*+"
-_PROPERTY = rf"\(\s*+(?:property|parameter(?:assign)?+)\s*+(?:{_WORD}|{_RENAME}){_TEXT}{_LISTS}\)\s*+"
-_DESIGNATOR = rf"\(\s*+designator\s*+{_DISPLAYED}\)\s*+"
-_PORT_INSTANCE = rf"\(\s*+portinstance\s*+(?:{_WORD}|{_NAMED}){_DESIGNATOR}{_LISTS}\)\s*+"
+_PROPERTY = rf"\(\s*+(?:property|parameter(?:assign)?+)\s*+(?:{_WORD}|{_RENAME})\(\s*+string\s*+{_DISPLAYED}"
+_DESIGNATOR = rf"\(\s*+designator\s*+{_DISPLAYED}"
+_PORT_INSTANCE = (
+    rf"\(\s*+portinstance\s*+(?:{_WORD}|{_NAMED})(?:(?!\(\s*+designator){_LIST})*+(?:{_DESIGNATOR})?+"
+)
 
 
 def _compiled(pattern: str) -> re.Pattern[str]:
@@ -52,10 +62,10 @@ _PORT_REF_FORM = _compiled(rf"\(\s*+portref\s++{_WORD}(?:\(\s*+instanceref\s++{_
 _JOINED_FORM = _compiled(r"\(\s*+joined\s*+")
 _NET_FORM = _compiled(rf"\(\s*+net\s*+(?:{_WORD}|{_RENAME})(?:(?!\(\s*+joined){_LIST})*+")
 _INSTANCE_FORM = _compiled(rf"\(\s*+instance\s*+(?:{_WORD}|{_NAMED}|{_RENAME})({_VIEW_REF})")
-_ITEM_FORM = _compiled(f"{_PROPERTY}|{_DESIGNATOR}|{_PORT_INSTANCE}|{_LIST}")
-_PROPERTY_GROUPS = (4, 5)  # the last group that has matched tells which of the four it is
-_DESIGNATOR_GROUPS = (6, 7)
-_PORT_INSTANCE_GROUPS = (10, 11)
+_ITEM_FORM = _compiled(rf"(?:(?={_PROPERTY})|(?={_DESIGNATOR})|(?={_PORT_INSTANCE})|){_LIST}")
+_PROPERTY_VALUE = 4  # the groups of the pattern above: the last one that matched tells what the item is
+_DESIGNATOR_TEXT = 5
+_PIN_NUMBER = 8
 
 
 def port_references(text: str, run: JoinedRun) -> Iterator[tuple[str, str, int]]:
@@ -72,20 +82,23 @@ def listed_ports(text: str, ports: PortList) -> Iterator[PortRef]:
             yield reference
         else:
             for port, instance, offset in port_references(text, reference):
-                yield PortRef(Member(port, None, offset), (Member(instance, None, offset),) if instance else ())
+                yield PortRef(
+                    Member(port, None, offset), (Member(instance, None, offset),) if instance else ()
+                )
 
 
 def instance_items(text: str, run: InstanceRun) -> Iterator[Property | Designator | PinNumber]:
     """Yield what the items of an instance say, in the order of the file."""
     for match in _ITEM_FORM.finditer(text, run.start, run.end):
         last = match.lastindex
-        if last in _PROPERTY_GROUPS:
-            plain, _, renamed, *_ = match.groups()
-            yield Property(identifier(plain) if plain else decode(renamed), decode(match[last]))
-        elif last in _PORT_INSTANCE_GROUPS:
-            yield PinNumber(identifier(match[8] or match[9]), decode(match[last]))
-        elif last:
-            yield Designator(decode(match[last]))
+        if last == _PROPERTY_VALUE:
+            plain, _, renamed, value = match.group(1, 2, 3, 4)
+            if value:  # many exporters write a row of empty fields
+                yield Property(identifier(plain) if plain else decode(renamed), decode(value))
+        elif last == _PIN_NUMBER:
+            yield PinNumber(identifier(match[6] or match[7]), decode(match[8]))
+        elif last == _DESIGNATOR_TEXT:
+            yield Designator(decode(match[5]))
 
 
 def read_instance(token: str, start: int) -> tuple[Name, str, InstanceRun]:
@@ -115,16 +128,16 @@ def read_property(token: str) -> Property:
     """Return a property with a string by its display name."""
     match = _PROPERTY_FORM.match(token)
     assert match is not None
-    plain, _, renamed, text, displayed = match.groups()
-    return Property(identifier(plain) if plain else decode(renamed), decode(displayed if text is None else text))
+    plain, _, renamed, value = match.groups()
+    return Property(identifier(plain) if plain else decode(renamed), decode(value))
 
 
 def read_pin_number(token: str) -> PinNumber:
     """Return the port and its designator from a `portInstance` with its designator in front."""
     match = _PORT_INSTANCE_FORM.match(token)
     assert match is not None
-    plain, named, text, displayed = match.groups()
-    return PinNumber(identifier(plain or named), decode(displayed if text is None else text))
+    plain, named, number = match.groups("")
+    return PinNumber(identifier(plain or named), decode(number))
 
 
 def read_quoted(token: str) -> str:

@@ -6,7 +6,21 @@ from .edif_parts import Built
 from .netlist import Note, Part, Pin
 
 
-class Package:
+def merge_sections(entries: list[Built], notes: list[Note]) -> list[Part]:
+    """Return the parts that the instances of one reference designator make: one, unless they contradict."""
+    if len(entries) == 1:
+        return [entries[0].part]
+    packages: list[_Package] = []
+    for entry in entries:
+        package = next((known for known in (*packages[:1], *packages[-1:]) if known.accepts(entry)), None)
+        if package:
+            package.add(entry, notes)
+        else:
+            packages.append(_Package(entry))
+    return [package.close() for package in packages]
+
+
+class _Package:
     """One part as it grows from its sections."""
 
     def __init__(self, built: Built) -> None:
