@@ -8,25 +8,28 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from difflib import get_close_matches
 from typing import TypeVar, cast
 
 from ..grammar.netlist import Netlist, Part, Place
-from .brief import Brief, ControllerBrief, Rail
+from .brief import Brief, BriefError, ControllerBrief, Rail
 from .circuit.amplifiers import Amplifier, AmplifierReader, Reach, SenseResistor, amplifier_for
 from .circuit.answers import estimate
 from .circuit.compensation import Compensation, compensation
 from .circuit.conditions import Conditions
 from .circuit.controllers import Controller, find_controllers
 from .circuit.dead_time import DeadTime, dead_time
+from .circuit.drive import Drive
 from .circuit.duty import needed_duty
 from .circuit.graph import Circuit
 from .circuit.growth import Growth
 from .circuit.loops import Fault, Loops, Regulation, Trip
+from .circuit.output_drive import OutputDrive
 from .circuit.potentials import Potential, known_potentials
 from .circuit.power_stage import NotRecognised, PowerStage
 from .circuit.power_stage_reader import PowerStageReader
 from .circuit.reference_load import ReferenceLoad, reference_load
-from .circuit.regimes import Operation, Regime, potentials_in
+from .circuit.regimes import REGULATING, Operation, Regime, potentials_in
 from .circuit.time_constants import source_resistance, time_constant
 from .circuit.timing import Timing, timing
 from .circuit.worst_case import Variation
@@ -68,6 +71,8 @@ class Design:
         pins = {reference: entry.pins for reference, entry in told.items() if entry.pins}
         self.controllers = find_controllers(netlist, pins)
         self.known = known_potentials(self.circuit, brief, self.controllers)
+        if brief is not None:
+            _check_rails(netlist, brief)
         self._answers: dict[tuple[str, str], object] = {}
 
     # What the engineer told
@@ -222,6 +227,15 @@ class Design:
             lambda: source_resistance(self.circuit, known, self.controllers, net),
         )
 
+    def output_drive(self, controller: Controller) -> OutputDrive:
+        """Return the solver of what a controller's outputs drive."""
+
+        def make() -> OutputDrive:
+            drive = Drive(self.circuit, self.known, controller)
+            return OutputDrive(self.circuit, self.known, self.controllers, controller, drive)
+
+        return self._keep("output drive", controller.reference, make)
+
     def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
         """Return the current at which a controller's current loop takes over.
 
@@ -287,10 +301,21 @@ class Design:
         return found if isinstance(found, Unsolved) else found["voltage"]
 
     def _voltage_in(self, regime: Regime, controller: Controller, net: str) -> Estimate | Unsolved:
+        held = self._held_input(regime, controller, net)
+        if held is not None:
+            return held
         known = potentials_in(regime, self.known, controller, self._operation(controller))
         empty = regime is Regime.START_UP
         growth = Growth(self.circuit, known, self.controllers, empty_capacitors=empty)
         return self._solved_voltage(growth, net)
+
+    def _held_input(self, regime: Regime, controller: Controller, net: str) -> Estimate | None:
+        """Return the potential of an input that the regulating amplifier holds equal to the other."""
+        amplifier = amplifier_for(self.amplifiers(controller), "voltage")
+        if regime not in REGULATING or amplifier is None or net not in (amplifier.plus, amplifier.minus):
+            return None
+        found = self.regulation(controller)
+        return found.inputs if isinstance(found, Regulation) else None
 
     def _operation(self, controller: Controller) -> Operation:
         return self._keep("operation", controller.reference, lambda: self._operated(controller))
@@ -359,6 +384,21 @@ class Design:
         if isinstance(found, Regulation):
             return Potential(net, found.output.spread, "brief", assumption=f"{net} in regulation")
         return None
+
+
+def _check_rails(netlist: Netlist, brief: Brief) -> None:
+    """Refuse a brief whose rails are no nets of the netlist: such a limit would hold nothing."""
+    for name, rail in brief.rails.items():
+        if name not in netlist.nets:
+            near = get_close_matches(name, netlist.nets, n=1, cutoff=0.6)
+            raise BriefError(
+                f"the netlist has no net {name}",
+                rail.place,
+                expected="a net of the netlist",
+                remedy=f"did you mean {near[0]}?"
+                if near
+                else "take the rail out of the brief, or name its net",
+            )
 
 
 # Below the first the output-control pin reads as low, and as high within the second of the reference:

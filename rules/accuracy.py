@@ -47,7 +47,7 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
         yield Verdict(outcome=Outcome.OPEN, message=f"accuracy of {output}: no tolerance told", needs=(need,))
         return
     if found.trimmers:
-        trimmers = tuple(name.removesuffix(" travel") for name in found.trimmers)
+        trimmers = found.trimmers
         yield Verdict(
             outcome=Outcome.NOT_APPLICABLE,
             message=f"{output} is set on the bench by {', '.join(trimmers)}",

@@ -52,7 +52,8 @@ def output_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     says = f"{amplifier.output} regulates to {found.output.spread.text(4)}"
     band = _band(rail)
     if rail is None or band is None:
-        yield reports(found.output, says, pins=pins)
+        swept = f", {', '.join(found.trimmers)} swept end to end" if found.trimmers else ""
+        yield reports(found.output, says + swept, pins=pins)
     elif found.settable is not None:
         yield _settable(found, rail, amplifier.output, pins)
     else:
@@ -95,7 +96,7 @@ def _settable(found: Regulation, rail: Rail, output: str, pins: tuple[str, ...])
             found.output, f"{output} can be set {reach} on every unit", pins=pins, source=_brief_band(rail)
         ),
         outcome=Outcome.PASS if inside else Outcome.FAIL,
-        assumptions=(*found.output.assumptions, f"{trimmers} set on the bench to {wanted}"),
+        assumptions=(*found.output.assumptions, f"{trimmers} set on the bench so that {output} is {wanted}"),
         remedy=""
         if inside
         else f"choose the fixed resistors so that {wanted} lies within reach of every unit",

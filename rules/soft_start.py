@@ -181,8 +181,12 @@ def _in_cycles(
         source=practice.source,
         pins=_PIN,
     )
-    # A custom, not a limit: outside it a person judges.
-    return replace(verdict, outcome=Outcome.REVIEW) if verdict.outcome is Outcome.FAIL else verdict
+    if verdict.outcome is Outcome.PASS:
+        return verdict
+    # A custom, not a limit. Too short a start strains parts, and a person judges; a long one only takes time.
+    short = cycles.nominal < (practice.minimum or 0.0)
+    outcome = Outcome.REVIEW if short else Outcome.INFORMATIONAL
+    return replace(verdict, outcome=outcome, level=None)
 
 
 def _capacitor_for(measured: Estimate, wanted: Spread, capacitor: Part, design: Design) -> str:

@@ -140,9 +140,7 @@ def _tolerance(part: Part, design: Design) -> float | None:
     """Return the tolerance as a ratio, None where it is only assumed."""
     value = design.circuit.value(part)
     assert value is not None
-    if any(assumption.startswith(f"{part.reference}: tolerance") for assumption in value.assumptions):
-        return None
-    return value.spread.maximum / value.spread.nominal - 1
+    return value.tolerance.plus if value.tolerance.told else None
 
 
 # The greatest tolerance, as a ratio, at which each finer series is sold (IEC 60063).

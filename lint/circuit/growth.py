@@ -37,6 +37,9 @@ from .worst_case import Parameter, Variation
 
 GROUND = "\x00ground"  # the name of ground inside a network: no net of a file can have it
 
+# Which figure of the profile flows into a pin, where it is not an amplifier's bias current.
+_PIN_CURRENTS = {"dead time": "dead-time.bias-current", "supply": "supply.current"}
+
 # Pins of a controller whose potential the converter's own switching sets.
 _SWITCHING_ROLES = ("output 1 collector", "output 1 emitter", "output 2 collector", "output 2 emitter")
 
@@ -115,9 +118,10 @@ class Growth:
 
     def _breakdown(self, diode: Diode) -> Value | None:
         """Return the zener voltage that the part's value or model states, None for an ordinary diode."""
-        volts = zener_voltage(self.circuit.parts[diode.part])
+        part = self.circuit.parts[diode.part]
+        volts = zener_voltage(part) if self.circuit.kind(part) == "diode" else None
         if volts is None:
-            return None
+            return None  # the base of a transistor is a junction as well, and its text is not about it
         ratio = float(defaults()["tolerance"]["zener"]["ratio"])
         self.assume(f"{diode.part}: {engineering(volts, 'V')} ±{percent(ratio)} zener assumed")
         name = f"{diode.part} zener voltage"
@@ -159,7 +163,7 @@ class Growth:
         if role is None or role in ("ground", "reference", "feedback"):
             return
         pin = controller.pins[role]
-        if role in ("supply", *_SWITCHING_ROLES, "timing resistor", "timing capacitor"):
+        if role in (*_SWITCHING_ROLES, "timing resistor", "timing capacitor"):
             if net not in self.known:
                 self.block(net, part=controller.part, reason=f"{pin.name} of {controller.reference} sets it")
             return
@@ -167,16 +171,23 @@ class Growth:
 
     def _pin_current(self, controller: Controller, pin: ControllerPin, net: str) -> None:
         """Let the current that flows into a controller's pin load the net."""
-        figure_name = {
-            "dead time": "dead-time.bias-current",
-            "output control": "output-control.current",
-        }.get(pin.role, "amplifier.bias-current")
-        if pin.role == "output control" and _is_ground(self.known.get(net)):
-            return  # a pin at ground draws nothing from the reference
+        if pin.role == "output control":
+            self._output_control(controller, net)
+            return
+        figure_name = _PIN_CURRENTS.get(pin.role, "amplifier.bias-current")
         spread = controller.profile.figure(figure_name).spread()
         name = f"{controller.reference} {pin.name} current"
         value = self.add_parameter(Parameter(name, spread.minimum, spread.nominal, spread.maximum))
         self.add(CurrentSource(name, net, GROUND, value))
+
+    def _output_control(self, controller: Controller, net: str) -> None:
+        """Let the output-control pin load the net: its current is told at the reference, and follows it."""
+        current = controller.profile.figure("output-control.current").spread()
+        reference = controller.profile.figure("reference.voltage").spread().nominal
+        name = f"{controller.reference} {controller.pins['output control'].name} current"
+        ends = (current.minimum / reference, current.nominal / reference, current.maximum / reference)
+        value = self.add_parameter(Parameter(name, *ends))
+        self.add(ControlledSource(name, net, GROUND, net, GROUND, value, "current"))
 
     def block(self, net: str, part: Part, reason: str) -> None:
         """Note that a part keeps a net's potential from being computed."""
@@ -209,10 +220,6 @@ class Growth:
         return self.add_parameter(
             Parameter(part.reference, s.minimum, s.nominal, s.maximum, random=value.random)
         )
-
-
-def _is_ground(potential: Potential | None) -> bool:
-    return potential is not None and potential.origin == "ground"
 
 
 # Below this a resistance is solved by its current as a short is: its conductance would drown all others.
@@ -249,7 +256,7 @@ def _trimmer(growth: Growth, part: Part, net: str) -> None:
         return
     growth.use(part)
     name = f"{part.reference} travel"
-    travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL))
+    travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL, part.reference))
     top, wiper, bottom = (_terminal(part, pin) for pin in in_trimmer_order(part))
     growth.add(
         Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True)

@@ -11,7 +11,7 @@ from importlib.resources import files
 from typing import Any
 
 from ...grammar.netlist import Netlist, Part
-from ...grammar.values import Value, ValueTextError, read_value
+from ...grammar.values import Value, ValueTextError, read_tolerance, read_value
 from ..derating import ageing_of
 from ..parts_list import PartData, PartsList
 from ..preferred import is_preferred
@@ -49,13 +49,24 @@ _RATIO_BELOW = 0.05
 
 
 @dataclass(frozen=True, slots=True)
-class PartValue:
-    """The value of a part with its tolerance: `spread` in its SI unit, and what was assumed for it.
+class Tolerance:
+    """How far a part may be from its value when bought, as ratios; `told` is False where it was assumed."""
 
-    random: the share of the spread that varies from unit to unit; the rest is drift, the same for all
+    minus: float
+    plus: float
+    told: bool
+
+
+@dataclass(frozen=True, slots=True)
+class PartValue:
+    """The value of a part: `spread` in its SI unit, tolerance and drift included, and what was assumed.
+
+    tolerance: as bought, without drift
+    random:    the share of the spread that varies from unit to unit; the rest is drift, the same for all
     """
 
     spread: Spread
+    tolerance: Tolerance
     assumptions: tuple[str, ...] = ()
     random: float = 1.0
 
@@ -137,7 +148,8 @@ class PartReader:
         for key in _ATTRIBUTES[name]:
             if part.attributes.get(key):
                 return part.attributes[key]
-        return ""
+        value = self.written(part) if name == "dielectric" else None
+        return value.dielectric if value is not None else ""
 
     def _text(self, part: Part) -> str:
         if part.value:
@@ -150,15 +162,17 @@ class PartReader:
         if value is None:
             return None
         unit = _QUANTITIES[self.kind(part)][1]
-        minus, plus, assumed = self._tolerance(part, value)
-        drift, drifts = self._drift(part)
+        tolerance = self._tolerance(part, value)
+        drift, assumptions = self._drift(part)
         nominal = value.number
-        ends = sorted((nominal * (1 + minus - drift), nominal * (1 + plus + drift)))
-        assumptions = [*filter(None, (assumed,)), *drifts]
+        ends = sorted((nominal * (1 + tolerance.minus - drift), nominal * (1 + tolerance.plus + drift)))
+        if not tolerance.told and tolerance.plus:
+            assumptions.insert(0, f"{part.reference}: tolerance {percent(tolerance.plus)} assumed")
         if value.ambiguous:
             assumptions.append(f"{part.reference}: {value.ambiguous}")
-        random = (plus - minus) / (plus - minus + 2 * drift) if drift else 1.0
-        return PartValue(Spread(ends[0], nominal, ends[1], unit), tuple(assumptions), random)
+        width = tolerance.plus - tolerance.minus
+        random = width / (width + 2 * drift) if drift else 1.0
+        return PartValue(Spread(ends[0], nominal, ends[1], unit), tolerance, tuple(assumptions), random)
 
     def _drift(self, part: Part) -> tuple[float, list[str]]:
         """Return the drift with temperature and age as a ratio, and what was assumed for it."""
@@ -182,21 +196,17 @@ class PartReader:
             )
         return drift, assumptions
 
-    def _tolerance(self, part: Part, value: Value) -> tuple[float, float, str]:
-        """Return the relative tolerance downwards and upwards, and the assumption behind it if any."""
+    def _tolerance(self, part: Part, value: Value) -> Tolerance:
+        """Return the tolerance by parts list, attribute or the value's own text, else a default."""
         row = self._rows.get(part.reference)
-        if row is not None and row.tolerance is not None:
-            return (-row.tolerance, row.tolerance, "")
+        if row is not None and row.tolerance_range is not None:
+            return Tolerance(*row.tolerance_range, told=True)
         text = self.attribute(part, "tolerance")
-        ratio = _tolerance_ratio(text) if text else None
-        if ratio is not None:
-            return (-ratio, ratio, "")
-        if value.tolerance is not None:
-            return (*value.tolerance, "")
+        told = _tolerance_text(text) if text else value.tolerance
+        if told is not None:
+            return Tolerance(*told, told=True)
         ratio = self._default_tolerance(self.kind(part), value.number)
-        if ratio == 0:
-            return (0.0, 0.0, "")
-        return (-ratio, ratio, f"{part.reference}: tolerance {percent(ratio)} assumed")
+        return Tolerance(-ratio, ratio, told=False)
 
     @staticmethod
     def _default_tolerance(kind: str, number: float) -> float:
@@ -246,12 +256,18 @@ def _by_prefix(letters: str) -> str:
     return "other"
 
 
-def _tolerance_ratio(text: str) -> float | None:
-    match = re.fullmatch(r"\s*(?:\+/?-|±)?\s*(\d+(?:\.\d+)?)\s*(%?)\s*", text)
-    if match is None:
+def _tolerance_text(text: str) -> tuple[float, float] | None:
+    """Return the tolerance that an attribute's text states, None where it cannot be read."""
+    try:
+        ratio = float(text)
+    except ValueError:
+        ratio = 1.0
+    if 0 < ratio < _RATIO_BELOW:
+        return (-ratio, ratio)
+    try:
+        return read_tolerance(text)
+    except ValueTextError:
         return None
-    number = float(match.group(1))
-    return number if not match.group(2) and number < _RATIO_BELOW else number / 100
 
 
 @cache

@@ -29,6 +29,10 @@ class Regime(StrEnum):
     SUPPLY_ABSENT = "supply absent"
 
 
+# The regimes in which the voltage amplifier holds its inputs equal.
+REGULATING = frozenset({Regime.LOWEST_INPUT, Regime.HIGHEST_INPUT, Regime.NO_LOAD})
+
+
 @dataclass(frozen=True, slots=True)
 class Operation:
     """What is known of the converter in operation, None where it is not.
@@ -83,8 +87,7 @@ def _output(regime: Regime, operation: Operation) -> Spread | None:
         return _ZERO
     if regime is Regime.CURRENT_LIMIT and operation.regulated is not None:
         # While the limit holds, the output is anywhere from a short circuit to its regulated voltage.
-        nominal, maximum = operation.regulated.nominal, operation.regulated.maximum
-        return Spread(0.0, nominal, maximum, "V")
+        return Spread(0.0, operation.regulated.nominal, operation.regulated.nominal, "V")
     return operation.regulated
 
 

@@ -12,12 +12,16 @@ from .answers import estimate
 from .growth import Growth
 from .solver import Condition, Free
 from .states import Probe
-from .worst_case import Variation
+from .worst_case import Parameter, Variation
 
 
 def trimmers(growth: Growth) -> tuple[str, ...]:
-    """Return the names of the trimmers' travels among what varies in a network."""
-    return tuple(p.name for p in growth.parameters.values() if p.variation is Variation.TRAVEL)
+    """Return the reference designators of the trimmers in a network."""
+    return tuple(parameter.label for parameter in _travels(growth))
+
+
+def _travels(growth: Growth) -> list[Parameter]:
+    return [p for p in growth.parameters.values() if p.variation is Variation.TRAVEL]
 
 
 def settable(
@@ -32,7 +36,7 @@ def settable(
     Each end is as the least favourable unit has it, so the two are crossed where no value is within reach
     of every unit. None without a trimmer, or where an end of the travel has no solution.
     """
-    travel = [growth.parameters[trimmer] for trimmer in trimmers(growth)]
+    travel = _travels(growth)
     if not travel:
         return None
     ends: list[Spread] = []

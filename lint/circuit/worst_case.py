@@ -37,6 +37,9 @@ _TRAVEL = (0.0, 0.25, 0.5, 0.75, 1.0)
 # A parameter whose share of the spread is less is rounding, not a contribution.
 _LEAST_SHARE = 1e-9
 
+# Contributions below this share are rounding, or as good as none.
+_CRUMB = 1e-6
+
 # A result may leave the corners by this share of its size before it counts as not monotonic (rounding).
 _ROUNDING = 1e-9
 
