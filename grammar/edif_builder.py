@@ -93,12 +93,8 @@ class FormBuilder(Transformer[Token, Edif]):
         """`(viewRef view (cellRef cell (libraryRef library)))`."""
         return _cell_ref(token.value)
 
-    def PORT_REFS(self, token: Token) -> JoinedRun:
-        """A run of `(portRef port (instanceRef instance))`."""
-        return JoinedRun(_start(token), _start(token) + len(token.value))
-
     def JOINED_SIMPLY(self, token: Token) -> JoinedRun:
-        """A whole `joined` form that holds such a run and nothing else."""
+        """A whole `joined` form that holds plain references to ports and nothing else."""
         return JoinedRun(_start(token), _start(token) + len(token.value))
 
     def NET_SIMPLY(self, token: Token) -> Net:

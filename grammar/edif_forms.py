@@ -54,13 +54,13 @@ class GlobalRef(NamedTuple):
 class PortList(NamedTuple):
     """Ports in order, each for one bit of the net that joins the list."""
 
-    references: tuple[PortRef | JoinedRun, ...]
+    ports: tuple[PortRef, ...]
 
 
 class Joined(NamedTuple):
     """What a `joined` form ties together, where it was written in other than the usual way."""
 
-    references: tuple[PortRef | GlobalRef | PortList | JoinedRun, ...]
+    references: tuple[PortRef | GlobalRef | PortList, ...]
 
 
 class Unit(NamedTuple):

@@ -104,7 +104,9 @@ def symbol_of(said: Description, source: Source | None) -> Symbol | None:
     Both have one pin at most and no reference designator, and netlist views have none of them. Exporters mark
     them by a property of the port or by the name of the cell.
     """
-    if source is None or len(source.ports.bits) > 1 or said.designators or source.view.kind == "NETLIST":
+    if source is None or len(source.ports.bits) > 1 or said.designators:
+        return None
+    if source.view.kind == "NETLIST" or source.view.is_filled():
         return None
     words = symbol_words()
     title = f"{source.library.name.display} {source.cell.name.display}".casefold()

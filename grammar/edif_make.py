@@ -199,7 +199,7 @@ def _net(items: Items) -> Net:
 
 def _joined_form(items: Items) -> Joined:
     return Joined(
-        tuple(item for item in items if isinstance(item, (JoinedRun, PortRef, PortList, GlobalRef)))
+        tuple(item for item in items if isinstance(item, (PortRef, PortList, GlobalRef)))
     )
 
 
@@ -212,7 +212,7 @@ def _member(name: Name) -> Member:
 
 
 def _port_list(items: Items) -> PortList:
-    return PortList(tuple(item for item in items if isinstance(item, (PortRef, JoinedRun))))
+    return PortList(tuple(_of(PortRef, items)))
 
 
 def _port_ref(items: Items) -> PortRef:

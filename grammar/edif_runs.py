@@ -75,18 +75,6 @@ def port_references(text: str, run: JoinedRun) -> Iterator[tuple[str, str, int]]
         yield identifier(port), instance and identifier(instance), match.start()
 
 
-def listed_ports(text: str, ports: PortList) -> Iterator[PortRef]:
-    """Yield the ports of a list one by one."""
-    for reference in ports.references:
-        if isinstance(reference, PortRef):
-            yield reference
-        else:
-            for port, instance, offset in port_references(text, reference):
-                yield PortRef(
-                    Member(port, None, offset), (Member(instance, None, offset),) if instance else ()
-                )
-
-
 def instance_items(text: str, run: InstanceRun) -> Iterator[Property | Designator | PinNumber]:
     """Yield what the items of an instance say, in the order of the file."""
     for match in _ITEM_FORM.finditer(text, run.start, run.end):

@@ -11,7 +11,7 @@ from .edif_forms import Contents, GlobalRef, Joined, JoinedRun, Member, Net, Por
 from .edif_library import NameTable, Source
 from .edif_names import bit_names
 from .edif_ports import width
-from .edif_runs import listed_ports, port_references
+from .edif_runs import port_references
 
 
 class Oddity(NamedTuple):
@@ -86,9 +86,7 @@ class Wiring:
 
     def _connect_joined(self, joined: Joined, pieces: Sequence[int]) -> None:
         for reference in joined.references:
-            if isinstance(reference, JoinedRun):
-                self._connect_run(reference, pieces)
-            elif isinstance(reference, GlobalRef):
+            if isinstance(reference, GlobalRef):
                 port = reference.port
                 self._nets.join_bits(pieces, [self._nets.shared("", port.identifier, port.offset)])
             elif isinstance(reference, PortList):
@@ -98,7 +96,7 @@ class Wiring:
 
     def _connect_list(self, ports: PortList, pieces: Sequence[int]) -> None:
         """Connect the ports of a list, each to its bit of the net; all of them to a net of one bit."""
-        for i, reference in enumerate(listed_ports(self._text, ports)):
+        for i, reference in enumerate(ports.ports):
             self._connect(reference, pieces if len(pieces) == 1 else pieces[i : i + 1])
 
     def _connect(self, reference: PortRef, pieces: Sequence[int]) -> None:
@@ -156,10 +154,9 @@ class Wiring:
 
     def _ports_named(self, joined: JoinedRun | Joined) -> Iterator[Member]:
         """Yield the ports that a `joined` in an interface names."""
-        for reference in joined.references if isinstance(joined, Joined) else (joined,):
-            if isinstance(reference, JoinedRun):
-                yield from (Member(port, None, at) for port, _, at in port_references(self._text, reference))
-            elif isinstance(reference, PortList):
-                yield from (listed.port for listed in listed_ports(self._text, reference))
-            else:
-                yield reference.port
+        if isinstance(joined, JoinedRun):
+            yield from (Member(port, None, at) for port, _, at in port_references(self._text, joined))
+            return
+        for reference in joined.references:
+            ports = reference.ports if isinstance(reference, PortList) else (reference,)
+            yield from (port.port for port in ports)
