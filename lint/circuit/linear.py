@@ -27,15 +27,15 @@ def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
     """
     if matrix.shape[1] == 0:
         return np.zeros_like(right)
-    rows = _greatest(matrix, axis=2)
+    rows = _lengths(np.einsum("sij,sij->si", matrix, matrix))
     matrix = matrix / rows[:, :, None]
-    columns = _greatest(matrix, axis=1)
-    matrix = matrix / columns[:, None, :]  # now siemens and ohms compare: the greatest coefficients are 1
+    columns = _lengths(np.einsum("sij,sij->sj", matrix, matrix))
+    matrix = matrix / columns[:, None, :]  # now siemens and ohms compare: every column has the length 1
     right = right / rows
     questions = np.stack([right, np.ones_like(right)], axis=2)
     try:
         answers = np.linalg.solve(matrix, questions)
-        doubtful = np.max(np.abs(answers[:, :, 1]), axis=1) > _MOST_GROWTH
+        doubtful = np.einsum("si,si->s", answers[:, :, 1], answers[:, :, 1]) > _MOST_GROWTH**2
     except np.linalg.LinAlgError:  # an exactly singular one, which hides the answers of all others
         singular = np.asarray(np.linalg.svd(matrix, compute_uv=False), dtype=np.float64)
         doubtful = np.any(_vanishing(singular), axis=1)
@@ -47,9 +47,8 @@ def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
     return answer / columns
 
 
-def _greatest(matrix: Array, axis: int) -> Array:
-    greatest = np.max(np.abs(matrix), axis=axis)
-    return np.where(greatest == 0.0, 1.0, greatest)
+def _lengths(squares: Array) -> Array:
+    return np.where(squares == 0.0, 1.0, np.sqrt(squares))
 
 
 def _vanishing(singular: Array) -> Flags:

@@ -16,7 +16,6 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from enum import Enum, auto
-from itertools import product
 from math import prod
 from typing import TypeAlias
 
@@ -103,18 +102,19 @@ def analyse(
     """
     samples = Samples(parameters)
     evaluate = _in_slices(evaluate)
-    rows = np.vstack([samples.nominal(), samples.corners(), samples.star()])
-    values = evaluate(samples.as_sample(rows), len(rows))
-    first_star = len(rows) - samples.star_rows
-    loops = _OuterLoops(samples, evaluate)
+    loops = _OuterLoops(samples)
+    pieces = [samples.nominal(), samples.corners(), samples.star(), loops.rows]
+    cuts = np.cumsum([len(piece) for piece in pieces[:-1]])
+    rows = np.vstack(pieces)
     found: dict[str, Analysis] = {}
-    for name, column in values.items():
-        nominal, corners, star = column[0], column[1:first_star], column[first_star:]
+    for name, column in evaluate(samples.as_sample(rows), len(rows)).items():
+        nominal, corners, star, around = np.split(column, cuts)
+        table = loops.table(around)
         settled = True
         if not samples.has_all_corners:
-            searched, settled = _searched(loops, name)
+            searched, settled = _Search(samples, evaluate, name).both_ends(*loops.directed(table))
             corners = np.concatenate([corners, searched])
-        analysis = _analysis(float(nominal), corners, star, loops.statistical(name), units[name])
+        analysis = _analysis(float(nominal[0]), corners, star, loops.statistical(table), units[name])
         contributions = _contributions(samples, star)
         found[name] = Analysis(*analysis[:2], contributions, monotonic=settled and analysis[2])
     return found
@@ -201,9 +201,12 @@ class Samples:
 
     def combinations(self, choices: Mapping[int, Sequence[float]]) -> Array:
         """Return a row for every combination of the given values of parameters, the others at nominal."""
-        rows = np.repeat(self.nominal(), _grid_size(choices), axis=0)
+        size = _grid_size(choices)
+        rows = np.repeat(self.nominal(), size, axis=0)
         if choices:
-            rows[:, list(choices)] = list(product(*choices.values()))
+            positions = np.unravel_index(np.arange(size), [len(values) for values in choices.values()])
+            for (index, values), position in zip(choices.items(), positions, strict=True):
+                rows[:, index] = np.array(values)[position]
         return rows
 
     def _choices(self, indices: Sequence[int]) -> dict[int, Sequence[float]]:
@@ -221,80 +224,87 @@ def _stations(parameter: Parameter) -> tuple[float, ...]:
 
 
 class _OuterLoops:
-    """The outer corners, each with its tolerances one at a time at their ends: centre, low, high, low, ..."""
+    """The outer corners, each with its tolerances one at a time at their ends.
 
-    def __init__(self, samples: Samples, evaluate: Evaluate) -> None:
+    rows: for each outer corner, tolerances all at nominal, then low, high, low, high ...
+    """
+
+    def __init__(self, samples: Samples) -> None:
         self.samples = samples
-        self.evaluate = evaluate
         self.centres = samples.outer_corners()
         blocks = [np.vstack([c[None, :], samples.star_about(c, samples.tolerances)]) for c in self.centres]
-        rows = np.vstack(blocks)
-        self._values = evaluate(samples.as_sample(rows), len(rows))
+        self.rows = np.vstack(blocks)
 
-    def table(self, name: str) -> Array:
-        """Return the values of one quantity, a row for each outer corner."""
-        return self._values[name].reshape(len(self.centres), -1)
+    def table(self, values: Array) -> Array:
+        """Return the values at `rows`, a row for each outer corner."""
+        return values.reshape(len(self.centres), -1)
 
-    def statistical(self, name: str) -> tuple[float, float]:
+    def statistical(self, table: Array) -> tuple[float, float]:
         """Return the least and the greatest value by root-sum-square, NaN where they are not to be had."""
         if not self.samples.has_all_outer_corners:
             return np.nan, np.nan
-        table = self.table(name)
-        random = np.array(
-            [self.samples.parameters[i].random for i in self.samples.tolerances], dtype=np.float64
-        )
+        parameters = [self.samples.parameters[index] for index in self.samples.tolerances]
+        random = np.array([parameter.random for parameter in parameters], dtype=np.float64)
         with np.errstate(invalid="ignore"):
             half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
             root_sum = np.sqrt(np.sum((half_widths * random) ** 2, axis=1))
             half_width = root_sum + np.sum(half_widths * (1 - random), axis=1)
             return float(np.min(table[:, 0] - half_width)), float(np.max(table[:, 0] + half_width))
 
-    def directed(self, name: str) -> tuple[Array, Array]:
+    def directed(self, table: Array) -> tuple[Array, Array]:
         """Return, for each outer corner, where its sensitivities put the least value, and the greatest."""
-        table = self.table(name)
         rises = table[:, 2::2] >= table[:, 1::2]
-        ends = [
-            (self.samples.parameters[i].low, self.samples.parameters[i].high) for i in self.samples.tolerances
-        ]
-        low, high = np.array(ends, dtype=np.float64).reshape(-1, 2).T
+        parameters = [self.samples.parameters[index] for index in self.samples.tolerances]
+        low = np.array([parameter.low for parameter in parameters], dtype=np.float64)
+        high = np.array([parameter.high for parameter in parameters], dtype=np.float64)
         least, most = self.centres.copy(), self.centres.copy()
         least[:, self.samples.tolerances] = np.where(rises, low, high)
         most[:, self.samples.tolerances] = np.where(rises, high, low)
         return least, most
 
 
-def _searched(loops: _OuterLoops, name: str) -> tuple[Array, bool]:
-    """Return the worst values of one quantity at both ends, and whether the search for them came to rest.
+class _Search:
+    """Looks for the worst corners of one quantity where trying every corner would take too long."""
 
-    Used where trying every corner would take too long.
-    """
-    found: list[Array] = []
-    settled = True
-    for rows, sign in zip(loops.directed(name), (-1.0, 1.0), strict=True):
-        values = sign * loops.evaluate(loops.samples.as_sample(rows), len(rows))[name]
-        start = int(np.argmax(values))
-        end, came_to_rest = _climbed(loops, name, rows[start], float(values[start]), sign)
-        found += [sign * values, np.array([sign * end])]
-        settled &= came_to_rest
-    return np.concatenate(found), settled
+    def __init__(self, samples: Samples, evaluate: Evaluate, name: str) -> None:
+        self.samples = samples
+        self._evaluate = evaluate
+        self._name = name
 
+    def both_ends(self, least: Array, most: Array) -> tuple[Array, bool]:
+        """Return the values met on the way to both ends, and whether the search came to rest.
 
-def _climbed(loops: _OuterLoops, name: str, row: Array, value: float, sign: float) -> tuple[float, bool]:
-    """Move one corner on, each parameter to its other end that makes `sign` times the quantity greater."""
-    samples = loops.samples
-    for _ in range(_MOST_STEPS):
-        star = samples.star_about(row, samples.varying)
-        around = sign * loops.evaluate(samples.as_sample(star), len(star))[name]
-        better = around > value + _ROUNDING * abs(value)
-        if not better.any():
-            return value, True
-        together = row.copy()
-        for position in np.flatnonzero(better):
-            together[samples.varying[position // 2]] = star[position, samples.varying[position // 2]]
-        steps = np.vstack([together, star[int(np.argmax(around))]])
-        values = sign * loops.evaluate(samples.as_sample(steps), 2)[name]
-        row, value = steps[int(np.argmax(values))], float(np.max(values))
-    return value, False
+        least, most: rows to start from, those that promise little and those that promise much
+        """
+        found: list[Array] = []
+        rested = True
+        for rows, sign in ((least, -1.0), (most, 1.0)):
+            values = sign * self._values(rows)
+            start = int(np.argmax(values))
+            end, at_rest = self._climbed(rows[start], float(values[start]), sign)
+            found += [sign * values, np.array([sign * end])]
+            rested = rested and at_rest
+        return np.concatenate(found), rested
+
+    def _climbed(self, row: Array, value: float, sign: float) -> tuple[float, bool]:
+        """Move a corner on, each parameter to the other end that makes `sign` times the quantity greater."""
+        varying = self.samples.varying
+        for _ in range(_MOST_STEPS):
+            star = self.samples.star_about(row, varying)
+            around = sign * self._values(star)
+            better = np.flatnonzero(around > value + _ROUNDING * abs(value))
+            if not len(better):
+                return value, True
+            together = row.copy()
+            for position in better:
+                together[varying[position // 2]] = star[position, varying[position // 2]]
+            steps = np.vstack([together, star[int(np.argmax(around))]])
+            values = sign * self._values(steps)
+            row, value = steps[int(np.argmax(values))], float(np.max(values))
+        return value, False
+
+    def _values(self, rows: Array) -> Array:
+        return self._evaluate(self.samples.as_sample(rows), len(rows))[self._name]
 
 
 def _analysis(
