@@ -9,12 +9,14 @@ Nothing here prints or exits; `cli` does.
 from __future__ import annotations
 
 from .brief import read_brief
+from .estimate import Method
 from .parts_list import read_parts_list
 from .review import review, review_netlist
 from .verdict import Level, Outcome, Review, Verdict
 
 __all__ = [
     "Level",
+    "Method",
     "Outcome",
     "Review",
     "Verdict",

@@ -7,6 +7,7 @@ import pwmlint.grammar.values
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from pwmlint.grammar import value_words
 from pwmlint.grammar.value_words import read_word
 from pwmlint.grammar.values import Value, ValueTextError, read_tolerance, read_value, says_not_fitted
 
@@ -403,3 +404,17 @@ def test_the_grammar_has_no_conflicts() -> None:
 
 def test_unknown_words_say_nothing() -> None:
     assert read_word("SOT23-5", "word") is None
+
+
+@given(
+    digits=st.from_regex(r"[0-9]{1,6}(\.[0-9]{1,4})?", fullmatch=True),
+    tail=st.sampled_from(
+        ["", "k", "K", "M", "n", "p", "u", "%", "V", "A", "W", "meg", "MEG", "m", "t", "f", "g", "N"]
+    ),
+    kind=st.sampled_from(["word", "simulated"]),
+)
+def test_plain_words_mean_what_the_grammar_says(digits: str, tail: str, kind: str) -> None:
+    plain = value_words._plain(digits + tail, kind)  # pyright: ignore[reportPrivateUsage]  # the short cut itself
+    if plain is not None:
+        parsed = value_words._parser().parse(digits + tail, start=kind)  # pyright: ignore[reportPrivateUsage, reportUnknownMemberType, reportUnknownVariableType]
+        assert plain == parsed
