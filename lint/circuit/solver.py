@@ -305,19 +305,18 @@ class _Equations:
             for position, free in enumerate(self.network.free)
             if isinstance(free, FreeCurrent)
         }
-        direction = np.where(np.isnan(answer).any(axis=1), 0.0, self._loop_direction())
+        direction = self._loop_direction(answer) if self.network.free else np.ones(1)
         return Solution(self.network, self.sample, self.size, potentials, branches, free, direction)
 
-    def _loop_direction(self) -> Array:
-        """Return the sign of the determinant, that of the branches taken out.
+    def _loop_direction(self, answer: Array) -> Array:
+        """Return the sign of the determinant, that of the branches taken out; 0 where there is no answer.
 
         The determinant is linear in every single resistance or gain. So where it has one sign in all corners
         it is zero nowhere between them, and the closed loop runs away nowhere between them.
         """
-        if not self.network.free:
-            return np.ones(self.size)
         sign, _ = np.linalg.slogdet(self.matrix)
-        return np.asarray(sign, dtype=np.float64) * (-1.0) ** len(self.branches)
+        direction = np.asarray(sign, dtype=np.float64) * (-1.0) ** len(self.branches)
+        return np.where(np.isnan(answer[:, self.first_free]), 0.0, direction)
 
     def _has_branch(self, element: Element) -> bool:
         """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
