@@ -7,9 +7,10 @@ from dataclasses import replace
 
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.outputs import OutputTransistor, output_transistors
+from ..lint.circuit.power_stage import NotRecognised
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
-from ..lint.judge import unsolved
+from ..lint.judge import missing, unsolved
 from ..lint.rule import rule
 from ..lint.verdict import Outcome, Verdict
 
@@ -130,13 +131,14 @@ def _computed(controller: Controller, design: Design, net: str, voltage: Estimat
     )
 
 
-@rule("output-mode.topology", level="error", topic="output mode", needs=("topology",))
+@rule("output-mode.topology", level="error", topic="output mode")
 def topology(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Does the output mode fit the topology?
 
     What:
-        Compares the mode that the output-control pin sets with the topology of the brief: single-ended
-        wants the outputs in phase; push-pull, half-bridge and full-bridge want them to take turns. One
+        Compares the mode that the output-control pin sets with the topology of the brief, or else with
+        the one that is recognised in the netlist: single-ended wants the outputs in phase; push-pull,
+        half-bridge and full-bridge want them to take turns. One
         output alone in push-pull mode is known practice where the duty must stay below one half (forward
         converters): that is for a person to judge.
     Why:
@@ -149,34 +151,55 @@ def topology(controller: Controller, design: Design) -> Iterable[Verdict]:
     Remedy:
         Tie the output-control pin to the other end.
     """
-    told = design.told(controller)
     mode = design.output_mode(controller)
-    assert told is not None
-    assert told.topology is not None  # the engine asks only where the brief tells it
     if mode is None:
         return  # output-mode.wiring speaks of it
-    name = controller.pins["output control"].name
-    wanted = "push-pull" if told.topology in _TAKE_TURNS else "single-ended"
-    says = f"{mode} mode, and the brief's topology is {told.topology}"
+    found, whose, evidence = _topology(controller, design)
+    if not found:
+        need = design.missing(controller, "topology")
+        yield missing(need, "output mode against the topology, which is not recognised in the netlist")
+        return
     verdict = Verdict(
         outcome=Outcome.PASS,
-        message=says,
+        message=f"{mode} mode, and {whose} is {found}",
         nets=tuple(filter(None, (controller.net("output control"),))),
         pins=_PIN,
+        assumptions=evidence,
         source=_FUNCTION_TABLE,
     )
-    if mode == wanted:
-        yield verdict
-    elif wanted == "single-ended" and len(_live(_outputs(controller, design))) == 1:
-        message = f"{says}: one output gives every other pulse, at a duty below one half"
-        yield replace(
-            verdict, outcome=Outcome.REVIEW, message=message, remedy=f"tie {name} to ground, unless meant so"
+    yield verdict if _fits(mode, found) else _misfit(controller, design, verdict, found)
+
+
+def _topology(controller: Controller, design: Design) -> tuple[str, str, tuple[str, ...]]:
+    """Return the topology in the brief's words ("" for none), whose it is, and the evidence for it."""
+    told = design.told(controller)
+    if told is not None and told.topology is not None:
+        return told.topology, "the brief's topology", ()
+    stage = design.power_stage(controller)
+    if isinstance(stage, NotRecognised):
+        return "", "", ()
+    return stage.family, f"the power stage ({stage.topology})", stage.evidence
+
+
+def _fits(mode: str, topology: str) -> bool:
+    return (mode == "push-pull") == (topology in _TAKE_TURNS)
+
+
+def _misfit(controller: Controller, design: Design, verdict: Verdict, found: str) -> Verdict:
+    """Say what a mode does to a topology that it does not fit."""
+    name = controller.pins["output control"].name
+    if found in _TAKE_TURNS:
+        message, remedy = (
+            f"{verdict.message}: the switches would be on together",
+            f"tie {name} to the reference",
         )
-    else:
-        end = "the reference" if wanted == "push-pull" else "ground"
-        consequence = "the switches would be on together" if wanted == "push-pull" else "pulses take turns"
-        message = f"{says}: {consequence}"
-        yield replace(verdict, outcome=Outcome.FAIL, message=message, remedy=f"tie {name} to {end}")
+        return replace(verdict, outcome=Outcome.FAIL, message=message, remedy=remedy)
+    if len(_live(_outputs(controller, design))) == 1:
+        message = f"{verdict.message}: one output gives every other pulse, at a duty below one half"
+        remedy = f"tie {name} to ground, unless meant so"
+        return replace(verdict, outcome=Outcome.REVIEW, message=message, remedy=remedy)
+    message = f"{verdict.message}: pulses take turns"
+    return replace(verdict, outcome=Outcome.FAIL, message=message, remedy=f"tie {name} to ground")
 
 
 def _outputs(controller: Controller, design: Design) -> tuple[OutputTransistor, OutputTransistor]:
@@ -255,8 +278,7 @@ def _taking_turns(
             says = "the two outputs are joined, which undoes the taking of turns"
             return Outcome.FAIL, says, "separate the outputs, or tie the output-control pin to ground"
         return Outcome.PASS, f"the outputs take turns at {_at(live[0])} and {_at(live[1])}", ""
-    told = design.told(controller)
-    asked = told.topology if told is not None else None
+    asked, _, _ = _topology(controller, design)
     says = f"output {live[0].number} alone drives, and every other pulse is lost"
     if asked in _TAKE_TURNS:
         return Outcome.FAIL, says, f"connect output {3 - live[0].number} to the other switch"

@@ -56,11 +56,11 @@ def test_a_tie_to_ground_or_reference_passes(ask: Ask, mode: str, parts: tuple[s
 
 
 def test_a_divider_between_the_states_fails_with_its_voltage(ask: Ask) -> None:
-    # 5 V halved by 10 kohm and 10 kohm, less 5 kohm times the pin's own typical 0.2 mA: 1.5 V
+    # 5 V halved by 10 kohm and 10 kohm, with the pin's own 0.2 mA at 5 V as a load: 2.5 V / (1 + 5 / 25)
     (verdict,) = ask("output-mode.wiring", board("R8 VREF OC 10k", "R9 OC 0 10k", mode="OC"))
     assert (verdict.outcome, verdict.level) == (Outcome.FAIL, "error")
     assert verdict.measured is not None
-    assert verdict.measured.nominal == pytest.approx(1.5)
+    assert verdict.measured.nominal == pytest.approx(2.5 / 1.2)
     assert "between the two states" in verdict.message
 
 
@@ -140,6 +140,27 @@ def test_without_a_topology_the_question_is_open(ask: Ask) -> None:
     (verdict,) = ask("output-mode.topology", board())
     assert verdict.outcome is Outcome.OPEN
     assert verdict.needs == ('brief: [controllers.U1] topology = "..."',)
+
+
+PUSH_PULL = (
+    "M1 PA DRV 0 0 NM",
+    "M2 PB DRV2 0 0 NM",
+    "TR1 PA VBAT PB SA 0 SB PRESS",
+    "D1 SA RECT DS",
+    "D2 SB RECT DS",
+    "L1 RECT OUT 100u",
+    ".model NM NMOS",
+    ".model DS D",
+)
+
+
+@pytest.mark.parametrize(("mode", "outcome"), [("VREF", Outcome.PASS), ("0", Outcome.FAIL)])
+def test_without_a_brief_the_recognised_power_stage_counts(ask: Ask, mode: str, outcome: Outcome) -> None:
+    netlist = board(*PUSH_PULL, mode=mode, outputs="DRV 0 0 DRV2")
+    (verdict,) = ask("output-mode.topology", netlist)
+    assert verdict.outcome is outcome
+    assert "the power stage (push-pull)" in verdict.message
+    assert any(sentence.startswith("M1 (N-channel MOSFET)") for sentence in verdict.assumptions)
 
 
 def test_without_a_mode_the_other_rules_are_silent(ask: Ask) -> None:
