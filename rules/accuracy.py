@@ -107,8 +107,10 @@ def _shares(deviation: Estimate) -> str:
 
 def _better(deviation: Estimate, reference: Spread, allowed: Limit) -> str:
     """Return which part to buy better."""
-    alone = max(reference.maximum / reference.nominal - 1, 1 - reference.minimum / reference.nominal)
     assert allowed.maximum is not None
+    alone = 0.0
+    if reference.nominal > 0:  # one shorted to ground is for reference.back-fed to tell
+        alone = max(reference.maximum / reference.nominal - 1, 1 - reference.minimum / reference.nominal)
     if alone > allowed.maximum:
         return (
             f"the reference alone may be off by {percent(alone)}: take a controller with a tighter one, "

@@ -352,9 +352,9 @@ def _pair(profile: Profile, product: float) -> str:
     ideal = product / _middle(resistance_range)
     within = min(max(ideal, capacitance_range.minimum), capacitance_range.maximum)
     capacitance = nearest(within, "E6")
-    resistance = nearest(product / capacitance, "E24")
-    if not resistance_range.holds(resistance):
+    if not resistance_range.holds(product / capacitance):
         return "choose a frequency inside the recommended range"
+    resistance = nearest(product / capacitance, "E24")
     return (
         f"{engineering(resistance, 'ohm')} and {engineering(capacitance, 'F')} make the same product of "
         f"{engineering(resistance * capacitance, 's')}"

@@ -104,10 +104,18 @@ def _less(found: ReferenceLoad, design: Design, net: str, limit: float) -> str:
     for name, current in found.branches:
         part = design.netlist.parts.get(name)
         left = current.spread.maximum - excess
-        if part is not None and design.circuit.kind(part) == "resistor" and left > 0:
+        if part is not None and _can_be_raised(part, design) and left > 0:
             return _raised(part, current.spread.maximum / left, design, net)
     factor = found.total.spread.maximum / limit
     return f"raise the resistances of all branches {engineering(factor)} times, or feed some from the supply"
+
+
+# Less is a link, and no other value of it would limit a current (common practice, no source).
+_LINK = 1e-3
+
+
+def _can_be_raised(part: Part, design: Design) -> bool:
+    return design.circuit.kind(part) == "resistor" and (design.nominal(part) or 0.0) > _LINK
 
 
 def _raised(part: Part, factor: float, design: Design, net: str) -> str:

@@ -93,7 +93,9 @@ def _corners(circuit: Circuit, parts: list[Part], ends: set[str]) -> list[tuple[
             shared = {pin.net for pin in resistor.pins} & {pin.net for pin in capacitor.pins} - ends
             alone = any(len(list(circuit.connections(net))) == 2 for net in shared)
             ohms, farads = circuit.value(resistor), circuit.value(capacitor)
-            if alone and ohms is not None and farads is not None:
-                frequency = 1 / (2 * pi * ohms.spread.nominal * farads.spread.nominal)
-                corners.append((resistor.reference, capacitor.reference, frequency))
+            if not alone or ohms is None or farads is None:
+                continue
+            constant = ohms.spread.nominal * farads.spread.nominal
+            if constant > 0:
+                corners.append((resistor.reference, capacitor.reference, 1 / (2 * pi * constant)))
     return corners

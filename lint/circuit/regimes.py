@@ -87,7 +87,8 @@ def _output(regime: Regime, operation: Operation) -> Spread | None:
         return _ZERO
     if regime is Regime.CURRENT_LIMIT and operation.regulated is not None:
         # While the limit holds, the output is anywhere from a short circuit to its regulated voltage.
-        return Spread(0.0, operation.regulated.nominal, operation.regulated.nominal, "V")
+        nominal = operation.regulated.nominal
+        return Spread(min(0.0, nominal), nominal, max(0.0, nominal), "V")
     return operation.regulated
 
 
