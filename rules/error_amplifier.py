@@ -4,8 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import replace
+from math import isfinite
 
 from ..lint.circuit.amplifiers import Amplifier
+from ..lint.circuit.compensation import Compensation
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.loops import Regulation
 from ..lint.circuit.regimes import Regime
@@ -14,7 +16,7 @@ from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, missing, unsolved
 from ..lint.quantity import Spread, engineering, percent
 from ..lint.rule import rule
-from ..lint.verdict import Limit, Outcome, Verdict
+from ..lint.verdict import Level, Limit, Outcome, Verdict
 
 
 def _pins(amplifier: Amplifier) -> tuple[str, str]:
@@ -53,12 +55,12 @@ def input_open(controller: Controller, design: Design) -> Iterable[Verdict]:
     Remedy:
         Tie the input: in+ of an unused amplifier to ground, its in- to the reference.
     """
-    inputs = {
+    inputs = {role: net for a in _mapped(controller, design) for role, net in _inputs(a)}
+    adrift = {
         role: net
-        for a in _mapped(controller, design)
-        for role, net in zip(_pins(a), (a.plus, a.minus), strict=True)
+        for role, net in inputs.items()
+        if not design.has_path(net) and not _follows(controller, design, role, net)
     }
-    adrift = {role: net for role, net in inputs.items() if not design.has_path(net)}
     if inputs and not adrift:
         yield Verdict(
             outcome=Outcome.PASS,
@@ -75,6 +77,12 @@ def input_open(controller: Controller, design: Design) -> Iterable[Verdict]:
             source=controller.profile.figure("amplifier.bias-current").source,
             remedy=f"join {net} to a defined potential by a resistor",
         )
+
+
+def _follows(controller: Controller, design: Design, role: str, net: str) -> bool:
+    """Tell whether an in- hangs on FEEDBACK by resistors: a follower, whose own output drives it."""
+    feedback = controller.net("feedback")
+    return role.endswith("in-") and feedback in design.reach(controller, net).nets
 
 
 @rule("amplifier.unused", level="error", topic="error amplifier")
@@ -96,9 +104,7 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     least = controller.profile.practice("amplifier.unused-difference")
     for amplifier in _mapped(controller, design):
-        if amplifier.use != "unused" or not (
-            design.has_path(amplifier.plus) and design.has_path(amplifier.minus)
-        ):
+        if amplifier.use != "unused" or not _driven(amplifier, design):
             continue
         found = design.difference(amplifier.minus, amplifier.plus)
         if isinstance(found, Unsolved):
@@ -153,11 +159,17 @@ def common_mode(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     low = controller.profile.figure("amplifier.common-mode-low")
     headroom = controller.profile.figure("amplifier.common-mode-headroom").minimum or 0.0
-    limit = Limit(low.minimum, voltage.spread.minimum - headroom, "V")
+    least, most = low.minimum or 0.0, voltage.spread.minimum - headroom
+    if most < least:
+        return  # supply.range speaks of a supply that leaves no range at all
+    limit = Limit(least, most, "V")
     for amplifier in _mapped(controller, design):
+        # One that is tied off stays off above the range as well, only without the maker's word for it.
+        level = Level.WARNING if amplifier.use == "unused" else None
         for role, net in _inputs(amplifier):
             if design.has_path(net):
-                yield _within(controller, design, role, net, limit, low.source)
+                verdict = _within(controller, design, role, net, limit, low.source)
+                yield replace(verdict, level=level) if verdict.outcome is Outcome.FAIL else verdict
 
 
 def _within(
@@ -265,13 +277,20 @@ def compensation(controller: Controller, design: Design) -> Iterable[Verdict]:
     net = controller.net("feedback")
     if not net:
         return
-    for amplifier in _mapped(controller, design):
-        if amplifier.use == "voltage":
-            yield _feedback_path(controller, design, amplifier, net)
+    voltage = [a for a in _mapped(controller, design) if a.use == "voltage"]
+    paths = [design.compensation(net, amplifier.minus) for amplifier in voltage]
+    for amplifier, path in zip(voltage, paths, strict=True):
+        verdict = _feedback_path(controller, amplifier, net, path)
+        if path is None and any(paths):
+            says = f"{verdict.message}, as a limit beside the other amplifier may"
+            yield replace(verdict, outcome=Outcome.INFORMATIONAL, message=says, remedy="")
+        else:
+            yield verdict
 
 
-def _feedback_path(controller: Controller, design: Design, amplifier: Amplifier, net: str) -> Verdict:
-    found = design.compensation(net, amplifier.minus)
+def _feedback_path(
+    controller: Controller, amplifier: Amplifier, net: str, found: Compensation | None
+) -> Verdict:
     pins = ("feedback", _pins(amplifier)[1])
     names = [controller.pins[role].name for role in pins]
     if found is None:
@@ -354,7 +373,9 @@ def input_error(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     amplifier = next(a for a in design.amplifiers(controller) if a.use == "voltage")
     spread = found.output.spread
-    half_width = (spread.maximum - spread.minimum) / 2 / spread.nominal
+    if not isfinite(spread.maximum - spread.minimum) or spread.minimum <= 0 <= spread.maximum:
+        return  # feedback.output-voltage speaks of a loop that regulates to nothing
+    half_width = (spread.maximum - spread.minimum) / 2 / abs(spread.nominal)
     bias = half_width * sum(
         share for label, share in found.output.contributions if label.endswith(" current")
     )
