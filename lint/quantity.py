@@ -97,6 +97,11 @@ def engineering(value: float, unit: str = "", digits: int = 3) -> str:
     return f"{number} {_PREFIXES[power]}{symbol}".strip()
 
 
+def figure(value: float, unit: str, digits: int = 3) -> str:
+    """Return a value as text: a plain ratio as a percentage, everything else in engineering notation."""
+    return percent(value, digits) if unit == "" and isfinite(value) else engineering(value, unit, digits)
+
+
 def percent(ratio: float, digits: int = 3) -> str:
     """Return a ratio as a percentage without idle zeros: `percent(0.0451)` is "4.51 %"."""
     number = engineering(100 * ratio, "", digits)

@@ -54,12 +54,22 @@ def trip_point(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     says = f"takes over at {found.current.spread} in {sense.part.reference}"
     says += _into_short(design, controller, found)
+    found = replace(found, current=found.current.because(_formula(found, sense)))
     limit, source = _wanted(design, controller)
     if limit is None:
         yield reports(found.current, says, pins=pins)
         return
     remedy = _resistor_for(found, limit, sense)
     yield judge(found.current, limit, says, source=source, pins=pins, remedy=remedy)
+
+
+def _formula(found: Trip, sense: SenseResistor) -> str:
+    threshold, current = found.threshold.spread.nominal, found.current.spread.nominal
+    resistance = engineering(threshold / current, "ohm") if current else "0 Ω"
+    return (
+        f"I = V / {sense.part.reference} = {engineering(threshold, 'V')} / {resistance} = "
+        f"{engineering(current, 'A')}"
+    )
 
 
 def _current_amplifier(design: Design, controller: Controller) -> Amplifier:
@@ -99,10 +109,8 @@ def _resistor_for(found: Trip, limit: Limit, sense: SenseResistor) -> str:
     assert low is not None
     wanted = (low + high) / 2 if high is not None else 1.2 * low
     resistance = found.threshold.spread.nominal / wanted
-    as_wanted = (
-        f"{engineering(resistance, 'ohm')} as {sense.part.reference} takes over at {engineering(wanted, 'A')}"
-    )
-    return f"about {as_wanted}; or move the divider that sets the threshold by the same ratio"
+    fit = f"{sense.part.reference} of about {engineering(resistance, 'ohm')}"
+    return f"{fit} takes over at {engineering(wanted, 'A')}; or move the divider that sets the threshold"
 
 
 @rule("current-limit.sense-dissipation", level="error", topic="current limit")
@@ -143,7 +151,7 @@ def sense_dissipation(controller: Controller, design: Design) -> Iterable[Verdic
         )
         return
     verdict = judge(
-        found.dissipation,
+        found.dissipation.because(_power_formula(found)),
         Limit(None, rating.value * derating.share, "W"),
         f"{says}, {engineering(rating.value, 'W')} rated",
         source=f"{rating.source}; {derating.source}",
@@ -152,6 +160,12 @@ def sense_dissipation(controller: Controller, design: Design) -> Iterable[Verdic
         remedy=fit,
     )
     yield verdict
+
+
+def _power_formula(found: Trip) -> str:
+    threshold, current = found.threshold.spread.nominal, found.current.spread.nominal
+    power = engineering(found.dissipation.spread.nominal, "W")
+    return f"P = I x V = {engineering(current, 'A')} x {engineering(threshold, 'V')} = {power}"
 
 
 def _derating(design: Design) -> tuple[Derating, str]:

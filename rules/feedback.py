@@ -49,6 +49,7 @@ def output_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         yield unsolved(found, "output voltage", pins=pins)
         return
     rail = design.rail(amplifier.output)
+    found = replace(found, output=found.output.because(_formula(design, amplifier, found)))
     says = f"{amplifier.output} regulates to {found.output.spread.text(4)}"
     band = _band(rail)
     if rail is None or band is None:
@@ -59,6 +60,20 @@ def output_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     else:
         remedy = _pair(design, amplifier, found, rail)
         yield judge(found.output, band, says, source=_brief_band(rail), pins=pins, remedy=remedy)
+
+
+def _formula(design: Design, amplifier: Amplifier, found: Regulation) -> str:
+    """Return the formula with its numbers: of the plain divider, or what was solved for."""
+    divider = design.divider(amplifier)
+    output = engineering(found.output.spread.nominal, "V", 4)
+    set_point = engineering(found.inputs.spread.nominal, "V", 4)
+    if divider is None:
+        return (
+            f"{amplifier.output} = {output} where {amplifier.plus} and {amplifier.minus} meet at {set_point}"
+        )
+    top, bottom = (engineering(design.nominal(part) or 0.0, "ohm") for part in divider)
+    names = f"{divider[0].reference} / {divider[1].reference}"
+    return f"{set_point} x (1 + {names}) = {set_point} x (1 + {top} / {bottom}) = {output}"
 
 
 def _voltage_amplifier(controller: Controller, design: Design) -> Amplifier:
@@ -87,20 +102,18 @@ def _settable(found: Regulation, rail: Rail, output: str, pins: tuple[str, ...])
     wanted = engineering(rail.voltage.nominal, "V")
     low, high = found.settable
     inside = low <= rail.voltage.nominal <= high
-    reach = (
-        f"from {engineering(low, 'V')} to {engineering(high, 'V')}" if low <= high else "to no common voltage"
-    )
     trimmers = ", ".join(found.trimmers)
-    return replace(
-        reports(
-            found.output, f"{output} can be set {reach} on every unit", pins=pins, source=_brief_band(rail)
-        ),
-        outcome=Outcome.PASS if inside else Outcome.FAIL,
-        assumptions=(*found.output.assumptions, f"{trimmers} set on the bench so that {output} is {wanted}"),
-        remedy=""
-        if inside
-        else f"choose the fixed resistors so that {wanted} lies within reach of every unit",
-    )
+    says = f"{trimmers} sets {output} from {engineering(low, 'V')} to {engineering(high, 'V')} on every unit"
+    if low > high:
+        says = f"no voltage of {output} is within reach of {trimmers} on every unit"
+    set_up = f"{trimmers} set on the bench so that {output} is {wanted}"
+    verdict = reports(found.output, says, pins=pins, source=_brief_band(rail))
+    if inside:
+        return replace(
+            verdict, outcome=Outcome.PASS, measured=None, assumptions=(*verdict.assumptions, set_up)
+        )
+    remedy = f"choose the fixed resistors so that {wanted} lies within reach of every unit"
+    return replace(verdict, outcome=Outcome.FAIL, remedy=remedy)
 
 
 def _pair(design: Design, amplifier: Amplifier, found: Regulation, rail: Rail) -> str:

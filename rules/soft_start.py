@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import replace
-from math import log
+from math import inf, log
 
 from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
@@ -168,23 +168,21 @@ def _in_cycles(
     timing = design.timing(controller)
     if isinstance(timing, Unsolved):
         return reports(constant, says, pins=_PIN)
-    frequency = timing.frequency.spread
-    tau = constant.spread
-    cycles = Spread(
-        tau.minimum * frequency.minimum, tau.nominal * frequency.nominal, tau.maximum * frequency.maximum, ""
-    )
+    period = 1 / timing.frequency.spread.nominal
+    cycles = constant.spread.nominal / period
     practice = controller.profile.figure("soft-start.cycles")
+    least, most = (practice.minimum or 0.0) * period, (practice.maximum or inf) * period
     verdict = judge(
-        replace(constant, spread=cycles, statistical=cycles),
-        practice.limit(),
-        f"{says}: {engineering(cycles.nominal)} cycles",
+        constant,
+        Limit(least, most, "s"),
+        f"{says}: {cycles:.0f} cycles",
         source=practice.source,
         pins=_PIN,
     )
     if verdict.outcome is Outcome.PASS:
         return verdict
     # A custom, not a limit. Too short a start strains parts, and a person judges; a long one only takes time.
-    short = cycles.nominal < (practice.minimum or 0.0)
+    short = constant.spread.nominal < least
     outcome = Outcome.REVIEW if short else Outcome.INFORMATIONAL
     return replace(verdict, outcome=outcome, level=None)
 

@@ -13,10 +13,11 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import groupby
+from math import log
 
 from rich.cells import cell_len
 
-from ..quantity import Spread, engineering
+from ..quantity import Spread, figure
 from ..verdict import Limit
 from .glyphs import Glyphs
 
@@ -34,21 +35,32 @@ _HUGE = 1e100
 
 _MOST_DIGITS = 7
 
+# A zone between limits that are this far apart is drawn logarithmic.
+_DECADES = 100.0
+
 
 @dataclass(frozen=True, slots=True)
 class _Zone:
-    """A stretch of `cells` cells beginning with cell `first`, on which the values `start` to `end` lie."""
+    """A stretch of `cells` cells beginning with cell `first`, on which the values `start` to `end` lie.
+
+    logarithmic: equal ratios take equal room; for a zone over decades
+    """
 
     first: int
     cells: int
     start: float
     end: float
+    logarithmic: bool = False
 
     def cell(self, value: float) -> int:
         """Return the cell of `value`; a value beyond the zone has the cell at its end."""
         if self.end <= self.start:
             return self.first + self.cells // 2
-        share = max(0.0, min(1.0, (value - self.start) / (self.end - self.start)))
+        if self.logarithmic:
+            share = log(max(value, self.start) / self.start) / log(self.end / self.start)
+        else:
+            share = (value - self.start) / (self.end - self.start)
+        share = max(0.0, min(1.0, share))
         return self.first + min(self.cells - 1, int(share * self.cells))
 
 
@@ -139,12 +151,12 @@ class Bar:
         limits = {limit for limit in (self.low, self.high) if limit is not None}
         digits = 3
         while digits < _MOST_DIGITS and any(
-            engineering(one, spread.unit, digits) == engineering(limit, spread.unit, digits)
+            figure(one, spread.unit, digits) == figure(limit, spread.unit, digits)
             for limit in limits
             for one in values - {limit}
         ):
             digits += 1
-        return engineering(value, spread.unit, digits)
+        return figure(value, spread.unit, digits)
 
 
 def bar(spread: Spread, limit: Limit, cells: int) -> Bar | None:
@@ -179,7 +191,7 @@ def bar(spread: Spread, limit: Limit, cells: int) -> Bar | None:
     return Bar(
         spread=spread,
         below=_Zone(0, before, left, start) if before else None,
-        between=_Zone(first, room, start, end),
+        between=_Zone(first, room, start, end, low is not None and low > 0 and end / low >= _DECADES),
         above=_Zone(cells - after, after, end, right) if after else None,
         low=low,
         high=high,

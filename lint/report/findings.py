@@ -7,11 +7,11 @@ from collections.abc import Sequence
 from rich.cells import cell_len
 
 from ...grammar.netlist import Place
-from ..quantity import engineering, percent
+from ..quantity import figure, percent
 from ..verdict import Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
 from .page import Page
-from .words import badness, counts, word
+from .words import badness, counts, grouped, word
 
 # The order in which one walks round the board; a topic that is not named here follows in alphabetical order.
 _WALK = (
@@ -23,6 +23,7 @@ _WALK = (
     "soft start",
     "output mode",
     "output stage",
+    "gate drive",
     "error amplifier",
     "feedback",
     "current limit",
@@ -108,7 +109,7 @@ def _details(verdict: Verdict) -> list[tuple[str, str]]:
         ("nets", "" if parts else nets),
         ("at", _places(verdict.places)),
         *(("needs", need) for need in verdict.needs),
-        *(("assumed", sentence) for sentence in verdict.assumptions),
+        *(("assumed", sentence) for sentence in grouped(verdict.assumptions)),
         ("source", verdict.source),
         ("remedy", verdict.remedy),
     ]
@@ -180,12 +181,12 @@ def _brief(page: Page, verdicts: Sequence[Verdict]) -> None:
 
 def _low(verdict: Verdict) -> str:
     limit = verdict.limit
-    return "" if limit is None or limit.minimum is None else engineering(limit.minimum, limit.unit)
+    return "" if limit is None or limit.minimum is None else figure(limit.minimum, limit.unit)
 
 
 def _high(verdict: Verdict) -> str:
     limit = verdict.limit
-    return "" if limit is None or limit.maximum is None else engineering(limit.maximum, limit.unit)
+    return "" if limit is None or limit.maximum is None else figure(limit.maximum, limit.unit)
 
 
 def _margin(verdict: Verdict) -> str:

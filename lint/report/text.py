@@ -21,7 +21,7 @@ from .bar import Piece
 from .findings import asks, lead, name, topics
 from .glyphs import ASCII, BOX, Glyphs
 from .page import Page
-from .words import counts, word
+from .words import counts, grouped, word
 
 _LABEL = 12
 _INDENT = 11
@@ -196,7 +196,7 @@ def _taken_for_granted(page: Page, review: Review) -> None:
         return
     page.heading("taken for granted", page.glyphs.light)
     page.blank()
-    for sentence in unsaid:
+    for sentence in grouped(unsaid):
         page.paragraph(sentence, _INDENT, ("  assumed", "dim"))
     page.blank()
 

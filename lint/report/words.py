@@ -5,6 +5,7 @@ IEC 60073: red asks to act, yellow is abnormal, green is normal, blue asks for s
 
 from __future__ import annotations
 
+import re
 from collections import Counter
 from collections.abc import Iterable
 
@@ -45,6 +46,21 @@ def counts(verdicts: Iterable[Verdict]) -> list[Piece]:
         if found[key] and key[0] is not Outcome.NOT_APPLICABLE:
             pieces += [(", " if pieces else "", ""), (f"{found[key]} {text}", style)]
     return pieces
+
+
+def grouped(sentences: Iterable[str]) -> list[str]:
+    """Return sentences, those that say the same of several parts made one: `R1, R2: 100 ppm/K assumed`."""
+    subjects: dict[str, dict[str, None]] = {}
+    for sentence in sentences:
+        subject, colon, rest = sentence.partition(": ")
+        if colon and _REFERENCE.fullmatch(subject):
+            subjects.setdefault(rest, {})[subject] = None
+        else:
+            subjects.setdefault(sentence, {})
+    return [f"{', '.join(found)}: {rest}" if found else rest for rest, found in subjects.items()]
+
+
+_REFERENCE = re.compile(r"[\w/#.-]+")
 
 
 def _key(outcome: Outcome, level: Level | None) -> tuple[Outcome, Level | None]:
