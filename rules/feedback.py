@@ -13,7 +13,7 @@ from ..lint.circuit.loops import Regulation
 from ..lint.design import Design, NoLoop
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
-from ..lint.preferred import nearest_pair
+from ..lint.preferred import nearest, nearest_pair
 from ..lint.quantity import Spread, engineering, percent
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
@@ -123,11 +123,16 @@ def _pair(design: Design, amplifier: Amplifier, found: Regulation, rail: Rail) -
     values = [design.nominal(part) or 0.0 for part in divider or ()]
     if divider is None or not 0 < set_point < wanted:
         return f"change the network so that {engineering(wanted, 'V')} makes the amplifier's inputs equal"
-    return "; ".join(_pair_of(series, divider, wanted, set_point, sum(values)) for series in ("E24", "E96"))
+    ratio = wanted / set_point - 1
+    top = nearest(ratio * values[1], "E96")
+    makes = engineering(set_point * (1 + top / values[1]), "V", 4)
+    alone = f"{divider[0].reference} {engineering(top, 'ohm')} (E96) alone makes {makes}"
+    pairs = (_pair_of(series, divider, ratio, set_point, sum(values)) for series in ("E24", "E96"))
+    return "; ".join((alone, *pairs))
 
 
-def _pair_of(series: str, divider: tuple[Part, Part], wanted: float, set_point: float, total: float) -> str:
-    top, bottom = nearest_pair(wanted / set_point - 1, series, total)
+def _pair_of(series: str, divider: tuple[Part, Part], ratio: float, set_point: float, total: float) -> str:
+    top, bottom = nearest_pair(ratio, series, total)
     makes = engineering(set_point * (1 + top / bottom), "V", 4)
     values = (f"{p.reference} {engineering(v, 'ohm')}" for p, v in zip(divider, (top, bottom), strict=True))
     return f"{series}: {' and '.join(values)} make {makes}"
