@@ -162,7 +162,7 @@ def least_dead_time(controller: Controller, design: Design) -> Iterable[Verdict]
     if told is not None and told.dead_time is not None:
         wanted = told.dead_time
         limit = Limit(wanted.minimum, wanted.maximum if wanted.maximum > wanted.minimum else None, "s")
-        yield judge(
+        verdict = judge(
             found.seconds,
             limit,
             says,
@@ -170,6 +170,7 @@ def least_dead_time(controller: Controller, design: Design) -> Iterable[Verdict]
             pins=_PIN,
             remedy=_wanted_voltage(controller, design, wanted),
         )
+        yield _as_set(verdict, design, voltage, wanted.nominal)
     elif _alternates(controller, design) and voltage.spread.nominal < _AT_GROUND:
         yield replace(
             reports(found.seconds, f"{says}: {_WARNING}", pins=_PIN, source=source),
@@ -180,10 +181,24 @@ def least_dead_time(controller: Controller, design: Design) -> Iterable[Verdict]
         yield reports(found.seconds, says, pins=_PIN, source=source)
 
 
+def _as_set(verdict: Verdict, design: Design, voltage: Estimate, wanted: float) -> Verdict:
+    """Let pass what a trimmer on the pin can be set to, with the setting as an assumption."""
+    trimmers = [name for name in voltage.parts if design.circuit.kind(design.part(name)) == "trimmer"]
+    measured = verdict.measured
+    assert measured is not None
+    if not trimmers or not measured.minimum <= wanted <= measured.maximum:
+        return verdict
+    value = engineering(wanted, measured.unit) if measured.unit else percent(wanted)
+    assumptions = (*verdict.assumptions, f"{', '.join(trimmers)} set on the bench for {value}")
+    return replace(verdict, outcome=Outcome.PASS, level=None, remedy="", assumptions=assumptions)
+
+
 _WARNING = "only the controller's own dead time stands between the two switches"
 
 
 def _percentages(share: Spread) -> str:
+    if share.minimum == share.maximum:
+        return percent(share.nominal)
     return f"{percent(share.nominal)} ({percent(share.minimum)} .. {percent(share.maximum)})"
 
 
@@ -277,7 +292,7 @@ def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
     if wanted is None:
         return
     left = _duty_left(design.dead_time(controller, voltage).share, design.output_mode(controller))
-    yield judge(
+    verdict = judge(
         left,
         Limit(wanted, None, ""),
         f"the dead time leaves {_percentages(left.spread)} of duty, {percent(wanted)} is needed",
@@ -285,6 +300,7 @@ def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
         pins=_PIN,
         remedy=f"lower the voltage on {controller.pins['dead time'].name}",
     )
+    yield _as_set(verdict, design, voltage, wanted)
 
 
 def _wanted_duty(controller: Controller, design: Design) -> tuple[float | None, str]:
