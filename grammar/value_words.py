@@ -185,11 +185,11 @@ def read_word(word: str, kind: str) -> Fact | None:
 
 # The words that most values are made of, read without the grammar, which takes 20 ms to build. A test holds
 # them to what the grammar says.
-_PLAIN_NUMBER = r"([0-9]+(?:\.[0-9]+)?)"
-_PLAIN_SIMULATED = re.compile(_PLAIN_NUMBER + r"(meg|[tgkmunpf])?", re.I)
-_PLAIN_CODE = re.compile(_PLAIN_NUMBER + r"([kKMnpu])")
-_PLAIN_PERCENT = re.compile(_PLAIN_NUMBER + "%")
-_PLAIN_RATING = re.compile(_PLAIN_NUMBER + r"([VAW])")
+_NUMBER = r"([0-9]+(?:\.[0-9]+)?|\.[0-9]+)"
+_PLAIN_SIMULATED = re.compile(_NUMBER + r"(meg|[tgkmunpf])?", re.I)
+_PLAIN_CODE = re.compile(_NUMBER + r"([kKMnpu])")
+_PLAIN_TAIL = re.compile(_NUMBER + r"(%|ppm|[VAW]|[pnuPNUμ]F)?")
+_PLAIN_CLASS = re.compile(r"C0G|[XYZ][4-9][PRSTUVL]")
 
 
 def _plain(word: str, kind: str) -> Fact | None:
@@ -197,13 +197,22 @@ def _plain(word: str, kind: str) -> Fact | None:
     if kind == "simulated":
         found = _PLAIN_SIMULATED.fullmatch(word)
         return Simulated(found[1], found[2] or "", "") if found else None
+    if found := _PLAIN_TAIL.fullmatch(word):
+        return _tailed(found[1], found[2] or "")
     if found := _PLAIN_CODE.fullmatch(word):
         return Code(found[1], found[2], "")
-    if found := _PLAIN_PERCENT.fullmatch(word):
-        return Tolerance(-float(found[1]) / 100, float(found[1]) / 100)
-    if found := _PLAIN_RATING.fullmatch(word):
-        return Measures((Measure(found[1], "", found[2]),))
-    return None
+    return Dielectric(word) if _PLAIN_CLASS.fullmatch(word) else None
+
+
+def _tailed(digits: str, tail: str) -> Fact:
+    """Return what a number means with a per cent sign, a unit or nothing behind it."""
+    if not tail:
+        return Bare(digits)
+    if tail == "%":
+        return Tolerance(-float(digits) / 100, float(digits) / 100)
+    if tail == "ppm":
+        return Coefficient(float(digits))
+    return Measures((Measure(digits, tail[:-1], tail[-1]),))
 
 
 @v_args(inline=True)

@@ -407,7 +407,7 @@ def test_unknown_words_say_nothing() -> None:
 
 
 @given(
-    digits=st.from_regex(r"[0-9]{1,6}(\.[0-9]{1,4})?", fullmatch=True),
+    digits=st.from_regex(r"[0-9]{1,6}(\.[0-9]{1,4})?|\.[0-9]{1,4}", fullmatch=True),
     tail=st.sampled_from(
         ["", "k", "K", "M", "n", "p", "u", "%", "V", "A", "W", "meg", "MEG", "m", "t", "f", "g", "N"]
     ),
