@@ -272,8 +272,12 @@ def _at_each_switch(controller: Controller, found: Timing, wanted: Spread, divid
     says = f"each switch runs at {estimate.spread}"
     says += ", half the oscillator in push-pull mode" if divider == 2 else ", as the oscillator"
     remedy = _timing_resistor(controller.profile, found, wanted.nominal * divider)
-    if divider == 2 and wanted.minimum <= found.frequency.spread.nominal <= wanted.maximum:
-        says += ": the brief's figure fits the oscillator itself"
+    other = _divided(found.frequency, 3 - divider).spread.nominal
+    if (
+        not wanted.minimum <= estimate.spread.nominal <= wanted.maximum
+        and wanted.minimum <= other <= wanted.maximum
+    ):
+        says += f": the brief's figure fits {'the oscillator itself' if divider == 2 else 'half of it'}"
     nets = (*estimate.nets, *filter(None, (controller.net(f"output {n} collector") for n in (1, 2))))
     estimate = replace(estimate, nets=nets)
     if found.settable is not None or wanted.minimum == wanted.maximum:

@@ -73,9 +73,11 @@ class OutputDrive:
             if net:
                 quiet.setdefault(net, Potential(net, Spread.exact(0.0, "V"), "bound"))
         stops = self._stops()
-        growth = Growth(self.circuit, quiet, self.controllers, stops).grow(one.control, one.common)
-        for net in stops & growth.nets.keys():
-            growth.grow(net, from_known=True)
+        growth = Growth(self.circuit, quiet, self.controllers, frozenset(stops))
+        growth.grow(one.control, one.common)
+        for net in stops:
+            if net in growth.nets:
+                growth.grow(net, from_known=True)
         growth.elements = {name: e for name, e in growth.elements.items() if isinstance(e, Resistor)}
         growth.diodes.clear()
         growth.switches.clear()
@@ -103,9 +105,10 @@ class OutputDrive:
                 return reference
         return ""
 
-    def _stops(self) -> frozenset[str]:
+    def _stops(self) -> tuple[str, ...]:
+        """Return the outputs' own nets: what stands on them is no obstacle, for the outputs are open."""
         ends = (net for output in self.drive.outputs for net in (output.collector, output.emitter))
-        return frozenset(net for net in ends if net and net not in self.known)
+        return tuple(dict.fromkeys(net for net in ends if net and net not in self.known))
 
     def _conducting(self, output: OutputTransistor) -> tuple[Growth, VoltageSource]:
         """Grow the network with the output saturated: its saturation voltage between its ends."""
@@ -123,8 +126,8 @@ class OutputDrive:
     def _resting(self, output: OutputTransistor) -> Growth:
         """Grow the network with the output not conducting."""
         ends = (output.collector, output.emitter)
-        stops = frozenset(net for net in ends if net not in self.known)
-        growth = Growth(self.circuit, self.known, self.controllers, stops)
+        stops = tuple(net for net in ends if net not in self.known)
+        growth = Growth(self.circuit, self.known, self.controllers, frozenset(stops))
         growth.grow(*stops, from_known=True)
         self._grow(growth, ends)
         return growth

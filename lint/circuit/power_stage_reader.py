@@ -260,15 +260,13 @@ class PowerStageReader:
         sense = self._sense
         if sense is None:
             return ""
-        ends = {sense.near, sense.far}
-        if any(not ends.isdisjoint(switch.driven.transistor.mains) for switch in switches):
-            at_a_switch = ends & {net for switch in switches for net in switch.driven.transistor.mains}
-            if any(not self._is_stiff(net) for net in at_a_switch):
-                return "switch"
+        ends = tuple(net for net in (sense.near, sense.far) if not self._is_ground(net))
+        mains = {net for switch in switches for net in switch.driven.transistor.mains}
+        if any(net in mains and not self._is_stiff(net) for net in ends):
+            return "switch"
         if output in ends:
             return "output"
-        live = [net for net in ends if not self._is_ground(net)]
-        for net in live:
+        for net in ends:
             if self._share_a_part(net, output):
                 return "output return"
             if net == source or self._share_a_part(net, source):

@@ -229,6 +229,12 @@ def test_a_brief_that_fits_the_oscillator_only_is_told_so(ask: Ask) -> None:
     assert "E96: 5.76 kΩ" in switch.remedy
 
 
+def test_a_brief_that_fits_push_pull_mode_only_is_told_so(ask: Ask) -> None:
+    _, switch = ask("oscillator.frequency", board(R, C), brief=brief("4 kHz .. 5.4 kHz", "push-pull"))
+    assert switch.outcome is Outcome.FAIL
+    assert "fits half of it" in switch.message
+
+
 def test_a_decade_wrong_fails_and_names_the_resistor_to_fit(ask: Ask) -> None:
     netlist = board("R5 RT 0 120k", C)
     _, switch = ask("oscillator.frequency", netlist, brief=brief("8 kHz .. 10.4 kHz"))

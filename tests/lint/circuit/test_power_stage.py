@@ -39,6 +39,7 @@ SYNCHRONOUS_BUCK = (
     "R21 G D1 47",
     "L1 SW OUT 100u",
 )
+SYNCHRONOUS_BOOST = ("M1 SW G 0 0 NM", "M2 SW G OUT OUT PM", "R20 D1 G 10", "R21 G 0 1k", "L1 VBAT SW 100u")
 PUSH_PULL = (
     "M1 PA GA 0 0 NM",
     "M2 PB GB 0 0 NM",
@@ -57,7 +58,8 @@ COUPLED_PUSH_PULL = (
     "L12 VBAT PB 50u",
     "L13 SA 0 200u",
     "L14 0 SB 200u",
-    "K1 L11 L12 L13 L14 0.999",
+    "K1 L11 L12 L13 0.999",
+    "K2 L13 L14 0.999",
     *PUSH_PULL[7:],
 )
 HALF_BRIDGE = (
@@ -135,6 +137,7 @@ def stage(
         pytest.param(COLLECTOR, PNP_BUCK, "buck", ("Q1",), ("D1",), id="buck, two PNP in cascade"),
         pytest.param(COLLECTOR, N_CHANNEL_BUCK, "buck", ("M1",), ("D1",), id="buck, N-channel by a driver"),
         pytest.param(COLLECTOR, SYNCHRONOUS_BUCK, "buck", ("M1", "M2"), ("M2",), id="buck, synchronous"),
+        pytest.param(EMITTER, SYNCHRONOUS_BOOST, "boost", ("M1", "M2"), ("M2",), id="boost, synchronous"),
         pytest.param(EMITTER, BOOST, "boost", ("M1",), ("D1",), id="boost, N-channel"),
         pytest.param(
             "D1 0 0 D1", OUTPUT_BOOST, "boost", ("U1",), ("D1",), id="boost by the outputs themselves"
@@ -213,6 +216,13 @@ def test_a_polarity_that_nothing_states_is_read_off_the_wiring_and_said(tmp_path
             id="behind the inductor",
         ),
         pytest.param(COLLECTOR, P_CHANNEL_BUCK, "", id="no sense resistor"),
+        pytest.param(
+            COLLECTOR,
+            (*P_CHANNEL_BUCK, "J1 VBAT INRTN BATTERY", "R30 INRTN SNS 1k", "R31 INRTN 0 0.05"),
+            "input",
+            id="in the input's return",
+        ),
+        pytest.param(COLLECTOR, (*P_CHANNEL_BUCK, "R30 AUX SNS 1k", "R31 AUX 0 0.05"), "", id="nowhere near"),
     ],
 )
 def test_what_flows_in_the_sense_resistor(
@@ -237,6 +247,27 @@ def test_what_flows_in_the_sense_resistor(
             id="load above the switch",
         ),
         pytest.param(EMITTER, FLYBACK[:4], "no rectifier", id="no rectifier"),
+        pytest.param(
+            COLLECTOR,
+            (*SYNCHRONOUS_BUCK[:4], "L1 SW ELSEWHERE 100u"),
+            "neither end of L1",
+            id="output of a synchronous stage not seen",
+        ),
+        pytest.param(
+            COLLECTOR,
+            ("M1 SW G VBAT VBAT PM", "M2 SW G VBAT VBAT PM", *SYNCHRONOUS_BUCK[2:]),
+            "not one to ground and one to a supply",
+            id="two switches side by side",
+        ),
+        pytest.param(
+            COLLECTOR, (*P_CHANNEL_BUCK, "L2 SW AUX 10u"), "touch L1, L2", id="two inductors on one switch"
+        ),
+        pytest.param(
+            COLLECTOR,
+            ("M1 SW G HI HI PM", *P_CHANNEL_BUCK[1:], "L3 IN HI 1u"),
+            "which side of it",
+            id="inductors on both sides of a switch",
+        ),
         pytest.param(
             COLLECTOR, ("M1 SW G HI HI PM", *P_CHANNEL_BUCK[1:]), "no diode on SW", id="unknown upper rail"
         ),
