@@ -8,9 +8,11 @@ from math import inf, log
 
 from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.growth import diode_nets
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
+from ..lint.preferred import nearest
 from ..lint.quantity import Spread, engineering
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
@@ -19,11 +21,25 @@ _PIN = ("dead time",)
 
 
 def _capacitors(controller: Controller, design: Design, role: str) -> list[Part]:
-    """Return the capacitors straight between the dead-time pin and the net of another role."""
+    """Return the capacitors between the net of a role and the dead-time pin, or what leads to the pin."""
     net, other = controller.net("dead time"), controller.net(role)
-    if not net or not other or net == other:
+    if not net or not other:
         return []
-    return [part for part in design.circuit.between(net, other) if design.circuit.kind(part) == "capacitor"]
+    between = [
+        part for near in _leading_to(controller, design, net) for part in design.circuit.between(near, other)
+    ]
+    return [part for part in between if design.circuit.kind(part) == "capacitor"]
+
+
+def _leading_to(controller: Controller, design: Design, net: str) -> tuple[str, ...]:
+    """Return the nets joined to the pin's by resistors, or by a diode that conducts towards the pin."""
+    nets = dict.fromkeys(design.reach(controller, net).nets)
+    for near in tuple(nets):
+        for part in (connection.part for connection in design.circuit.connections(near)):
+            if design.circuit.kind(part) == "diode" and len(part.pins) == 2:
+                anode, cathode = diode_nets(part)
+                nets.update(dict.fromkeys(design.reach(controller, anode).nets if cathode == near else ()))
+    return tuple(nets)
 
 
 @rule("soft-start.present", level="note", topic="soft start")
@@ -31,7 +47,8 @@ def present(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is there a soft start at all?
 
     What:
-        Looks for a capacitor between the reference and the dead-time pin.
+        Looks for a capacitor between the reference and the dead-time pin, a resistor or a diode towards
+        the pin in between or not.
     Why:
         Without one the first pulses are as wide as the dead time allows: the output capacitors are charged
         with all the current that the limit lets pass, and the transformer may saturate.
@@ -65,8 +82,9 @@ def wiring(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Does the soft-start capacitor go to the reference, as this class needs?
 
     What:
-        Finds capacitors from the dead-time pin to ground where none goes to the reference, and soft-start
-        capacitors without a resistor that discharges the pin.
+        Finds capacitors from the dead-time pin to ground where none goes to the reference. One that follows
+        within a cycle of the oscillator filters noise; one that takes longer, but less than a soft start
+        does, is for a person to judge.
     Why:
         The pin must start high (outputs off) and fall. A capacitor to ground makes it start low: full
         pulses at once, and later a slow pin. Other families want the capacitor to ground; this one is
@@ -88,15 +106,38 @@ def wiring(controller: Controller, design: Design) -> Iterable[Verdict]:
         message = f"{', '.join(parts)} lifts {name} at the start and lets it fall"
         yield Verdict(outcome=Outcome.PASS, message=message, parts=parts, pins=_PIN)
     elif to_ground:
-        parts = tuple(part.reference for part in to_ground)
-        yield Verdict(
-            outcome=Outcome.FAIL,
-            message=f"{', '.join(parts)} holds {name} low while it charges: the first pulses are full width",
-            parts=parts,
-            pins=_PIN,
-            source="SLVA001, from memory",
-            remedy=f"move {parts[0]} from ground to the reference",
-        )
+        yield _to_ground(controller, design, to_ground)
+
+
+def _to_ground(controller: Controller, design: Design, capacitors: list[Part]) -> Verdict:
+    """Judge capacitors from the dead-time pin to ground by how long they hold the pin low."""
+    name = controller.pins["dead time"].name
+    parts = tuple(part.reference for part in capacitors)
+    cycles = max(_cycles(controller, design, part) for part in capacitors)
+    if cycles < 1:
+        message = f"{', '.join(parts)} filters {name} within a cycle"
+        return Verdict(outcome=Outcome.PASS, message=message, parts=parts, pins=_PIN)
+    least = controller.profile.figure("soft-start.cycles").minimum or 0.0
+    verdict = Verdict(
+        outcome=Outcome.FAIL,
+        message=f"{', '.join(parts)} holds {name} low while it charges: the first pulses are full width",
+        parts=parts,
+        pins=_PIN,
+        source="SLVA001, from memory",
+        remedy=f"move {parts[0]} from ground to the reference",
+    )
+    if cycles >= least:
+        return verdict
+    message = f"{', '.join(parts)} holds {name} low for {engineering(cycles)} cycles: right for a filter only"
+    return replace(verdict, outcome=Outcome.REVIEW, message=message)
+
+
+def _cycles(controller: Controller, design: Design, capacitor: Part) -> float:
+    """Return a capacitor's time constant in cycles of the oscillator, infinite where it is not known."""
+    constant, timing = design.time_constant(capacitor), design.timing(controller)
+    if isinstance(constant, Unsolved) or isinstance(timing, Unsolved):
+        return inf
+    return constant.spread.nominal * timing.frequency.spread.nominal
 
 
 @rule("soft-start.time", level="warning", topic="soft start")
@@ -140,7 +181,7 @@ def time(controller: Controller, design: Design) -> Iterable[Verdict]:
             remedy=_capacitor_for(measured, wanted, capacitors[0], design),
         )
         return
-    yield _in_cycles(controller, design, constant, to_duty)
+    yield _in_cycles(controller, design, constant, to_duty, capacitors[0])
 
 
 def _time_to_duty(controller: Controller, design: Design, constant: Estimate) -> Estimate | None:
@@ -160,7 +201,7 @@ def _time_to_duty(controller: Controller, design: Design, constant: Estimate) ->
 
 
 def _in_cycles(
-    controller: Controller, design: Design, constant: Estimate, to_duty: Estimate | None
+    controller: Controller, design: Design, constant: Estimate, to_duty: Estimate | None, capacitor: Part
 ) -> Verdict:
     says = f"soft start with a time constant of {constant.spread}"
     if to_duty is not None:
@@ -172,26 +213,29 @@ def _in_cycles(
     cycles = constant.spread.nominal / period
     practice = controller.profile.figure("soft-start.cycles")
     least, most = (practice.minimum or 0.0) * period, (practice.maximum or inf) * period
+    usual = practice.spread().nominal
     verdict = judge(
         constant,
         Limit(least, most, "s"),
         f"{says}: {cycles:.0f} cycles",
         source=practice.source,
         pins=_PIN,
+        remedy=_capacitor_for(constant, Spread.exact(usual * period, "s"), capacitor, design),
     )
     if verdict.outcome is Outcome.PASS:
         return verdict
     # A custom, not a limit. Too short a start strains parts, and a person judges; a long one only takes time.
     short = constant.spread.nominal < least
-    outcome = Outcome.REVIEW if short else Outcome.INFORMATIONAL
-    return replace(verdict, outcome=outcome, level=None)
+    if short:
+        return replace(verdict, outcome=Outcome.REVIEW, level=None)
+    return replace(verdict, outcome=Outcome.INFORMATIONAL, level=None, remedy="")
 
 
 def _capacitor_for(measured: Estimate, wanted: Spread, capacitor: Part, design: Design) -> str:
-    value = design.nominal(capacitor)
-    if value is None or measured.spread.nominal <= 0:
+    """Return the preferred capacitor nearest to the wanted time, and the time that it makes."""
+    value, time_now = design.nominal(capacitor), measured.spread.nominal
+    if value is None or not value * time_now * wanted.nominal > 0:
         return ""
-    needed = value * wanted.nominal / measured.spread.nominal
-    return (
-        f"about {engineering(needed, 'F')} as {capacitor.reference} makes {engineering(wanted.nominal, 's')}"
-    )
+    preferred = nearest(value * wanted.nominal / time_now, "E6")
+    makes = engineering(time_now * preferred / value, "s")
+    return f"{engineering(preferred, 'F')} as {capacitor.reference} makes {makes} (E6)"
