@@ -20,21 +20,26 @@ _ROUNDING = 1e-9
 def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
     """Solve a stack of systems; one without a single solution gives NaN instead of spoiling the whole stack.
 
-    matrix, right: shapes (samples, unknowns, unknowns) and (samples, unknowns)
+    matrix, right: shapes (unknowns, unknowns, samples) and (unknowns, samples)
     settled:       shape (unknowns,): False for an unknown that a solution may leave open
     A matrix that is singular but for rounding would give huge numbers without a word. So each is asked a
     second question, all ones, whose answer grows as the matrix nears the singular.
     """
-    if matrix.shape[1] == 0:
+    if not len(matrix):
         return np.zeros_like(right)
-    rows = _lengths(np.einsum("sij,sij->si", matrix, matrix))
-    matrix = matrix / rows[:, :, None]
-    columns = _lengths(np.einsum("sij,sij->sj", matrix, matrix))
-    matrix = matrix / columns[:, None, :]  # now siemens and ohms compare: every column has the length 1
-    right = right / rows
-    questions = np.stack([right, np.ones_like(right)], axis=2)
+    rows = _scale(np.einsum("ijs,ijs->is", matrix, matrix))
+    matrix = matrix / rows[:, None]
+    columns = _scale(np.einsum("ijs,ijs->js", matrix, matrix))
+    matrix = matrix / columns  # now siemens and ohms compare: every column has about the length 1
+    questions = np.stack([right / rows, np.ones_like(right)], axis=1)
+    stack = np.ascontiguousarray(np.moveaxis(matrix, -1, 0))
+    return _solve_stack(stack, np.moveaxis(questions, -1, 0), settled).T / columns
+
+
+def _solve_stack(matrix: Array, questions: Array, settled: Flags) -> Array:
+    """Return the answers to the first of two questions, shapes (samples, unknowns, ...)."""
     try:
-        answers = np.linalg.solve(matrix, questions)
+        answers: Array = np.asarray(np.linalg.solve(matrix, questions), dtype=np.float64)
         doubtful = np.einsum("si,si->s", answers[:, :, 1], answers[:, :, 1]) > _MOST_GROWTH**2
     except np.linalg.LinAlgError:  # an exactly singular one, which hides the answers of all others
         singular = np.asarray(np.linalg.svd(matrix, compute_uv=False), dtype=np.float64)
@@ -43,12 +48,13 @@ def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
         answers[~doubtful] = np.linalg.solve(matrix[~doubtful], questions[~doubtful])
     answer = answers[:, :, 0]
     if doubtful.any():
-        answer[doubtful] = _solve_singular(matrix[doubtful], right[doubtful], settled)
-    return answer / columns
+        answer[doubtful] = _solve_singular(matrix[doubtful], questions[doubtful, :, 0], settled)
+    return answer
 
 
-def _lengths(squares: Array) -> Array:
-    return np.where(squares == 0.0, 1.0, np.sqrt(squares))
+def _scale(squares: Array) -> Array:
+    """Return the powers of two nearest to the roots: scaling by them rounds nothing."""
+    return np.ldexp(np.ones_like(squares), np.frexp(squares)[1] // 2)
 
 
 def _vanishing(singular: Array) -> Flags:

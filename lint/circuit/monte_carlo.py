@@ -15,7 +15,7 @@ import numpy as np
 
 from ..quantity import Spread
 from .solver import Array
-from .worst_case import Evaluate, Parameter, Samples
+from .worst_case import Evaluate, Parameter, Samples, in_slices
 
 DEFAULT_SAMPLES = 10_000
 DEFAULT_SEED = 1
@@ -45,7 +45,7 @@ def monte_carlo(
         parameter = parameters[index]
         rows[:, index] = random.uniform(parameter.low, parameter.high, len(rows))
     rows = np.vstack([plan.nominal(), rows])
-    values = evaluate(plan.as_sample(rows), len(rows))
+    values = in_slices(evaluate)(plan.as_sample(rows), len(rows))
     return {name: _spread(column, units[name]) for name, column in values.items()}
 
 

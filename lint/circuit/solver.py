@@ -246,6 +246,7 @@ class _Equations:
 
     Rows: Kirchhoff's current law of each ordinary net, then one equation a branch, then the conditions.
     Columns: the potentials of the ordinary nets, the branch currents, the free quantities.
+    The samples are the last axis, so that every stamp is one run through memory.
     """
 
     def __init__(self, network: Network, sample: Sample, size: int) -> None:
@@ -268,8 +269,8 @@ class _Equations:
         # How a current divides between shorts in parallel may stay open; nothing else may.
         self.settled = np.ones(count, dtype=np.bool_)
         self.settled[len(ordinary) : self.first_free] = False
-        self.matrix: Array = np.zeros((size, count, count))
-        self.right: Array = np.zeros((size, count))
+        self.matrix: Array = np.zeros((count, count, size))
+        self.right: Array = np.zeros((count, size))
 
     def add(self, element: Element) -> None:
         if isinstance(element, CurrentSource):
@@ -286,22 +287,22 @@ class _Equations:
         if isinstance(free, FreeCurrent):
             column = self.first_free + position
             if free.a in self.rows:
-                self.matrix[:, self.rows[free.a], column] += 1.0
+                self.matrix[self.rows[free.a], column] += 1.0
             if free.b in self.rows:
-                self.matrix[:, self.rows[free.b], column] -= 1.0
+                self.matrix[self.rows[free.b], column] -= 1.0
 
     def add_condition(self, position: int, condition: Condition) -> None:
         row = self.first_free + position
         self._potential(row, condition.a, 1.0)
         self._potential(row, condition.b, -1.0)
-        self.right[:, row] += condition.difference(self.sample)
+        self.right[row] += condition.difference(self.sample)
 
     def solution(self, answer: Array) -> Solution:
-        potentials = {net: answer[:, column] for net, column in self.columns.items()}
+        potentials = {net: answer[column] for net, column in self.columns.items()}
         potentials.update(self.known)
-        branches = {name: answer[:, index] for name, index in self.branch_index.items()}
+        branches = {name: answer[index] for name, index in self.branch_index.items()}
         free = {
-            free.name: answer[:, self.first_free + position]
+            free.name: answer[self.first_free + position]
             for position, free in enumerate(self.network.free)
             if isinstance(free, FreeCurrent)
         }
@@ -314,9 +315,9 @@ class _Equations:
         The determinant is linear in every single resistance or gain. So where it has one sign in all corners
         it is zero nowhere between them, and the closed loop runs away nowhere between them.
         """
-        sign, _ = np.linalg.slogdet(self.matrix)
+        sign, _ = np.linalg.slogdet(np.moveaxis(self.matrix, -1, 0))
         direction = np.asarray(sign, dtype=np.float64) * (-1.0) ** len(self.branches)
-        return np.where(np.isnan(answer[:, self.first_free]), 0.0, direction)
+        return np.where(np.isnan(answer[self.first_free]), 0.0, direction)
 
     def _has_branch(self, element: Element) -> bool:
         """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
@@ -333,9 +334,9 @@ class _Equations:
     def _potential(self, row: int, net: str, factor: Array | float) -> None:
         """Add `factor` times the potential of `net` to the left side of equation `row`."""
         if net in self.columns:
-            self.matrix[:, row, self.columns[net]] += factor
+            self.matrix[row, self.columns[net]] += factor
         else:
-            self.right[:, row] -= factor * self.known[net]
+            self.right[row] -= factor * self.known[net]
 
     def _conductance(self, a: str, b: str, conductance: Array) -> None:
         for here, there in ((a, b), (b, a)):
@@ -345,9 +346,9 @@ class _Equations:
 
     def _inject(self, a: str, b: str, current: Array) -> None:
         if a in self.rows:
-            self.right[:, self.rows[a]] -= current
+            self.right[self.rows[a]] -= current
         if b in self.rows:
-            self.right[:, self.rows[b]] += current
+            self.right[self.rows[b]] += current
 
     def _transconductance(self, source: ControlledSource) -> None:
         gain = source.gain(self.sample)
@@ -359,15 +360,15 @@ class _Equations:
     def _branch(self, element: Element) -> None:
         index = self.branch_index[element.name]
         if element.a in self.rows:
-            self.matrix[:, self.rows[element.a], index] += 1.0
+            self.matrix[self.rows[element.a], index] += 1.0
         if element.b in self.rows:
-            self.matrix[:, self.rows[element.b], index] -= 1.0
+            self.matrix[self.rows[element.b], index] -= 1.0
         self._potential(index, element.a, 1.0)
         self._potential(index, element.b, -1.0)
         if isinstance(element, Resistor):
-            self.matrix[:, index, index] -= element.resistance(self.sample)
+            self.matrix[index, index] -= element.resistance(self.sample)
         elif isinstance(element, VoltageSource):
-            self.right[:, index] += element.voltage(self.sample)
+            self.right[index] += element.voltage(self.sample)
         elif isinstance(element, ControlledSource):
             gain = element.gain(self.sample)
             self._potential(index, element.control_a, -gain)

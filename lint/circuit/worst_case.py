@@ -27,7 +27,7 @@ from .solver import Array, Sample
 MOST_CORNER_PARAMETERS = 12
 _MOST_CORNERS = 25_600  # twelve parameters, two of them trimmers
 _MOST_OUTER_CORNERS = 625  # four trimmers
-_MOST_ROWS_AT_ONCE = 4_096  # more would take memory without taking less time
+_MOST_ROWS_AT_ONCE = 1_024  # what the fast memory of a processor holds; more takes longer
 _MOST_STEPS = 20  # of the search for a worst corner
 
 # A trimmer is looked at along its travel, not only at the ends: between them a result may turn round.
@@ -101,7 +101,7 @@ def analyse(
     units:      quantity name to its unit
     """
     samples = Samples(parameters)
-    evaluate = _in_slices(evaluate)
+    evaluate = in_slices(evaluate)
     loops = _OuterLoops(samples)
     pieces = [samples.nominal(), samples.corners(), samples.star(), loops.rows]
     cuts = np.cumsum([len(piece) for piece in pieces[:-1]])
@@ -120,7 +120,7 @@ def analyse(
     return found
 
 
-def _in_slices(evaluate: Evaluate) -> Evaluate:
+def in_slices(evaluate: Evaluate) -> Evaluate:
     """Return `evaluate` with its memory bounded: a slice of the samples at a time."""
 
     def sliced(sample: Sample, size: int) -> Mapping[str, Array]:

@@ -233,7 +233,7 @@ class TestBeyondTwelveParameters:
 
         found = analyse([travel(f"RV{i}") for i in range(6)], mean, {"mean": ""})["mean"]
         assert ends(found) == (0.0, 1.0)
-        assert max(sizes) <= 4096
+        assert max(sizes) <= 1024
         assert sum(sizes) < 20_000
 
     def test_fifty_supplies_are_all_turned(self):
