@@ -103,7 +103,7 @@ class TestLaws:
             branches = [e for e in network.elements if node in (e.a, e.b) and e.a != e.b]
             greatest = max(float(np.abs(solution.current(e)[0])) for e in branches)
             # Where a branch ends blind its current is zero but for the rounding of potential over resistance.
-            rounding = 1e-15 * max(float(np.abs(solution.voltage(node)[0])) / r for r in drawn.around(node))
+            rounding = 1e-14 * max(float(np.abs(solution.voltage(node)[0])) / r for r in drawn.around(node))
             assert abs(float(solution.current_out_of(node)[0])) <= 1e-9 * greatest + rounding
 
     @quick
