@@ -83,16 +83,14 @@ def sense_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     practice = controller.profile.practice("current-limit.offset-share")
     offset = controller.profile.figure("amplifier.offset").maximum or 0.0
-    share = found.threshold.scaled(1.0, "")
     threshold = found.threshold.spread
     least = offset / (practice.maximum or 1.0)
     message = (
         f"offset of {engineering(offset, 'V')} is {percent(offset / threshold.nominal)} of the threshold "
         f"{engineering(threshold.nominal, 'V')}{_drop(controller, design)}"
     )
-    exact = replace(share, spread=replace(threshold), statistical=replace(threshold))
     verdict = judge(
-        exact,
+        found.threshold,
         Limit(least, None, "V"),
         message,
         source=practice.source,
@@ -138,10 +136,10 @@ def sense_polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
     sense = amplifier.sense
     # The input's return leaves the board at the near end: there the near end is the lower one.
     right = found.reversed == (stage.sensed == "input")
-    does = "trips" if right else "never trips"
+    does = "brings the amplifier's inputs together" if right else "drives the amplifier's inputs apart"
     yield Verdict(
         outcome=Outcome.PASS if right else Outcome.FAIL,
-        message=f"{stage.sensed} current in {sense.part.reference} {does} the limit",
+        message=f"{stage.sensed} current in {sense.part.reference} {does}",
         parts=(sense.part.reference,),
         nets=(sense.near, sense.far),
         source="SLVS074 p.4",

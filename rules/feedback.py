@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import replace
 
 from ..grammar.netlist import Part
@@ -214,15 +214,34 @@ def complete(controller: Controller, design: Design) -> Iterable[Verdict]:
     mapped = [a for a in design.amplifiers(controller) if a.use != "unmapped"]
     if not mapped:
         return  # connections.controller-found speaks of it
-    halves = [half for half in (_lone_half(design, amplifier) for amplifier in mapped) if half is not None]
+    halves = [half for half in (_lone_half(controller, design, a) for a in mapped) if half is not None]
+    need = design.missing(controller, "output")
     if halves:
         yield halves[0]
-    else:
+    elif need:
         yield Verdict(
             outcome=Outcome.OPEN,
             message=f"no amplifier of {controller.reference} is joined by resistors to an output",
-            needs=tuple(filter(None, (design.missing(controller, "output"),))),
+            needs=(need,),
         )
+    else:
+        yield _unreached(controller, design, mapped)
+
+
+def _unreached(controller: Controller, design: Design, amplifiers: Sequence[Amplifier]) -> Verdict:
+    """Judge amplifiers none of which is joined to the output that the brief names."""
+    told = design.told(controller)
+    output = told.output if told is not None and told.output else "the output"
+    inputs = [net for a in amplifiers if a.use != "current" for net in (a.plus, a.minus)]
+    ends = dict.fromkeys(end for net in inputs for end in design.reach(controller, net).ends)
+    reached = [end for end in ends if design.potential(end) is None]
+    only = f", but to {', '.join(reached)}" if reached else ""
+    return Verdict(
+        outcome=Outcome.REVIEW,
+        message=f"no amplifier of {controller.reference} is joined by resistors to {output}{only}",
+        nets=tuple(reached),
+        remedy=f"join an input to {output} by a divider, or say in the brief which net it senses",
+    )
 
 
 def _whole(controller: Controller, design: Design, amplifier: Amplifier) -> Verdict:
@@ -248,14 +267,24 @@ def _whole(controller: Controller, design: Design, amplifier: Amplifier) -> Verd
         return verdict
     message = f"{controller.pins[pins[0]].name} sees {seen} but no resistor takes it to ground"
     remedy = f"add the lower resistor of the divider from {net} to ground"
+    if net in amplifier.outputs:
+        remedy = f"put a divider between {net} and the pin"
+    if band is None:
+        # Nobody told the output's voltage: the set point itself may be what is wanted.
+        message += f", so that {seen} regulates to the set point"
+        return replace(verdict, outcome=Outcome.REVIEW, message=message, remedy=remedy)
     return replace(verdict, outcome=Outcome.FAIL, message=message, remedy=remedy)
 
 
-def _lone_half(design: Design, amplifier: Amplifier) -> Verdict | None:
+def _lone_half(controller: Controller, design: Design, amplifier: Amplifier) -> Verdict | None:
     """Return the verdict on an input that only the lower half of a divider is left on."""
+    feedback = controller.net("feedback")
+    if not feedback or design.compensation(feedback, amplifier.minus) is None:
+        return None  # nothing that regulates: tied off by a resistor
     for net, name in ((amplifier.plus, "in+"), (amplifier.minus, "in-")):
         if design.is_ground(net):
             continue  # tied off
+        role = f"amplifier {amplifier.number} {name}"
         resistors = [
             c.part for c in design.circuit.connections(net) if design.circuit.kind(c.part) == "resistor"
         ]
@@ -263,10 +292,10 @@ def _lone_half(design: Design, amplifier: Amplifier) -> Verdict | None:
         if ends and all(design.is_ground(end) for end in ends):
             return Verdict(
                 outcome=Outcome.FAIL,
-                message=f"amplifier {amplifier.number} {name} has a resistor to ground, none to the output",
+                message=f"{controller.pins[role].name} has a resistor to ground, none to the output",
                 parts=tuple(part.reference for part in resistors),
                 nets=(net,),
-                pins=(f"amplifier {amplifier.number} {name}",),
+                pins=(role,),
                 remedy=f"add the upper resistor of the divider from the output to {net}",
             )
     return None

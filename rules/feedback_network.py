@@ -153,7 +153,7 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
     faults = [Fault(part, shorted) for part in resistors for shorted in (False, True)]
     rising = {fault: design.output_after(controller, amplifier, fault) for fault in faults}
     over = {fault: volts for fault, volts in rising.items() if volts > threshold}
-    clamps = _clamps(design, amplifier.output)
+    clamps = _clamps(design, amplifier.output, min(over.values(), default=inf))
     across = [part.reference for part in _across(design, amplifier.output)]
     if not over:
         message = f"no single resistor lifts {amplifier.output} above {engineering(threshold, 'V')}"
@@ -162,7 +162,7 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
     said = "; ".join(_told(fault, volts) for fault, volts in over.items())
     clamped = f"; {', '.join(clamps)} across {amplifier.output} takes it" if clamps else ""
     if not clamps and across:
-        clamped = f"; whether {', '.join(across)} across {amplifier.output} takes it is not told"
+        clamped = f"; whether {', '.join(across)} across {amplifier.output} is to take it is not seen"
     verdict = Verdict(
         outcome=Outcome.PASS if clamps else Outcome.REVIEW,
         message=f"{amplifier.output} rises with {said}{clamped}",
@@ -181,9 +181,10 @@ def _told(fault: Fault, volts: float) -> str:
     return f"{fault.part} {how} {where}"
 
 
-def _clamps(design: Design, output: str) -> tuple[str, ...]:
-    """Return the zeners and suppressors across the output whose voltage is told."""
-    return tuple(part.reference for part in _across(design, output) if zener_voltage(part) is not None)
+def _clamps(design: Design, output: str, below: float) -> tuple[str, ...]:
+    """Return the zeners and suppressors across the output that conduct below a voltage (V)."""
+    voltages = {part.reference: zener_voltage(part) for part in _across(design, output)}
+    return tuple(name for name, volts in voltages.items() if volts is not None and volts < below)
 
 
 def _across(design: Design, output: str) -> list[Part]:

@@ -15,6 +15,9 @@ _RESISTIVE = frozenset({"resistor", "trimmer", "jumper", "fuse"})
 # Parts that make a net part of the power path: its potential is the converter's doing.
 _POWER = frozenset({"inductor", "transformer", "diode", "transistor", "connector", "relay"})
 
+# Those that no amplifier's input has for itself, as it may have a clamp or a connector.
+_WINDINGS = frozenset({"inductor", "transformer"})
+
 
 @dataclass(frozen=True, slots=True)
 class SenseResistor:
@@ -103,7 +106,7 @@ class AmplifierReader:
             net = waiting.pop()
             if net in nets or net in ends:
                 continue
-            if net in self.known or (net != start and self._is_power(net)):
+            if net in self.known or self._is_power(net, start):
                 ends[net] = None
                 continue
             nets[net] = None
@@ -127,9 +130,10 @@ class AmplifierReader:
             and 0 < value.spread.nominal <= limit
         )
 
-    def _is_power(self, net: str) -> bool:
+    def _is_power(self, net: str, start: str) -> bool:
+        """Tell whether a net is part of the power path; an input's own net only where it is the output."""
         kinds = {self.circuit.kind(connection.part) for connection in self.circuit.connections(net)}
-        return not _POWER.isdisjoint(kinds) or net == self.output
+        return not (_WINDINGS if net == start else _POWER).isdisjoint(kinds) or net == self.output
 
     def _sense(self, plus: str, minus: str) -> SenseResistor | None:
         """Return the sense resistor whose ends the two inputs look at, or one that stands on ground."""
