@@ -322,14 +322,18 @@ def _diode(growth: Growth, part: Part, net: str) -> None:
         growth.follow(part)
 
 
-# A zener says its voltage as its value (15V) or at the end of a model's name (zener 5V1).
-_ZENER = re.compile(r"(?:^|[^0-9A-Z])(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V|V)(?![0-9A-Z])", re.IGNORECASE)
+_VOLTS = r"(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V?|V)?"
+
+# A zener says so in words with its voltage (zener 5V1, TVS 16V, DZ12), or is a voltage and a power alone (15V
+# 1W). A voltage beside a current is the reverse rating of a rectifier.
+_NAMED_ZENER = re.compile(rf"(?<![A-Z])(?:ZENER|TVS|SUPPRESSOR|D?Z)[ _-]?{_VOLTS}(?![0-9A-Z])", re.IGNORECASE)
+_BARE_ZENER = re.compile(r"(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V|V)(?:[ ,/]*[0-9./]+ ?m?W)?", re.IGNORECASE)
 
 
 def zener_voltage(part: Part) -> float | None:
     """Return the zener voltage (V) that a diode's value or model states, None where neither does."""
-    for text in (part.value, part.model):
-        match = _ZENER.search(text)
+    for text in (part.value.strip(), part.model.strip()):
+        match = _NAMED_ZENER.search(text) or _BARE_ZENER.fullmatch(text)
         if match is not None:
             return float(f"{match[1]}.{match[2] or match[3] or '0'}")
     return None
