@@ -15,9 +15,10 @@ from .edif_forms import Edif
 from .edif_hierarchy import FlatCircuit
 from .edif_library import Libraries, Source
 from .edif_netlist import write_netlist
+from .edif_notes import NoteKeeper
 from .edif_places import Places
 from .errors import NetlistError
-from .netlist import Netlist, Note
+from .netlist import Netlist
 
 
 def read_edif(text: str, file: str) -> Netlist:
@@ -37,15 +38,16 @@ def read_edif(text: str, file: str) -> Netlist:
     check_dialect(edif, places)
     budget = Budget(places, len(text))
     libraries = Libraries(edif, budget)
-    notes: list[Note] = []
+    notes = NoteKeeper(places)
     top = _choose_top(edif, libraries, places, notes)
-    flat = FlatCircuit(text, libraries, places, budget)
+    flat = FlatCircuit(text, libraries, places, budget, notes)
     flat.flatten(top)
-    netlist = Netlist(file, "EDIF 2 0 0", _title(edif), notes=notes, files=[file])
-    write_netlist(flat, places, netlist)
+    netlist = Netlist(file, "EDIF 2 0 0", _title(edif), files=[file])
+    write_netlist(flat, places, netlist, notes)
     for earlier, name, cell in libraries.collisions():
         message = f"the cells {earlier} and {name} differ by letter case only; both are kept"
-        netlist.notes.append(Note("name-collision", message, places.at(cell.name.offset), name))
+        notes.add("name-collision", message, cell.name.offset, name)
+    netlist.notes = notes.all()
     return netlist
 
 
@@ -53,7 +55,7 @@ def _title(edif: Edif) -> str:
     return edif.designs[0].name.display if edif.designs else edif.name.display
 
 
-def _choose_top(edif: Edif, libraries: Libraries, places: Places, notes: list[Note]) -> Source:
+def _choose_top(edif: Edif, libraries: Libraries, places: Places, notes: NoteKeeper) -> Source:
     """Return the cell that is the whole circuit: of the first design at hand, else the last one with contents."""
     found = [
         (design, source)
@@ -65,13 +67,13 @@ def _choose_top(edif: Edif, libraries: Libraries, places: Places, notes: list[No
         design, source = filled[0]
         if len(edif.designs) > 1:
             message = f"the file holds {len(edif.designs)} designs; {design.name.display} is read"
-            notes.append(Note("assumption", message, places.at(design.name.offset), design.name.display))
+            notes.add("assumption", message, design.name.offset, design.name.display)
         return source
     last = libraries.last_filled()
     if last is not None:
         name = last.cell.name
         message = f"no design form leads to a circuit; the last cell with contents, {name.display}, is read"
-        notes.append(Note("assumption", message, places.at(name.offset), name.display))
+        notes.add("assumption", message, name.offset, name.display)
         return last
     if found:
         return found[0][1]

@@ -27,6 +27,7 @@ from .edif_runs import (
     read_view_ref,
 )
 
+_SHORT = 200  # characters
 _Items = list[Any]
 
 
@@ -139,10 +140,12 @@ class FormBuilder(Transformer[Token, Edif]):
         """A list without meaning for a netlist, and all that is in it."""
 
 
-@lru_cache(maxsize=4096)
+_short_cell_ref = lru_cache(maxsize=4096)(read_view_ref)
+
+
 def _cell_ref(view_ref: str) -> CellRef:
-    """Return what a `viewRef` refers to, which is the same text a thousand times over."""
-    return read_view_ref(view_ref)
+    """Return what a `viewRef` refers to, which is the same short text a thousand times over."""
+    return _short_cell_ref(view_ref) if len(view_ref) <= _SHORT else read_view_ref(view_ref)
 
 
 def _keyword(opening: Token) -> str:

@@ -2,12 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from decimal import Decimal
-from typing import NamedTuple
+from typing import NamedTuple, TypeVar
 
 from .edif_names import Name
+
+_Item = TypeVar("_Item")
+
+
+def merged(one: list[_Item], other: list[_Item]) -> list[_Item]:
+    """Return the items of both lists; the longer one is kept and grows, so that deep nesting costs no more."""
+    longer, shorter = (one, other) if len(one) >= len(other) else (other, one)
+    longer += shorter
+    return longer
 
 
 class JoinedRun(NamedTuple):
@@ -36,13 +45,13 @@ class PortRef(NamedTuple):
     """A port of the instance at the end of `path`, outermost first; of the cell itself where it is empty."""
 
     port: Member
-    path: tuple[Member, ...] = ()
+    path: Sequence[Member] = ()
 
 
 class Path(NamedTuple):
-    """Instances one inside the other, outermost first."""
+    """Instances one inside the other, outermost first; it grows while the forms around it are made."""
 
-    steps: tuple[Member, ...]
+    steps: list[Member]
 
 
 class GlobalRef(NamedTuple):
@@ -174,9 +183,9 @@ class Contents:
 
     def add(self, other: Contents) -> None:
         """Take in what a page, a section or a bundle holds."""
-        self.instances += other.instances
-        self.nets += other.nets
-        self.off_page += other.off_page
+        self.instances = merged(self.instances, other.instances)
+        self.nets = merged(self.nets, other.nets)
+        self.off_page = merged(self.off_page, other.off_page)
 
 
 @dataclass(slots=True)
@@ -185,19 +194,19 @@ class View:
 
     name: Name
     kind: str = ""
-    ports: list[Port] = field(default_factory=list[Port])
-    joined: list[JoinedRun | Joined] = field(default_factory=list[JoinedRun | Joined])
-    contents: Contents = field(default_factory=Contents)
-    properties: list[Property] = field(default_factory=list[Property])
+    ports: Sequence[Port] = ()
+    joined: Sequence[JoinedRun | Joined] = ()
+    contents: Contents | None = None
+    properties: Sequence[Property] = ()
     prefix: str = ""
 
     def is_filled(self) -> bool:
         """Say whether the view shows how the cell is made."""
-        return bool(self.contents.instances or self.contents.nets)
+        return self.contents is not None
 
     def all_ports(self) -> Iterator[Port]:
         """Yield the ports, those of bundles one by one, in the order of the file."""
-        waiting = self.ports[::-1]
+        waiting = [*reversed(self.ports)]
         while waiting:
             port = waiting.pop()
             if port.members:

@@ -8,36 +8,38 @@ from __future__ import annotations
 
 from .edif_budget import Budget
 from .edif_ends import ArrayEnd, End, NoEnd, PartEnd, RipperEnd, SheetEnd, SymbolEnd, TieEnd
-from .edif_forms import Instance, Library
+from .edif_forms import Contents, Instance, Library
 from .edif_instances import Description, describe, reference_of, symbol_of
 from .edif_library import Libraries, NameTable, Source
 from .edif_nets import NetPieces
+from .edif_notes import NoteKeeper
 from .edif_places import Places
 from .edif_ports import width
 from .edif_wiring import Wiring
 from .errors import NetlistError
-from .netlist import Note
 
 _DEEPEST = 200
 
 
 class FlatCircuit:
-    """The whole circuit: call `flatten` once, then read `parts`, `nets`, `drawn` and `notes`.
+    """The whole circuit: call `flatten` once, then read `parts`, `nets` and `drawn`.
 
     drawn: the pieces of single nets, which the file states even where nothing is on them
     """
 
-    def __init__(self, text: str, libraries: Libraries, places: Places, budget: Budget) -> None:
+    def __init__(
+        self, text: str, libraries: Libraries, places: Places, budget: Budget, notes: NoteKeeper
+    ) -> None:
         self._text = text
         self._libraries = libraries
         self._places = places
         self._budget = budget
+        self._notes = notes
         self._missing: set[tuple[str, str]] = set()
         self._waiting: list[SheetEnd] = []
         self.parts: list[PartEnd] = []
         self.nets = NetPieces()
         self.drawn: list[int] = []
-        self.notes: list[Note] = []
 
     def flatten(self, top: Source) -> None:
         """Walk all sheets from the top down; raise NetlistError where the hierarchy has no end."""
@@ -48,7 +50,7 @@ class FlatCircuit:
             self._walk(sheet)
 
     def _walk(self, sheet: SheetEnd) -> None:
-        contents = sheet.source.view.contents
+        contents = sheet.source.view.contents or Contents()
         ends = NameTable[End]()
         first_part, first_inner = len(self.parts), len(self._waiting)
         for instance in contents.instances:
@@ -57,15 +59,10 @@ class FlatCircuit:
             for instance in net.instances:
                 self._place(instance, sheet, ends, in_net=True)
         self._waiting[first_inner:] = reversed(self._waiting[first_inner:])
-        wiring = Wiring(self._text, sheet, ends, self._budget)
+        wiring = Wiring(self._text, sheet, ends, self._budget, self._notes)
         wiring.draw(contents)
         wiring.join_inside(self.parts[first_part:])
         self.drawn += wiring.drawn
-        for kind, message, offset, subject in wiring.oddities:
-            self._note(kind, message, offset, subject)
-
-    def _note(self, kind: str, message: str, offset: int, subject: str) -> None:
-        self.notes.append(Note(kind, message, self._places.at(offset), subject))
 
     def _place(
         self, instance: Instance, sheet: SheetEnd, ends: NameTable[End], *, in_net: bool = False
@@ -84,7 +81,7 @@ class FlatCircuit:
             end = self._end(instance, said, source, sheet)
         if ends.add(name.identifier, end) is not end:
             message = f"the instance {name.display} is written twice in one cell; nets reach the first"
-            self._note("duplicate-reference", message, name.offset, sheet.path + name.display)
+            self._notes.add("duplicate-reference", message, name.offset, sheet.path + name.display)
 
     def _find(self, instance: Instance, home: Library) -> Source | None:
         reference = instance.cell
@@ -94,7 +91,7 @@ class FlatCircuit:
         if source is None and (reference.library, reference.cell) not in self._missing:
             self._missing.add((reference.library, reference.cell))
             message = f"the cell {reference.cell} is defined nowhere; its pins are those that the nets name"
-            self._note("missing-library", message, instance.name.offset, reference.cell)
+            self._notes.add("missing-library", message, instance.name.offset, reference.cell)
         return source
 
     def _end(

@@ -39,6 +39,7 @@ from .edif_forms import (
     Version,
     View,
     ViewKind,
+    merged,
 )
 from .edif_names import Name, integer, scaled
 
@@ -132,8 +133,9 @@ def _view(items: Items) -> View:
     kind = _first(ViewKind, items)
     view.name = items[0]
     view.kind = kind.text if kind else ""
-    view.contents = _contents(items)
-    view.properties += _of(Property, items)
+    contents = _contents(items)
+    view.contents = contents if contents.instances or contents.nets else None
+    view.properties = (*view.properties, *_of(Property, items))
     return view
 
 
@@ -192,15 +194,13 @@ def _net(items: Items) -> Net:
     """A net; the nets inside are parts of this one."""
     net = Net(items[0], _joined(items), _of(Instance, items))
     for inner in _of(Net, items):
-        net.joined += inner.joined
-        net.instances += inner.instances
+        net.joined = merged(net.joined, inner.joined)
+        net.instances = merged(net.instances, inner.instances)
     return net
 
 
 def _joined_form(items: Items) -> Joined:
-    return Joined(
-        tuple(item for item in items if isinstance(item, (PortRef, PortList, GlobalRef)))
-    )
+    return Joined(tuple(item for item in items if isinstance(item, (PortRef, PortList, GlobalRef))))
 
 
 # ------------------------------------------------------------------------------------------ references
@@ -223,8 +223,9 @@ def _port_ref(items: Items) -> PortRef:
 
 def _instance_ref(items: Items) -> Path:
     """`(instanceRef instance ...)`; a reference inside says in which instance this one is."""
-    outer = _first(Path, items)
-    return Path((*(outer.steps if outer else ()), _member(items[0])))
+    path = _first(Path, items) or Path([])
+    path.steps.append(_member(items[0]))
+    return path
 
 
 def _global_port_ref(items: Items) -> GlobalRef:

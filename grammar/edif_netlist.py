@@ -7,27 +7,27 @@ from collections.abc import Iterable
 
 from .edif_hierarchy import FlatCircuit
 from .edif_parts import Built, PartBuilder
+from .edif_notes import NoteKeeper
 from .edif_places import Places
 from .edif_sections import merge_sections
-from .netlist import Net, Netlist, Note, Place
+from .netlist import Net, Netlist, Place
 
 _REWRITTEN_POINT = re.compile(r"[0-9]_[0-9]")
 
 
-def write_netlist(flat: FlatCircuit, places: Places, netlist: Netlist) -> None:
-    """Fill `netlist` from the flat circuit; notes go behind those that are there."""
-    netlist.notes += flat.notes
-    keys = _name_nets(flat, places, netlist)
+def write_netlist(flat: FlatCircuit, places: Places, netlist: Netlist, notes: NoteKeeper) -> None:
+    """Fill `netlist` with the parts and nets of the flat circuit."""
+    keys = _name_nets(flat, places, netlist, notes)
     find = flat.nets.find
-    builder = PartBuilder(places, lambda piece: keys[find(piece)], netlist.notes)
-    _add_parts([builder.build(end) for end in flat.parts], netlist)
+    builder = PartBuilder(places, lambda piece: keys[find(piece)], notes)
+    _add_parts([builder.build(end) for end in flat.parts], netlist, notes)
     for part in netlist.parts.values():
         for i, pin in enumerate(part.pins):
             if pin.net:
                 netlist.nets[pin.net].pins.append((part.reference, i))
 
 
-def _name_nets(flat: FlatCircuit, places: Places, netlist: Netlist) -> dict[int, str]:
+def _name_nets(flat: FlatCircuit, places: Places, netlist: Netlist, notes: NoteKeeper) -> dict[int, str]:
     """Add the nets that are drawn or reach a part, and return their keys by their first piece."""
     find = flat.nets.find
     roots = {find(piece) for piece in flat.drawn}
@@ -40,12 +40,12 @@ def _name_nets(flat: FlatCircuit, places: Places, netlist: Netlist) -> dict[int,
         netlist.nets[key] = Net(label.text, places.at(label.offset))
         if key != label.text:
             message = f"two nets bear the name {label.text}; the second is kept as {key}"
-            netlist.notes.append(Note("name-collision", message, places.at(label.offset), key))
-    _note_collisions(((key, net.place) for key, net in netlist.nets.items()), "nets", netlist.notes)
+            notes.add("name-collision", message, label.offset, key)
+    _note_collisions(((key, net.place) for key, net in netlist.nets.items()), "nets", notes)
     return keys
 
 
-def _add_parts(built: list[Built], netlist: Netlist) -> None:
+def _add_parts(built: list[Built], netlist: Netlist, notes: NoteKeeper) -> None:
     """Add the parts: sections of one package as one, doubles under a name of their own, symbols not at all.
 
     What has one pin and no reference designator, where other parts have one, is a symbol.
@@ -57,38 +57,38 @@ def _add_parts(built: list[Built], netlist: Netlist) -> None:
             groups.setdefault(entry.part.reference, []).append(entry)
     unique = _UniqueNames()
     for reference, entries in groups.items():
-        for part in merge_sections(entries, netlist.notes):
+        for part in merge_sections(entries, notes):
             part.reference = unique.of(reference)
             netlist.parts[part.reference] = part
             if part.reference != reference:
                 message = f"the reference designator {reference} is written twice; this part is kept as "
                 message += part.reference
-                netlist.notes.append(Note("duplicate-reference", message, part.place, part.reference))
-    _note_parts(netlist)
+                notes.add("duplicate-reference", message, part.place, part.reference)
+    _note_parts(netlist, notes)
 
 
-def _note_parts(netlist: Netlist) -> None:
+def _note_parts(netlist: Netlist, notes: NoteKeeper) -> None:
     for part in netlist.parts.values():
         if not part.fitted:
             message = f"{part.reference} is marked as not fitted, and left out of the circuit"
-            netlist.notes.append(Note("not-fitted", message, part.place, part.reference))
+            notes.add("not-fitted", message, part.place, part.reference)
         if _REWRITTEN_POINT.search(part.value):
             message = (
                 f"the value {part.value} of {part.reference} may hold _ where the exporter found a point"
             )
-            netlist.notes.append(Note("value-ambiguous", message, part.place, part.reference))
+            notes.add("value-ambiguous", message, part.place, part.reference)
     references = ((part.reference, part.place) for part in netlist.parts.values())
-    _note_collisions(references, "parts", netlist.notes)
+    _note_collisions(references, "parts", notes)
 
 
-def _note_collisions(names: Iterable[tuple[str, Place]], what: str, notes: list[Note]) -> None:
+def _note_collisions(names: Iterable[tuple[str, Place]], what: str, notes: NoteKeeper) -> None:
     """Note each name that differs from an earlier one by letter case only."""
     first: dict[str, str] = {}
     for name, place in names:
         earlier = first.setdefault(name.casefold(), name)
         if earlier != name:
             message = f"the {what} {earlier} and {name} differ by letter case only; both are kept"
-            notes.append(Note("name-collision", message, place, name))
+            notes.add("name-collision", message, place, name)
 
 
 class _UniqueNames:

@@ -8,9 +8,10 @@ from typing import NamedTuple
 from .edif_ends import PartEnd
 from .edif_instances import Reference, property_pairs, reference_of
 from .edif_library import Source
+from .edif_notes import NoteKeeper
 from .edif_places import Places
 from .edif_ports import PortBit, is_number
-from .netlist import Note, Part, Pin, Place
+from .netlist import Part, Pin, Place
 from .property_names import is_fitted, read_properties
 
 _NOT_ATTRIBUTES = frozenset({"reference", "value", "section", "not fit"})
@@ -32,7 +33,7 @@ class PartBuilder:
     notes:  takes what is odd about the pins
     """
 
-    def __init__(self, places: Places, net_at: Callable[[int], str], notes: list[Note]) -> None:
+    def __init__(self, places: Places, net_at: Callable[[int], str], notes: NoteKeeper) -> None:
         self._places = places
         self._net_at = net_at
         self._notes = notes
@@ -96,7 +97,7 @@ class PartBuilder:
             pins += [Pin(number, bit.display, net, self._places.at(at)) for net, at in nets.items()]
             if len(nets) > 1:
                 message = f"pin {number or bit.display} of {name} is on {len(nets)} nets: {' and '.join([*nets][:2])}"
-                self._notes.append(Note("pin-mismatch", message, pins[-1].place, name))
+                self._notes.add("pin-mismatch", message, pins[-1].place, name)
         return pins
 
     def _reached(self, end: PartEnd) -> dict[str, dict[str, int]]:

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+from .edif_notes import NoteKeeper
 from .edif_parts import Built
-from .netlist import Note, Part, Pin
+from .netlist import Part, Pin
 
 
-def merge_sections(entries: list[Built], notes: list[Note]) -> list[Part]:
+def merge_sections(entries: list[Built], notes: NoteKeeper) -> list[Part]:
     """Return the parts that the instances of one reference designator make: one, unless they contradict."""
     if len(entries) == 1:
         return [entries[0].part]
@@ -42,7 +43,7 @@ class _Package:
         numbers = {pin.number for pin in built.part.pins}
         shared = numbers & self._index.keys()
         if not shared:
-            return True
+            return bool(numbers)
         agree = all(self._agrees(pin) for pin in built.part.pins if pin.number in shared)
         return agree and len(shared) < min(len(numbers), len(self._index))
 
@@ -50,7 +51,7 @@ class _Package:
         net = self._pins[self._index[pin.number]].net
         return not net or not pin.net or net == pin.net
 
-    def add(self, built: Built, notes: list[Note]) -> None:
+    def add(self, built: Built, notes: NoteKeeper) -> None:
         """Take in a section; what the first one says goes before what this one says."""
         part = self.part
         self._sections.add(built.reference.section)
@@ -60,7 +61,7 @@ class _Package:
         part.attributes = {**built.part.attributes, **part.attributes}
         part.fitted = part.fitted and built.part.fitted
 
-    def _add_pin(self, pin: Pin, notes: list[Note]) -> None:
+    def _add_pin(self, pin: Pin, notes: NoteKeeper) -> None:
         known = self._index.get(pin.number) if pin.number else None
         if known is None:
             self._index[pin.number] = len(self._pins)
@@ -70,7 +71,7 @@ class _Package:
         elif not self._agrees(pin):
             nets = f"{self._pins[known].net} and {pin.net}"
             message = f"pin {pin.number} of {self.part.reference} is on two nets, {nets}"
-            notes.append(Note("pin-mismatch", message, pin.place, self.part.reference))
+            notes.add("pin-mismatch", message, pin.place, self.part.reference)
             self._pins.append(pin)
 
     def close(self) -> Part:

@@ -3,41 +3,29 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
-from typing import NamedTuple
-
 from .edif_budget import Budget
 from .edif_ends import ArrayEnd, Connection, End, PartEnd, RipperEnd, SheetEnd
 from .edif_forms import Contents, GlobalRef, Joined, JoinedRun, Member, Net, PortList, PortRef
 from .edif_library import NameTable, Source
 from .edif_names import bit_names
+from .edif_notes import NoteKeeper
 from .edif_ports import width
 from .edif_runs import port_references
 
 
-class Oddity(NamedTuple):
-    """Something odd about a net: the kind of the note to come, its message, place and subject."""
-
-    kind: str
-    message: str
-    offset: int
-    subject: str
-
-
 class Wiring:
-    """The nets of one sheet.
+    """The nets of one sheet; `drawn` has the pieces of those that are no arrays."""
 
-    drawn:    the pieces of the nets that are no arrays
-    oddities: references that lead nowhere
-    """
-
-    def __init__(self, text: str, sheet: SheetEnd, ends: NameTable[End], budget: Budget) -> None:
+    def __init__(
+        self, text: str, sheet: SheetEnd, ends: NameTable[End], budget: Budget, notes: NoteKeeper
+    ) -> None:
         self._text = text
         self._sheet = sheet
         self._nets = sheet.nets
         self._ends = ends
         self._budget = budget
+        self._notes = notes
         self.drawn: list[int] = []
-        self.oddities: list[Oddity] = []
 
     def draw(self, contents: Contents) -> None:
         """Connect all nets: those of one identifier are one net, on whatever page they are."""
@@ -58,7 +46,7 @@ class Wiring:
         for end in self._ends.values():
             if isinstance(end, RipperEnd) and not end.join(self._budget):
                 message = "a net at a bus ripper has the name of no bit of the bus"
-                self.oddities.append(Oddity("skipped", message, end.offset, ""))
+                self._notes.add("skipped", message, end.offset, "")
 
     def _pieces(self, net: Net) -> Sequence[int]:
         """Return the pieces of a net that is met for the first time, one for each bit."""
@@ -109,7 +97,7 @@ class Wiring:
         if isinstance(end, ArrayEnd) and first.index is not None:
             end = end.members[first.index] if 0 <= first.index < len(end.members) else None
         if rest and isinstance(end, SheetEnd):
-            end.deferred.append((PortRef(reference.port, tuple(rest)), pieces))
+            end.deferred.append((PortRef(reference.port, rest), pieces))
         else:
             self._reach(None if rest else end, first.identifier, reference.port, pieces)
 
@@ -117,14 +105,14 @@ class Wiring:
         """Put a net on a port of what a reference has led to, and keep it where that does not fit."""
         if end is None:
             message = f"a net refers to the instance {instance}, which is not there"
-            self.oddities.append(Oddity("skipped", message, port.offset, instance))
+            self._notes.add("skipped", message, port.offset, instance)
             return
         if len(pieces) > 1:
             self._budget.spend(len(pieces), port.offset)
         if not end.connect(port.identifier, port.index, pieces, port.offset):
             of = f" of {instance}" if instance else ""
             message = f"the port {port.identifier}{of} is not defined, or is not as wide as its net"
-            self.oddities.append(Oddity("pin-mismatch", message, port.offset, instance))
+            self._notes.add("pin-mismatch", message, port.offset, instance)
 
     # ------------------------------------------------------------------------------------- inside cells
 

@@ -13,6 +13,9 @@ _ENTRY = re.compile(r"[,;/|]")
 _UNIT_WITHOUT_NUMBER = re.compile(r"[+-]?[0-9.]+")
 _SIZE_AND_STATE = re.compile(r"[0-9]+-(.+)")
 
+_SHORT = 200  # characters
+_KEPT = 4096
+
 
 class Meaning(NamedTuple):
     """What a property says: the name that this program uses, and the rank among the names of one meaning."""
@@ -106,9 +109,8 @@ def read_properties(pairs: Iterable[tuple[str, str]]) -> dict[str, str]:
     return properties
 
 
-@lru_cache(maxsize=4096)  # the names come from the file, so their number is not ours to trust
 def _known_name(name: str) -> tuple[str, int]:
-    found = meaning(name)
+    found = _short_meaning(name) if len(name) <= _SHORT else None
     return (found.key, found.rank) if found else (name.casefold(), 0)
 
 
@@ -121,13 +123,21 @@ def is_fitted(value: str, properties: Mapping[str, str]) -> bool:
     return not any(map(leaves_out, (value, fit, properties.get("state", ""))))
 
 
-@lru_cache(maxsize=4096)
 def leaves_out(text: str) -> bool:
     """Say whether a value such as `10K,1%,DNI` says that the part is left out."""
+    return _short_leaves_out(text) if len(text) <= _SHORT else _leaves_out(text)
+
+
+def _leaves_out(text: str) -> bool:
     words = fit_words()
     if words.anywhere.search(text):
         return True
     return any(_entry_leaves_out(entry.split(), words.alone) for entry in _ENTRY.split(text.casefold()))
+
+
+# Boards say the same a thousand times; but what is kept must be bounded, as it comes from the file.
+_short_leaves_out = lru_cache(maxsize=_KEPT)(_leaves_out)
+_short_meaning = lru_cache(maxsize=_KEPT)(meaning)
 
 
 def _entry_leaves_out(entry: list[str], alone: frozenset[str]) -> bool:

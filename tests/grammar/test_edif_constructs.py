@@ -28,7 +28,9 @@ AMP = "(viewRef V (cellRef AMP (libraryRef PARTS)))"
 DRIVER = "(viewRef V (cellRef D8 (libraryRef PARTS)))"
 
 
-def board(contents: str, *, interface: str = "", more: str = "", view: str = "NETLIST", head: str = "") -> str:
+def board(
+    contents: str, *, interface: str = "", more: str = "", view: str = "NETLIST", head: str = ""
+) -> str:
     return f"""(edif ORCHARD (edifVersion 2 0 0) (edifLevel 0) (keywordMap (keywordLevel 0)) {head}
 {PARTS}
 (library MAIN (edifLevel 0) (technology (numberDefinition)) {more}
@@ -64,15 +66,23 @@ def kinds(netlist: Netlist) -> list[str]:
 
 @construct("A1 blanks are optional next to parentheses and quotes")
 def test_blanks() -> None:
-    netlist = read(f'( instance R1{R}( property\tVALUE(string"10k")))(net A( joined( portRef &1( instanceRef R1))))')
+    netlist = read(
+        f'( instance R1{R}( property\tVALUE(string"10k")))(net A( joined( portRef &1( instanceRef R1))))'
+    )
     assert netlist.parts["R1"].value == "10k"
     assert pins(netlist) == {"A": ["R1.1"]}
 
 
 @construct("A1 keywords in any case")
 def test_keywords_in_any_case() -> None:
-    text = board(f'(INSTANCE R1 {R} (Property Value (STRING "1k"))) (NET A (JOINED (PORTREF &1 (INSTANCEREF R1))))')
-    text = text.replace("edifVersion", "EDIFVersion").replace("keywordMap", "keywordmap").replace("(library", "(Library")
+    text = board(
+        f'(INSTANCE R1 {R} (Property Value (STRING "1k"))) (NET A (JOINED (PORTREF &1 (INSTANCEREF R1))))'
+    )
+    text = (
+        text.replace("edifVersion", "EDIFVersion")
+        .replace("keywordMap", "keywordmap")
+        .replace("(library", "(Library")
+    )
     netlist = read_edif(text, "orchard.edf")
     assert pins(netlist) == {"A": ["R1.1"]}
     assert netlist.parts["R1"].value == "1k"
@@ -80,7 +90,9 @@ def test_keywords_in_any_case() -> None:
 
 @construct("A1 & marks an identifier and is no part of it")
 def test_ampersand() -> None:
-    netlist = read(f"(instance &R1 {R}) (net &GND (joined (portRef 1 (instanceRef R1)) (portRef &2 (instanceRef &R1))))")
+    netlist = read(
+        f"(instance &R1 {R}) (net &GND (joined (portRef 1 (instanceRef R1)) (portRef &2 (instanceRef &R1))))"
+    )
     assert pins(netlist) == {"GND": ["R1.1", "R1.2"]}
 
 
@@ -98,7 +110,9 @@ def test_names_that_equal_keywords() -> None:
 
 @construct("A1 mixed-case files with CR LF")
 def test_carriage_returns() -> None:
-    text = board(f'(instance R1 {R} (property VALUE (string "4\n70")))\n(net A (joined (portRef &2 (instanceRef R1))))')
+    text = board(
+        f'(instance R1 {R} (property VALUE (string "4\n70")))\n(net A (joined (portRef &2 (instanceRef R1))))'
+    )
     netlist = read_edif(text.replace("\n", "\r\n"), "orchard.edf")
     assert netlist.parts["R1"].value == "470"
     assert netlist.nets["A"].place.line == text[: text.index("(net A")].count("\n") + 1
@@ -151,7 +165,9 @@ def test_cells_that_differ_by_case() -> None:
 
 @construct("A2 no backslash escape")
 def test_backslashes() -> None:
-    netlist = read(f'(instance R1 {R} (property VALUE (string "C:\\"))) (net (rename RES "R\\E\\S\\") (joined))')
+    netlist = read(
+        f'(instance R1 {R} (property VALUE (string "C:\\"))) (net (rename RES "R\\E\\S\\") (joined))'
+    )
     assert netlist.parts["R1"].value == "C:\\"
     assert list(netlist.nets) == ["R\\E\\S\\"]
 
@@ -168,7 +184,9 @@ def test_broken_strings() -> None:
 
 @construct("A2 % escapes, also cut by a line break")
 def test_percent_escapes() -> None:
-    netlist = read(f'(instance R1 {R} (property VALUE (string "10K,1%3\n7%")) (property NOTE (string "a%13 10%b%034%")))')
+    netlist = read(
+        f'(instance R1 {R} (property VALUE (string "10K,1%3\n7%")) (property NOTE (string "a%13 10%b%034%")))'
+    )
     assert netlist.parts["R1"].value == "10K,1%"
     assert netlist.parts["R1"].attributes["note"] == 'a\r\nb"'
 
@@ -194,8 +212,8 @@ def test_unknown_forms() -> None:
     deep = "(" * 3 + "x " + "(y 1)" * 3 + ")" * 3
     deep = deep.replace("((", "(a (").replace("((", "(b (")
     netlist = read(
-        f'(figure (dot (pt 1 2))) (instance R1 (userData u {deep}) {R} (timing (derivation MEASURED)) {deep})'
-        f'{deep} (net A (criticality 3) (userData (net B)) (joined (foo (portRef x)) (portRef &1 (bar 1) (instanceRef R1 (baz)))) (netDelay))',
+        f"(figure (dot (pt 1 2))) (instance R1 (userData u {deep}) {R} (timing (derivation MEASURED)) {deep})"
+        f"{deep} (net A (criticality 3) (userData (net B)) (joined (foo (portRef x)) (portRef &1 (bar 1) (instanceRef R1 (baz)))) (netDelay))",
         head="(status (written (timeStamp 0 0 0 0 0 0))) (userData tool (weights 1 2 3))",
     )
     assert pins(netlist) == {"A": ["R1.1"]}
@@ -203,7 +221,9 @@ def test_unknown_forms() -> None:
 
 @construct("A3 forms out of their place are left out")
 def test_forms_out_of_place() -> None:
-    netlist = read(f'(property P (string "x")) (instance R1 {R} (port X)) (net A (property Q (string "y")) (joined (portRef &1 (instanceRef R1))))')
+    netlist = read(
+        f'(property P (string "x")) (instance R1 {R} (port X)) (net A (property Q (string "y")) (joined (portRef &1 (instanceRef R1))))'
+    )
     assert pins(netlist) == {"A": ["R1.1"]}
 
 
@@ -341,7 +361,9 @@ def test_global_port() -> None:
 
 @construct("A3 nested instanceRef")
 def test_nested_instance_ref() -> None:
-    inner = f"(cell PSU (cellType GENERIC) (view V (viewType NETLIST) (interface) (contents (instance R1 {R}))))"
+    inner = (
+        f"(cell PSU (cellType GENERIC) (view V (viewType NETLIST) (interface) (contents (instance R1 {R}))))"
+    )
     netlist = read(
         "(instance psu (viewRef V (cellRef PSU))) (net A (joined (portRef &2 (instanceRef R1 (instanceRef psu)))))",
         more=inner,
@@ -416,7 +438,9 @@ def test_sections_and_pages() -> None:
 
 @construct("A3 references that lead nowhere are noted")
 def test_references_that_lead_nowhere() -> None:
-    netlist = read(f"(instance U1 {AMP}) (net A (joined (portRef X (instanceRef GONE)) (portRef &9 (instanceRef U1))))")
+    netlist = read(
+        f"(instance U1 {AMP}) (net A (joined (portRef X (instanceRef GONE)) (portRef &9 (instanceRef U1))))"
+    )
     assert kinds(netlist) == ["skipped"]
     assert pins(netlist) == {"A": ["U1.9"]}
 
@@ -516,7 +540,9 @@ def test_sections_that_disagree() -> None:
 
 @construct("A5 a reference designator that is written twice")
 def test_duplicate_references() -> None:
-    netlist = read(f'(instance I1 {R} (designator "R1")) (instance I2 {R} (designator "R1")) (instance I3 {R} (designator "R1"))')
+    netlist = read(
+        f'(instance I1 {R} (designator "R1")) (instance I2 {R} (designator "R1")) (instance I3 {R} (designator "R1"))'
+    )
     assert list(netlist.parts) == ["R1", "R1#2", "R1#3"]
     assert kinds(netlist) == ["duplicate-reference"] * 2
 
@@ -534,13 +560,19 @@ def test_pin_numbers() -> None:
         f'(instance U1 {AMP} (portInstance IN_P (property X (string "(designator")) (designator "5")))'
         f'(instance U2 {AMP} (portInstance (portRef OUT) (designator "7"))) (instance R1 {R})'
     )
-    assert [[pin.number for pin in part.pins] for part in netlist.parts.values()] == [["5", "1"], ["3", "7"], ["1", "2"]]
+    assert [[pin.number for pin in part.pins] for part in netlist.parts.values()] == [
+        ["5", "1"],
+        ["3", "7"],
+        ["1", "2"],
+    ]
     assert [pin.name for pin in netlist.parts["U1"].pins] == ["IN+", "OUT"]
 
 
 @construct("A5 portRef by pin number where the ports have names, and by name where they have numbers")
 def test_port_by_number() -> None:
-    netlist = read(f"(instance U1 {AMP}) (net A (joined (portRef &3 (instanceRef U1)) (portRef out (instanceRef U1))))")
+    netlist = read(
+        f"(instance U1 {AMP}) (net A (joined (portRef &3 (instanceRef U1)) (portRef out (instanceRef U1))))"
+    )
     assert pins(netlist) == {"A": ["U1.3", "U1.1"]}
 
 
@@ -606,7 +638,7 @@ def test_tie() -> None:
 @construct("A5 RIPPER cells join a net to the bit of its name")
 def test_ripper() -> None:
     netlist = read(
-        f'(instance U1 {DRIVER}) (instance R1 {R}) (instance X (viewRef V (cellRef RIP))) (instance Y (viewRef V (cellRef RIP)))'
+        f"(instance U1 {DRIVER}) (instance R1 {R}) (instance X (viewRef V (cellRef RIP))) (instance Y (viewRef V (cellRef RIP)))"
         '(net (array (rename D "D[7..0]") 8) (joined (portRef D (instanceRef U1)) (portRef BUS (instanceRef X)) (portRef BUS (instanceRef Y))))'
         "(net D5 (joined (portRef &1 (instanceRef R1)) (portRef BIT (instanceRef X))))"
         "(net ODD (joined (portRef &2 (instanceRef R1)) (portRef BIT (instanceRef Y))))",
@@ -667,7 +699,7 @@ def test_off_page() -> None:
 def test_junctions_inside_nets() -> None:
     netlist = read(
         f'(instance I1 {R} (designator "R1")) (net A (joined (portRef &1 (instanceRef I1)) (portRef P (instanceRef J1)))'
-        '(instance J1 (viewRef V (cellRef DOT))))'
+        "(instance J1 (viewRef V (cellRef DOT))))"
         '(net B (joined (portRef &2 (instanceRef I1)) (portRef P (instanceRef S1))) (instance S1 (viewRef V (cellRef GND_POWER)) (property VALUE (string "GND"))))',
         more=SYMBOLS,
         view="SCHEMATIC",
@@ -746,7 +778,13 @@ def test_fit_state(value: str, fitted: bool) -> None:
 @construct("A6 fit state by property")
 @pytest.mark.parametrize(
     ("name", "text", "fitted"),
-    [("DNP", "yes", False), ("DNP", "no", True), ("Fitted", "no", False), ("Status", "DNI", False), ("Status", "ok", True)],
+    [
+        ("DNP", "yes", False),
+        ("DNP", "no", True),
+        ("Fitted", "no", False),
+        ("Status", "DNI", False),
+        ("Status", "ok", True),
+    ],
 )
 def test_fit_by_property(name: str, text: str, fitted: bool) -> None:
     netlist = read(f'(instance R1 {R} (property {name} (string "{text}")))')
@@ -755,12 +793,16 @@ def test_fit_by_property(name: str, text: str, fitted: bool) -> None:
 
 @construct("A5 a value that may hold _ for a point is reported")
 def test_underscore_for_point() -> None:
-    netlist = read(f'(instance R1 {R} (property ModuleValue (string "R_0805")) (property VALUE (string "4_7k")))')
+    netlist = read(
+        f'(instance R1 {R} (property ModuleValue (string "R_0805")) (property VALUE (string "4_7k")))'
+    )
     assert netlist.parts["R1"].value == "4_7k"
     assert kinds(netlist) == ["value-ambiguous"]
 
 
 @construct("A5 text fields that hold name and value")
 def test_text_fields() -> None:
-    netlist = read(f'(instance R1 {R} (property Field2Value (string "TOL=1%")) (property Field3Value (string "a=b")) (property Power (string "Power=1W")))')
+    netlist = read(
+        f'(instance R1 {R} (property Field2Value (string "TOL=1%")) (property Field3Value (string "a=b")) (property Power (string "Power=1W")))'
+    )
     assert netlist.parts["R1"].attributes == {"tolerance": "1%", "field3value": "a=b", "power": "1W"}
