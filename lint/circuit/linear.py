@@ -16,6 +16,9 @@ _MOST_GROWTH = 1e12
 # Numbers that ought to be zero may be off by this share of the greatest one: rounding.
 _ROUNDING = 1e-9
 
+# Below this share of the greatest unknown a singular value decomposition leaves noise.
+_NOISE = 1e-14
+
 
 def solve_each(matrix: Array, right: Array, settled: Flags) -> Array:
     """Solve a stack of systems; one without a single solution gives NaN instead of spoiling the whole stack.
@@ -76,5 +79,6 @@ def _solve_singular(matrix: Array, right: Array, settled: Flags) -> Array:
     stays_open = np.any(null[:, :, None] & settled & (np.abs(across) > _ROUNDING), axis=(1, 2))
     shares = np.where(null, 0.0, shares / np.where(null, 1.0, singular))
     answer = np.einsum("sji,sj->si", across, shares)
+    answer[np.abs(answer) < _NOISE * np.max(np.abs(answer), axis=1)[:, None]] = 0.0
     answer[contradicts | stays_open] = np.nan
     return answer
