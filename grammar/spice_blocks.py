@@ -32,12 +32,28 @@ _WORDS = {
     "ELSEIF": "`.elseif`",
     "ELSE": "`.else`",
     "ENDIF": "`.endif`",
+    "ENDC": "`.endc`",
+    "ENDDATA": "`.enddata`",
+    "ENDALIASES": "`.endaliases`",
     "END": "`.end`",
     "$END": "the end of the file",
 }
-_OPENED_BY = {"ENDS": "`.subckt`", "ENDIF": "`.if`", "ELSE": "`.if`", "ELSEIF": "`.if`"}
-_CLOSED_BY = {"SUBCKT": ".ends", "IF": ".endif"}
-_CLOSE_WITH = {"control": ".endc", "data": ".enddata", "aliases": ".endaliases"}
+_OPENED_BY = {
+    "ENDS": "`.subckt`",
+    "ENDIF": "`.if`",
+    "ELSE": "`.if`",
+    "ELSEIF": "`.if`",
+    "ENDC": "`.control`",
+    "ENDDATA": "`.data`",
+    "ENDALIASES": "`.aliases`",
+}
+_CLOSED_BY = {
+    "SUBCKT": ".ends",
+    "IF": ".endif",
+    "CONTROL": ".endc",
+    "DATA": ".enddata",
+    "ALIASES": ".endaliases",
+}
 
 
 class Body(NamedTuple):
@@ -158,12 +174,13 @@ def _innermost_open(error: UnexpectedToken) -> Token | None:
 
 def _card(source: Source, token: Token) -> Card:
     """Return the card of a token, which holds its whole line."""
-    start = token.start_pos or 0
-    end = source.clean.index("\n", start)
-    number = source.place(start).line
-    line = Line(source, number, source.clean[start:end])
+    line = source.line(source.place(token.start_pos or 0).line)
+    return Card(_keyword(line), line)
+
+
+def _keyword(line: Line) -> str:
     match = _KEYWORD.match(line.text)
-    return Card(match[1].casefold() if match else "", line)
+    return match[1].casefold() if match else ""
 
 
 class _Builder:
@@ -185,6 +202,8 @@ class _Builder:
         first = subtree.children[0]
         assert isinstance(first, Token), "every block begins with its card"
         card = _card(self._source, first)
+        if subtree.data == "skipped":
+            return card
         if subtree.data == "subcircuit":
             return self._definition(card, self._items(subtree.children[1:-1]))
         condition = card.line.text[indent(card.line) + 1 + len(card.keyword) :]
@@ -209,25 +228,19 @@ class _Builder:
         return items
 
     def _add_token(self, items: list[Item], token: Token) -> None:
+        start = token.start_pos or 0
+        end = start + len(token)
         if token.type == "BODY":
-            start = token.start_pos or 0
-            items.append(Body(self._source, start, start + len(token)))
-            return
-        card = _card(self._source, token)
-        if token.type == "UNCLOSED":
-            closing = _CLOSE_WITH[card.keyword]
-            self._problems.add(
-                card.line.error(
-                    indent(card.line),
-                    f"`.{card.keyword}` is never closed",
-                    f"`{closing}` on a later line",
-                    f"add `{closing}` where the block ends",
-                )
-            )
-        elif card.keyword == "endl":
-            self._close_section(items, card)
+            items.append(Body(self._source, start, end))
+        elif token.type == "END":
+            items.append(_card(self._source, token))
         else:
-            items.append(card)
+            for line in self._source.lines(start, end):
+                card = Card(_keyword(line), line)
+                if card.keyword == "endl":
+                    self._close_section(items, card)
+                else:
+                    items.append(card)
 
     def _close_section(self, items: list[Item], card: Card) -> None:
         """Make a section of what follows the last `.lib` that has only a name."""

@@ -10,7 +10,7 @@ from types import MappingProxyType
 from typing import NoReturn
 
 from .netlist import Place
-from .spice_lines import Line, indent
+from .spice_lines import Line, Source, indent
 from .spice_words import Words, is_plain, split
 
 NOTHING: Mapping[str, str] = MappingProxyType({})
@@ -27,7 +27,8 @@ class Element:
     value:      text, an expression with its braces
     model:      name of a model or subcircuit
     attributes: the pairs at the end of the line, and what the letter adds
-    line:       for places
+    source:     with `number`, the line that the element begins on: its text is looked up for places, since a
+                copy for each of many parts would be the largest thing kept of them
     first:      index among the line's positional words of the first node
     assumption: what the line leaves open and was decided here, else empty
     """
@@ -38,35 +39,50 @@ class Element:
     value: str
     model: str
     attributes: Mapping[str, str]
-    line: Line
+    source: Source
+    number: int
     first: int = 1
     assumption: str = ""
+    indexes: list[int] | None = None
+
+    @property
+    def line(self) -> Line:
+        """Return the logical line of the element; for a code model without the marks of its ports."""
+        line = self.source.line(self.number)
+        return without_port_marks(line) if self.letter == "A" else line
 
     @property
     def place(self) -> Place:
         """Return the place of the reference."""
-        return self.line.place(indent(self.line) if self.line.text[0].isspace() else 0)
+        line = self.line
+        return line.place(indent(line) if line.text[0].isspace() else 0)
 
     def node_places(self) -> list[Place]:
         """Return the place of each node."""
-        indexes = split(self.line, exact=True).indexes[self.first :]
-        return [self.line.place(index) for index, _ in zip(indexes, self.nodes, strict=False)]
+        line = self.line
+        indexes = self.indexes or split(line, exact=True).indexes
+        return [line.place(index) for index in indexes[self.first : self.first + len(self.nodes)]]
 
     def node_place(self, at: int) -> Place:
         """Return the place of one node."""
-        text = self.line.text
+        line = self.line
         word = at + self.first
-        if word < 8 and is_plain(text):
-            return self.line.place(len(text) - len(text.split(None, word)[word]))
-        return self.node_places()[at]
+        if word < _FEW and is_plain(line.text):
+            return line.place(len(line.text) - len(line.text.split(None, word)[word]))
+        # A long line is asked for one node after the other: its words are sought once.
+        self.indexes = self.indexes or split(line, exact=True).indexes
+        return line.place(self.indexes[word])
 
     def index_of(self, text: str) -> int:
         """Return where `text` stands on the line, behind the nodes: the place for an error about it."""
-        indexes = split(self.line, exact=True).indexes
+        line = self.line
+        indexes = split(line, exact=True).indexes
         behind = indexes[min(self.first + len(self.nodes), len(indexes)) - 1]
-        return max(0, self.line.text.find(text, behind))
+        return max(0, line.text.find(text, behind))
 
 
+_FEW = 8
+_PORT_MARKS = re.compile(r"[\[\]~]|%\w+")
 _VALUE = re.compile(
     r"""
       (?! [1-4][NS]\d{2,} )                    # a type number of JEDEC or JIS: 1N4148 is not in nano
@@ -111,6 +127,12 @@ def is_value(word: str) -> bool:
     return _VALUE.fullmatch(word) is not None
 
 
+def without_port_marks(line: Line) -> Line:
+    """Return the line of a code model with blanks for the brackets, inversions and types of its ports."""
+    blanked = _PORT_MARKS.sub(lambda match: " " * len(match[0]), line.text)
+    return Line(line.source, line.number, blanked)
+
+
 def prefix_of(words: Words) -> str:
     """Return the letters before the number of a reference, in capitals; empty where it has no number."""
     match = _PREFIX.match(words.texts[0])
@@ -152,10 +174,10 @@ def made(
     attributes: Mapping[str, str] = NOTHING
     if words.assignments or extra:
         attributes = attributes_of(words) | dict(extra)
+    line = words.line
     texts = words.texts
-    return Element(
-        texts[0], letter, tuple(texts[1 : 1 + nodes]), value, model, attributes, words.line, 1, assumption
-    )
+    there = tuple(texts[1 : 1 + nodes])
+    return Element(texts[0], letter, there, value, model, attributes, line.source, line.number, 1, assumption)
 
 
 def part(words: Words, letter: str = "") -> Element:

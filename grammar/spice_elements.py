@@ -11,7 +11,18 @@ import re
 from collections.abc import Callable, Collection
 
 from .errors import NetlistError
-from .spice_element import NOTHING, PREFIXES, Element, is_value, made, part, prefix_of, too_few, unquoted
+from .spice_element import (
+    NOTHING,
+    PREFIXES,
+    Element,
+    is_value,
+    made,
+    part,
+    prefix_of,
+    too_few,
+    unquoted,
+    without_port_marks,
+)
 from .spice_lines import Line, indent
 from .spice_semiconductors import diode, is_size, junction_transistor, transistor
 from .spice_sources import behavioural_source, controlled_source, source
@@ -20,7 +31,6 @@ from .spice_words import Words, split
 _RATING = re.compile(r"[+-]?\d+(?:[.,/]\d+)?(?:%|[a-zA-Z]*W|V|ppm)", re.IGNORECASE)
 _TRIMMER = re.compile(r"(?:RV|VR|P|POT|TRIM)\d", re.IGNORECASE)
 _LIBRARY_FILE = re.compile(r".*[.](?:lib|sub|spi|sp|inc|mod|cir|ckt)", re.IGNORECASE)
-_PORT_MARKS = re.compile(r"[\[\]~]|%\w+")
 
 
 def read_element(line: Line, models: Collection[str]) -> Element:
@@ -149,9 +159,7 @@ def _package(words: Words, models: Collection[str]) -> Element:
 
 def _ports(words: Words, models: Collection[str]) -> Element:
     """Read a code model: ports in brackets, with their types, then the model."""
-    line = words.line
-    blanked = _PORT_MARKS.sub(lambda match: " " * len(match[0]), line.text)
-    return part(split(Line(line.source, line.number, blanked), exact=True), "A")
+    return part(split(without_port_marks(words.line), exact=True), "A")
 
 
 def _instance(words: Words, models: Collection[str]) -> Element:

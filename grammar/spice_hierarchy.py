@@ -22,7 +22,7 @@ from .spice_scope import Scope
 DEEPEST = 50
 """Levels of subcircuits in subcircuits."""
 
-EXPANSION = 50_000_000
+EXPANSION = 80_000_000
 """Estimated bytes that parts inside instances may take, beside what the length of the list allows."""
 
 MOST_DUPLICATES = 1000
@@ -198,7 +198,9 @@ class Expansion:
 
     def _unique(self, element: Element, reference: str) -> str:
         """Return a reference that no part or path has: a number is added to one that is taken."""
-        folded = reference.casefold()
+        folded = reference.upper()
+        if folded == reference:
+            folded = reference  # one object for both: most references are in capitals already
         if folded not in self._references:
             self._references.add(folded)
             return reference

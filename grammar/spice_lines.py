@@ -84,6 +84,11 @@ class Source:
         """Offset of the first character of each physical line."""
         return list(accumulate((len(line) + 1 for line in self.text.split("\n")), initial=0))[:-1]
 
+    def line(self, number: int) -> Line:
+        """Return the logical line that begins on the physical line `number`."""
+        start = self.starts[number - 1]
+        return Line(self, number, self.clean[start : self.clean.index("\n", start)])
+
     def lines(self, start: int, end: int) -> Iterator[Line]:
         """Yield the logical lines between two offsets, blank ones left out; `start` begins a line."""
         number = bisect_right(self.starts, start)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
-from .netlist import Net, Netlist
+from .netlist import Net, Netlist, Place
 from .spice_blocks import Definition
 from .spice_element import Element
 from .spice_names import sheet_name
@@ -36,12 +36,12 @@ class Level:
 
 
 class Nets:
-    """All nets of a netlist, by their casefolded names with path."""
+    """All nets of a netlist. Those of the deck itself are in its level, those inside instances here."""
 
     def __init__(self, netlist: Netlist, notes: Notes) -> None:
         self._netlist = netlist
         self._notes = notes
-        self._found: dict[str, Net] = {}
+        self._inner: dict[str, Net] = {}  # by casefolded path and name
         self._top: Level | None = None
         self._ground_noted = False
 
@@ -73,18 +73,28 @@ class Nets:
 
     def _named(self, level: Level, node: str, element: Element, index: int | None) -> Net:
         root = level.scope.root(node.casefold())
-        if root in _GROUND and not level.path:
-            root = "0"
-        key = level.path.casefold() + root
-        net = self._found.get(key)
+        if level.path:
+            known, key = self._inner, level.path.casefold() + root
+        else:
+            known, key = level.nets, "0" if root in _GROUND else root
+        net = known.get(key)
         if net is None:
-            name = level.path + node
             place = element.place if index is None else element.node_place(index)
-            net = self._found[key] = self._netlist.nets[name] = Net(name, place)
-        elif root == "0" and not self._ground_noted:
+            net = known[key] = self._made(level.path + node, place)
+        elif key == "0" and not self._ground_noted:
             self._ground_noted = True
             message = f"{net.name} and {node} are taken as one net, ground"
             self._notes.add("assumption", message, element.place, net.name)
+        return net
+
+    def _made(self, name: str, place: Place) -> Net:
+        """Return a new net; a number is added to a name that a net of another level has by chance."""
+        nets = self._netlist.nets
+        unique, number = name, 1
+        while unique in nets:
+            number += 1
+            unique = f"{name}#{number}"
+        net = nets[unique] = Net(unique, place)
         return net
 
     def _inside(self, level: Level, node: str) -> Net | None:
@@ -101,10 +111,9 @@ class Nets:
             sheet = level.names.get(instance.reference) or sheet_name(instance.reference)
             name = f"{level.path}{sheet}/{tail}"
             key = name.casefold()
-            if key not in self._found:
-                self._found[key] = Net(name, instance.place)
-                self._netlist.nets[name] = self._found[key]
-            return self._found[key]
+            if key not in self._inner:
+                self._inner[key] = self._made(name, instance.place)
+            return self._inner[key]
         return None
 
     def _note_spelling(self, net: Net, element: Element, index: int) -> None:

@@ -32,7 +32,9 @@ def source(words: Words, models: Collection[str]) -> Element:
         waveform.append(f"AC {attributes.pop('ac')}")
     if waveform:
         attributes["waveform"] = " ".join(waveform)
-    return Element(texts[0], letter, tuple(texts[1:3]), value, "", attributes or NOTHING, words.line)
+    element = made(words, letter, 2, value)
+    element.attributes = attributes or NOTHING
+    return element
 
 
 def _dc_value(texts: list[str], named: str) -> tuple[str, int]:
@@ -102,6 +104,6 @@ def behavioural_source(words: Words, models: Collection[str]) -> Element:
 
 def _behavioural(words: Words, letter: str) -> Element:
     """Make a source whose law is kept as text."""
-    texts = words.texts
-    extra = {"expression": _raw(words, 3)}
-    return Element(texts[0], letter, tuple(texts[1:3]), "", "", extra, words.line)
+    element = made(words, letter, 2)
+    element.attributes = {"expression": _raw(words, 3)}
+    return element

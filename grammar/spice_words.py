@@ -7,10 +7,14 @@ from collections.abc import Iterator
 from itertools import zip_longest
 from typing import NamedTuple
 
+from .errors import NetlistError
 from .spice_lines import LONGEST_LINE, Line
 
 LONGEST_NAME = 255
 """Characters of a name of a part or net: more is no name, and flattening would repeat it in every path."""
+
+MOST_WORDS = 100_000
+"""Words of one line: far more than the points of any waveform that is written out."""
 
 # A line without any of these is split at its blanks, which is several times faster.
 _SPECIAL = re.compile(r"""[,()={}"']""")
@@ -88,6 +92,8 @@ def split(line: Line, *, exact: bool = False) -> Words:
         assignments: list[Assignment] = []
     else:
         texts, indexes, assignments = _scan(line)
+    if len(texts) > MOST_WORDS:
+        raise _too_many_words(line)
     if len(text) > LONGEST_NAME:
         _refuse_long_names(line, texts)
     return Words(line, texts, indexes, assignments)
@@ -119,6 +125,8 @@ def _scan(line: Line) -> tuple[list[str], list[int], list[Assignment]]:
             texts.append(word)
             indexes.append(start)
         before, before_start = word, start
+        if len(texts) + len(keys) > MOST_WORDS:
+            raise _too_many_words(line)
     return texts, indexes, _assignments(text, keys)
 
 
@@ -155,7 +163,7 @@ def _closing_brace(line: Line, text: str, start: int) -> int:
     raise _unbalanced(line, start)
 
 
-def _unbalanced(line: Line, index: int) -> Exception:
+def _unbalanced(line: Line, index: int) -> NetlistError:
     mark = line.text[index]
     if mark == "}":
         return line.error(index, "`}` closes nothing", "`{` before it", "add the `{`, or take the `}` away")
@@ -165,6 +173,15 @@ def _unbalanced(line: Line, index: int) -> Exception:
         f"`{mark}` is never closed",
         f"`{wanted}` later on the line or on its continuation lines",
         f"add the `{wanted}` where the text ends",
+    )
+
+
+def _too_many_words(line: Line) -> NetlistError:
+    return line.error(
+        0,
+        f"a line of more than {MOST_WORDS} words",
+        "a part with its nodes and its value",
+        "put a long table into a file of its own, or check that this is a netlist",
     )
 
 

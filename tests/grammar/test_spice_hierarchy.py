@@ -125,6 +125,12 @@ def test_nodes_inside_instances() -> None:
     assert nets(netlist, "R3") == ["V1.5", "0"]
 
 
+def test_a_net_of_the_deck_that_is_named_like_a_net_of_a_sheet_is_another() -> None:
+    netlist = read("R1 X1/n 0 1", "X1 a s", ".subckt s p", "R1 p n 1", ".ends")
+    assert netlist.nets["X1/n"].pins == [("R1", 0)]
+    assert netlist.nets["X1/n#2"].pins == [("X1/R1", 1)]
+
+
 @pytest.mark.construct("B3 references behind exporters' prefixes")
 @pytest.mark.parametrize(
     ("line", "reference", "element"),
