@@ -6,8 +6,8 @@ kept, so that ten rules may ask the same without solving ten times.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, replace
 from difflib import get_close_matches
 from typing import TypeVar, cast
 
@@ -21,6 +21,7 @@ from .circuit.controllers import Controller, find_controllers
 from .circuit.dead_time import DeadTime, dead_time
 from .circuit.drive import Drive
 from .circuit.duty import needed_duty
+from .circuit.envelope import WITH_FAULTS, Operated, envelope
 from .circuit.graph import Circuit
 from .circuit.growth import Growth
 from .circuit.loops import Fault, Loops, Regulation, Trip
@@ -30,6 +31,7 @@ from .circuit.power_stage import NotRecognised, PowerStage
 from .circuit.power_stage_reader import PowerStageReader
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.regimes import REGULATING, Operation, Regime, potentials_in
+from .circuit.stress import Stresses, stresses
 from .circuit.time_constants import source_resistance, time_constant
 from .circuit.timing import Timing, timing
 from .circuit.worst_case import Variation
@@ -236,6 +238,15 @@ class Design:
 
         return self._keep("output drive", controller.reference, make)
 
+    def stresses(self, regimes: Sequence[Regime] = WITH_FAULTS) -> Stresses:
+        """Return what resistors and capacitors stand while the converters are anywhere in `regimes`."""
+
+        def read() -> Stresses:
+            converters = [Operated(one, self._in_service(one)) for one in self.controllers]
+            return stresses(self.circuit, envelope(self.known, converters, regimes), self.controllers)
+
+        return self._keep("stresses", ", ".join(regimes), read)
+
     def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
         """Return the current at which a controller's current loop takes over.
 
@@ -319,6 +330,14 @@ class Design:
 
     def _operation(self, controller: Controller) -> Operation:
         return self._keep("operation", controller.reference, lambda: self._operated(controller))
+
+    def _in_service(self, controller: Controller) -> Operation:
+        """Return the operation with a trimmed output set to what the brief wants of it."""
+        operation, regulation = self._operation(controller), self.regulation(controller)
+        told = self.rail(operation.output)
+        if told is not None and isinstance(regulation, Regulation) and regulation.trimmers:
+            return replace(operation, regulated=told.band)
+        return operation
 
     def _operated(self, controller: Controller) -> Operation:
         """Return what is known of the converter in operation: output, threshold, full load."""

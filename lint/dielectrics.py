@@ -22,7 +22,7 @@ def dielectric_of(*texts: str) -> str | None:
 
 
 def is_polarised(*texts: str) -> bool:
-    """Tell whether the texts make a capacitor a polarised one: by its dielectric, or by a word that says so."""
+    """Tell whether the texts make a capacitor a polarised one: by its dielectric, or by a word for it."""
     marks = _tables()[_MARKS]
     if any(_has_word(text, marks["unpolarised"]) for text in texts):
         return False

@@ -16,7 +16,7 @@ SOURCE = "thick-film chip resistors of this case, common makers' data"
 
 @dataclass(frozen=True, slots=True)
 class Package:
-    """A chip resistor's case: its code in hundredths of an inch, power (W at 70 degC), working voltage (V)."""
+    """A chip resistor's case: its code in hundredths of an inch, power in W at 70 degC, voltage in V."""
 
     code: str
     power: float
@@ -43,9 +43,7 @@ def smallest() -> Package:
 
 @cache
 def _packages() -> dict[str, Package]:
-    return {
-        code: Package(code, float(row["power"]), float(row["voltage"])) for code, row in _table().items()
-    }
+    return {code: Package(code, float(row["power"]), float(row["voltage"])) for code, row in _table().items()}
 
 
 @cache
