@@ -183,7 +183,10 @@ class Growth:
     def _output_control(self, controller: Controller, net: str) -> None:
         """Let the output-control pin load the net: its current is told at the reference, and follows it."""
         current = controller.profile.figure("output-control.current").spread()
-        reference = controller.profile.figure("reference.voltage").spread().nominal
+        potential = self.known.get(controller.net("reference") or "")
+        reference = (
+            potential.spread if potential else controller.profile.figure("reference.voltage").spread()
+        ).maximum
         name = f"{controller.reference} {controller.pins['output control'].name} current"
         ends = (current.minimum / reference, current.nominal / reference, current.maximum / reference)
         value = self.add_parameter(Parameter(name, *ends))
