@@ -19,6 +19,9 @@ from ..lint.verdict import Limit, Outcome, Verdict
 
 _PIN = ("dead time",)
 
+# What is sold as a soft-start capacitor (common practice, no source).
+_LEAST_CAPACITANCE, _GREATEST_CAPACITANCE = 1e-11, 1e-3
+
 
 def _capacitors(controller: Controller, design: Design, role: str) -> list[Part]:
     """Return the capacitors between the net of a role and the dead-time pin, or what leads to the pin."""
@@ -234,8 +237,11 @@ def _in_cycles(
 def _capacitor_for(measured: Estimate, wanted: Spread, capacitor: Part, design: Design) -> str:
     """Return the preferred capacitor nearest to the wanted time, and the time that it makes."""
     value, time_now = design.nominal(capacitor), measured.spread.nominal
-    if value is None or not value * time_now * wanted.nominal > 0:
+    if value is None or time_now <= 0:
         return ""
-    preferred = nearest(value * wanted.nominal / time_now, "E6")
+    needed = value * wanted.nominal / time_now
+    if not _LEAST_CAPACITANCE <= needed <= _GREATEST_CAPACITANCE:
+        return f"no capacitor makes {engineering(wanted.nominal, 's')} here: change the resistors"
+    preferred = nearest(needed, "E6")
     makes = engineering(time_now * preferred / value, "s")
     return f"{engineering(preferred, 'F')} as {capacitor.reference} makes {makes} (E6)"

@@ -85,6 +85,8 @@ def timing(circuit: Circuit, known: Mapping[str, Potential], controller: Control
     found = estimate(growth, probes)
     if isinstance(found, Unsolved):
         return found
+    if found["resistance"].spread.nominal < 0:
+        return Unsolved(f"something else feeds {resistor_net}", tuple(growth.parts), (resistor_net,))
     reach = settable(growth, probes, "frequency")
     return Timing(found["resistance"], found["capacitance"], found["frequency"], trimmers(growth), reach)
 
