@@ -82,13 +82,20 @@ def timing(circuit: Circuit, known: Mapping[str, Potential], controller: Control
         "capacitance": (capacitance, "F"),
         "frequency": (frequency, "Hz"),
     }
-    found = estimate(growth, probes)
+    found = _passive(estimate(growth, probes), growth, resistor_net)
     if isinstance(found, Unsolved):
         return found
-    if found["resistance"].spread.nominal < 0:
-        return Unsolved(f"something else feeds {resistor_net}", tuple(growth.parts), (resistor_net,))
     reach = settable(growth, probes, "frequency")
     return Timing(found["resistance"], found["capacitance"], found["frequency"], trimmers(growth), reach)
+
+
+def _passive(
+    found: dict[str, Estimate] | Unsolved, growth: Growth, net: str
+) -> dict[str, Estimate] | Unsolved:
+    """Return what was found, unless a source on the timing resistor's net makes it no resistance."""
+    if isinstance(found, Unsolved) or found["resistance"].spread.nominal >= 0:
+        return found
+    return Unsolved(f"something else feeds {net}", tuple(growth.parts), (net,))
 
 
 def _to_ground(circuit: Circuit, known: Mapping[str, Potential], net: str) -> list[Part]:
