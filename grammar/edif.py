@@ -1,7 +1,7 @@
 """Reads EDIF 2 0 0, netlist views and schematic views alike, at the level of a board.
 
-Levels and versions other than 2 0 0 with the plain keywords are refused. Sources: EDIF 2 0 0 as its grammar was
-published, and what schematic tools write in its name, which the fixtures of the tests show piece by piece.
+Other versions, and files that define keywords of their own, are refused. Sources: the grammar of EDIF 2 0 0 as
+it was published, and what schematic tools write in its name, which the tests show piece by piece.
 """
 
 from __future__ import annotations
@@ -56,7 +56,7 @@ def _title(edif: Edif) -> str:
 
 
 def _choose_top(edif: Edif, libraries: Libraries, places: Places, notes: NoteKeeper) -> Source:
-    """Return the cell that is the whole circuit: of the first design at hand, else the last one with contents."""
+    """Return the cell that is the whole circuit: of the first design, else the last one with contents."""
     found = [
         (design, source)
         for design in edif.designs

@@ -15,7 +15,7 @@ from typing import Any, cast
 from lark import Lark, Token, Transformer
 
 from .edif_forms import CellRef, Designator, Edif, Instance, JoinedRun, Net, PinNumber, Property
-from .edif_make import NAMED_FORMS, PLAIN_FORMS, edif, indexed
+from .edif_make import NAMED_FORMS, PLAIN_FORMS, edif
 from .edif_names import Name, identifier
 from .edif_runs import (
     read_instance,
@@ -26,6 +26,7 @@ from .edif_runs import (
     read_rename,
     read_view_ref,
 )
+from .edif_values import indexed
 
 _SHORT = 200  # characters
 _Items = list[Any]
@@ -36,7 +37,7 @@ def parse(text: str) -> Edif:
 
     Raises lark.UnexpectedInput where the text does not follow the grammar.
     """
-    return cast(Edif, cast(object, _parser().parse(text)))
+    return cast(Edif, cast(Any, _parser()).parse(text))  # lark says Tree, the transformer makes an Edif
 
 
 @cache

@@ -198,7 +198,8 @@ class ArrayEnd(End):
         """Share out the pieces over the members; a single one goes to all."""
         self._budget.spend(len(self.members), offset)
         if len(pieces) == 1:
-            return all([member.connect(port, index, pieces, offset) for member in self.members])
+            fits = [member.connect(port, index, pieces, offset) for member in self.members]
+            return all(fits)
         each, rest = divmod(len(pieces), len(self.members) or 1)
         shares = [pieces[i * each : (i + 1) * each] for i in range(len(self.members))]
         fits = [

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import re
+from typing import Any, cast
 
-from lark import UnexpectedCharacters, UnexpectedInput, UnexpectedToken
+from lark import Token, UnexpectedCharacters, UnexpectedInput, UnexpectedToken
 
 from .edif_forms import Edif
 from .edif_names import integer
@@ -73,7 +74,7 @@ def check_dialect(edif: Edif, places: Places) -> None:
 
 def explain(error: UnexpectedInput, text: str, places: Places) -> NetlistError:
     """Return the error of the parser in the words of the format."""
-    at_end = isinstance(error, UnexpectedToken) and error.token.type == "$END"
+    at_end = isinstance(error, UnexpectedToken) and cast(Token, cast(Any, error).token).type == "$END"
     offset = len(text) if at_end else error.pos_in_stream or 0
     forms = _open_forms(text, offset)
     if at_end:
@@ -96,8 +97,9 @@ def _cut_off(text: str, forms: list[int], places: Places) -> NetlistError:
             expected=f"{len(forms)} closing parentheses",
             remedy="the file is cut off or lacks a closing parenthesis: export it again",
         )
+    title = _title(text, suspect, places)
     return NetlistError(
-        f"the file ends inside {innermost}; by its indentation {_title(text, suspect, places)} is never closed",
+        f"the file ends inside {innermost}; by its indentation {title} is never closed",
         places.at(suspect),
         excerpt=places.line_at(suspect),
         expected=f"{len(forms)} more closing parentheses, the first where this form ends",
@@ -128,7 +130,7 @@ def _open_string(text: str, offset: int, forms: list[int], places: Places) -> Ne
 
 
 def _stray_quote(text: str, places: Places) -> str:
-    """Return where to look for the quote that turned strings inside out: the first string with a form in it."""
+    """Return where to look for the quote that turned strings inside out: where one runs over a form."""
     for string in _STRING.finditer(text):
         if _FORM_IN_STRING.search(string[0]):
             line = places.at(string.start()).line

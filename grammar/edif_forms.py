@@ -13,7 +13,7 @@ _Item = TypeVar("_Item")
 
 
 def merged(one: list[_Item], other: list[_Item]) -> list[_Item]:
-    """Return the items of both lists; the longer one is kept and grows, so that deep nesting costs no more."""
+    """Return the items of both lists; the longer one is kept and grows, so that deep nesting is cheap."""
     longer, shorter = (one, other) if len(one) >= len(other) else (other, one)
     longer += shorter
     return longer
@@ -34,10 +34,10 @@ class InstanceRun(NamedTuple):
 
 
 class Member(NamedTuple):
-    """A reference to a name, or to one member of the array of that name, counted from 0."""
+    """A reference to a name, or to one bit of the array of that name, counted from 0."""
 
     identifier: str
-    index: int | None
+    bit: int | None
     offset: int
 
 
@@ -155,6 +155,12 @@ class Port:
     members: list[Port] = field(default_factory=list["Port"])
 
 
+class PortGroup(NamedTuple):
+    """The ports in a bundle."""
+
+    ports: list[Port]
+
+
 @dataclass(slots=True)
 class Instance:
     """One use of a cell, and what is said of it."""
@@ -190,7 +196,7 @@ class Contents:
 
 @dataclass(slots=True)
 class View:
-    """One view of a cell: the ports outside and the contents inside; `kind` is NETLIST, SCHEMATIC or another."""
+    """One view of a cell: ports outside, contents inside. `kind` is NETLIST, SCHEMATIC or another."""
 
     name: Name
     kind: str = ""

@@ -7,7 +7,7 @@ from collections.abc import Iterable, Iterator, Mapping
 from decimal import Decimal
 from typing import NamedTuple
 
-from .edif_forms import Designator, Instance, InstanceRun, PinNumber, Property
+from .edif_forms import Instance, InstanceRun, PinNumber, Property
 from .edif_library import Source
 from .edif_names import quantity
 from .edif_ports import is_number

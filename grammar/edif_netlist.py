@@ -6,8 +6,8 @@ import re
 from collections.abc import Iterable
 
 from .edif_hierarchy import FlatCircuit
-from .edif_parts import Built, PartBuilder
 from .edif_notes import NoteKeeper
+from .edif_parts import Built, PartBuilder
 from .edif_places import Places
 from .edif_sections import merge_sections
 from .netlist import Net, Netlist, Place

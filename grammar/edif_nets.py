@@ -50,7 +50,7 @@ class NetPieces:
         return self._new(Label(True, depth, automatic, of_port, len(self._parent), path + name, offset))
 
     def shared(self, path: str, name: str, offset: int) -> int:
-        """Return the one piece that all power symbols of this name share; `path` is empty for the whole design."""
+        """Return the one piece that all symbols of this name share in the sheet at `path`, or in all ("")."""
         if (path, name) not in self._shared:
             label = Label(False, 0, False, False, len(self._parent), path + name, offset)
             self._shared[path, name] = self._new(label)

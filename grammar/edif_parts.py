@@ -96,7 +96,8 @@ class PartBuilder:
                 continue
             pins += [Pin(number, bit.display, net, self._places.at(at)) for net, at in nets.items()]
             if len(nets) > 1:
-                message = f"pin {number or bit.display} of {name} is on {len(nets)} nets: {' and '.join([*nets][:2])}"
+                several = " and ".join([*nets][:2])
+                message = f"pin {number or bit.display} of {name} is on {len(nets)} nets, {several}"
                 self._notes.add("pin-mismatch", message, pins[-1].place, name)
         return pins
 

@@ -15,10 +15,7 @@ from .edif_forms import (
     Designator,
     InstanceRun,
     JoinedRun,
-    Member,
     PinNumber,
-    PortList,
-    PortRef,
     Property,
 )
 from .edif_names import Name, decode, identifier

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
+
 from .edif_budget import Budget
 from .edif_ends import ArrayEnd, Connection, End, PartEnd, RipperEnd, SheetEnd
 from .edif_forms import Contents, GlobalRef, Joined, JoinedRun, Member, Net, PortList, PortRef
@@ -94,8 +95,8 @@ class Wiring:
             return
         first, *rest = reference.path
         end = self._ends.get(first.identifier)
-        if isinstance(end, ArrayEnd) and first.index is not None:
-            end = end.members[first.index] if 0 <= first.index < len(end.members) else None
+        if isinstance(end, ArrayEnd) and first.bit is not None:
+            end = end.members[first.bit] if 0 <= first.bit < len(end.members) else None
         if rest and isinstance(end, SheetEnd):
             end.deferred.append((PortRef(reference.port, rest), pieces))
         else:
@@ -109,7 +110,7 @@ class Wiring:
             return
         if len(pieces) > 1:
             self._budget.spend(len(pieces), port.offset)
-        if not end.connect(port.identifier, port.index, pieces, port.offset):
+        if not end.connect(port.identifier, port.bit, pieces, port.offset):
             of = f" of {instance}" if instance else ""
             message = f"the port {port.identifier}{of} is not defined, or is not as wide as its net"
             self._notes.add("pin-mismatch", message, port.offset, instance)
