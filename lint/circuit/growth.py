@@ -183,14 +183,18 @@ class Growth:
     def _output_control(self, controller: Controller, net: str) -> None:
         """Let the output-control pin load the net: its current is told at the reference, and follows it."""
         current = controller.profile.figure("output-control.current").spread()
-        potential = self.known.get(controller.net("reference") or "")
-        reference = (
-            potential.spread if potential else controller.profile.figure("reference.voltage").spread()
-        ).maximum
+        reference = self._highest_reference(controller)
         name = f"{controller.reference} {controller.pins['output control'].name} current"
         ends = (current.minimum / reference, current.nominal / reference, current.maximum / reference)
         value = self.add_parameter(Parameter(name, *ends))
         self.add(ControlledSource(name, net, GROUND, net, GROUND, value, "current"))
+
+    def _highest_reference(self, controller: Controller) -> float:
+        """Return the highest voltage of the reference: as the board has it, else as it is published."""
+        potential = self.known.get(controller.net("reference") or "")
+        if potential is not None and potential.origin == "reference":
+            return potential.spread.maximum
+        return controller.profile.figure("reference.voltage").spread().maximum
 
     def block(self, net: str, part: Part, reason: str) -> None:
         """Note that a part keeps a net's potential from being computed."""

@@ -42,6 +42,9 @@ _CRUMB = 1e-6
 # A result may leave the corners by this share of its size before it counts as not monotonic (rounding).
 _ROUNDING = 1e-9
 
+# A current of zero comes out of the solver as less than this.
+_ROUNDED_ZERO = 1e-15
+
 
 class Variation(Enum):
     """Why a parameter varies."""
@@ -313,7 +316,7 @@ def _analysis(
     """Return the spread, the statistical one, and whether the corners bound what lies between them."""
     low, high = float(np.min(corners)), float(np.max(corners))
     inside = np.append(star, nominal)
-    slack = _ROUNDING * max(abs(low), abs(high), abs(nominal), 1e-30)
+    slack = max(_ROUNDING * max(abs(low), abs(high), abs(nominal)), _ROUNDED_ZERO)
     finite = bool(np.isfinite([low, high, nominal]).all())
     monotonic = not finite or bool(np.all(inside >= low - slack) and np.all(inside <= high + slack))
     spread = Spread(min(low, nominal), nominal, max(high, nominal), unit)
