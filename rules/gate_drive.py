@@ -152,7 +152,7 @@ def turn_off(controller: Controller, design: Design) -> Iterable[Verdict]:
         found = solver.discharge(driven)
         if active:
             yield _about(driven, Outcome.PASS, f"{active} empties the gate of {one.reference}")
-        elif isinstance(found, Estimate) and not isinstance(timing, Unsolved):
+        elif isinstance(found, Estimate) and found.spread.nominal > 0 and not isinstance(timing, Unsolved):
             yield _emptied(controller, driven, found, timing.frequency.spread)
 
 
