@@ -69,6 +69,12 @@ class Circuit:
         """Return the nets that are ground by their name."""
         return frozenset(name for name in self.netlist.nets if _GROUND.fullmatch(name))
 
+    @cached_property
+    def coupled(self) -> frozenset[str]:
+        """Return the inductors that `K` lines couple, casefolded: they are windings of a transformer."""
+        lines = (part.attributes.get("couples", "") for part in self.parts.values())
+        return frozenset(name for line in lines for name in line.casefold().split())
+
     def connections(self, net: str) -> Iterator[Connection]:
         """Yield every pin on a net, in the order of the file."""
         for reference, index in self.netlist.nets[net].pins:

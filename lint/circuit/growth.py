@@ -17,6 +17,7 @@ import numpy as np
 
 from ...grammar.netlist import Part, Pin
 from ..quantity import Spread, engineering, percent
+from .alternating import fed_by
 from .controllers import Controller, ControllerPin
 from .graph import Circuit, Connection
 from .parts import defaults
@@ -323,11 +324,26 @@ def _diode(growth: Growth, part: Part, net: str) -> None:
         return
     anode, cathode = diode_nets(part)
     diode = Diode(part.reference, anode, cathode)
-    if diode not in growth.diodes:
+    if (reason := _untold(growth, part)) != "":
+        growth.block(net, part, reason)
+    elif diode not in growth.diodes:
         growth.diodes.append(diode)
         growth.use(part)
         growth.follow(part)
 
+
+def _untold(growth: Growth, part: Part) -> str:
+    """Return why a diode cannot be solved for, empty where it can."""
+    source = fed_by(growth.circuit, growth.known, growth.controllers, part)
+    if source:
+        return f"{part.reference} rectifies what {source} couples in"
+    if _ZENER_REFERENCE.match(part.reference.rpartition("/")[2]) and zener_voltage(part) is None:
+        return f"{part.reference} is a zener by its name, and nothing tells its voltage"
+    return ""
+
+
+# Reference designators that say zener (common practice, no source).
+_ZENER_REFERENCE = re.compile(r"(?:ZD|DZ|VZ|Z)\d", re.IGNORECASE)
 
 _VOLTS = r"(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V?|V)?"
 
