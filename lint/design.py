@@ -6,7 +6,7 @@ kept, so that ten rules may ask the same without solving ten times.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from difflib import get_close_matches
 from typing import TypeVar, cast
@@ -243,7 +243,8 @@ class Design:
 
         def read() -> Stresses:
             converters = [Operated(one, self._in_service(one)) for one in self.controllers]
-            return stresses(self.circuit, envelope(self.known, converters, regimes), self.controllers)
+            known = envelope(self.known, converters, regimes)
+            return stresses(self.circuit, known, self.controllers, self._conducting())
 
         return self._keep("stresses", ", ".join(regimes), read)
 
@@ -330,6 +331,13 @@ class Design:
 
     def _operation(self, controller: Controller) -> Operation:
         return self._keep("operation", controller.reference, lambda: self._operated(controller))
+
+    def _conducting(self) -> Iterator[Growth]:
+        """Yield the networks round the controllers' outputs while these conduct."""
+        for controller in self.controllers:
+            drive = self.output_drive(controller)
+            networks = (drive.conducting(output) for output in drive.drive.outputs if output.live)
+            yield from (network for network in networks if isinstance(network, Growth))
 
     def _in_service(self, controller: Controller) -> Operation:
         """Return the operation with a trimmed output set to what the brief wants of it."""

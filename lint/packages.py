@@ -11,6 +11,9 @@ from importlib.resources import files
 # A code of four digits that is no piece of a longer number.
 _CODE = re.compile(r"(?<![0-9])[0-9]{4}(?![0-9])")
 
+# Smaller ones are chosen for want of room, and by their name (common practice, no source).
+_SMALLEST_USUAL = "0402"
+
 SOURCE = "thick-film chip resistors of this case, common makers' data"
 
 
@@ -36,9 +39,9 @@ def package_of(text: str) -> Package | None:
     return None
 
 
-def smallest() -> Package:
-    """Return the smallest case of the table: what it stands, every resistor stands."""
-    return next(iter(_packages().values()))
+def smallest_usual() -> Package:
+    """Return the smallest case that is fitted without being asked for: what it stands, a resistor stands."""
+    return _packages()[_SMALLEST_USUAL]
 
 
 @cache

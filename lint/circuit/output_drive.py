@@ -49,6 +49,10 @@ class OutputDrive:
         found = estimate(growth, {"current": (lambda s: s.current(source), "A")})
         return found if isinstance(found, Unsolved) else found["current"]
 
+    def conducting(self, output: OutputTransistor) -> Growth | Unsolved:
+        """Return the network round an output that conducts, or why it cannot be solved."""
+        return self._stranger(output) or self._conducting(output)[0]
+
     def control(self, output: OutputTransistor, driven: Driven, *, conducting: bool) -> Estimate | Unsolved:
         """Return by how much (V) the control terminal of a driven transistor stands above its common one."""
         opaque = self._stranger(output) or self._inverter(driven)

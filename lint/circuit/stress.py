@@ -38,11 +38,13 @@ class Stress:
     voltage: of its first net over its second (V)
     power:   in a resistor (W); in a trimmer, what its whole track would take at the greatest current that
              any piece of it carries, for a track stands no more current in a piece than in the whole
+    pulsed:  it stands this only while an output of the controller conducts
     """
 
     part: Part
     voltage: Estimate
     power: Estimate | None = None
+    pulsed: bool = False
 
 
 @dataclass(slots=True)
@@ -53,12 +55,22 @@ class Stresses:
     unsolved: dict[str, Unsolved] = field(default_factory=dict[str, Unsolved])
 
 
-def stresses(circuit: Circuit, known: Mapping[str, Potential], controllers: Sequence[Controller]) -> Stresses:
+def stresses(
+    circuit: Circuit,
+    known: Mapping[str, Potential],
+    controllers: Sequence[Controller],
+    conducting: Iterable[Growth] = (),
+) -> Stresses:
     """Return what the parts round the controllers and between nets of known potential stand.
 
-    known: potentials with the ranges over which the converter moves them
+    known:      potentials with the ranges over which the converter moves them
+    conducting: the networks round the controllers' outputs while these conduct
     """
-    return _StressReader(circuit, known, controllers).read()
+    reader = _StressReader(circuit, known, controllers)
+    found = reader.read()
+    for growth in conducting:
+        reader.read_pulsed(growth)
+    return Stresses(dict(sorted(found.of.items(), key=lambda item: item[1].part.place)), found.unsolved)
 
 
 @dataclass(slots=True)
@@ -118,16 +130,12 @@ class _StressReader:
         """Solve a network for the voltage of its nets, and for what its resistors and capacitors stand."""
         network = growth.network()
         solved = (set(network.nets()) | growth.potentials.keys()) - network.floating()
-        probes: dict[str, tuple[Probe, str]] = {}
+        probes = _resistor_probes(growth, solved)
         for net in self._own_nets(growth):
             if net in solved:
                 probes[f"at {net}"] = (_potential(net), "V")
             else:
                 self._voltages[net] = Unsolved(f"net {net} has no direct-current path", nets=(net,))
-        for element in growth.elements.values():
-            if isinstance(element, Resistor) and solved.issuperset((element.a, element.b)):
-                probes[f"across {element.name}"] = (_across(element.a, element.b), "V")
-                probes[f"through {element.name}"] = (_through(element), "A")
         for part in self._parts_on(self._own_nets(growth)):
             if self._is_capacitor(part) and solved.issuperset(_nets(part)):
                 probes[f"across {part.reference}"] = (_across(*_nets(part)), "V")
@@ -137,6 +145,26 @@ class _StressReader:
             return
         self._voltages |= {net: answer[f"at {net}"] for net in self._own_nets(growth) if net in solved}
         self._keep(growth, answer)
+
+    def read_pulsed(self, growth: Growth) -> None:
+        """Add the resistors that carry current while an output conducts; a bound, for the mean is less."""
+        solved = set(growth.network().nets()) - growth.network().floating()
+        answer = estimate(growth, _resistor_probes(growth, solved))
+        if isinstance(answer, Unsolved):
+            return
+        for reference in growth.parts:
+            before = self._found.of.get(reference)
+            if f"through {reference}" not in answer or (before is not None and not before.pulsed):
+                continue
+            voltage, current = answer[f"across {reference}"], answer[f"through {reference}"]
+            power = _product(voltage, current)
+            # One without direct current carries the charge of a gate: its heat is not told by this.
+            worse = (
+                before is None or before.power is None or power.spread.maximum > before.power.spread.maximum
+            )
+            if power.spread.maximum > 0 and worse:
+                self._found.of[reference] = Stress(self.circuit.parts[reference], voltage, power, pulsed=True)
+                self._found.unsolved.pop(reference, None)
 
     def _own_nets(self, growth: Growth) -> list[str]:
         return [net for net in growth.nets if net not in self.known]
@@ -218,6 +246,16 @@ class _StressReader:
 def _nets(part: Part) -> tuple[str, str]:
     first, second = part.pins
     return first.net, second.net
+
+
+def _resistor_probes(growth: Growth, solved: set[str]) -> dict[str, tuple[Probe, str]]:
+    """Return the probes for voltage and current of the resistors that stand between solved nets."""
+    probes: dict[str, tuple[Probe, str]] = {}
+    for element in growth.elements.values():
+        if isinstance(element, Resistor) and solved.issuperset((element.a, element.b)):
+            probes[f"across {element.name}"] = (_across(element.a, element.b), "V")
+            probes[f"through {element.name}"] = (_through(element), "A")
+    return probes
 
 
 def _potential(net: str) -> Probe:
