@@ -1,7 +1,7 @@
 """Reads EDIF 2 0 0, netlist views and schematic views alike, at the level of a board.
 
-Other versions, and files that define keywords of their own, are refused. Sources: the grammar of EDIF 2 0 0 as
-it was published, and what schematic tools write in its name, which the tests show piece by piece.
+Other versions, and files that define keywords of their own, are refused. Sources: the grammar of EDIF 2 0 0
+as it was published, and what schematic tools write in its name, which the tests show piece by piece.
 """
 
 from __future__ import annotations
@@ -20,6 +20,8 @@ from .edif_places import Places
 from .errors import NetlistError
 from .netlist import Netlist
 
+_PADDING = " \t\r\n\x1a\0"  # old systems mark the end of a text, or fill up its last block
+
 
 def read_edif(text: str, file: str) -> Netlist:
     """Return the netlist that an EDIF text describes.
@@ -29,6 +31,7 @@ def read_edif(text: str, file: str) -> Netlist:
 
     Raises NetlistError where the text is no EDIF 2 0 0, is damaged, or grows beyond all bounds.
     """
+    text = text.rstrip(_PADDING)
     places = Places(text, file)
     check_beginning(text, places)
     try:

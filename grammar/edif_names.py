@@ -85,7 +85,7 @@ def quantity(number: Decimal, unit: str) -> str:
     """Return a number of EDIF as text in the manner of a value, such as `4700 ohm` or `100e-12 F`."""
     number = number.normalize()
     plain = number.adjusted() in _PLAIN_EXPONENTS or not number
-    text = f"{number:f}" if plain else number.to_eng_string().replace("E", "e")
+    text = f"{number:f}" if plain else number.to_eng_string().replace("E+", "e").replace("E", "e")
     symbol = _UNIT_SYMBOLS.get(unit.upper(), "")
     return f"{text} {symbol}" if symbol else text
 

@@ -5,7 +5,6 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
-
 from pwmlint.grammar.edif import read_edif
 from pwmlint.grammar.netlist import Netlist, Part, Place
 

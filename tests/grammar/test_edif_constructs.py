@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 import pytest
-
 from pwmlint.grammar.edif import read_edif
 from pwmlint.grammar.netlist import Netlist, Part
 
@@ -102,8 +101,8 @@ def test_names_that_equal_keywords() -> None:
         f"(instance net {R}) (instance joined {R}) (instance (rename e portRef) {R})".replace(
             "(rename e portRef)", '(rename e "instance")'
         )
-        + "(net string (joined (portRef &1 (instanceRef net)) (portRef &1 (instanceRef joined)) (portRef &2 (instanceRef e))))"
-        + '(net (rename and "AND")(joined (portRef &2 (instanceRef net))))'
+        + "(net string (joined (portRef &1 (instanceRef net)) (portRef &1 (instanceRef joined)) "
+        "(portRef &2 (instanceRef e))))" + '(net (rename and "AND")(joined (portRef &2 (instanceRef net))))'
     )
     assert pins(netlist) == {"string": ["net.1", "joined.1", "instance.2"], "AND": ["net.2"]}
 
@@ -175,7 +174,8 @@ def test_backslashes() -> None:
 @construct("A2 string broken at column 80")
 def test_broken_strings() -> None:
     netlist = read(
-        f'(instance X1 {R} (designator "C8\n0") (property VALUE (string "10\n0n"))) (net (rename N "+\n5V") (joined))'
+        f'(instance X1 {R} (designator "C8\n0") (property VALUE (string "10\n0n"))) (net '
+        '(rename N "+\n5V") (joined))'
     )
     assert only(netlist.parts.values()).reference == "C80"
     assert netlist.parts["C80"].value == "100n"
@@ -213,7 +213,8 @@ def test_unknown_forms() -> None:
     deep = deep.replace("((", "(a (").replace("((", "(b (")
     netlist = read(
         f"(figure (dot (pt 1 2))) (instance R1 (userData u {deep}) {R} (timing (derivation MEASURED)) {deep})"
-        f"{deep} (net A (criticality 3) (userData (net B)) (joined (foo (portRef x)) (portRef &1 (bar 1) (instanceRef R1 (baz)))) (netDelay))",
+        f"{deep} (net A (criticality 3) (userData (net B)) (joined (foo (portRef x)) (portRef &1 "
+        "(bar 1) (instanceRef R1 (baz)))) (netDelay))",
         head="(status (written (timeStamp 0 0 0 0 0 0))) (userData tool (weights 1 2 3))",
     )
     assert pins(netlist) == {"A": ["R1.1"]}
@@ -222,7 +223,8 @@ def test_unknown_forms() -> None:
 @construct("A3 forms out of their place are left out")
 def test_forms_out_of_place() -> None:
     netlist = read(
-        f'(property P (string "x")) (instance R1 {R} (port X)) (net A (property Q (string "y")) (joined (portRef &1 (instanceRef R1))))'
+        f'(property P (string "x")) (instance R1 {R} (port X)) (net A (property Q (string "y")) '
+        "(joined (portRef &1 (instanceRef R1))))"
     )
     assert pins(netlist) == {"A": ["R1.1"]}
 
@@ -285,7 +287,8 @@ def test_empty_design() -> None:
 @construct("A3 array of nets and member of a port")
 def test_member_of_a_port() -> None:
     netlist = read(
-        f"(instance U1 {DRIVER}) (net GATE (joined (portRef (member D 0) (instanceRef U1)) (portRef EN (instanceRef U1))))"
+        f"(instance U1 {DRIVER}) (net GATE (joined (portRef (member D 0) (instanceRef U1)) "
+        "(portRef EN (instanceRef U1))))"
     )
     assert netlist.parts["U1"].model == "Octal (driver)"
     assert pins(netlist) == {"GATE": ["U1.D(7)", "U1.EN"]}
@@ -294,7 +297,8 @@ def test_member_of_a_port() -> None:
 @construct("A3 net array on a port array, bit by bit")
 def test_array_on_array() -> None:
     netlist = read(
-        f'(instance U1 {DRIVER}) (instance U2 {DRIVER}) (net (array (rename BUS (stringDisplay "BUS[0..7]" (display X))) 8)'
+        f"(instance U1 {DRIVER}) (instance U2 {DRIVER}) (net (array (rename BUS "
+        '(stringDisplay "BUS[0..7]" (display X))) 8)'
         "(joined (portRef D (instanceRef U1)) (portRef D (instanceRef U2))))"
     )
     assert pins(netlist)["BUS[0]"] == ["U1.D(7)", "U2.D(7)"]
@@ -305,7 +309,8 @@ def test_array_on_array() -> None:
 def test_array_of_instances() -> None:
     netlist = read(
         f"(instance (array R 2) {R}) (net A (joined (portRef &1 (instanceRef (member R 1)))))"
-        "(net B (joined (portRef &2 (instanceRef R)))) (net (array C 2) (joined (portRef &1 (instanceRef R))))"
+        "(net B (joined (portRef &2 (instanceRef R)))) (net (array C 2) (joined (portRef &1 "
+        "(instanceRef R))))"
     )
     assert list(netlist.parts) == ["R[0]", "R[1]"]
     assert pins(netlist)["B"] == ["R[0].2", "R[1].2"]
@@ -316,7 +321,8 @@ def test_array_of_instances() -> None:
 @construct("A3 port bundle")
 def test_port_bundle() -> None:
     cell = """(cell BUF (cellType GENERIC) (view V (viewType NETLIST) (interface
-      (portBundle IO (listOfPorts (port A (designator "1")) (port B (designator "2")))) (port C (designator "3")))))"""
+      (portBundle IO (listOfPorts (port A (designator "1")) (port B (designator "2"))))
+       (port C (designator "3")))))"""
     netlist = read(
         "(instance U1 (viewRef V (cellRef BUF)))"
         "(net N (joined (portRef A (portRef IO (instanceRef U1))) (portRef C (instanceRef U1))))"
@@ -350,7 +356,8 @@ def test_port_list() -> None:
 @construct("A3 globalPortRef")
 def test_global_port() -> None:
     inner = f"""(cell PSU (cellType GENERIC) (view V (viewType NETLIST) (interface)
-      (contents (instance R1 {R}) (net N00001 (joined (globalPortRef GND) (portRef &1 (instanceRef R1)))))))"""
+      (contents (instance R1 {R})
+       (net N00001 (joined (globalPortRef GND) (portRef &1 (instanceRef R1)))))))"""
     netlist = read(
         f"(instance psu (viewRef V (cellRef PSU))) (instance R2 {R})"
         "(net N00002 (joined (globalPortRef GND) (portRef &1 (instanceRef R2))))",
@@ -365,7 +372,8 @@ def test_nested_instance_ref() -> None:
         f"(cell PSU (cellType GENERIC) (view V (viewType NETLIST) (interface) (contents (instance R1 {R}))))"
     )
     netlist = read(
-        "(instance psu (viewRef V (cellRef PSU))) (net A (joined (portRef &2 (instanceRef R1 (instanceRef psu)))))",
+        "(instance psu (viewRef V (cellRef PSU))) (net A (joined (portRef &2 (instanceRef R1 "
+        "(instanceRef psu)))))",
         more=inner,
     )
     assert pins(netlist) == {"A": ["psu/R1.2"]}
@@ -382,7 +390,8 @@ def test_parameters() -> None:
     cell = """(cell RP (cellType GENERIC) (view V (viewType NETLIST)
       (interface (port &1) (port &2) (parameter VALUE (string "1k")) (parameter TOL (string "5%")))))"""
     netlist = read(
-        '(instance R1 (viewRef V (cellRef RP)) (parameterAssign VALUE (string "2k"))) (instance R2 (viewRef V (cellRef RP)))',
+        '(instance R1 (viewRef V (cellRef RP)) (parameterAssign VALUE (string "2k"))) (instance R2 '
+        "(viewRef V (cellRef RP)))",
         more=cell,
     )
     assert [part.value for part in netlist.parts.values()] == ["2k", "1k"]
@@ -420,7 +429,8 @@ def test_typed_values(value: str, text: str) -> None:
 @construct("A3 subnets and nets of one name are one net")
 def test_subnets() -> None:
     netlist = read(
-        f"(instance R1 {R}) (net A (joined (portRef &1 (instanceRef R1))) (net A1 (joined (portRef &2 (instanceRef R1)))))"
+        f"(instance R1 {R}) (net A (joined (portRef &1 (instanceRef R1))) (net A1 (joined (portRef &2 "
+        "(instanceRef R1)))))"
     )
     assert pins(netlist) == {"A": ["R1.1", "R1.2"]}
 
@@ -495,13 +505,15 @@ def test_reference_order() -> None:
 @construct("A5 two designators: the section letter goes when the second says so")
 def test_two_designators() -> None:
     netlist = read(
-        f'(instance I1 {AMP} (designator "U5C") (designator "U5")) (instance I2 {AMP} (designator "U6A") (designator "U6A"))'
+        f'(instance I1 {AMP} (designator "U5C") (designator "U5")) (instance I2 {AMP} '
+        '(designator "U6A") (designator "U6A"))'
         f'(instance I3 {R} (designator "R1") (designator "R2"))'
     )
     assert list(netlist.parts) == ["U5", "U6A", "R1"]
 
 
-DUAL = """(cell DUAL (cellType GENERIC) (view V (viewType SCHEMATIC) (interface (port IN) (port OUT) (port V))))"""
+DUAL = """(cell DUAL (cellType GENERIC) (view V (viewType SCHEMATIC) (interface (port IN) (port OUT) "
+    "(port V))))"""
 
 
 def half(name: str, designators: str, numbers: tuple[str, str, str]) -> str:
@@ -541,7 +553,8 @@ def test_sections_that_disagree() -> None:
 @construct("A5 a reference designator that is written twice")
 def test_duplicate_references() -> None:
     netlist = read(
-        f'(instance I1 {R} (designator "R1")) (instance I2 {R} (designator "R1")) (instance I3 {R} (designator "R1"))'
+        f'(instance I1 {R} (designator "R1")) (instance I2 {R} (designator "R1")) (instance I3 {R} '
+        '(designator "R1"))'
     )
     assert list(netlist.parts) == ["R1", "R1#2", "R1#3"]
     assert kinds(netlist) == ["duplicate-reference"] * 2
@@ -594,7 +607,8 @@ def test_hierarchy() -> None:
        (net MID (joined (portRef &2 (instanceRef R1)) (portRef &1 (instanceRef R2))))
        (net LAST (joined (portRef OUT) (portRef &2 (instanceRef R2)))))))"""
     psu = """(cell PSU (cellType GENERIC) (view V (viewType NETLIST) (interface (port A))
-      (contents (instance first (viewRef V (cellRef STAGE))) (instance I9 (viewRef V (cellRef STAGE)) (designator "second"))
+      (contents (instance first (viewRef V (cellRef STAGE)))
+       (instance I9 (viewRef V (cellRef STAGE)) (designator "second"))
        (net A (joined (portRef A) (portRef IN (instanceRef first))))
        (net LINK (joined (portRef OUT (instanceRef first)) (portRef IN (instanceRef I9)))))))"""
     netlist = read(
@@ -614,7 +628,8 @@ def test_hierarchy() -> None:
 @construct("A5 hierarchy: buses through sheets")
 def test_bus_through_a_sheet() -> None:
     inner = f"""(cell BLOCK (cellType GENERIC) (view V (viewType NETLIST) (interface (port (array Q 8)))
-      (contents (instance U1 {DRIVER}) (net (array W 8) (joined (portRef Q) (portRef D (instanceRef U1)))))))"""
+      (contents (instance U1 {DRIVER})
+       (net (array W 8) (joined (portRef Q) (portRef D (instanceRef U1)))))))"""
     netlist = read(
         f"(instance blk (viewRef V (cellRef BLOCK))) (instance R1 {R})"
         "(net TOP3 (joined (portRef (member Q 3) (instanceRef blk)) (portRef &1 (instanceRef R1))))",
@@ -638,8 +653,10 @@ def test_tie() -> None:
 @construct("A5 RIPPER cells join a net to the bit of its name")
 def test_ripper() -> None:
     netlist = read(
-        f"(instance U1 {DRIVER}) (instance R1 {R}) (instance X (viewRef V (cellRef RIP))) (instance Y (viewRef V (cellRef RIP)))"
-        '(net (array (rename D "D[7..0]") 8) (joined (portRef D (instanceRef U1)) (portRef BUS (instanceRef X)) (portRef BUS (instanceRef Y))))'
+        f"(instance U1 {DRIVER}) (instance R1 {R}) (instance X (viewRef V (cellRef RIP))) (instance Y "
+        "(viewRef V (cellRef RIP)))"
+        '(net (array (rename D "D[7..0]") 8) (joined (portRef D (instanceRef U1)) (portRef BUS '
+        "(instanceRef X)) (portRef BUS (instanceRef Y))))"
         "(net D5 (joined (portRef &1 (instanceRef R1)) (portRef BIT (instanceRef X))))"
         "(net ODD (joined (portRef &2 (instanceRef R1)) (portRef BIT (instanceRef Y))))",
         view="SCHEMATIC",
@@ -652,14 +669,16 @@ def test_ripper() -> None:
 @construct("A5 ports that a cell joins inside itself")
 def test_joined_inside() -> None:
     netlist = read(
-        "(instance W1 (viewRef V (cellRef LINK))) (net A (joined (portRef &1 (instanceRef W1)))) (net B (joined (portRef &3 (instanceRef W1))))"
+        "(instance W1 (viewRef V (cellRef LINK))) (net A (joined (portRef &1 (instanceRef W1)))) "
+        "(net B (joined (portRef &3 (instanceRef W1))))"
     )
     assert pins(netlist) == {"A": ["W1.1", "W1.3"]}
 
 
 SYMBOLS = """
 (cell GND_POWER (cellType GENERIC) (view V (viewType SCHEMATIC) (interface (port P))))
-(cell FLAG (cellType GENERIC) (view V (viewType SCHEMATIC) (interface (port P (property SupplyType (string "ground"))))))
+(cell FLAG (cellType GENERIC) (view V (viewType SCHEMATIC)
+ (interface (port P (property SupplyType (string "ground"))))))
 (cell OFFPAGE_L (cellType GENERIC) (view V (viewType SCHEMATIC) (interface (port P))))
 (cell DOT (cellType GENERIC) (view V (viewType SCHEMATIC) (interface (port P))))
 """
@@ -668,8 +687,10 @@ SYMBOLS = """
 @construct("A5 power symbols name their nets and are no parts")
 def test_power_symbols() -> None:
     netlist = read(
-        f'(instance I1 {R} (designator "R1")) (instance S1 (viewRef V (cellRef GND_POWER)) (property NAME (string "PGND")))'
-        '(instance S2 (viewRef V (cellRef FLAG)) (property NAME (string "PGND"))) (instance S3 (viewRef V (cellRef FLAG)))'
+        f'(instance I1 {R} (designator "R1")) (instance S1 (viewRef V (cellRef GND_POWER)) '
+        '(property NAME (string "PGND")))'
+        '(instance S2 (viewRef V (cellRef FLAG)) (property NAME (string "PGND"))) (instance S3 '
+        "(viewRef V (cellRef FLAG)))"
         "(net N00001 (joined (portRef &1 (instanceRef I1)) (portRef P (instanceRef S1))))"
         "(net LOCAL (joined (portRef &2 (instanceRef I1)) (portRef P (instanceRef S2))))"
         "(net N00003 (joined (portRef P (instanceRef S3))))",
@@ -683,12 +704,16 @@ def test_power_symbols() -> None:
 @construct("A5 off-page symbols and off-page connectors join the nets of one sheet")
 def test_off_page() -> None:
     netlist = read(
-        f'(instance I1 {R} (designator "R1")) (instance I2 {R} (designator "R2")) (offPageConnector (rename OP "LEVEL"))'
-        '(instance S1 (viewRef V (cellRef OFFPAGE_L)) (property NAME (string "SENSE"))) (instance S2 (viewRef V (cellRef OFFPAGE_L)) (property NAME (string "SENSE")))'
+        f'(instance I1 {R} (designator "R1")) (instance I2 {R} (designator "R2")) (offPageConnector '
+        '(rename OP "LEVEL"))'
+        '(instance S1 (viewRef V (cellRef OFFPAGE_L)) (property NAME (string "SENSE"))) (instance S2 '
+        '(viewRef V (cellRef OFFPAGE_L)) (property NAME (string "SENSE")))'
         "(instance S3 (viewRef V (cellRef OFFPAGE_L)))"
         "(net N00001 (joined (portRef &1 (instanceRef I1)) (portRef P (instanceRef S1))))"
-        "(net N00002 (joined (portRef &2 (instanceRef I1)) (portRef P (instanceRef S2)) (portRef P (instanceRef S3))))"
-        "(net N00003 (joined (portRef &1 (instanceRef I2)) (portRef OP))) (net N00004 (joined (portRef &2 (instanceRef I2)) (portRef OP)))",
+        "(net N00002 (joined (portRef &2 (instanceRef I1)) (portRef P (instanceRef S2)) (portRef P "
+        "(instanceRef S3))))"
+        "(net N00003 (joined (portRef &1 (instanceRef I2)) (portRef OP))) (net N00004 (joined "
+        "(portRef &2 (instanceRef I2)) (portRef OP)))",
         more=SYMBOLS,
         view="SCHEMATIC",
     )
@@ -698,9 +723,11 @@ def test_off_page() -> None:
 @construct("A5 instances inside nets are drawings")
 def test_junctions_inside_nets() -> None:
     netlist = read(
-        f'(instance I1 {R} (designator "R1")) (net A (joined (portRef &1 (instanceRef I1)) (portRef P (instanceRef J1)))'
+        f'(instance I1 {R} (designator "R1")) (net A (joined (portRef &1 (instanceRef I1)) (portRef P '
+        "(instanceRef J1)))"
         "(instance J1 (viewRef V (cellRef DOT))))"
-        '(net B (joined (portRef &2 (instanceRef I1)) (portRef P (instanceRef S1))) (instance S1 (viewRef V (cellRef GND_POWER)) (property VALUE (string "GND"))))',
+        "(net B (joined (portRef &2 (instanceRef I1)) (portRef P (instanceRef S1))) (instance S1 "
+        '(viewRef V (cellRef GND_POWER)) (property VALUE (string "GND"))))',
         more=SYMBOLS,
         view="SCHEMATIC",
     )
@@ -712,7 +739,8 @@ def test_junctions_inside_nets() -> None:
 @construct("A5 what has one pin and no designator among parts with one is a symbol")
 def test_single_pin_symbols() -> None:
     netlist = read(
-        f'(instance I1 {R} (designator "R1")) (instance D1 (viewRef V (cellRef DOT))) (instance TITLE (viewRef V (cellRef BLOCK)))'
+        f'(instance I1 {R} (designator "R1")) (instance D1 (viewRef V (cellRef DOT))) (instance TITLE '
+        "(viewRef V (cellRef BLOCK)))"
         "(net A (joined (portRef P (instanceRef D1)) (portRef &1 (instanceRef I1))))",
         more=SYMBOLS + "(cell BLOCK (cellType GENERIC) (view V (viewType GRAPHIC) (interface)))",
         view="SCHEMATIC",
@@ -724,7 +752,8 @@ def test_single_pin_symbols() -> None:
 def test_implicit_ports() -> None:
     port = '(port (rename GND "GND") (property ImplicitPortClass (string "power")))'
     inner = f"""(cell PSU (cellType GENERIC) (view V (viewType SCHEMATIC) (interface {port})
-      (contents (instance R1 {R} (designator "R1")) (net N00001 (joined (portRef GND) (portRef &1 (instanceRef R1)))))))"""
+      (contents (instance R1 {R} (designator "R1"))
+       (net N00001 (joined (portRef GND) (portRef &1 (instanceRef R1)))))))"""
     netlist = read(
         f'(instance psu (viewRef V (cellRef PSU))) (instance R2 {R} (designator "R2"))'
         "(net N00002 (joined (portRef GND) (portRef &1 (instanceRef R2))))",
@@ -803,6 +832,44 @@ def test_underscore_for_point() -> None:
 @construct("A5 text fields that hold name and value")
 def test_text_fields() -> None:
     netlist = read(
-        f'(instance R1 {R} (property Field2Value (string "TOL=1%")) (property Field3Value (string "a=b")) (property Power (string "Power=1W")))'
+        f'(instance R1 {R} (property Field2Value (string "TOL=1%")) (property Field3Value '
+        '(string "a=b")) (property Power (string "Power=1W")))'
     )
     assert netlist.parts["R1"].attributes == {"tolerance": "1%", "field3value": "a=b", "power": "1W"}
+
+
+@construct("A3 a port that the cell does not have")
+def test_port_that_is_not_there() -> None:
+    netlist = read(
+        f"(instance U1 {AMP}) (instance R1 {R})"
+        "(net (array N 2) (joined (portRef GONE (instanceRef U1)) (portRef &1 (instanceRef (member R1 0)))))"
+    )
+    assert pins(netlist) == {"N[0]": ["U1.GONE", "R1.1"]}
+    assert kinds(netlist) == ["pin-mismatch", "pin-mismatch"]
+
+
+@construct("A3 interface that joins ports of a bundle, a list or a member")
+@pytest.mark.parametrize(
+    "joined", ["(portList (portRef A) (portRef B))", "(portRef (member A 0)) (portRef B)"]
+)
+def test_joined_in_an_interface(joined: str) -> None:
+    cell = f"""(cell BAR (cellType GENERIC) (view V (viewType NETLIST)
+      (interface (port A) (port B) (port C) (joined {joined}))))"""
+    netlist = read(
+        "(instance W1 (viewRef V (cellRef BAR))) (net X (joined (portRef A (instanceRef W1))))"
+        "(net Y (joined (portRef B (instanceRef W1)))) (net Z (joined (portRef C (instanceRef W1))))",
+        more=cell,
+    )
+    assert pins(netlist) == {"X": ["W1.A", "W1.B"], "Z": ["W1.C"]}
+
+
+@construct("A5 sections of which the first leaves a shared pin open")
+def test_section_that_leaves_a_pin_open() -> None:
+    netlist = read(
+        half("I1", '(designator "U1A") (designator "U1")', ("3", "1", "8"))
+        + half("I2", '(designator "U1B") (designator "U1")', ("5", "7", "8"))
+        + "(net VCC (joined (portRef V (instanceRef I2))))",
+        more=DUAL,
+    )
+    assert pins(netlist) == {"VCC": ["U1.8"]}
+    assert kinds(netlist) == []
