@@ -18,6 +18,11 @@ ENTRY_POINT_GROUP = "pwmlint.rules"
 
 SECTIONS = ("What", "Why", "Formula", "Source", "Remedy")
 
+# Two netlists of a few lines each end a rule's docstring: one it speaks of, one it lets pass.
+EXAMPLES = ("Fails", "Passes")
+
+_HEADING = re.compile(rf"^({'|'.join((*SECTIONS, *EXAMPLES))}):", re.MULTILINE)
+
 ControllerQuestion: TypeAlias = Callable[[Controller, Design], Iterable[Verdict]]
 NetlistQuestion: TypeAlias = Callable[[Design], Iterable[Verdict]]
 
@@ -56,10 +61,8 @@ class Rule:
 
     @property
     def sections(self) -> dict[str, str]:
-        """Return the docstring's sections by name, in the order of `SECTIONS`."""
-        text = inspect.getdoc(self.function) or ""
-        heading = re.compile(rf"^({'|'.join(SECTIONS)}):", re.MULTILINE)
-        pieces = heading.split(text)[1:]
+        """Return the docstring's sections and examples by name, in the order in which they are written."""
+        pieces = _HEADING.split(inspect.getdoc(self.function) or "")[1:]
         return {name: inspect.cleandoc(body) for name, body in zip(pieces[::2], pieces[1::2], strict=True)}
 
 

@@ -38,6 +38,11 @@ def driven(controller: Controller, design: Design) -> Iterable[Verdict]:
         SLVS074 p.5 (input bias current of the dead-time control); common practice, no source (the rule).
     Remedy:
         Tie the pin to ground, or to a divider from the reference pin of a few kilo-ohms.
+    Fails:
+        C1 DTC 0 1u
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
     """
     net = controller.net("dead time")
     if net is None:
@@ -79,6 +84,13 @@ def voltage_range(controller: Controller, design: Design) -> Iterable[Verdict]:
         its minimum to 100 %).
     Remedy:
         Choose the divider, or a fixed resistor in series with the trimmer, so that the pin stays in range.
+    Fails:
+        R1 VCC DTC 1k
+        R2 DTC 0 1k
+        [rails.VCC] voltage = "12 V"
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
     """
     net = controller.net("dead time")
     if not net or not design.has_path(net):
@@ -146,6 +158,17 @@ def least_dead_time(controller: Controller, design: Design) -> Iterable[Verdict]
         SLVS074 p.1 and p.11 (3 % and 5 % at 0 V, 100 % at 3.3 V).
     Remedy:
         Raise the pin's voltage with a divider from the reference.
+    Fails:
+        R1 DTC 0 100
+        R2 RT 0 12k
+        C1 CT 0 1n
+        [controllers.U1] dead_time = "3 us .. 5 us"
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        R3 RT 0 22k
+        C1 CT 0 1n
+        [controllers.U1] dead_time = "2 us .. 6 us"
     """
     net = controller.net("dead time")
     voltage = design.voltage(net) if net and design.has_path(net) else None
@@ -238,6 +261,13 @@ def fed_from(controller: Controller, design: Design) -> Iterable[Verdict]:
         common practice, no source.
     Remedy:
         Take the top of the divider to the reference pin.
+    Fails:
+        R1 VCC DTC 47k
+        R2 DTC 0 1k
+        [rails.VCC] voltage = "12 V"
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
     """
     net = controller.net("dead time")
     voltage = design.voltage(net) if net and design.has_path(net) else None
@@ -283,6 +313,16 @@ def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
         volt-second balance of the inductor; SLVS074 p.11 (dead time over the pin's voltage).
     Remedy:
         Lower the voltage on the dead-time pin.
+    Fails:
+        R1 REF DTC 10k
+        R2 DTC 0 3.3k
+        R3 OUTCTRL 0 1
+        [controllers.U1] maximum_duty = "80 %"
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        R3 OUTCTRL 0 1
+        [controllers.U1] maximum_duty = "75 %"
     """
     net = controller.net("dead time")
     voltage = design.voltage(net) if net and design.has_path(net) else None
