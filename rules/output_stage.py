@@ -160,7 +160,8 @@ def voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     for outputs in _groups(_live(controller, design)):
         collector = outputs[0].collector
-        winding = _winding(design, collector)
+        # On the controller's own supply the collector of a follower switches nothing.
+        winding = _winding(design, collector) if collector != controller.net("supply") else ""
         if winding and not _clamped(design, collector):
             yield _unclamped(outputs, winding)
             continue

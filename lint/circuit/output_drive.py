@@ -170,6 +170,7 @@ class OutputDrive:
                         f"what {part.reference} ({kind}) draws from {net} is not known",
                         parts=(part.reference,),
                         nets=(net,),
+                        needs=(f"data sheet of {part.reference}: the current that it draws from {net}",),
                     )
         return None
 

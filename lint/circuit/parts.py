@@ -19,6 +19,7 @@ from ..quantity import Spread, percent
 from .conditions import Conditions
 
 _LETTERS = re.compile(r"[A-Za-z]+")
+_THERMISTOR = re.compile(r"NTC|PTC|THERM", re.IGNORECASE)
 
 # What the value of each kind measures, as `read_value` names it, and the unit it comes in.
 _QUANTITIES = {
@@ -235,7 +236,10 @@ def part_kind(part: Part, models: Mapping[str, str]) -> str:
     kind = part_kinds()["elements"].get(part.element, "")
     if not kind:
         letters = _LETTERS.match(part.reference.rpartition("/")[2])
-        kind = _by_prefix(letters.group().upper() if letters else "")
+        prefix = letters.group().upper() if letters else ""
+        kind = _by_prefix(prefix)
+        if prefix == "RT" and not _THERMISTOR.search(f"{part.model} {part.value}"):
+            kind = "resistor"  # the timing resistor's name in the data sheets, not the thermistor's letters
     if part.element == "J" and models.get(part.model.casefold(), "") in ("njf", "pjf"):
         return "transistor"
     if kind == "resistor" and pins == 3:

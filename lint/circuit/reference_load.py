@@ -62,7 +62,7 @@ def reference_load(
 
 def _bounded(growth: Growth, reference: Potential) -> dict[str, Potential]:
     """Return the nets that stopped the growth, each taken between ground and the reference."""
-    top = reference.spread.maximum
+    top = reference.spread.minimum  # never above the reference as it is: that would feed it
     return {
         blocked.net: Potential(
             blocked.net,
