@@ -160,7 +160,7 @@ class Design:
     def has_path(self, net: str) -> bool:
         """Tell whether a direct-current path joins a net to a known potential."""
         growth = Growth(self.circuit, self.known, self.controllers).grow(net)
-        return bool(growth.blocked or growth.valueless) or net not in growth.network().floating()
+        return bool(growth.blocked or growth.valueless) or growth.network().has_path(net)
 
     def reference_load(self, controller: Controller) -> ReferenceLoad | Unsolved:
         """Return the current out of a controller's reference pin, in all and by branch."""
@@ -307,7 +307,7 @@ class Design:
             assumptions = (potential.assumption,) if potential.assumption else ()
             return Estimate(potential.spread, potential.spread, nets=(net,), assumptions=assumptions)
         growth.grow(net)
-        if not (growth.blocked or growth.valueless) and net in growth.network().floating():
+        if not (growth.blocked or growth.valueless) and not growth.network().has_path(net):
             return Unsolved(f"net {net} has no direct-current path", nets=(net,))
         found = estimate(growth, {"voltage": (lambda s: s.voltage(net), "V")})
         return found if isinstance(found, Unsolved) else found["voltage"]

@@ -134,6 +134,13 @@ class Network:
 
     def floating(self) -> set[str]:
         """Return the nets that no conductive path joins to a known or free potential."""
+        return set(self.nets()) - self._reached()
+
+    def has_path(self, net: str) -> bool:
+        """Tell whether a conductive path joins a net, of this network or not, to a known or free potential."""
+        return net in self._reached()
+
+    def _reached(self) -> set[str]:
         neighbours: dict[str, set[str]] = {}
         for element in self.elements:
             conducts = isinstance(element, Resistor | VoltageSource) or (
@@ -149,7 +156,7 @@ class Network:
             if net not in reached:
                 reached.add(net)
                 waiting.extend(neighbours.get(net, ()))
-        return set(self.nets()) - reached
+        return reached
 
 
 def _terminals(element: Element) -> tuple[str, ...]:
