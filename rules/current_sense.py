@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 
+from ..lint.circuit.amplifiers import SenseResistor
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.loops import Trip
 from ..lint.circuit.power_stage import PowerStage
@@ -153,7 +154,7 @@ def pulse_by_pulse(controller: Controller, design: Design) -> Iterable[Verdict]:
 
     What:
         Finds a limit whose sense resistor carries the switch's pulsed current while an error amplifier
-        compares it.
+        compares it: the switch's own, or that of an input whose capacitor stands ahead of the resistor.
     Why:
         The amplifiers settle over many cycles, and the outputs are not latched within one: the output
         restarts as soon as the signal is gone. Such a limit follows an average, not the peak that
@@ -171,7 +172,7 @@ def pulse_by_pulse(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     if not stage.sensed:
         return
-    pulsed = stage.sensed == "switch"
+    pulsed = stage.sensed == "switch" or _chopped(design, stage, amplifier.sense)
     reference = amplifier.sense.part.reference
     yield Verdict(
         outcome=Outcome.REVIEW if pulsed else Outcome.PASS,
@@ -185,3 +186,13 @@ def pulse_by_pulse(controller: Controller, design: Design) -> Iterable[Verdict]:
         source="common practice, no source",
         remedy="sense the output current, or add a comparator with a latch" if pulsed else "",
     )
+
+
+def _chopped(design: Design, stage: PowerStage, sense: SenseResistor) -> bool:
+    """Tell whether a buck's input current is sensed behind the input capacitor, where it comes in pulses."""
+    if stage.sensed != "input" or stage.topology != "buck":
+        return False
+    diodes = {pin.net for name in stage.rectifiers for pin in design.part(name).pins}
+    behind = [net for net in (sense.near, sense.far) if net in diodes and net != stage.input]
+    between = [part for net in behind for part in design.circuit.between(stage.input, net)]
+    return bool(behind) and not any(design.circuit.kind(part) == "capacitor" for part in between)
