@@ -6,6 +6,7 @@ from collections.abc import Iterable, Sequence
 
 from .circuit.controllers import Controller, ControllerPin
 from .circuit.loops import Regulation
+from .circuit.power_stage import NotRecognised
 from .design import Design
 from .estimate import Unsolved
 from .verdict import ControllerReview, Level, Outcome, PinRow, Verdict
@@ -27,6 +28,7 @@ def controller_review(
     controller: Controller, design: Design, verdicts: Sequence[Verdict]
 ) -> ControllerReview:
     """Return the head of a controller's report: who it is, and its pins in the order of the package."""
+    stage, evidence = _power_stage(controller, design)
     return ControllerReview(
         part=controller.reference,
         family=controller.profile.family,
@@ -34,7 +36,19 @@ def controller_review(
         place=controller.part.place,
         pins=tuple(_rows(controller, design, verdicts)),
         assumptions=controller.assumptions,
+        power_stage=stage,
+        evidence=evidence,
     )
+
+
+def _power_stage(controller: Controller, design: Design) -> tuple[str, tuple[str, ...]]:
+    """Return the power stage in a few words and what says so, or nothing and the reason."""
+    stage = design.power_stage(controller)
+    if isinstance(stage, NotRecognised):
+        return "", (stage.reason,)
+    ends = f" from {stage.input}" if stage.input else ""
+    ends += f" to {stage.output}" if stage.output else ""
+    return f"{stage.topology}{ends}", stage.evidence
 
 
 def _rows(controller: Controller, design: Design, verdicts: Sequence[Verdict]) -> Iterable[PinRow]:

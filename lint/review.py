@@ -64,7 +64,17 @@ def review_netlist(
         parts_list=parts_list.file if parts_list is not None else None,
         controllers=tuple(controller_review(one, design, verdicts) for one in design.controllers),
         verdicts=verdicts,
+        cautions=_cautions(verdicts),
     )
+
+
+# The rule whose verdicts are no findings but what must be said once of the whole design.
+_CAUTIONING = "safety.scope"
+
+
+def _cautions(verdicts: Iterable[Verdict]) -> tuple[str, ...]:
+    """Return what the report must caution of, each once."""
+    return tuple(dict.fromkeys(v.message for v in verdicts if v.rule == _CAUTIONING))
 
 
 def _read(netlist: str | Path, allow_include: Sequence[Path]) -> Netlist:
@@ -107,7 +117,7 @@ def _ask_controller(one: Rule, controller: Controller, design: Design) -> Iterab
 
 def _complete(verdict: Verdict, one: Rule, design: Design, controller: Controller | None) -> Verdict:
     """Fill in what the rule leaves to the engine: its own name, the subject, the places."""
-    subject = verdict.subject or (controller.reference if controller is not None else design.netlist.file)
+    subject = verdict.subject or (controller.reference if controller is not None else "")
     level = (verdict.level or one.level) if verdict.outcome is Outcome.FAIL else None
     return replace(
         verdict,

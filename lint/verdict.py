@@ -136,7 +136,11 @@ class PinRow:
 
 @dataclass(frozen=True, slots=True)
 class ControllerReview:
-    """One controller: reference designator, generic family number, the model name as written, its pins."""
+    """One controller: reference designator, generic family number, the model name as written, its pins.
+
+    power_stage: what its outputs drive ("buck from VBAT to VOUT"), empty where that was not recognised
+    evidence:    what the recognition rests on, or why there is none, each a sentence
+    """
 
     part: str
     family: str
@@ -144,6 +148,8 @@ class ControllerReview:
     place: Place
     pins: tuple[PinRow, ...]
     assumptions: tuple[str, ...] = ()
+    power_stage: str = ""
+    evidence: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

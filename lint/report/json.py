@@ -63,6 +63,8 @@ def _controller(controller: ControllerReview) -> dict[str, Any]:
             for pin in controller.pins
         ],
         "assumptions": list(controller.assumptions),
+        "power_stage": controller.power_stage,
+        "evidence": list(controller.evidence),
     }
 
 

@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import os
 from collections.abc import Iterator, Sequence
-from dataclasses import replace
 from io import StringIO
 from typing import TextIO
 
@@ -56,7 +55,6 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
     for number, review in enumerate(reviews):
         if number:
             page.blank()
-        review = _named_briefly(review)
         _title(page, review)
         for controller, verdicts in _sections(review):
             if controller is not None:
@@ -74,15 +72,6 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
         passed = sum(gate.passes(review) for review in reviews)
         told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
         _answer(page, told, gate, passed == len(reviews))
-
-
-def _named_briefly(review: Review) -> Review:
-    """Return the review without the netlist's path as a subject: it stands at the top of the report."""
-    verdicts = (
-        replace(verdict, subject="") if verdict.subject == review.netlist else verdict
-        for verdict in review.verdicts
-    )
-    return replace(review, verdicts=tuple(verdicts))
 
 
 def _title(page: Page, review: Review) -> None:
@@ -138,10 +127,21 @@ def _controller(page: Page, controller: ControllerReview) -> None:
     page.blank()
     _pin_table(page, controller.pins)
     page.blank()
+    _power_stage(page, controller)
     for sentence in controller.assumptions:
         page.paragraph(sentence, _INDENT, ("  assumed", "dim"))
     if controller.assumptions:
         page.blank()
+
+
+def _power_stage(page: Page, controller: ControllerReview) -> None:
+    """Print what the outputs drive, and what says so."""
+    if not controller.power_stage and not controller.evidence:
+        return
+    page.paragraph(controller.power_stage or "not recognised", _INDENT, ("  drives", "dim"))
+    for sentence in controller.evidence:
+        page.paragraph(sentence, _INDENT, style="dim")
+    page.blank()
 
 
 def _pin_table(page: Page, pins: Sequence[PinRow]) -> None:

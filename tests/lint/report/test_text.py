@@ -232,7 +232,6 @@ def test_crumbs_and_absurd_margins_are_left_out(sound: Review, printed: Printed)
         nets=("VOUT",),
         topic="supply",
         rule="supply.range",
-        subject=sound.netlist,
     )
     report = printed(replace(sound, verdicts=(verdict,)))
     assert "spread   97 % from R1, 3 % from R2, less from 2 more\n" in report
@@ -287,3 +286,15 @@ def test_write_suits_the_stream(faulty: Review, monkeypatch: pytest.MonkeyPatch)
         writer("text")([faulty], stream, Gate())
         stream.flush()
         assert raw.getvalue().decode(encoding) == (SNAPSHOTS / f"{expected}.txt").read_text("utf-8")
+
+def test_the_recognised_power_stage_stands_below_the_pins(sound: Review, printed: Printed) -> None:
+    controller = replace(
+        sound.controllers[0],
+        power_stage="buck from VBAT to VOUT",
+        evidence=("M1 (P-channel MOSFET) switches SW to VBAT",),
+    )
+    report = printed(replace(sound, controllers=(controller,)))
+    assert "  drives   buck from VBAT to VOUT\n           M1 (P-channel MOSFET) switches SW to VBAT\n" in report
+    unknown = replace(controller, power_stage="", evidence=("the outputs drive nothing",))
+    report = printed(replace(sound, controllers=(unknown,)))
+    assert "  drives   not recognised\n           the outputs drive nothing\n" in report
