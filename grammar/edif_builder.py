@@ -29,6 +29,7 @@ from .edif_runs import (
 from .edif_values import indexed
 
 _SHORT = 200  # characters
+_BLANKS = " \t\n\r\f\v"  # those of ASCII, as the grammar knows them
 _Items = list[Any]
 
 
@@ -68,7 +69,7 @@ class FormBuilder(Transformer[Token, Edif]):
 
     def ATOM(self, token: Token) -> Name:
         """A word: an identifier, an integer or a keyword that is used as a name."""
-        word = identifier(token.value.rstrip())
+        word = identifier(token.value.rstrip(_BLANKS))
         return Name(word, word, _start(token))
 
     def STRING(self, token: Token) -> str:

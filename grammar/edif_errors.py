@@ -12,7 +12,7 @@ from .edif_names import integer
 from .edif_places import Places
 from .errors import NetlistError
 
-_BEGINNING = re.compile(r"\s*\(\s*edif(?![^\s()\"])", re.IGNORECASE)
+_BEGINNING = re.compile(r"\s*\(\s*edif(?![^\s()\"])", re.IGNORECASE | re.ASCII)
 _FORM_START = re.compile(r'\(\s*([^\s()"]*)(?:\s*\(\s*rename)?\s*([^\s()"]*)', re.IGNORECASE)
 _PARENTHESIS = re.compile(r'"[^"]*"|([()])')
 _STRING = re.compile(r'"[^"]*"')

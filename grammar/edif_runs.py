@@ -34,7 +34,7 @@ def _list(depth: int) -> str:
 _LIST = _list(_DEEPEST)
 _WORD = r'([^\s()"]++)\s*+'
 _RENAME = rf'\(\s*+rename\s++{_WORD}"([^"]*+)"\s*+\)\s*+'
-_NAMED = rf"\(\s*+name\s++{_WORD}(?:{_LIST})*+\)\s*+"
+_NAMED = rf'\(\s*+name\s++{_WORD}(?:[^()"]++|"[^"]*+"|{_LIST})*+\)\s*+'
 _DISPLAYED = r'(?:\(\s*+stringdisplay\s*+)?+"([^"]*+)"'
 _LIBRARY_REF = rf"\(\s*+libraryref\s++{_WORD}\)\s*+"
 _CELL_REF = rf"\(\s*+cellref\s++{_WORD}(?:{_LIBRARY_REF})?+\)\s*+"
