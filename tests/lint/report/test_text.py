@@ -287,14 +287,14 @@ def test_write_suits_the_stream(faulty: Review, monkeypatch: pytest.MonkeyPatch)
         stream.flush()
         assert raw.getvalue().decode(encoding) == (SNAPSHOTS / f"{expected}.txt").read_text("utf-8")
 
-def test_the_recognised_power_stage_stands_below_the_pins(sound: Review, printed: Printed) -> None:
+def test_the_recognised_power_stage_stands_below_the_pins(faulty: Review, printed: Printed) -> None:
     controller = replace(
-        sound.controllers[0],
+        faulty.controllers[0],
         power_stage="buck from VBAT to VOUT",
         evidence=("M1 (P-channel MOSFET) switches SW to VBAT",),
     )
-    report = printed(replace(sound, controllers=(controller,)))
+    report = printed(replace(faulty, controllers=(controller,)))
     assert "  drives   buck from VBAT to VOUT\n           M1 (P-channel MOSFET) switches SW to VBAT\n" in report
     unknown = replace(controller, power_stage="", evidence=("the outputs drive nothing",))
-    report = printed(replace(sound, controllers=(unknown,)))
+    report = printed(replace(faulty, controllers=(unknown,)))
     assert "  drives   not recognised\n           the outputs drive nothing\n" in report
