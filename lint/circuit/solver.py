@@ -137,7 +137,7 @@ class Network:
         return set(self.nets()) - self._reached()
 
     def has_path(self, net: str) -> bool:
-        """Tell whether a conductive path joins a net, of this network or not, to one that is known or free."""
+        """Tell whether a conductive path joins a net, of this network or not, to a known or free one."""
         return net in self._reached()
 
     def _reached(self) -> set[str]:
