@@ -87,6 +87,11 @@ class Design:
         """Return what the brief says of a net."""
         return self.brief.rails.get(net) if self.brief is not None else None
 
+    def declared(self, *circuits: str) -> tuple[str, ...]:
+        """Return the nets that the brief puts into one of `circuits`, such as "mains"."""
+        rails = self.brief.rails.values() if self.brief is not None else ()
+        return tuple(rail.net for rail in rails if rail.circuit in circuits)
+
     def missing(self, controller: Controller, need: str) -> str:
         """Return the line of the brief that would tell `need` of a controller, empty where it is told.
 
@@ -110,6 +115,15 @@ class Design:
     def voltage(self, net: str) -> Estimate | Unsolved:
         """Return the direct voltage of a net over ground, loops standing still."""
         return self._keep("voltage", net, lambda: self._voltage(net))
+
+    def switches(self, net: str) -> tuple[str, ...]:
+        """Return the transistors and switches on a net's network, which `voltage` takes as off."""
+        return tuple(Growth(self.circuit, self.known, self.controllers).grow(net).switches)
+
+    def voltage_with(self, conducting: str, net: str) -> Estimate | Unsolved:
+        """Return the direct voltage of a net while one transistor or switch on its network is on."""
+        growth = Growth(self.circuit, self.known, self.controllers, conducting=frozenset({conducting}))
+        return self._keep(f"voltage with {conducting}", net, lambda: self._solved_voltage(growth, net))
 
     def voltage_in(self, regime: Regime, controller: Controller, net: str) -> Estimate | Unsolved:
         """Return the direct voltage of a net over ground while a controller's converter is in a regime."""

@@ -101,7 +101,7 @@ def voltage_range(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     profile = controller.profile
     name = controller.pins["dead time"].name
-    says = f"{name} at {voltage.spread}"
+    says = f"{name} at {voltage.spread}{_with_switches_on(design, net)}"
     absolute = profile.figure("dead-time.absolute-voltage")
     if not absolute.limit().contains(voltage.spread):
         yield judge(
@@ -119,6 +119,16 @@ def voltage_range(controller: Controller, design: Design) -> Iterable[Verdict]:
     remedy += f"{name} stays below {engineering(_top(useful), 'V')}"
     verdict = judge(voltage, useful.limit(), says, source=useful.source, pins=_PIN, remedy=remedy)
     yield _held_off(verdict, design.told(controller), _top(useful))
+
+
+def _with_switches_on(design: Design, net: str) -> str:
+    """Return where the pin goes when a transistor or switch on its network is on, empty without one."""
+    states: list[str] = []
+    for switch in design.switches(net):
+        found = design.voltage_with(switch, net)
+        where = "not computed" if isinstance(found, Unsolved) else f"{found.spread}"
+        states.append(f"with {switch} on: {where}")
+    return f" ({'; '.join(states)})" if states else ""
 
 
 def _top(figure: Figure) -> float:

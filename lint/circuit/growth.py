@@ -34,6 +34,7 @@ from .solver import (
     VoltageSource,
 )
 from .states import Junction
+from .transistors import read_transistor
 from .worst_case import Parameter, Variation
 
 GROUND = "\x00ground"  # the name of ground inside a network: no net of a file can have it
@@ -70,6 +71,7 @@ class Growth:
     stops: nets at which growth ends although their potential is not known (what the caller replaces by a
            free quantity or drives himself); nothing on them is called an obstacle
     empty_capacitors: capacitors hold no charge yet, and count as shorts
+    conducting: transistors and switches that are on, and count as shorts between their main terminals
     """
 
     circuit: Circuit
@@ -77,6 +79,7 @@ class Growth:
     controllers: Sequence[Controller]
     stops: frozenset[str] = frozenset()
     empty_capacitors: bool = False
+    conducting: frozenset[str] = frozenset()
     elements: dict[str, Element] = field(default_factory=dict[str, Element])
     parameters: dict[str, Parameter] = field(default_factory=dict[str, Parameter])
     potentials: dict[str, Value] = field(default_factory=dict[str, Value])
@@ -96,7 +99,7 @@ class Growth:
     def grow(self, *seeds: str, from_known: bool = False) -> Growth:
         """Grow from `seeds`; a seed of known potential, or a stop, is grown from only when `from_known`."""
         for seed in seeds:
-            self._enter(seed, expand=from_known)
+            self.enter(seed, expand=from_known)
         while self._waiting:
             net = self._waiting.pop()
             for connection in self.circuit.connections(net):
@@ -138,7 +141,7 @@ class Growth:
         """Note what was taken for granted."""
         self.assumptions.update(dict.fromkeys(sentence for sentence in sentences if sentence))
 
-    def _enter(self, net: str, *, expand: bool = False) -> None:
+    def enter(self, net: str, *, expand: bool = False) -> None:
         """Take a net into the network, once: known ones end the growth, others go on the waiting list."""
         if not net or (net in self.nets and not expand):
             return
@@ -215,7 +218,7 @@ class Growth:
     def follow(self, part: Part) -> None:
         """Go on with every net that the part is on."""
         for pin in part.pins:
-            self._enter(pin.net)
+            self.enter(pin.net)
 
     def part_value(self, part: Part) -> Value | None:
         """Return the part's value as something that varies; one without goes to `valueless`."""
@@ -381,6 +384,9 @@ def _switch(growth: Growth, part: Part, net: str) -> None:
     Where it shares the net with a winding it is the converter's power switch, and the net's potential is
     the converter's doing.
     """
+    if part.reference in growth.conducting:
+        _conduct(growth, part)
+        return
     neighbours = (growth.circuit.kind(connection.part) for connection in growth.circuit.connections(net))
     if _WINDINGS.isdisjoint(neighbours):
         growth.switches[part.reference] = None
@@ -389,6 +395,16 @@ def _switch(growth: Growth, part: Part, net: str) -> None:
 
 
 _WINDINGS = frozenset({"inductor", "transformer", "relay"})
+
+
+def _conduct(growth: Growth, part: Part) -> None:
+    """Put in a transistor or switch that is on: next to nothing drops across it."""
+    transistor = read_transistor(growth.circuit, growth.known, part)
+    ends = transistor.mains if transistor is not None else tuple(pin.net for pin in part.pins[:2])
+    growth.use(part)
+    growth.add(Resistor(part.reference, ends[0], ends[1], lambda _: np.zeros(1), may_be_zero=True))
+    for net in ends:
+        growth.enter(net)
 
 
 def _voltage_source(growth: Growth, part: Part, net: str) -> None:
