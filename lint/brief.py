@@ -18,9 +18,10 @@ from .toml_document import Table, TomlDocument
 
 TOPOLOGIES = ("single-ended", "push-pull", "half-bridge", "full-bridge")
 DERATING_POLICIES = ("nasa", "ecss", "commercial")
+CIRCUITS = ("mains", "primary", "secondary")
 
 _DESIGN_KEYS = ("name", "ambient", "derating")
-_RAIL_KEYS = ("voltage", "tolerance", "load")
+_RAIL_KEYS = ("voltage", "tolerance", "load", "circuit")
 _CONTROLLER_KEYS = (
     "topology",
     "switching_frequency",
@@ -47,6 +48,9 @@ class Rail:
     voltage:   as given, in V, without the tolerance
     tolerance: as a fraction, 0.02 for 2 %; None where the brief has none
     load:      the current drawn from the net, in A
+    circuit:   one of CIRCUITS, None where the brief does not tell: "mains" for each net of the line, its
+               voltage then being the one between the mains nets (rms); "primary" for nets that are not
+               isolated from the mains; "secondary" for those that must be
     """
 
     net: str
@@ -54,6 +58,7 @@ class Rail:
     tolerance: float | None
     load: Spread | None
     place: Place
+    circuit: str | None = None
 
     @property
     def band(self) -> Spread:
@@ -127,9 +132,10 @@ def _rail(net: str, table: Table) -> Rail | None:
     voltage = table.spread("voltage", "V")
     tolerance = table.quantity("tolerance", "", least=0.0, most=0.99)
     load = table.spread("load", "A", least=0.0)
+    circuit = table.choice("circuit", CIRCUITS)
     if not table.has("voltage"):
         table.mistake("voltage", f"the rail {net} has no voltage", expected='voltage = "12 V"')
-    return Rail(net, voltage, tolerance, load, table.place) if voltage is not None else None
+    return Rail(net, voltage, tolerance, load, table.place, circuit) if voltage is not None else None
 
 
 def _controller(reference: str, table: Table) -> ControllerBrief:

@@ -114,7 +114,7 @@ def _charge(design: Design, part: Part, across: Estimate, rating: Rating) -> Loa
         f"rated {engineering(rating.value, 'V')}",
         source=f"{rating.source}; {derating.source}",
         remedy=f"{fit} for {part.reference}",
-        assumptions=(margin_taken(design, derating.share),),
+        assumptions=(margin_taken(design, derating.share, f"rated voltage, {dielectric}"),),
         level=None if worst > rating.value or asked_for else Level.WARNING,
     )
 

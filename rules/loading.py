@@ -89,11 +89,11 @@ def ambient(design: Design) -> float:
     return _AMBIENT if told is None else told.maximum
 
 
-def margin_taken(design: Design, share: float) -> str:
-    """Return the assumption behind a derated limit: the share, the policy, the temperature."""
+def margin_taken(design: Design, share: float, what: str) -> str:
+    """Return the assumption behind a derated limit: of what, the share, the policy, the temperature."""
     conditions = design.circuit.conditions
     assumed = "" if conditions.ambient is not None else " assumed"
-    return f"{percent(share)} of the rating by policy {conditions.policy} at {ambient(design):g} °C{assumed}"
+    return f"{what}: {percent(share)} used, policy {conditions.policy} at {ambient(design):g} °C{assumed}"
 
 
 _MOST_NAMED = 12

@@ -202,7 +202,7 @@ def _heat(design: Design, part: Part, taken: Estimate, rating: Rating, derating:
         says=f"{part.reference} takes {taken.spread}, rated {rated}",
         source=f"{rating.source}; {derating.source}",
         remedy=f"{fit} for {part.reference}" if fit else "no resistor stands this ambient by this policy",
-        assumptions=(margin_taken(design, derating.share),),
+        assumptions=(margin_taken(design, derating.share, "rated power of resistors"),),
         pulsed=pulsed,
     )
 

@@ -47,7 +47,12 @@ class Potential:
 def known_potentials(
     circuit: Circuit, brief: Brief | None, controllers: Sequence[Controller]
 ) -> dict[str, Potential]:
-    """Return every net of known potential. Where several say it: ground, reference, brief, source, name."""
+    """Return every net of known potential. Where several say it: ground, reference, brief, source, name.
+
+    A net of the mains alternates, and has none unless it is ground.
+    """
+    rails = brief.rails.values() if brief is not None else ()
+    alternating = {rail.net for rail in rails if rail.circuit == "mains"}
     known: dict[str, Potential] = {}
     for found in (
         _grounds(circuit, controllers),
@@ -57,7 +62,8 @@ def known_potentials(
         _named(circuit),
     ):
         for net, potential in found.items():
-            known.setdefault(net, potential)
+            if net not in alternating or potential.origin == "ground":
+                known.setdefault(net, potential)
     return known
 
 
