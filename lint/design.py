@@ -129,6 +129,15 @@ class Design:
         """Return the direct voltage of a net over ground while a controller's converter is in a regime."""
         return self._keep(f"voltage in {regime}", net, lambda: self._voltage_in(regime, controller, net))
 
+    def output_capacitance(self, controller: Controller) -> float:
+        """Return the nominal capacitance (F) straight from a controller's output to ground, 0 without any."""
+        outputs = [amplifier.output for amplifier in self.amplifiers(controller) if amplifier.output]
+        grounds = [net for net in self.known if self.is_ground(net)]
+        parts = [
+            part for net in outputs[:1] for ground in grounds for part in self.circuit.between(net, ground)
+        ]
+        return sum(self.nominal(part) or 0.0 for part in parts if self.circuit.kind(part) == "capacitor")
+
     def needed_duty(self, controller: Controller) -> Spread | None:
         """Return the duty (0 to 1) that the recognised power stage needs over its rails, None if untold."""
         stage = self.power_stage(controller)

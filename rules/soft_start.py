@@ -8,12 +8,13 @@ from math import inf, log
 
 from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.loops import Regulation, Trip
 from ..lint.circuit.growth import diode_nets
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
 from ..lint.preferred import nearest
-from ..lint.quantity import Spread, engineering
+from ..lint.quantity import Spread, engineering, percent
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
 
@@ -157,7 +158,7 @@ def time(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         tau [s] = R [ohm] x C [F]; t [s] = tau x ln((V(REF) - V(end)) / (V(duty) - V(end)))
     Source:
-        the brief; SLVA001, from memory (25 to 100 cycles).
+        the brief; SLVA001, from memory (25 to 100 cycles). Charging current: C [F] x V [V] / t [s].
     Remedy:
         Change the capacitor in the same ratio.
     """
@@ -170,21 +171,35 @@ def time(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     told = design.told(controller)
     to_duty = _time_to_duty(controller, design, constant)
-    if told is not None and told.soft_start is not None:
-        wanted = told.soft_start
-        measured, what = (
-            (constant, "time constant") if to_duty is None else (to_duty, "until the working duty")
-        )
-        yield judge(
-            measured,
-            Limit(wanted.minimum, wanted.maximum if wanted.maximum > wanted.minimum else None, "s"),
-            f"soft start {measured.spread} {what}",
-            source="brief: soft_start",
-            pins=_PIN,
-            remedy=_capacitor_for(measured, wanted, capacitors[0], design),
-        )
+    measured = constant if to_duty is None else to_duty
+    charging = _charging(controller, design, measured.spread.nominal)
+    if told is None or told.soft_start is None:
+        verdict = _in_cycles(controller, design, constant, to_duty, capacitors[0])
+        yield replace(verdict, message=verdict.message + charging)
         return
-    yield _in_cycles(controller, design, constant, to_duty, capacitors[0])
+    wanted = told.soft_start
+    what = "as time constant" if to_duty is None else "until the working duty"
+    yield judge(
+        measured,
+        Limit(wanted.minimum, wanted.maximum if wanted.maximum > wanted.minimum else None, "s"),
+        f"soft start {measured.spread} {what}{charging}",
+        source="brief: soft_start",
+        pins=_PIN,
+        remedy=_capacitor_for(measured, wanted, capacitors[0], design),
+    )
+
+
+def _charging(controller: Controller, design: Design, seconds: float) -> str:
+    """Return what charging the output takes meanwhile, on average, and its share of the current limit."""
+    found, farads = design.regulation(controller), design.output_capacitance(controller)
+    if not isinstance(found, Regulation) or not farads or seconds <= 0:
+        return ""
+    current = farads * found.output.spread.nominal / seconds
+    trip = design.trip(controller)
+    share = ""
+    if isinstance(trip, Trip):
+        share = f", {percent(current / trip.current.spread.nominal)} of the current limit"
+    return f"; charging the output's {engineering(farads, 'F')} takes {engineering(current, 'A')}{share}"
 
 
 def _time_to_duty(controller: Controller, design: Design, constant: Estimate) -> Estimate | None:
