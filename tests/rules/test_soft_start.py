@@ -115,7 +115,7 @@ def test_the_published_example_takes_fifty_cycles(ask: Ask, pump: Board) -> None
     assert verdict.measured is not None
     assert verdict.measured.nominal == pytest.approx(2.5e-3)
     assert verdict.measured.maximum == pytest.approx(2.5e-3 * 1.01 * 1.1)
-    assert verdict.message.endswith("55 cycles")
+    assert "55 cycles" in verdict.message
 
 
 def test_too_few_cycles_are_for_a_person_and_the_remedy_makes_enough(ask: Ask, pump: Board) -> None:
