@@ -57,7 +57,7 @@ def reference_load(
         return found
     total = found.pop("total")
     branches = sorted(found.items(), key=lambda item: (-item[1].spread.maximum, item[0]))
-    return ReferenceLoad(total, tuple(branches), _unknown(circuit, controllers, net))
+    return ReferenceLoad(total, tuple(branches), _unknown(growth, controllers, net))
 
 
 def _bounded(growth: Growth, reference: Potential) -> dict[str, Potential]:
@@ -79,18 +79,16 @@ def _out_of(net: str, element: Element) -> Probe:
     return lambda solution: sign * solution.current(element)
 
 
-# Parts that draw no direct current, or whose current the network itself tells.
-_TOLD = frozenset(
-    {"resistor", "trimmer", "capacitor", "test point", "inductor", "fuse", "jumper", "diode", "coupling"}
-    | {"voltage source", "current source", "controlled source"}
-)
+# Parts that draw no direct current.
+_IDLE = frozenset({"capacitor", "test point", "coupling"})
 
 
-def _unknown(circuit: Circuit, controllers: Sequence[Controller], net: str) -> tuple[str, ...]:
-    references = {controller.reference for controller in controllers}
-    parts = {connection.part.reference: connection.part for connection in circuit.connections(net)}
+def _unknown(growth: Growth, controllers: Sequence[Controller], net: str) -> tuple[str, ...]:
+    """Return what is on the net, draws current, and has no part in the network that was solved."""
+    told = {*growth.parts, *(controller.reference for controller in controllers)}
+    parts = {c.part.reference: growth.circuit.kind(c.part) for c in growth.circuit.connections(net)}
     return tuple(
-        f"what {reference} ({circuit.kind(part)}) draws from {net} is not known"
-        for reference, part in parts.items()
-        if reference not in references and circuit.kind(part) not in _TOLD
+        f"what {reference} ({kind}) draws from {net} is not known"
+        for reference, kind in parts.items()
+        if reference not in told and kind not in _IDLE
     )

@@ -93,9 +93,17 @@ def _passive(
     found: dict[str, Estimate] | Unsolved, growth: Growth, net: str
 ) -> dict[str, Estimate] | Unsolved:
     """Return what was found, unless a source on the timing resistor's net makes it no resistance."""
-    if isinstance(found, Unsolved) or found["resistance"].spread.nominal >= 0:
+    if isinstance(found, Unsolved):
         return found
-    return Unsolved(f"something else feeds {net}", tuple(growth.parts), (net,))
+    live = [
+        other for other in growth.nets if other in growth.known and growth.known[other].origin != "ground"
+    ]
+    if not live and found["resistance"].spread.nominal >= 0:
+        return found
+    feeders = ", ".join(live) or "something else"
+    return Unsolved(
+        f"{feeders} feeds {net}: its current is not set by a resistance", tuple(growth.parts), (net,)
+    )
 
 
 def _to_ground(circuit: Circuit, known: Mapping[str, Potential], net: str) -> list[Part]:
