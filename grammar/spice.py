@@ -22,16 +22,13 @@ from .spice_files import Files
 from .spice_hierarchy import Expansion
 from .spice_lines import Line, Source, indent
 from .spice_nets import Level
-from .spice_problems import Notes, Problems
+from .spice_problems import Notes, Run
 from .spice_scope import Scope
 from .text import refuse_binary
 
 FORMAT = "SPICE list"
 
 _DESIGNATOR = re.compile(r"[A-Za-z]{1,4}(?:[_§][A-Za-z]+)?\d+[A-Za-z]?")
-
-_BYTES_ALLOWED = 20
-"""Bytes for parts inside instances per character of the list."""
 
 
 def read_spice(
@@ -61,25 +58,25 @@ def read_spice(
 def _read(
     text: str, file: str, root: Path | None, allowed: Sequence[Path], keep: Callable[[str], bool]
 ) -> Netlist:
-    problems, notes = Problems(file), Notes()
+    run = Run(file, len(text))
     netlist = Netlist(file, FORMAT)
     source = Source(text, file, titled=True)
-    files = Files(file, root, allowed, problems, notes)
-    scope = Scope(files, problems, notes)
-    expansion = Expansion(netlist, files, problems, notes, keep, _BYTES_ALLOWED * len(text))
+    files = Files(file, root, allowed, run)
+    scope = Scope(run, files)
+    expansion = Expansion(netlist, files, run, keep)
     try:
         items = files.parse(source)
         expansion.expand(Level(scope), items)
         if not netlist.parts and scope.definitions:
-            _expand_last(scope, expansion, notes)
+            _expand_last(scope, expansion, run.notes)
     except NetlistError as error:
-        problems.add(error)
-    problems.raise_any()
+        run.problems.add(error)
+    run.problems.raise_any()
     if not netlist.parts:
         raise _no_parts(source)
     netlist.name = scope.title or _title(source)
-    _note_title(source.title, files, notes)
-    netlist.notes = notes.all(file)
+    _note_title(source.title, files, run.notes)
+    netlist.notes = run.notes.all(file)
     netlist.models = files.models
     netlist.files = files.read
     return netlist
@@ -90,7 +87,7 @@ def _expand_last(scope: Scope, expansion: Expansion, notes: Notes) -> None:
     definition: Definition = list(scope.definitions.values())[-1]
     message = f"no part stands outside a subcircuit: {definition.name}, the last one, is taken as the board"
     notes.add("assumption", message, definition.line.place(0), definition.name)
-    expansion.expand(Level(expansion.scope_of(definition, scope, {})), definition.items)
+    expansion.expand(Level(expansion.scope_of(definition, scope, {}, definition.line)), definition.items)
 
 
 def _title(source: Source) -> str:

@@ -27,8 +27,8 @@ class Element:
     value:      text, an expression with its braces
     model:      name of a model or subcircuit
     attributes: the pairs at the end of the line, and what the letter adds
-    source:     with `number`, the line that the element begins on: its text is looked up for places, since a
-                copy for each of many parts would be the largest thing kept of them
+    place:      of the reference; the text of its line is looked up in `source` for the places of nodes, since
+                a copy for each of many parts would be the largest thing kept of them
     first:      index among the line's positional words of the first node
     assumption: what the line leaves open and was decided here, else empty
     """
@@ -39,8 +39,8 @@ class Element:
     value: str
     model: str
     attributes: Mapping[str, str]
+    place: Place
     source: Source
-    number: int
     first: int = 1
     assumption: str = ""
     indexes: list[int] | None = None
@@ -48,14 +48,8 @@ class Element:
     @property
     def line(self) -> Line:
         """Return the logical line of the element; for a code model without the marks of its ports."""
-        line = self.source.line(self.number)
+        line = self.source.line(self.place.line)
         return without_port_marks(line) if self.letter == "A" else line
-
-    @property
-    def place(self) -> Place:
-        """Return the place of the reference."""
-        line = self.line
-        return line.place(indent(line) if line.text[0].isspace() else 0)
 
     def node_places(self) -> list[Place]:
         """Return the place of each node."""
@@ -177,7 +171,8 @@ def made(
     line = words.line
     texts = words.texts
     there = tuple(texts[1 : 1 + nodes])
-    return Element(texts[0], letter, there, value, model, attributes, line.source, line.number, 1, assumption)
+    place = line.place(indent(line) if line.text[0].isspace() else 0)
+    return Element(texts[0], letter, there, value, model, attributes, place, line.source, 1, assumption)
 
 
 def part(words: Words, letter: str = "") -> Element:

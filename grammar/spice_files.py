@@ -9,13 +9,16 @@ from typing import NamedTuple
 from .errors import NetlistError
 from .spice_blocks import Card, Conditional, Definition, Item, Section, parse
 from .spice_lines import Source
-from .spice_problems import Notes, Problems
+from .spice_problems import Run
 from .text import decode
 
 MOST_INCLUSIONS = 1000
 LARGEST_FILE = 64_000_000
 """Bytes of one included file."""
 
+
+COST_OF_ITEM = 1000
+"""Bytes, estimated, for a card or a run of lines that is taken in once more."""
 
 _MISSING = "missing-library"
 
@@ -35,23 +38,20 @@ class Files:
     known:  the names of models and subcircuits, casefolded; subcircuits: the names of these alone
     """
 
-    def __init__(
-        self, file: str, root: Path | None, allowed: Sequence[Path], problems: Problems, notes: Notes
-    ) -> None:
+    def __init__(self, file: str, root: Path | None, allowed: Sequence[Path], run: Run) -> None:
         self.read: list[str] = [file]
         self.models: dict[str, str] = {}
         self.known: set[str] = set()
         self.subcircuits: set[str] = set()
         self._root = root
         self._trees = [tree.resolve() for tree in ([root, *allowed] if root else [])]
-        self._problems = problems
-        self._notes = notes
+        self._run = run
         self._items: dict[Path, list[Item] | None] = {}
         self._inclusions = 0
 
     def parse(self, source: Source) -> list[Item]:
         """Return the items of a source, and remember its models."""
-        items = parse(source, self._problems)
+        items = parse(source, self._run.problems)
         pending: list[Sequence[Item]] = [items]
         while pending:
             for item in pending.pop():
@@ -90,7 +90,7 @@ class Files:
         self._inclusions += 1
         index, readings = _readings(card)
         if not readings:
-            self._problems.add(
+            self._run.problems.add(
                 card.line.error(
                     index, f"`.{card.keyword}` without a file", "the name of a file", "name the file"
                 )
@@ -104,7 +104,7 @@ class Files:
                 continue
             key = f"{path.resolve()} {section}"
             if key in opened or self._inclusions > MOST_INCLUSIONS:
-                self._problems.add(_endless(card, index, text, looping=key in opened))
+                self._run.problems.add(_endless(card, index, text, looping=key in opened))
                 return None
             items = self._load(path, card, index)
             if items is None:
@@ -116,7 +116,7 @@ class Files:
                     return Inclusion(key, item.items)
             refusal = f"{path} has no section {section}"
         text = readings[0][0]
-        self._notes.add(_MISSING, f"{text} is not read: {refusal}", card.line.place(index), text)
+        self._run.notes.add(_MISSING, f"{text} is not read: {refusal}", card.line.place(index), text)
         return None
 
     def _find(self, text: str, folder: Path) -> tuple[Path | None, str]:
@@ -148,7 +148,10 @@ class Files:
         real = path.resolve()
         if real not in self._items:
             self._items[real] = self._read(path, card, index)
-        return self._items[real]
+            return self._items[real]
+        items = self._items[real]
+        self._run.budget.spend(COST_OF_ITEM * len(items or ()), card.line)
+        return items
 
     def _read(self, path: Path, card: Card, index: int) -> list[Item] | None:
         try:
@@ -162,7 +165,7 @@ class Files:
             reason = error.strerror or "it cannot be opened"
         except NetlistError as error:
             reason = error.message
-        self._notes.add(_MISSING, f"{path} is not read: {reason}", card.line.place(index), str(path))
+        self._run.notes.add(_MISSING, f"{path} is not read: {reason}", card.line.place(index), str(path))
         return None
 
 

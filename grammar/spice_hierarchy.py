@@ -11,47 +11,39 @@ from .spice_blocks import Body, Definition, Item
 from .spice_element import Element
 from .spice_elements import read_element
 from .spice_evaluate import evaluated, given_parameters
-from .spice_files import Files
+from .spice_files import COST_OF_ITEM, Files
+from .spice_lines import Line
 from .spice_names import recovered, sheet_name
 from .spice_nets import Level, Nets
 from .spice_parameters import Written
 from .spice_pins import ListedPins
-from .spice_problems import Notes, Problems
+from .spice_problems import Run
 from .spice_scope import Scope
 
 DEEPEST = 50
 """Levels of subcircuits in subcircuits."""
 
-EXPANSION = 80_000_000
-"""Estimated bytes that parts inside instances may take, beside what the length of the list allows."""
-
 MOST_DUPLICATES = 1000
+
+# Bytes, measured and rounded up, that a part without pins, a net and an empty instance take.
+_COST_OF_PART = 500
+_COST_OF_NET = 600
+_COST_OF_INSTANCE = 1500
 
 
 class Expansion:
     """Fills a netlist from the scopes, level by level.
 
-    keep:      tells of a model's name whether its instances stay parts
-    allowance: bytes that the parts inside instances may take beside `EXPANSION`
+    keep: tells of a model's name whether its instances stay parts
     """
 
-    def __init__(
-        self,
-        netlist: Netlist,
-        files: Files,
-        problems: Problems,
-        notes: Notes,
-        keep: Callable[[str], bool],
-        allowance: int,
-    ) -> None:
+    def __init__(self, netlist: Netlist, files: Files, run: Run, keep: Callable[[str], bool]) -> None:
         self._netlist = netlist
         self._files = files
-        self._problems = problems
-        self._notes = notes
+        self._run = run
         self._keep = keep
-        self._left = EXPANSION + allowance
         self._elements: dict[Body, list[Element]] = {}
-        self._nets = Nets(netlist, notes)
+        self._nets = Nets(netlist, run.notes)
         self._references: set[str] = set()
         self._copies: Counter[str] = Counter()
         self._duplicates = 0
@@ -87,11 +79,11 @@ class Expansion:
                 try:
                     elements.append(read_element(line, known))
                 except NetlistError as error:
-                    self._problems.add(error)
+                    self._run.problems.add(error)
         return elements
 
     def _note_clash(self, element: Element, wanted: str) -> None:
-        self._notes.add(
+        self._run.notes.add(
             "assumption",
             f"{element.reference} keeps its name: {wanted} is another part's",
             element.place,
@@ -107,7 +99,7 @@ class Expansion:
             if element.model.casefold() not in self._missing:
                 self._missing.add(element.model.casefold())
                 message = f"the subcircuit {element.model} is in no file read: its instances stay parts"
-                self._notes.add("missing-library", message, element.place, element.model)
+                self._run.notes.add("missing-library", message, element.place, element.model)
             return None
         return found if self._fits(element, found[0]) else None
 
@@ -118,18 +110,19 @@ class Expansion:
         message = (
             f"{element.reference} has {len(element.nodes)} nodes, the subcircuit {definition.name} {least}"
         )
-        self._notes.add("pin-mismatch", f"{message}: it stays a part", element.place, element.reference)
+        self._run.notes.add("pin-mismatch", f"{message}: it stays a part", element.place, element.reference)
         return False
 
     def _instance(self, level: Level, element: Element, definition: Definition, outer: Scope) -> None:
         """Expand one instance: a level of its own, its formal nodes connected."""
         if definition in level.chain or len(level.chain) >= DEEPEST:
-            self._problems.add(_too_deep(element, definition, level.chain))
+            self._run.problems.add(_too_deep(element, definition, level.chain))
             return
         path = f"{level.path}{self._sheet_name(level, element)}/"
-        width = len(element.nodes) + len(definition.parameters)
-        self._charge(element, 1000 + (len(path) + 200) * width)
-        scope = self.scope_of(definition, outer, given_parameters(element, level))
+        line = element.line
+        self._run.budget.spend(_COST_OF_INSTANCE + len(path) + 200 * len(element.nodes), line)
+        self._run.budget.spend(COST_OF_ITEM * len(definition.parameters), line)
+        scope = self.scope_of(definition, outer, given_parameters(element, level), line)
         formals = [*definition.formals, *(pair.key for pair in definition.optional)]
         connected = zip(formals, range(len(element.nodes)), strict=False)
         nets = {formal.casefold(): self._nets.of(level, element, at) for formal, at in connected}
@@ -138,9 +131,11 @@ class Expansion:
                 nets[pair.key] = self._nets.default(level, pair.value, element)
         self.expand(Level(scope, path, nets, (*level.chain, definition)), definition.items)
 
-    def scope_of(self, definition: Definition, outer: Scope, given: dict[str, float | None]) -> Scope:
+    def scope_of(
+        self, definition: Definition, outer: Scope, given: dict[str, float | None], instance: Line
+    ) -> Scope:
         """Return the scope of one instance, its parameters those `given` and the definition's others."""
-        scope = Scope(self._files, self._problems, self._notes, outer, given)
+        scope = Scope(self._run, self._files, outer, given, instance)
         for pair in definition.parameters:
             scope.parameters.define(pair.key, Written(definition.line, pair.value, pair.start))
         return scope
@@ -149,28 +144,18 @@ class Expansion:
         name = level.names.get(element.reference) or sheet_name(element.reference)
         return self._unique(element, f"{level.path}{name}/")[len(level.path) : -1]
 
-    def _charge(self, element: Element, cost: int) -> None:
-        """Count what an instance and its parts take; a few lines may stand for any number of parts."""
-        self._left -= cost
-        if self._left < 0:
-            error = element.line.error(
-                0,
-                "the subcircuits expand to more parts than can be read",
-                f"about {EXPANSION // 1000} parts in all instances",
-                "give the list of the board alone, without the subcircuits that multiply",
-            )
-            self._problems.add(error)
-            self._problems.raise_any()
-
     # Parts and nets
 
     def _part(self, level: Level, element: Element) -> None:
         """Add one part with its nets."""
         nodes = element.nodes
-        if level.chain:
-            self._charge(element, 600 + (350 + len(level.path)) * (1 + len(nodes)))
         known = level.nets
+        count = len(self._netlist.nets)
         nets = tuple([known.get(node) or self._nets.of(level, element, at) for at, node in enumerate(nodes)])
+        if level.chain:
+            new = len(self._netlist.nets) - count
+            cost = _COST_OF_PART + 100 * len(nodes) + (_COST_OF_NET + 2 * len(level.path)) * new
+            self._run.budget.spend(cost, element.line)
         reference = element.reference
         if level.names or level.path:
             reference = level.path + level.names.get(reference, reference)
@@ -178,7 +163,7 @@ class Expansion:
         for at, net in enumerate(nets):
             net.pins.append((reference, at))
         if element.assumption:
-            self._notes.add("assumption", f"{reference}: {element.assumption}", element.place, reference)
+            self._run.notes.add("assumption", f"{reference}: {element.assumption}", element.place, reference)
         pins_known, names = "positions", ()
         if element.model.casefold() in self._files.subcircuits:
             pins_known, names = self._pin_names(level, element)
@@ -216,7 +201,7 @@ class Expansion:
         slash = "/" if reference.endswith("/") else ""
         new = f"{reference.removesuffix('/')}#{self._copies[folded] + 1}{slash}"
         message = f"{reference} is written more than once: this one is called {new}"
-        self._notes.add("duplicate-reference", message, element.place, reference)
+        self._run.notes.add("duplicate-reference", message, element.place, reference)
         return self._unique(element, new)
 
     def _pin_names(self, level: Level, element: Element) -> tuple[str, Sequence[str]]:

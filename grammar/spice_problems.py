@@ -1,4 +1,4 @@
-"""What the reader of SPICE-style lists collects on its way: errors up to a limit, and notes."""
+"""What a run of the reader of SPICE-style lists collects, errors and notes, and what it may spend."""
 
 from __future__ import annotations
 
@@ -6,10 +6,16 @@ from collections import Counter
 
 from .errors import NetlistError
 from .netlist import Note, Place
+from .spice_lines import Line
 
 MOST_ERRORS = 20
 MOST_NOTES = 100
 """Notes of one kind; a list with more has one cause for all of them, and memory is not endless."""
+
+EXPANSION = 70_000_000
+"""Bytes, estimated, that instances may take whatever the length of the list: some 60 000 parts."""
+
+_EXPANSION_PER_CHARACTER = 20
 
 
 class Problems:
@@ -57,3 +63,33 @@ class Notes:
             if count > MOST_NOTES
         ]
         return self._notes + more
+
+
+class Budget:
+    """The memory that instances and repeated inclusions may take.
+
+    A few lines can stand for any number of parts; what is written once is bounded by the list itself.
+    """
+
+    def __init__(self, characters: int) -> None:
+        self._left = EXPANSION + _EXPANSION_PER_CHARACTER * characters
+
+    def spend(self, cost: int, line: Line) -> None:
+        """Take `cost` bytes for what `line` brings in; raise NetlistError where too little is left."""
+        self._left -= cost
+        if self._left < 0:
+            raise line.error(
+                0,
+                "the subcircuits expand to more parts than can be read",
+                "some 60 000 parts in all instances, fewer where they have many nets or parameters",
+                "give the list of the board alone, without the subcircuits that multiply",
+            )
+
+
+class Run:
+    """Problems, notes and budget of one run, handed from step to step."""
+
+    def __init__(self, file: str, characters: int) -> None:
+        self.problems = Problems(file)
+        self.notes = Notes()
+        self.budget = Budget(characters)

@@ -9,34 +9,19 @@ from .errors import NetlistError
 from .expression import Function
 from .netlist import Place
 from .spice_blocks import Body, Branch, Card, Conditional, Definition, Item
-from .spice_files import Files
-from .spice_lines import indent
+from .spice_files import COST_OF_ITEM, Files
+from .spice_lines import Line, indent
 from .spice_parameters import Parameters, Written
-from .spice_problems import Notes, Problems
+from .spice_problems import Run
 from .spice_words import split
 
 # Cards that steer a simulation and say nothing of the circuit; every other card that is skipped is noted.
 _ANALYSES = frozenset(
     (
-        *(
-            "ac",
-            "dc",
-            "tran",
-            "op",
-            "noise",
-            "disto",
-            "four",
-            "fourier",
-            "tf",
-            "sens",
-            "pz",
-            "sp",
-            "pss",
-            "hb",
-        ),
-        *("mc", "wcase", "measure", "meas", "save", "probe", "print", "plot", "wave", "autostop", "text"),
-        *("option", "options", "opt", "temp", "width", "ic", "nodeset", "distribution", "csparam"),
-        *("preprocess", "backanno", "prot", "unprot", "protect", "unprotect"),
+        *("ac", "dc", "disto", "four", "fourier", "hb", "mc", "noise", "op", "pss", "pz", "sens", "sp", "tf"),
+        *("autostop", "distribution", "meas", "measure", "plot", "print", "probe", "save", "text", "tran"),
+        *("backanno", "csparam", "ic", "nodeset", "opt", "option", "options", "preprocess", "temp", "wave"),
+        *("prot", "protect", "unprot", "unprotect", "wcase", "width"),
     )
 )
 _STEP_WORDS = ("param", "list", "dec", "oct", "lin")
@@ -51,23 +36,24 @@ class Scope:
     parameters:  those of this scope
     globals:     net names, casefolded, that mean the same at every level; shared by all scopes
     aliases:     casefolded net name to the one it is connected to by `.connect`
+    instance:    the line that brings the scope in, None for the deck
     title:       text of a `.title` card, None where there is none
     """
 
     def __init__(
         self,
+        run: Run,
         files: Files,
-        problems: Problems,
-        notes: Notes,
         outer: Scope | None = None,
         given: dict[str, float | None] | None = None,
+        instance: Line | None = None,
     ) -> None:
+        self._run = run
         self._files = files
-        self._problems = problems
-        self._notes = notes
         self._outer = outer
+        self._instance = instance
         self.definitions: dict[str, Definition] = {}
-        self.parameters = Parameters(problems, outer.parameters if outer else None, given)
+        self.parameters = Parameters(run.problems, outer.parameters if outer else None, given)
         self.globals: set[str] = outer.globals if outer else set()
         self.aliases: dict[str, str] = {}
         self.title: str | None = None
@@ -120,7 +106,9 @@ class Scope:
             item = next(opened[key], None)
             if item is None:
                 del opened[key]
-            elif isinstance(item, (Body, Conditional)):
+                continue
+            self._spend()
+            if isinstance(item, (Body, Conditional)):
                 found.append(item)
             elif isinstance(item, Definition):
                 self._define(item)
@@ -135,10 +123,15 @@ class Scope:
                 self._note_skipped(item.line.place(0), f".lib {item.name}", "a section that nothing includes")
         return found
 
+    def _spend(self) -> None:
+        """Count an item that an instance takes in; the deck's own are bounded by its length."""
+        if self._instance is not None:
+            self._run.budget.spend(COST_OF_ITEM, self._instance)
+
     def _define(self, definition: Definition) -> None:
         name = definition.name.casefold()
         if name in self.definitions and self.definitions[name] is not definition:
-            self._notes.add(
+            self._run.notes.add(
                 "assumption",
                 f"the subcircuit {definition.name} is defined twice: the first definition holds",
                 definition.line.place(0),
@@ -150,7 +143,7 @@ class Scope:
         try:
             self._take(card)
         except NetlistError as error:
-            self._problems.add(error)
+            self._run.problems.add(error)
 
     def _take(self, card: Card) -> None:
         line = card.line
@@ -188,7 +181,7 @@ class Scope:
         match = _FUNCTION.match(text)
         body = text[match.end() :].strip() if match else ""
         if match is None or not body:
-            self._problems.add(
+            self._run.problems.add(
                 card.line.error(
                     indent(card.line),
                     "a function without arguments or without a body",
@@ -213,7 +206,7 @@ class Scope:
         index = card.line.text.find(numbers[0])
         self.parameters.define(words[0].casefold(), Written(card.line, numbers[0], index))
         message = f"{words[0]} is stepped: its first value, {numbers[0]}, is taken"
-        self._notes.add("assumption", message, card.line.place(index), words[0])
+        self._run.notes.add("assumption", message, card.line.place(index), words[0])
 
     def _connect(self, names: list[str]) -> None:
         roots = [self.root(name.casefold()) for name in names]
@@ -230,4 +223,4 @@ class Scope:
         return name
 
     def _note_skipped(self, place: Place, subject: str, why: str) -> None:
-        self._notes.add("skipped", f"{subject} is skipped: {why}", place, subject)
+        self._run.notes.add("skipped", f"{subject} is skipped: {why}", place, subject)
