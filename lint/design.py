@@ -312,6 +312,9 @@ class Design:
 
     def _difference(self, net: str, other: str) -> Estimate | Unsolved:
         growth = Growth(self.circuit, self.known, self.controllers).grow(net, other)
+        adrift = tuple(one for one in (net, other) if not growth.network().has_path(one))
+        if adrift and not (growth.blocked or growth.valueless):
+            return Unsolved(f"no direct-current path to net {', '.join(adrift)}", nets=adrift)
         found = estimate(growth, {"difference": (lambda s: s.voltage(net, other), "V")})
         return found if isinstance(found, Unsolved) else found["difference"]
 
