@@ -39,6 +39,30 @@ def shoot_through(controller: Controller, design: Design) -> Iterable[Verdict]:
         discharge of a capacitor to a tenth; gates of 1 nF and more are common practice, no source
     Remedy:
         Raise the dead time, lower the gate's discharge resistance, or empty the gate with a transistor.
+    Fails:
+        U1 0 0 COMP DTC CT RT 0 VBAT G1 G2 VBAT VBAT REF REF 0 REF 494
+        R1 RT 0 12k
+        C1 CT 0 1n
+        R2 DTC 0 10
+        M1 DA G1 0 0 NMOS
+        M2 DB G2 0 0 NMOS
+        R3 G1 0 1k
+        R4 G2 0 1k
+        T1 DA VBAT DB SA 0 SB PRESS
+        D1 SA OUT DS
+        D2 SB OUT DS
+    Passes:
+        U1 0 0 COMP DTC CT RT 0 VBAT G1 G2 VBAT VBAT REF REF 0 REF 494
+        R1 RT 0 12k
+        C1 CT 0 1n
+        R2 DTC 0 10
+        M1 DA G1 0 0 NMOS
+        M2 DB G2 0 0 NMOS
+        R3 G1 0 47
+        R4 G2 0 47
+        T1 DA VBAT DB SA 0 SB PRESS
+        D1 SA OUT DS
+        D2 SB OUT DS
     """
     stage, net = design.power_stage(controller), controller.net("dead time")
     if not isinstance(stage, PowerStage) or stage.topology not in _ALTERNATING or not net:
