@@ -388,6 +388,7 @@ class Design:
             threshold=trip.threshold.spread if isinstance(trip, Trip) else None,
             threshold_shorted=shorted.threshold.spread if isinstance(shorted, Trip) else None,
             full_load=self._drop(sense, load) if sense is not None and load is not None else None,
+            reversed=isinstance(trip, Trip) and trip.reversed,
         )
 
     def _drop(self, sense: SenseResistor, load: float) -> Spread | None:

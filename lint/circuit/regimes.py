@@ -41,6 +41,7 @@ class Operation:
     sense:     the current-sense resistor; threshold: its voltage when the limit takes over, V
     threshold_shorted: the same with the output shorted
     full_load: its voltage at full load, V
+    reversed:  the current lowers the end towards the power path, as it does where it returns below ground
     """
 
     output: str = ""
@@ -49,6 +50,7 @@ class Operation:
     threshold: Spread | None = None
     threshold_shorted: Spread | None = None
     full_load: Spread | None = None
+    reversed: bool = False
 
 
 _ZERO = Spread.exact(0.0, "V")
@@ -105,6 +107,8 @@ def _near(
     far = changed.get(sense.far)
     if across is None or far is None:
         return None
+    if operation.reversed:
+        across = Spread(-across.maximum, -across.nominal, -across.minimum, "V")
     base = far.spread
     return Spread(
         base.minimum + across.minimum, base.nominal + across.nominal, base.maximum + across.maximum, "V"
