@@ -217,7 +217,7 @@ def test_sensing_below_ground_with_the_input_lifted_is_inside(ask: Ask, pump: Bo
 
 
 def test_a_sense_voltage_far_below_ground_fails(ask: Ask, pump: Board) -> None:
-    # In+ held at -1 V, in- on the resistor itself: 10 A x 0.1 ohm = 1 V below ground before the limit takes over
+    # In+ held at -1 V, in- on the resistor itself: 10 A x 0.1 ohm is 1 V below ground before it takes over
     direct = {**BELOW_GROUND, "U1": inputs(plus="MINUS1", minus="NEG"), "R9": None, "R10": None}
     verdicts = ask("amplifier.common-mode", pump("V9 MINUS1 0 -1", **direct), brief=RAILS)
     failed = [verdict for verdict in verdicts if verdict.outcome is Outcome.FAIL]
