@@ -20,6 +20,8 @@ from pwmlint.lint.circuit.graph import Circuit
 from pwmlint.lint.circuit.growth import Growth
 from pwmlint.lint.circuit.potentials import known_potentials
 from pwmlint.lint.circuit.solver import Condition, Free, FreeCurrent, FreePotential, Solution, solve
+from pwmlint.lint.design import Design
+from pwmlint.lint.estimate import Estimate
 
 NGSPICE = shutil.which("ngspice")
 
@@ -255,6 +257,77 @@ R2 IN RETURN 1k
 R3 RETURN 0 10m
 """
 
+RIGHT = {f"{row}{j}": f"{row}{j + 1}" if j < 3 else "0" for row in "ABCD" for j in range(4)}
+DOWN = {f"{row}{j}": f"{chr(ord(row) + 1)}{j}" if row < "D" else "0" for row in "ABCD" for j in range(4)}
+
+LATTICE = "V1 A0 0 9\n" + "\n".join(
+    f"R{here}{way} {here} {there[here]} {100 + 37 * k}"
+    for way, there in (("r", RIGHT), ("d", DOWN))
+    for k, here in enumerate(there, start=1)
+)
+
+HIGH_SIDE_SENSE = """
+V1 VREF 0 5
+V2 OUT 0 12
+R1 SHUNT OUT 20m
+R2 SHUNT PLUS 10k
+R3 PLUS 0 10.2k
+R4 OUT MINUS 10k
+R5 MINUS 0 10k
+R6 VREF MINUS 470k
+"""
+
+GATED_BY_THE_RAIL = """
+V1 VIN 0 28
+V2 VREF 0 5
+R1 VREF SET 10k
+R2 SET 0 10k
+R3 OUT FB 22k
+R4 FB 0 5.6k
+R5 VIN FB 680k
+"""
+
+POSITIVE_SHARE = """
+V1 VREF 0 5
+R1 OUT P 10k
+R2 P 0 10k
+R3 VREF M 10k
+R4 M 0 10k
+R5 OUT M 47k
+"""
+
+SHARED_REFERENCE = """
+V1 V5 0 5
+RS V5 VREF 15
+R1 VREF SET 5.1k
+R2 SET 0 5.1k
+R3 OUT SENSE 5.1k
+R4 SENSE 0 5.1k
+R5 VREF MODE 100
+I1 MODE 0 3.5m
+R6 VREF DTC 10k
+R7 DTC 0 1k
+"""
+
+SOURCES_IN_SERIES = """
+V1 A 0 3
+V2 B A 4.5
+V3 B C 1.5
+R1 C D 1k
+R2 D 0 1k
+I1 D C 2m
+"""
+
+FOLLOWER = """
+V1 VIN 0 12
+R1 VIN REF 8.2k
+R2 REF 0 3.3k
+E1 BUF 0 REF BUF 2e4
+R3 BUF LOAD 10
+R4 LOAD 0 470
+G1 LOAD 0 REF LOAD 0.002
+"""
+
 NETWORKS = [
     Case("ladder", LADDER),
     Case("bridge", BRIDGE),
@@ -280,6 +353,14 @@ NETWORKS = [
     ),
     Case("current limit", CURRENT_LIMIT, loops=(Loop(("0", "SENSE"), "IN", "LIMIT"),)),
     Case("fold-back limit", FOLD_BACK, loops=(Loop(("0", "SENSE"), "IN", "LIMIT"),)),
+    Case("lattice of thirty-two resistors", LATTICE),
+    Case("sources in series", SOURCES_IN_SERIES),
+    Case("follower of finite gain", FOLLOWER),
+    Case("high-side sense", HIGH_SIDE_SENSE, loops=(Loop(("SHUNT", "OUT"), "PLUS", "MINUS"),)),
+    Case("input that moves the output", GATED_BY_THE_RAIL, loops=(Loop("OUT", "FB", "SET"),)),
+    Case("output at both inputs", POSITIVE_SHARE, loops=(Loop("OUT", "P", "M"),)),
+    Case("loaded reference", SHARED_REFERENCE, loops=(Loop("OUT", "SENSE", "SET"),)),
+    Case("trimmers at opposite stops", COARSE_AND_FINE, {"RV1": 0.0, "RV2": 1.0}),
     Case("limit sensed below ground", LIMIT_BELOW_GROUND, loops=(Loop(("RETURN", "0"), "IN", "0"),)),
 ]
 
@@ -299,9 +380,38 @@ def test_agrees(case: Case, tmp_path: Path):
             assert amperes == pytest.approx(theirs[f"load{position}"], rel=AGREEMENT)
 
 
+# Piecewise-linear networks: what the simulator's own diodes do must lie inside our bounds.
+JUNCTIONS = [
+    Case("clamp to a rail", "V1 VIN 0 12\nV2 V5 0 5\nR1 VIN A 1k\nD1 A V5 DX\nR2 A 0 10k"),
+    Case("clamp that blocks", "V1 VIN 0 12\nV2 V5 0 5\nR1 VIN A 10k\nD1 A V5 DX\nR2 A 0 1k"),
+    Case("two supplies in competition", "V1 VA 0 12\nV2 VB 0 9\nD1 VA A DX\nD2 VB A DX\nR1 A 0 1k"),
+    Case("two diodes in series", "V1 VIN 0 5\nR1 VIN A 2.2k\nD1 A B DX\nD2 B 0 DX\nR2 B 0 4.7k"),
+    Case("zener", "V1 VIN 0 24\nR1 VIN A 4.7k\nD1 0 A DZ5V1\nR2 A B 10k\nR3 B 0 10k"),
+    Case("zener below its voltage", "V1 VIN 0 4\nR1 VIN A 1k\nD1 0 A DZ5V1\nR2 A 0 10k"),
+    Case("current into a diode", "I1 0 A 1m\nD1 A B DX\nR1 B 0 1k\nR2 A 0 1meg"),
+    Case("discharge path", "V1 VREF 0 5\nR1 VREF DTC 10k\nR2 DTC 0 1k\nD1 0 DTC DX\nD2 DTC VREF DX"),
+]
+
+MODELS = ".model DX d(is=1e-14)\n.model DZ5V1 d(is=1e-14 bv=5.1 ibv=1m)\n"
+
+
+@needs_ngspice
+@pytest.mark.parametrize("case", JUNCTIONS, ids=lambda case: case.name)
+def test_lies_inside_the_bounds(case: Case, tmp_path: Path):
+    exact = re.sub(r"^R.*$", r"\g<0> tol=0", case.lines, flags=re.MULTILINE)
+    design = Design(read_bytes(f"* {case.name}\n{exact}\n{MODELS}.end\n".encode(), "orchard.cir"))
+    nets = [net for net in design.netlist.nets if net not in design.known]
+    theirs = _simulated(replace(case, lines=f"{case.lines}\n{MODELS}"), tmp_path, nets)
+    for net in nets:
+        found = design.voltage(net)
+        assert isinstance(found, Estimate), found
+        assert found.spread.minimum - 1e-6 <= theirs[net] <= found.spread.maximum + 1e-6, net
+
+
 def test_there_are_enough_networks():
-    assert len(NETWORKS) >= 30
-    assert len({case.name for case in NETWORKS}) == len(NETWORKS)
+    cases = [*NETWORKS, *JUNCTIONS]
+    assert len(cases) >= 45
+    assert len({case.name for case in cases}) == len(cases)
 
 
 # ------------------------------------------------------------------------------------------- our side

@@ -216,6 +216,10 @@ class TestDiodesAndSwitches:
         found = unsolved(design_of(self.DIODE + SUPPLY + lines), "A")
         assert "D1 rectifies what C1 couples in" in found.reason
 
+    def test_what_a_transformers_capacitor_couples_in_is_not_told(self, design_of: DesignOf):
+        lines = "L1 S 0 10u\nL2 P VIN 10u\nK1 L1 L2 0.99\nC1 S X 1u\nD1 X A DX\nR1 A 0 1k"
+        assert "D1 rectifies what C1" in unsolved(design_of(self.DIODE + SUPPLY + lines), "A").reason
+
     def test_a_filter_is_no_rectifier(self, design_of: DesignOf):
         lines = "L1 VIN A 10u\nC1 A 0 1u\nD1 0 A DX\nR1 A B 1k\nR2 B 0 1k"
         assert nominal(design_of(self.DIODE + SUPPLY + lines), "B") == pytest.approx(6)
@@ -236,6 +240,18 @@ class TestWhatBlocks:
         found = design_of(lines).voltage("A")
         assert isinstance(found, Unsolved)
         assert found.needs == ('brief: [rails.A] voltage = "..."',)
+
+    @pytest.mark.parametrize("reference", ["V2", "I2", "L2", "D2", "F2"])
+    def test_a_part_with_more_pins_than_its_kind_has(self, reference: str, design_of: DesignOf):
+        netlist = design_of(SUPPLY + "R1 VIN A 1k\nR2 A 0 1k").netlist
+        pins = [Pin(str(n), "", net, PLACE) for n, net in enumerate(("A", "0", "VIN"), start=1)]
+        netlist.parts[reference] = Part(reference, "", "1", "", pins, PLACE)
+        for index, pin in enumerate(pins):
+            netlist.nets[pin.net].pins.append((reference, index))
+        assert unsolved(Design(netlist), "A").parts == (reference,)
+
+    def test_a_trimmer_without_a_value(self, design_of: DesignOf):
+        assert unsolved(design_of(SUPPLY + "RV1 VIN A 0 quince"), "A").parts == ("RV1",)
 
     def test_not_on_a_net_whose_potential_is_known(self, design_of: DesignOf):
         lines = SUPPLY + "Q1 VIN B 0 QX\nR1 VIN A 1k\nR2 A 0 1k\n.model QX npn"

@@ -26,7 +26,8 @@ class TestKind:
         [
             ("R7", "resistor"),
             ("RV1", "trimmer"),
-            ("psu/RT3", "thermistor"),
+            ("psu/NTC3", "thermistor"),
+            ("RT3", "resistor"),  # the timing resistor's name in the data sheets
             ("C1", "capacitor"),
             ("L2", "inductor"),
             ("D4", "diode"),
@@ -57,6 +58,9 @@ class TestKind:
     @pytest.mark.parametrize("reference", ["R1", "C1", "L1"])
     def test_one_with_many_pins_is_something_else(self, reference: str):
         assert part_kind(part(reference, 8), {}) == "other"
+
+    def test_a_thermistor_by_its_model(self):
+        assert part_kind(part("RT3", model="NTC 10"), {}) == "thermistor"
 
     def test_a_junction_transistor_by_its_model(self):
         assert part_kind(part("J1", 3, "J", "SLOW"), {"slow": "njf"}) == "transistor"
