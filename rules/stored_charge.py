@@ -184,7 +184,7 @@ def _discharged(
     tau, limit = across.time(found.resistance), Limit(None, _PLUGGABLE, "s")
     doubts = _doubts(design, found, tau, peak)
     fall = engineering(tau.maximum * log(max(1.0, peak / _SHOCKING)), "s")
-    says = f"{who}: {', '.join(found.shares)} discharge it, time constant {tau}, to 60 V in {fall}"
+    says = f"{who}: discharged through {', '.join(found.shares)}, time constant {tau}, to 60 V in {fall}"
     verdict = replace(
         verdict,
         message="; ".join((says, *doubts)),
@@ -240,7 +240,7 @@ def _drained(across: _Across, nets: tuple[str, str], found: Bleeder | None, volt
     return replace(
         verdict,
         outcome=Outcome.PASS if limit.contains(wait) else Outcome.REVIEW,
-        message=f"{who}: {', '.join(found.shares)} bring it below {goal} in {wait}",
+        message=f"{who}; below {goal} in {wait} through {', '.join(found.shares)}",
         measured=wait,
         limit=limit,
         margin=limit.margin(wait),
