@@ -45,6 +45,8 @@ def _solve_stack(matrix: Array, questions: Array, settled: Flags) -> Array:
         answers: Array = np.asarray(np.linalg.solve(matrix, questions), dtype=np.float64)
         doubtful = np.einsum("si,si->s", answers[:, :, 1], answers[:, :, 1]) > _MOST_GROWTH**2
     except np.linalg.LinAlgError:  # an exactly singular one, which hides the answers of all others
+        overflown = ~np.isfinite(np.einsum("sij->s", matrix))
+        matrix[overflown], questions[overflown] = np.eye(matrix.shape[1]), np.nan
         singular = np.asarray(np.linalg.svd(matrix, compute_uv=False), dtype=np.float64)
         doubtful = np.any(_vanishing(singular), axis=1)
         answers = np.zeros_like(questions)

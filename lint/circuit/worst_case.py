@@ -42,8 +42,8 @@ _CRUMB = 1e-6
 # A result may leave the corners by this share of its size before it counts as not monotonic (rounding).
 _ROUNDING = 1e-9
 
-# A current of zero comes out of the solver as less than this.
-_ROUNDED_ZERO = 1e-15
+# A current of zero, or the difference of two nets at one voltage, comes out of the solver as less than this.
+_ROUNDED_ZERO = 1e-12
 
 
 class Variation(Enum):
@@ -124,16 +124,20 @@ def analyse(
 
 
 def in_slices(evaluate: Evaluate) -> Evaluate:
-    """Return `evaluate` with its memory bounded: a slice of the samples at a time."""
+    """Return `evaluate` with its memory bounded, a slice of the samples at a time, and quiet on overflow.
+
+    A value that no part has (1e308 ohm) may overflow to infinity, and counts as that.
+    """
 
     def sliced(sample: Sample, size: int) -> Mapping[str, Array]:
-        if size <= _MOST_ROWS_AT_ONCE:
-            return evaluate(sample, size)
         starts = range(0, size, _MOST_ROWS_AT_ONCE)
-        parts = [
-            evaluate({name: column[i : i + _MOST_ROWS_AT_ONCE] for name, column in sample.items()}, length)
-            for i, length in ((i, min(_MOST_ROWS_AT_ONCE, size - i)) for i in starts)
-        ]
+        with np.errstate(over="ignore", invalid="ignore"):
+            parts = [
+                evaluate(
+                    {name: column[i : i + _MOST_ROWS_AT_ONCE] for name, column in sample.items()}, length
+                )
+                for i, length in ((i, min(_MOST_ROWS_AT_ONCE, size - i)) for i in starts)
+            ]
         return {name: np.concatenate([part[name] for part in parts]) for name in parts[0]}
 
     return sliced
@@ -248,7 +252,7 @@ class _OuterLoops:
             return np.nan, np.nan
         parameters = [self.samples.parameters[index] for index in self.samples.tolerances]
         random = np.array([parameter.random for parameter in parameters], dtype=np.float64)
-        with np.errstate(invalid="ignore"):
+        with np.errstate(over="ignore", invalid="ignore"):
             half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
             root_sum = np.sqrt(np.sum((half_widths * random) ** 2, axis=1))
             half_width = root_sum + np.sum(half_widths * (1 - random), axis=1)

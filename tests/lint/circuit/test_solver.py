@@ -153,6 +153,22 @@ class TestManySamples:
         answer = solve(loop, {"gain": np.array([0.5, 0.0, 0.25])}, 3)
         assert answer.voltage("OUT") == pytest.approx(np.array([10.0, np.nan, 20.0]), nan_ok=True)
 
+    def test_an_overflow_beside_a_singular_sample(self):
+        # No part has 1e-310 ohm; a conductance that overflows must not keep the others from being solved.
+        loop = Network(
+            (
+                Resistor("R1", "OUT", "FB", lambda s: s["R1"]),
+                ControlledSource("E1", "FB", "0", "OUT", "0", lambda s: s["gain"], "voltage"),
+            ),
+            {"0": constant(0), "VREF": constant(5)},
+            (FreePotential("OUT"),),
+            (Condition("FB", "VREF", constant(0)),),
+        )
+        with np.errstate(over="ignore", invalid="ignore"):
+            sample = {"R1": np.array([1e3, 1e-310, 1e3]), "gain": np.array([0.5, 0.5, 0.0])}
+            answer = solve(loop, sample, 3).voltage("OUT")
+        assert answer == pytest.approx(np.array([10.0, np.nan, np.nan]), nan_ok=True)
+
 
 class TestShorts:
     def test_a_short_carries_the_current_of_what_it_joins(self):
