@@ -33,7 +33,7 @@ def time_constant(
     growth = _quiet(circuit, known, controllers, a, b)
     capacitance = growth.part_value(capacitor)
     growth.use(capacitor)
-    if growth.network().floating() & {a, b}:
+    if _is_complete(growth) and growth.network().floating() & {a, b}:
         return Unsolved(f"{capacitor.reference} sees no resistance: one of its ends has no path", nets=(a, b))
 
     def constant(solution: Solution) -> Array:
@@ -49,10 +49,15 @@ def source_resistance(
 ) -> Estimate | Unsolved:
     """Return the resistance (ohm) that a net is driven from, every source still (Thevenin's)."""
     growth = _quiet(circuit, known, controllers, net, GROUND)
-    if net in growth.network().floating():
+    if _is_complete(growth) and net in growth.network().floating():
         return Unsolved(f"net {net} has no direct-current path", nets=(net,))
     found = estimate(growth, {"resistance": (lambda s: s.voltage(net) / _TEST_CURRENT, "ohm")})
     return found if isinstance(found, Unsolved) else found["resistance"]
+
+
+def _is_complete(growth: Growth) -> bool:
+    """Tell whether the whole network is known: only then a net without a path has none."""
+    return not (growth.blocked or growth.valueless)
 
 
 def _quiet(
