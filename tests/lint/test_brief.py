@@ -104,6 +104,24 @@ def test_the_band_of_a_rail(
     assert rail.band.nominal == rail.voltage.nominal
 
 
+@pytest.mark.parametrize("circuit", ["mains", "primary", "secondary"])
+def test_the_circuit_of_a_rail(write: Write, circuit: str) -> None:
+    brief = read_brief(write(f'[rails.L]\nvoltage = "230 V"\ncircuit = "{circuit}"\n'))
+    assert brief.rails["L"].circuit == circuit
+
+
+def test_a_rail_may_be_of_no_circuit(write: Write) -> None:
+    assert read_brief(write(ORCHARD)).rails["VBAT"].circuit is None
+
+
+def test_an_unknown_circuit_is_refused_with_a_suggestion(write: Write) -> None:
+    problem = refused(write('[rails.L]\nvoltage = "230 V"\ncircuit = "secundary"\n'))
+    assert 'unknown circuit "secundary"' in str(problem)
+    assert problem.place[1:] == (3, 11)
+    assert problem.expected == "mains, primary or secondary"
+    assert problem.remedy == 'did you mean "secondary"?'
+
+
 def test_tables_may_be_written_inline(write: Write) -> None:
     brief = read_brief(write('rails = { VBAT = { voltage = "24 V" } }\ndesign.name = "cider press"\n'))
     assert brief.rails["VBAT"].voltage.nominal == 24.0
