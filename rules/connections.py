@@ -56,6 +56,10 @@ def controller_found(design: Design) -> Iterable[Verdict]:
     Remedy:
         Write the generic number into the part's model or value, and where the library names its pins in
         its own way, list them under `pins` in the brief.
+    Fails:
+        U1 FB SET COMP DTC CT RT 0 C1 0 0 C2 VCC 0 REF LIM SENSE PWM
+    Passes:
+        U1 FB SET COMP DTC CT RT 0 C1 0 0 C2 VCC 0 REF LIM SENSE 494
     """
     if not design.controllers:
         yield _none_found(design)
@@ -126,7 +130,7 @@ def pin_open(controller: Controller, design: Design) -> Iterable[Verdict]:
 
     What:
         Takes each pin that the family's data sheet wants connected. It hangs open where it is on no net,
-        or where the net has nothing else than test points and inputs of the same controller.
+        or where the net has nothing but test points and inputs of the same controller.
     Why:
         An open input takes whatever voltage leakage and coupling give it: the amplifier, the dead time or
         the output mode then change with humidity, temperature and a finger near the board.
@@ -136,6 +140,16 @@ def pin_open(controller: Controller, design: Design) -> Iterable[Verdict]:
         pin functions of the family's data sheet (494 class: SLVS074, from memory)
     Remedy:
         Connect the pin as the verdict says; an unused amplifier wants both inputs tied off.
+    Fails:
+        U1 0 REF FEEDBACK DTC CT RT 0 C1 0 0 C2 VCC 0 REF REF 0 494
+        V1 VCC 0 12
+        R1 RT 0 12k
+        C1 CT 0 10n
+    Passes:
+        U1 0 REF FEEDBACK 0 CT RT 0 C1 0 0 C2 VCC 0 REF REF 0 494
+        V1 VCC 0 12
+        R1 RT 0 12k
+        C1 CT 0 10n
     """
     driven: list[PinDescription] = []
     for description in controller.profile.pins:
@@ -190,6 +204,12 @@ def duplicate_reference(design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Number the parts again in the schematic, and export the netlist anew.
+    Fails:
+        R1 REF DTC 10k
+        R1 DTC 0 1k
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
     """
     doubles = [note for note in design.netlist.notes if note.kind == "duplicate-reference"]
     for note in doubles:
@@ -213,17 +233,21 @@ def shorted_part(design: Design) -> Iterable[Verdict]:
     """Does a part have all its ends on one net?
 
     What:
-        Takes resistors, capacitors, inductors, diodes and their like, and names those of which every pin
-        is on one net. Links, zero-ohm resistors, switches and connectors may be drawn so on purpose.
+        Takes resistors, capacitors, inductors, diodes and their like, and names those with every pin on
+        one net. Links, zero-ohm resistors, switches and connectors may be drawn so on purpose.
     Why:
-        Such a part does nothing. Mostly two nets were joined by mistake, a label copied or a wire drawn
-        across the part, and more than this part is then shorted.
+        Such a part does nothing. Mostly two nets were joined by mistake: a label was copied, or a wire
+        drawn across the part, and more than this part is shorted.
     Formula:
         none: nets are compared, no figure is computed
     Source:
         common practice, no source
     Remedy:
         Find the label or the wire that joins the two ends.
+    Fails:
+        R1 DTC DTC 10k
+    Passes:
+        R1 REF DTC 10k
     """
     shorted = list(_shorted(design))
     for part, net in shorted:
@@ -269,11 +293,20 @@ def title_line(design: Design) -> Iterable[Verdict]:
         A list written or cut by hand often starts with its first part at once. Simulators skip that line
         without a word, and so the part is missing from the simulation and from this review.
     Formula:
-        none
+        none: a text is read, no figure is computed
     Source:
         Berkeley SPICE 3 manual: the first line is the title, from memory
     Remedy:
         Put a title line above the first part.
+    Fails:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        .end
+    Passes:
+        irrigation pump
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        .end
     """
     if not design.netlist.format.startswith("SPICE"):
         return
