@@ -39,6 +39,12 @@ def single_pin_net(design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Join the loose end to its net, or delete the part.
+    Fails:
+        R1 REF DTC 10k
+        R2 DTC GDN 1k
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
     """
     unused: list[tuple[Part, Pin]] = []
     faults = 0
@@ -118,6 +124,12 @@ def near_names(design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Give both labels one name, or names that tell them apart.
+    Fails:
+        R1 VOUT 1IN+ 10k
+        C1 V_OUT 0 470u
+    Passes:
+        R1 VOUT 1IN+ 10k
+        C1 VOUT 0 470u
     """
     alike: dict[str, list[str]] = {}
     for name, net in design.netlist.nets.items():
@@ -176,6 +188,13 @@ def ground(design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Join the two grounds at one point, by a link or a common net name.
+    Fails:
+        R1 REF DTC 10k
+        R2 DTC AGND 1k
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC AGND 1k
+        R3 AGND 0 0
     """
     grounds = dict.fromkeys(net for net in design.netlist.nets if design.is_ground(net))
     assumed = tuple(
