@@ -31,13 +31,19 @@ def value_missing(controller: Controller, design: Design) -> Iterable[Verdict]:
         value keeps them from being solved.
     Why:
         Without it the dead time, the output voltage or the current limit is unknown, here and on the
-        bench; and what is bought for it is somebody's guess.
+        bench, and what is bought for the part is somebody's guess.
     Formula:
-        none: values are read, no figure is computed
+        none: values are looked for, no figure is computed
     Source:
         common practice, no source
     Remedy:
         Write the value beside the part, with its unit.
+    Fails:
+        R1 REF DTC 10k
+        R2 DTC 0 TBD
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
     """
     problems = _unread(controller, design)
     for reference, problem in problems.items():
@@ -98,6 +104,10 @@ def value_preferred(design: Design) -> Iterable[Verdict]:
         IEC 60063 (the series and their tolerances); the exceptions: common practice, no source
     Remedy:
         Take a neighbour of the series, or two parts that make the value.
+    Fails:
+        R1 REF DTC 4.8k
+    Passes:
+        R1 REF DTC 4.7k
     """
     asked = [part for part in design.circuit.parts.values() if _sold_in_series(part, design)]
     rarer = [part for part in asked if not is_preferred(_nominal(part, design), ("E24",))]
@@ -174,9 +184,10 @@ def value_ambiguous(design: Design) -> Iterable[Verdict]:
     """Does every value read the same to everyone?
 
     What:
-        Names the values that another reader would take otherwise: 1M on a resistor of a SPICE-style list
-        is a milliohm, 4M7 a megohm or a few milliohm, 1F a femtofarad; a decimal comma ends the value. A
-        marking code such as 4k7, of which some simulators drop the last digit, is only listed.
+        Names the values that another reader would take otherwise: in a SPICE-style list 1M is a milliohm
+        and 1F a femtofarad, 4M7 is 4.7 Mohm to one reader and 4 milliohm to another, and a decimal comma
+        ends the value. A marking code such as 4k7, of which some simulators drop the last digit, is only
+        listed.
     Why:
         The simulation then runs with another circuit than the board, and the bench finds out.
     Formula:
@@ -185,6 +196,10 @@ def value_ambiguous(design: Design) -> Iterable[Verdict]:
         IEC 60062 (marking codes); Berkeley SPICE 3 manual (scale factors), from memory
     Remedy:
         Write the value in the way that has one reading: 1MEG, 4.7MEG, 4.7k.
+    Fails:
+        R1 FEEDBACK 1IN- 1M
+    Passes:
+        R1 FEEDBACK 1IN- 1MEG
     """
     read = {part.reference: design.circuit.reader.written(part) for part in design.circuit.parts.values()}
     doubtful = {
@@ -242,6 +257,12 @@ def value_conflict(design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Correct whichever is wrong, best by exporting both from one schematic.
+    Fails:
+        R1 REF DTC 10k
+        parts: R1, value 100k
+    Passes:
+        R1 REF DTC 10k
+        parts: R1, value 10k
     """
     if design.parts_list is None:
         return
