@@ -35,6 +35,10 @@ def supply_range(controller: Controller, design: Design) -> Iterable[Verdict]:
         494 class: second sources' data sheets (7 V to 40 V); SLVS074 (41 V absolute), from memory
     Remedy:
         Feed the pin from a rail inside the range, or through a regulator or a resistor with a zener diode.
+    Fails:
+        [rails.VCC] voltage = "6 V .. 15 V"
+    Passes:
+        [rails.VCC] voltage = "9 V .. 15 V"
     """
     net = controller.net("supply")
     if not net:
@@ -102,6 +106,11 @@ def bypass(controller: Controller, design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Put 100 nF, ceramic, from the supply pin to the ground pin.
+    Fails:
+        C1 VCC 0 100u
+    Passes:
+        C1 VCC 0 100u
+        C2 VCC 0 100n
     """
     net = controller.net("supply")
     if not net or design.is_ground(net):
