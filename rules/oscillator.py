@@ -37,9 +37,15 @@ def timing_parts(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         I(charge) [A] = 3 V / RT [ohm]; period [s] = 3 V x CT [F] / I(charge) [A]
     Source:
-        SLVS074 p.11 (both parts to ground), p.1 (timing resistor pin at the reference).
+        SLVS074 p.11 (both parts to ground), p.1 (timing resistor pin at the reference)
     Remedy:
         Connect the timing resistor and the timing capacitor from their pins to ground, and nothing else.
+    Fails:
+        R1 CT 0 12k
+        C1 RT 0 10n
+    Passes:
+        R1 RT 0 12k
+        C1 CT 0 10n
     """
     if not all(controller.pin(role) for role in TIMING_PINS):
         return  # connections.controller-found speaks of pins that are not mapped
@@ -140,10 +146,16 @@ def timing_range(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         R [ohm] between the pin and ground by nodal analysis; C [F] = sum of the capacitors to ground
     Source:
-        1.8 kohm .. 500 kohm: three second sources' data sheets; 0.47 nF .. 10 uF: two of them.
+        1.8 kohm .. 500 kohm: three second sources' data sheets; 0.47 nF .. 10 uF: two of them
     Remedy:
         Take the pair of preferred values printed, which keeps the frequency; a trimmer needs a fixed
         resistor in series.
+    Fails:
+        R1 RT 0 1.2k
+        C1 CT 0 10n
+    Passes:
+        R1 RT 0 12k
+        C1 CT 0 10n
     """
     found = timing_of(controller, design)
     if found is None:
@@ -222,9 +234,15 @@ def dielectric(controller: Controller, design: Design) -> Iterable[Verdict]:
         change of frequency = -change of capacitance (to first order)
     Source:
         IEC 60384-21 (class 1) and IEC 60384-22 (class 2), from memory; that a timing capacitor wants
-        class 1 or film: common practice, no source.
+        class 1 or film: common practice, no source
     Remedy:
         Fit class 1 ceramic (C0G) or film: polypropylene or polyester.
+    Fails:
+        C1 CT 0 10n
+        parts: C1, dielectric X7R
+    Passes:
+        C1 CT 0 10n
+        parts: C1, dielectric C0G
     """
     if _is_stopped(controller, design):
         return
