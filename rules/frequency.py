@@ -34,9 +34,19 @@ def frequency(controller: Controller, design: Design) -> Iterable[Verdict]:
         f [Hz] = k / (RT [ohm] x CT [F]), k = 1.0 .. 1.2; at each switch f / 2 in push-pull mode
     Source:
         SLVS074 p.11 (k = 1.0, half the frequency in push-pull) and p.4 (12 kohm, 10 nF, 10 kHz: k = 1.2);
-        1 kHz .. 300 kHz: three second sources' data sheets.
+        1 kHz .. 300 kHz: three second sources' data sheets
     Remedy:
         Take the timing resistor printed, the nearest preferred one for the middle of the wanted range.
+    Fails:
+        R1 RT 0 22k 1%
+        C1 CT 0 1n 5%
+        R2 OUTCTRL REF 0
+        [controllers.U1] switching_frequency = "40 kHz .. 60 kHz"
+    Passes:
+        R1 RT 0 22k 1%
+        C1 CT 0 1n 5%
+        R2 OUTCTRL 0 0
+        [controllers.U1] switching_frequency = "40 kHz .. 60 kHz"
     """
     found = timing_of(controller, design)
     if found is None:
