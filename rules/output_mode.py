@@ -38,9 +38,13 @@ def wiring(controller: Controller, design: Design) -> Iterable[Verdict]:
         V [V] by nodal analysis, pin current of 0 .. 3.5 mA at the reference included
     Source:
         function table of the 494 class, from memory; SLVS074 p.5 (pin current); the 100 ohm up to which a
-        resistor counts as a tie: common practice, no source.
+        resistor counts as a tie: common practice, no source
     Remedy:
         Tie the pin to ground for single-ended, to the reference for push-pull.
+    Fails:
+        R1 OUTCTRL REF 10k
+    Passes:
+        R1 OUTCTRL REF 0
     """
     net = controller.net("output control")
     if net is None:
@@ -138,18 +142,24 @@ def topology(controller: Controller, design: Design) -> Iterable[Verdict]:
     What:
         Compares the mode that the output-control pin sets with the topology of the brief, or else with
         the one that is recognised in the netlist: single-ended wants the outputs in phase; push-pull,
-        half-bridge and full-bridge want them to take turns. One
-        output alone in push-pull mode is known practice where the duty must stay below one half (forward
-        converters): that is for a person to judge.
+        half-bridge and full-bridge want them to take turns. One output alone in push-pull mode is known
+        practice where the duty must stay below one half (forward converters): that is for a person to
+        judge.
     Why:
         In phase, the two switches of a push-pull stage or of a bridge leg are on together, which shorts
         the supply through the winding or the leg. Taking turns, a single switch gets every other pulse.
     Formula:
         at ground: f(output) = f(oscillator); at the reference: f(output) = f(oscillator) / 2
     Source:
-        function table of the 494 class, from memory; SLVS074 p.11 (frequency in push-pull).
+        function table of the 494 class, from memory; SLVS074 p.11 (frequency in push-pull)
     Remedy:
         Tie the output-control pin to the other end.
+    Fails:
+        R1 OUTCTRL 0 0
+        [controllers.U1] topology = "push-pull"
+    Passes:
+        R1 OUTCTRL REF 0
+        [controllers.U1] topology = "push-pull"
     """
     mode = design.output_mode(controller)
     if mode is None:
@@ -221,11 +231,18 @@ def outputs_used(controller: Controller, design: Design) -> Iterable[Verdict]:
         In push-pull mode joined outputs undo the steering, and an unused one loses every other pulse. In
         phase, joined outputs share the current only where both their ends are joined.
     Formula:
-        I(joined) [A] = 2 x 0.2 A
+        I(joined) [A] <= 2 x 0.2 A
     Source:
-        function table of the 494 class, from memory; paralleled outputs: SLVS074, from memory.
+        function table of the 494 class, from memory; paralleled outputs: SLVS074, from memory
     Remedy:
         Connect the second output, or join both ends, or tie the output-control pin to the other end.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 0 C2 VCC REF REF 2IN- 2IN+ 494
+        R1 VCC C1 1k
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 0 C2 VCC REF REF 2IN- 2IN+ 494
+        R1 VCC C1 1k
+        R2 VCC C2 1k
     """
     outputs = _outputs(controller, design)
     mode = design.output_mode(controller)
