@@ -37,9 +37,15 @@ def load(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         I [A] = sum of the branch currents, each by nodal analysis at the highest reference voltage
     Source:
-        7500 class data sheet of a second source (10 mA); SLVS074 p.5 (3.5 mA into the output-control pin).
+        7500 class data sheet of a second source (10 mA); SLVS074 p.5 (3.5 mA into the output-control pin)
     Remedy:
         Raise the resistance of the greatest branch to the printed value, or feed it from the supply.
+    Fails:
+        R1 REF DTC 470
+        R2 DTC 0 47
+    Passes:
+        R1 REF DTC 4.7k
+        R2 DTC 0 470
     """
     net = controller.net("reference")
     if not net:
@@ -147,6 +153,11 @@ def bypass(controller: Controller, design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Put 100 nF to 1 uF, ceramic, from the reference pin to the ground pin.
+    Fails:
+        C1 VCC 0 100n
+    Passes:
+        C1 VCC 0 100n
+        C2 REF 0 100n
     """
     net = controller.net("reference")
     if not net or design.is_ground(net):
@@ -175,9 +186,18 @@ def back_fed(controller: Controller, design: Design) -> Iterable[Verdict]:
         current out of the pin [A], by nodal analysis, not below -0.1 mA in any corner
     Source:
         SLVS074 p.4 (short circuit of the reference: one second at most); the 0.1 mA that the controller's
-        inside takes up: common practice, no source.
+        inside takes up: common practice, no source
     Remedy:
         Take the foreign rail off the net; feed pull-ups to it from the reference itself.
+    Fails:
+        V1 VCC 0 12
+        R1 VCC REF 1k
+        R2 REF DTC 10k
+        R3 DTC 0 1k
+    Passes:
+        V1 VCC 0 12
+        R2 REF DTC 10k
+        R3 DTC 0 1k
     """
     net = controller.net("reference")
     if not net:
