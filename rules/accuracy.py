@@ -32,9 +32,23 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
         deviation = output / output(nominal) - 1, extreme values by nodal analysis
     Source:
         the brief (tolerance); 494 class: SLVS074 p.4 (reference 4.75 V to 5.25 V), 594: SLVS052 p.4
-        (4.95 V to 5.05 V).
+        (4.95 V to 5.05 V)
     Remedy:
-        Better the part that is named first, or add a trimmer.
+        Take a tighter part for the one that is named first, or add a trimmer.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k 1%
+        R3 1IN+ 0 10k 1%
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "5 %"
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 594
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k 1%
+        R3 1IN+ 0 10k 1%
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "5 %"
     """
     found = design.regulation(controller)
     if not isinstance(found, Regulation) or found.output.spread.nominal <= 0:
