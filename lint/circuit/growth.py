@@ -196,8 +196,8 @@ class Growth:
     def _highest_reference(self, controller: Controller) -> float:
         """Return the highest voltage of the reference: as the board has it, else as it is published."""
         potential = self.known.get(controller.net("reference") or "")
-        if potential is not None and potential.origin == "reference":
-            return potential.spread.maximum
+        if potential is not None and potential.origin == "reference" and potential.spread.maximum > 0:
+            return potential.spread.maximum  # without a supply it is none, and the pin draws as published
         return controller.profile.figure("reference.voltage").spread().maximum
 
     def block(self, net: str, part: Part, reason: str) -> None:
