@@ -51,17 +51,22 @@ def present(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is there a soft start at all?
 
     What:
-        Looks for a capacitor between the reference and the dead-time pin, a resistor or a diode towards
-        the pin in between or not.
+        Looks for a capacitor from the reference to the dead-time pin, be it straight, through a resistor,
+        or through a diode that conducts towards the pin.
     Why:
         Without one the first pulses are as wide as the dead time allows: the output capacitors are charged
         with all the current that the limit lets pass, and the transformer may saturate.
     Formula:
         none: connectivity
     Source:
-        SLVA001, soft start, from memory.
+        SLVA001, soft start, from memory
     Remedy:
         Put a capacitor from the reference to the dead-time pin, with a resistor from the pin to ground.
+    Fails:
+        R1 DTC 0 1k
+    Passes:
+        R1 DTC 0 1k
+        C1 REF DTC 10u
     """
     if not controller.net("dead time"):
         return
@@ -86,7 +91,7 @@ def wiring(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Does the soft-start capacitor go to the reference, as this class needs?
 
     What:
-        Finds capacitors from the dead-time pin to ground where none goes to the reference. One that follows
+        Finds capacitors from the dead-time pin to ground where none goes to the reference. One that settles
         within a cycle of the oscillator filters noise; one that takes longer, but less than a soft start
         does, is for a person to judge.
     Why:
@@ -96,9 +101,17 @@ def wiring(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: connectivity
     Source:
-        SLVA001, soft start, from memory.
+        SLVA001, soft start, from memory
     Remedy:
         Move the capacitor's other end from ground to the reference.
+    Fails:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        C1 DTC 0 10u
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        C1 REF DTC 10u
     """
     if not controller.net("dead time"):
         return
@@ -156,11 +169,22 @@ def time(controller: Controller, design: Design) -> Iterable[Verdict]:
         Too short, and the current limit does the starting; too long, and a supervisor gives up, or the
         load sees half a voltage for a while.
     Formula:
-        tau [s] = R [ohm] x C [F]; t [s] = tau x ln((V(REF) - V(end)) / (V(duty) - V(end)))
+        tau [s] = R [ohm] x C [F]; t [s] = tau x ln((V(REF) - V(end)) / (V(duty) - V(end)));
+        current that charges the output [A] = C [F] x V [V] / t [s]
     Source:
-        the brief; SLVA001, from memory (25 to 100 cycles). Charging current: C [F] x V [V] / t [s].
+        the brief; SLVA001, from memory (25 to 100 cycles)
     Remedy:
         Change the capacitor in the same ratio.
+    Fails:
+        R1 DTC 0 1k
+        C1 REF DTC 10n
+        R2 RT 0 22k
+        C2 CT 0 1n
+    Passes:
+        R1 DTC 0 1k
+        C1 REF DTC 1u
+        R2 RT 0 22k
+        C2 CT 0 1n
     """
     capacitors = _capacitors(controller, design, "reference")
     if not capacitors:
