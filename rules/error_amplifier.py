@@ -51,9 +51,15 @@ def input_open(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: connectivity
     Source:
-        SLVS074 p.4 (input bias current); common practice, no source (the rule).
+        SLVS074 p.4 (input bias current); common practice, no source (the rule)
     Remedy:
         Tie the input: in+ of an unused amplifier to ground, its in- to the reference.
+    Fails:
+        U1 0 REF FEEDBACK DTC CT RT 0 C1 E1 E2 C2 VCC OUTCTRL REF 2IN- 0 494
+        C1 REF 2IN- 100n
+    Passes:
+        U1 0 REF FEEDBACK DTC CT RT 0 C1 E1 E2 C2 VCC OUTCTRL REF 2IN- 0 494
+        R1 REF 2IN- 1k
     """
     inputs = {role: net for a in _mapped(controller, design) for role, net in _inputs(a)}
     adrift = {
@@ -98,9 +104,15 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         V(in-) - V(in+) [V] by nodal analysis, at least five times the greatest offset
     Source:
-        SLVS074 p.4 (offset 10 mV); the margin is common practice, no source.
+        SLVS074 p.4 (offset 10 mV); the margin is common practice, no source
     Remedy:
         Tie in+ to ground and in- to the reference.
+    Fails:
+        R1 2IN+ 0 1k
+        R2 2IN- 0 1k
+    Passes:
+        R1 2IN+ 0 1k
+        R2 2IN- REF 1k
     """
     least = controller.profile.practice("amplifier.unused-difference")
     for amplifier in _mapped(controller, design):
@@ -146,9 +158,17 @@ def common_mode(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         -0.3 V <= V(in) <= V(supply, lowest) - 2 V
     Source:
-        SLVS074 p.4 (common-mode input range).
+        SLVS074 p.4 (common-mode input range)
     Remedy:
         Divide the input down, or sense on the low side.
+    Fails:
+        V1 VCC 0 12
+        R1 VCC 1IN+ 1k
+        R2 1IN+ 0 10k
+    Passes:
+        V1 VCC 0 12
+        R1 VCC 1IN+ 10k
+        R2 1IN+ 0 10k
     """
     supply = controller.net("supply")
     voltage = design.voltage(supply) if supply else None
@@ -223,9 +243,19 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         V(in+) - V(in-) [V] < 0 with the output at 0 V, or with no current in the sense resistor
     Source:
-        SLVS074 p.4 and its block diagram (the amplifiers' outputs raise FEEDBACK).
+        SLVS074 p.4 and its block diagram (the amplifiers' outputs raise FEEDBACK)
     Remedy:
         Exchange the two inputs: sensed quantity to in+, reference to in-.
+    Fails:
+        R1 REF 1IN+ 1k
+        R2 VOUT 1IN- 14k
+        R3 1IN- 0 10k
+        [controllers.U1] output = "VOUT"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
     """
     for amplifier in _mapped(controller, design):
         regime = {"voltage": Regime.SHORT_CIRCUIT, "current": Regime.NO_LOAD}.get(amplifier.use)
@@ -270,9 +300,21 @@ def compensation(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         corner [Hz] = 1 / (2 pi R [ohm] C [F]) of each resistor and capacitor in series
     Source:
-        common practice, no source.
+        common practice, no source
     Remedy:
         Put a resistor and a capacitor in series from FEEDBACK to in-.
+    Fails:
+        R1 REF 1IN- 10k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
+    Passes:
+        R1 REF 1IN- 10k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        R4 FEEDBACK N1 47k
+        C1 N1 1IN- 10n
+        [controllers.U1] output = "VOUT"
     """
     net = controller.net("feedback")
     if not net:
@@ -320,7 +362,7 @@ def feedback_pin(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Can the amplifiers and their inner sink move the feedback pin against what hangs on it?
 
     What:
-        Computes the direct current between the pin and the parts on it over the whole control range.
+        Computes the direct current between the pin and the parts on it, over the whole control range.
     Why:
         The amplifiers can only lift the pin and a small inner sink lowers it. A resistor that feeds more
         into the pin than the sink takes holds the outputs off; one that draws too much to ground keeps
@@ -328,9 +370,13 @@ def feedback_pin(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         I [A] out of the pin by nodal analysis, the pin anywhere in its control range
     Source:
-        7500 class data sheet of a second source (0.3 mA into the pin); SLVS052 p.4 (2 mA out of it).
+        7500 class data sheet of a second source (0.3 mA into the pin); SLVS052 p.4 (2 mA out of it)
     Remedy:
         Raise the resistance of what hangs on the pin.
+    Fails:
+        R1 REF FEEDBACK 4.7k
+    Passes:
+        R1 REF FEEDBACK 47k
     """
     net = controller.net("feedback")
     if not net:
@@ -354,19 +400,29 @@ def feedback_pin(controller: Controller, design: Design) -> Iterable[Verdict]:
 
 @rule("amplifier.input-error", level="note", topic="error amplifier")
 def input_error(controller: Controller, design: Design) -> Iterable[Verdict]:
-    """How much of the output's error do the bias currents make, which lower resistances would cure?
+    """Do the bias currents of the amplifier move the output by more than they should?
 
     What:
-        Takes the share of the two bias currents from the budget of the output voltage.
+        Takes the share of the two bias currents from the spread of the output voltage.
     Why:
-        A bias current through unequal source resistances moves the set point; the offset, which no
-        resistor cures, is told beside it.
+        A bias current through unequal source resistances moves the set point, and lower resistances cure
+        that. The offset, which no resistor cures, is told beside it.
     Formula:
         error = bias current [A] x difference of the source resistances [ohm] / set point [V]
     Source:
-        SLVS074 p.4 (bias current, offset); the limit of 0.5 % is common practice, no source.
+        SLVS074 p.4 (bias current, offset); the limit of 0.5 % is common practice, no source
     Remedy:
         Make the resistance seen by both inputs alike, or lower the divider's resistance.
+    Fails:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 140k
+        R3 1IN+ 0 100k
+        [controllers.U1] output = "VOUT"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
     """
     found = design.regulation(controller)
     if not isinstance(found, Regulation):
