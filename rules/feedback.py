@@ -35,10 +35,22 @@ def output_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         V(in+) - V(in-) = offset [V], solved for the output [V] by nodal analysis; for the plain divider
         output = V(in-) x (1 + top / bottom)
     Source:
-        the brief (band); SLVS074 p.4 (reference spread, offset, bias current).
+        the brief (band); SLVS074 p.4 (reference spread, offset, bias current)
     Remedy:
         Take the pair of preferred values printed, tighter resistors, or a trimmer; a reference spread
         that alone fills the band needs a part with a tighter reference.
+    Fails:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 10k 1%
+        R3 1IN+ 0 10k 1%
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "10 %"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k 1%
+        R3 1IN+ 0 10k 1%
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "10 %"
     """
     found = design.regulation(controller)
     if isinstance(found, NoLoop):
@@ -152,9 +164,21 @@ def divider_ratio(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         error = output(nominal) / output(wanted) - 1
     Source:
-        common practice, no source: the choice of values may use up half of the output's tolerance.
+        common practice, no source: the choice of values may use up half of the output's tolerance
     Remedy:
         Take the pair of preferred values that `feedback.output-voltage` prints.
+    Fails:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 1.4k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "10 %"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "10 %"
     """
     found = design.regulation(controller)
     if not isinstance(found, Regulation):
@@ -203,9 +227,20 @@ def complete(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: connectivity
     Source:
-        common practice, no source.
+        common practice, no source
     Remedy:
         Join the input pin to the output through one resistor and to ground through another.
+    Fails:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "10 %"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
+        [rails.VOUT] voltage = "12 V"; tolerance = "10 %"
     """
     voltage = [a for a in design.amplifiers(controller) if a.use == "voltage"]
     if voltage:
