@@ -48,9 +48,19 @@ def sense_point(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: connectivity
     Source:
-        common practice, no source.
+        common practice, no source
     Remedy:
         Take the top of the divider to the output, behind the filter.
+    Fails:
+        V1 VCC 0 24
+        R1 VCC 1IN+ 14k
+        R2 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
+    Passes:
+        V1 VCC 0 24
+        R1 VOUT 1IN+ 14k
+        R2 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
     """
     found = design.power_stage(controller)
     stage = found if isinstance(found, PowerStage) else None
@@ -100,16 +110,26 @@ def impedance(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is the divider stiff enough against noise and bias current?
 
     What:
-        Computes the resistance that drives the sensing input, sources still.
+        Computes the resistance that drives the sensing input, every source standing still.
     Why:
         Above some 100 kilo-ohms the summing node picks up the switching noise beside it, and the bias
         current moves the set point.
     Formula:
         R [ohm] = V / I of a test current into the input's net (Thevenin)
     Source:
-        common practice, no source.
+        common practice, no source
     Remedy:
         Scale both resistors of the divider down.
+    Fails:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 1.4MEG
+        R3 1IN+ 0 1MEG
+        [controllers.U1] output = "VOUT"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
     """
     practice = controller.profile.practice("feedback.thevenin")
     for amplifier in _voltage_amplifiers(controller, design):
@@ -140,9 +160,20 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         V(in+) - V(in-) = 0 with the resistor at infinity or at zero, solved for the output [V]
     Source:
-        common practice, no source (above 1.2 x the regulated voltage counts).
+        common practice, no source (above 1.2 x the regulated voltage counts)
     Remedy:
         Put a suppressor or a crowbar across the output, or sense it a second time.
+    Fails:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        [controllers.U1] output = "VOUT"
+    Passes:
+        R1 REF 1IN- 1k
+        R2 VOUT 1IN+ 14k
+        R3 1IN+ 0 10k
+        D1 0 VOUT 15V
+        [controllers.U1] output = "VOUT"
     """
     found = design.regulation(controller)
     if not isinstance(found, Regulation):
