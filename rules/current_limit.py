@@ -39,9 +39,21 @@ def trip_point(controller: Controller, design: Design) -> Iterable[Verdict]:
         V(in+) - V(in-) = offset [V], solved for the current [A] by nodal analysis; for the plain circuit
         current = threshold [V] / sense resistance [ohm]
     Source:
-        the brief (band or load); SLVS074 p.4 (reference spread, offset).
+        the brief (band or load); SLVS074 p.4 (reference spread, offset)
     Remedy:
         Change the sense resistor, or the divider that sets the threshold.
+    Fails:
+        R1 REF 2IN- 9.1k 1%
+        R2 2IN- 0 1k 1%
+        R3 RTN 2IN+ 1k
+        R4 RTN 0 0.1 1%
+        [controllers.U1] current_limit = "8 A .. 12 A"
+    Passes:
+        R1 REF 2IN- 9.1k 1%
+        R2 2IN- 0 1k 1%
+        R3 RTN 2IN+ 1k
+        R4 RTN 0 0.05 1%
+        [controllers.U1] current_limit = "8 A .. 12 A"
     """
     found = design.trip(controller)
     if isinstance(found, NoLoop):
@@ -127,10 +139,22 @@ def sense_dissipation(controller: Controller, design: Design) -> Iterable[Verdic
     Formula:
         P [W] = I^2 [A^2] x R [ohm]; allowed [W] = rated [W] x share(policy, ambient)
     Source:
-        the rating's own; the derating policy's (EEE-INST-002, ECSS-Q-ST-30-11C or IEC 60115-8).
+        the rating's own; the derating policy's (EEE-INST-002, ECSS-Q-ST-30-11C or IEC 60115-8)
     Remedy:
         Fit the wattage printed, share the current between resistors, or lower threshold and resistance
         together.
+    Fails:
+        R1 REF 2IN- 9.1k 1%
+        R2 2IN- 0 1k 1%
+        R3 RTN 2IN+ 1k
+        R4 RTN 0 0.1 1%
+        parts: R4, power 2 W
+    Passes:
+        R1 REF 2IN- 9.1k 1%
+        R2 2IN- 0 1k 1%
+        R3 RTN 2IN+ 1k
+        R4 RTN 0 0.1 1%
+        parts: R4, power 5 W
     """
     found = design.trip(controller)
     if not isinstance(found, Trip):
