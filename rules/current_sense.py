@@ -46,6 +46,16 @@ def present(controller: Controller, design: Design) -> Iterable[Verdict]:
         )
         return
     sense = sensing.sense
+    if not _carries(controller, design, sense):
+        yield Verdict(
+            outcome=Outcome.REVIEW,
+            message=f"nothing on {sense.near} but the amplifier's own parts: no load current flows in "
+            f"{sense.part.reference}",
+            parts=(sense.part.reference,),
+            nets=(sense.near,),
+            remedy=f"take the load's return to {sense.near}",
+        )
+        return
     yield Verdict(
         outcome=Outcome.PASS,
         message=f"amplifier {sensing.number} looks at {sense.part.reference} from {sense.near} to {sense.far}"
@@ -54,6 +64,30 @@ def present(controller: Controller, design: Design) -> Iterable[Verdict]:
         nets=(sense.near, sense.far),
         pins=(f"amplifier {sensing.number} in+", f"amplifier {sensing.number} in-"),
     )
+
+
+def _carries(controller: Controller, design: Design, sense: SenseResistor) -> bool:
+    """Tell whether anything can send a load's current through a sense resistor.
+
+    That is a part of the power path, or a resistor from the output or a rail other than the reference.
+    """
+    for connection in design.circuit.connections(sense.near):
+        part = connection.part
+        if part is sense.part or part.reference == controller.reference:
+            continue
+        kind = design.circuit.kind(part)
+        if kind not in ("resistor", "trimmer", "capacitor", "test point"):
+            return True
+        far = [net for net in design.circuit.other_nets(part, sense.near) if net != sense.far]
+        outputs = [amplifier.output for amplifier in design.amplifiers(controller)]
+        if kind == "resistor" and any(net in outputs or _is_rail(design, net) for net in far):
+            return True
+    return False
+
+
+def _is_rail(design: Design, net: str) -> bool:
+    potential = design.potential(net)
+    return potential is not None and potential.origin not in ("ground", "reference")
 
 
 def _what_flows(controller: Controller, design: Design) -> str:

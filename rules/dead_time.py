@@ -7,6 +7,7 @@ from dataclasses import replace
 
 from ..lint.brief import ControllerBrief
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.power_stage import NotRecognised
 from ..lint.controllers import Figure
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
@@ -341,6 +342,10 @@ def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
     wanted, source = _wanted_duty(controller, design)
     if wanted is None:
         return
+    impossible = _out_of_reach(controller, design)
+    if impossible is not None:
+        yield impossible
+        return
     left = _duty_left(design.dead_time(controller, voltage).share, design.output_mode(controller))
     verdict = judge(
         left,
@@ -351,6 +356,31 @@ def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
         remedy=f"lower the voltage on {controller.pins['dead time'].name}",
     )
     yield _as_set(verdict, design, voltage, wanted)
+
+
+def _out_of_reach(controller: Controller, design: Design) -> Verdict | None:
+    """Return the failed verdict where no duty makes the output: a buck above its input, a boost below it."""
+    stage = design.power_stage(controller)
+    if isinstance(stage, NotRecognised):
+        return None
+    supply, output = design.potential(stage.input), design.potential(stage.output)
+    if supply is None or output is None:
+        return None
+    wanted = output.spread.nominal
+    if stage.topology == "buck" and supply.spread.minimum <= wanted:
+        says = f"a buck cannot raise {stage.input}, {supply.spread.minimum:g} V at the lowest"
+    elif stage.topology == "boost" and supply.spread.maximum >= wanted:
+        says = f"a boost cannot lower {stage.input}, {supply.spread.maximum:g} V at the highest"
+    else:
+        return None
+    return Verdict(
+        outcome=Outcome.FAIL,
+        message=f"{says}, to {stage.output} of {wanted:g} V",
+        nets=(stage.input, stage.output),
+        pins=_PIN,
+        source="volt-second balance of the recognised power stage",
+        remedy="change the rails of the brief, or take a topology that raises and lowers",
+    )
 
 
 def _wanted_duty(controller: Controller, design: Design) -> tuple[float | None, str]:

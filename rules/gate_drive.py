@@ -9,6 +9,7 @@ from ..lint.circuit.controllers import Controller
 from ..lint.circuit.drive import Driven
 from ..lint.circuit.output_drive import OutputDrive
 from ..lint.circuit.outputs import OutputTransistor
+from ..lint.circuit.transistors import Transistor
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import reports
@@ -85,6 +86,23 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
         else:
             remedy = "take the signal from the output's other end, or add or leave out an inverting stage"
             yield _about(driven, Outcome.FAIL, f"{says}, which turns it off", remedy)
+        if one.field_effect and _body_diode_conducts(controller, design, one):
+            says = f"the body diode of {one.reference} ({one.kind}) conducts from {' to '.join(_diode(one))}"
+            remedy = f"exchange drain and source of {one.reference}"
+            yield _about(driven, Outcome.FAIL, f"{says}: nothing turns it off", remedy)
+
+
+def _diode(one: Transistor) -> tuple[str, str]:
+    """Return the nets of a MOSFET's body diode, the anode's first: the source of an N-channel type."""
+    return (one.common, one.output) if one.polarity == "N" else (one.output, one.common)
+
+
+def _body_diode_conducts(controller: Controller, design: Design, one: Transistor) -> bool:
+    """Tell whether a body diode leads out of a supply, or into ground: the wrong way for a switch."""
+    anode, cathode = _diode(one)
+    potential = design.potential(anode)
+    supplied = potential is not None and potential.spread.minimum > 0
+    return supplied or anode == controller.net("supply") or design.is_ground(cathode)
 
 
 @rule("gate-drive.pull-down", level="error", topic=_TOPIC)

@@ -86,6 +86,8 @@ def _path(controller: Controller, design: Design, net: str, wanted: str) -> Path
     def is_stiff(other: str) -> bool:
         return is_supply(other) or design.is_ground(other)
 
+    if is_supply(net) and wanted == "ground":
+        return Path.NO  # an emitter on a supply falls to nothing
     arrives = is_supply if wanted == "a supply" else design.is_ground
     transistors = design.output_drive(controller).drive.transistors
     return path(design.circuit, transistors, net, arrives, controller.reference, is_stiff)

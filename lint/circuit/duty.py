@@ -13,9 +13,10 @@ from ..quantity import Spread
 
 
 def needed_duty(topology: str, supply: Spread, output: Spread) -> Spread | None:
-    """Return the duty (0 to 1) a stage needs over its supply and output voltages (V), None if untold.
+    """Return the duty a stage needs over its supply and output voltages (V), None if untold.
 
-    topology: "buck", "boost" or "inverting"; any other gives None
+    topology: "buck", "boost" or "inverting"; any other gives None. What a stage cannot do comes out as it is:
+              above 1 where a buck should raise its input, below 0 where a boost should lower it.
     """
     law = _LAWS.get(topology)
     if law is None or supply.minimum <= 0 or output.minimum * output.maximum <= 0:
@@ -23,8 +24,6 @@ def needed_duty(topology: str, supply: Spread, output: Spread) -> Spread | None:
     ends = product((supply.minimum, supply.maximum), (output.minimum, output.maximum))
     corners = [law(vi, abs(vo)) for vi, vo in ends]
     nominal = law(supply.nominal, abs(output.nominal))
-    if not 0 < min(corners) <= max(corners) < 1:
-        return None
     return Spread(min(corners), nominal, max(corners), "")
 
 

@@ -149,15 +149,13 @@ class Loops:
                 needs=(f'brief: [rails.{sense.far}] voltage = "..."',),
             )
         condition = self._inputs_equal(growth, amplifier)
-        found = estimate(
-            growth, _trip_probes(resistor), [FreeCurrent("load", sense.far, sense.near)], [condition]
-        )
+        found = _trip(growth, resistor, FreeCurrent("load", sense.far, sense.near), condition)
         turned = not isinstance(found, Unsolved) and found["current"].spread.nominal < 0
         if turned:
             # The current flows the other way: sensed below ground, or on the way out of the high side.
             growth.elements[resistor.name] = resistor = replace(resistor, a=sense.far, b=sense.near)
             reverse = FreeCurrent("load", sense.near, sense.far)
-            found = estimate(growth, _trip_probes(resistor), [reverse], [condition])
+            found = _trip(growth, resistor, reverse, condition)
         if isinstance(found, Unsolved):
             return found
         if isinf(found["current"].spread.nominal):
@@ -189,6 +187,27 @@ class Loops:
         name = f"{self.controller.reference} amplifier {amplifier.number} offset"
         value = growth.add_parameter(Parameter(name, offset.minimum, offset.nominal, offset.maximum))
         return Condition(amplifier.plus, amplifier.minus, value)
+
+
+def _trip(
+    growth: Growth, resistor: Resistor, free: FreeCurrent, condition: Condition
+) -> dict[str, Estimate] | Unsolved:
+    """Return current, threshold and dissipation at the trip point.
+
+    Where the threshold may have either sign the heat first falls and then rises with it, and no corner
+    bounds it from below: then it is nothing to the product of the greatest current and threshold.
+    """
+    probes = _trip_probes(resistor)
+    found = estimate(growth, probes, [free], [condition])
+    if not isinstance(found, Unsolved):
+        return found
+    heat = probes.pop("dissipation")
+    found = estimate(growth, probes, [free], [condition])
+    if isinstance(found, Unsolved):
+        return found
+    greatest = [max(abs(found[name].spread.minimum), abs(found[name].spread.maximum)) for name in probes]
+    bound = Spread(0.0, 0.0, greatest[0] * greatest[1], heat[1])
+    return {**found, "dissipation": replace(found["current"], spread=bound, statistical=bound)}
 
 
 def _trip_probes(resistor: Resistor) -> dict[str, tuple[Probe, str]]:

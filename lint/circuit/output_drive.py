@@ -95,7 +95,11 @@ class OutputDrive:
         return found if isinstance(found, Unsolved) else found["resistance"]
 
     def discharger(self, driven: Driven) -> str:
-        """Return the driver whose emitter is on the control terminal, or beside it; empty for none."""
+        """Return the driver whose emitter is on the control terminal, or beside it; empty for none.
+
+        A transistor whose base nothing pulls empties nothing: its base must lead to a known potential, other
+        than by way of the control terminal, or be driven by another transistor.
+        """
         control = driven.transistor.control
         beside = {control}
         for connection in self.circuit.connections(control):
@@ -103,11 +107,25 @@ class OutputDrive:
                 beside.update(
                     n for n in self.circuit.other_nets(connection.part, control) if n not in self.known
                 )
-        for reference in driven.drivers:
+        for place, reference in enumerate(driven.drivers):
             driver = self.drive.transistors.get(reference)
-            if driver is None or driver.common in beside:
+            if driver is None or (driver.common in beside and (place > 0 or self._is_pulled(driver, beside))):
                 return reference
         return ""
+
+    def _is_pulled(self, driver: Transistor, beside: set[str]) -> bool:
+        """Tell whether resistors lead from a driver's control terminal to a known potential or the supply."""
+        waiting, seen = [driver.control], {driver.control, *beside}
+        while waiting:
+            net = waiting.pop()
+            if net in self.known or net == self.controller.net("supply"):
+                return True
+            for connection in self.circuit.connections(net):
+                if self.circuit.kind(connection.part) in ("resistor", "trimmer", "jumper", "inductor"):
+                    new = [n for n in self.circuit.other_nets(connection.part, net) if n not in seen]
+                    seen.update(new)
+                    waiting += new
+        return False
 
     def _stops(self) -> tuple[str, ...]:
         """Return the outputs' own nets: what stands on them is no obstacle, for the outputs are open."""
