@@ -42,12 +42,10 @@ def bleeder(circuit: Circuit, first: Sequence[str], second: Sequence[str]) -> Bl
     ]
     network = Network(tuple(r for r in resistors if r.a != r.b), {_FIRST: _held(1.0), _SECOND: _held(0.0)})
     if not {_FIRST, _SECOND} <= set(network.nets()):
-        return None
+        return None  # a walk from the one that meets the other has joined them
     solution = solve(network, {}, 3)
     across = {r.name: abs(float(solution.voltage(r.a, r.b)[1])) for r in resistors if r.a != r.b}
     shares = {name: share for name, share in across.items() if share > _NOTHING}
-    if not shares:
-        return None  # the walks from both ends meet nowhere
     least, nominal, most = (float(ohms) for ohms in 1.0 / solution.current_out_of(_FIRST))
     return Bleeder(Spread(least, nominal, most, "ohm"), shares)
 

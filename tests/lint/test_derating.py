@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import tomllib
 from pathlib import Path
-from typing import Any
+from typing import Any, cast
 
 import pytest
 from hypothesis import given, settings
@@ -39,7 +39,7 @@ POLICIES = st.sampled_from(policies())
 
 def tables(content: dict[str, Any]) -> list[dict[str, Any]]:
     """Return the innermost tables: those that hold figures."""
-    inner = [value for value in content.values() if isinstance(value, dict)]
+    inner = [cast("dict[str, Any]", value) for value in content.values() if isinstance(value, dict)]
     return [table for one in inner for table in tables(one)] if inner else [content]
 
 

@@ -187,7 +187,7 @@ class TestPolarity:
 
 def edif(plus: str, minus: str) -> str:
     """Return one polarised capacitor as EDIF, its pins named, on the nets given."""
-    joined = dict.fromkeys(("VBAT", "GND"), "")
+    joined: dict[str, str] = dict.fromkeys(("VBAT", "GND"), "")
     joined[plus] += "(portRef POS (instanceRef C1))"
     joined[minus] += "(portRef NEG (instanceRef C1))"
     nets = "".join(f"(net {net} (joined {ports}))" for net, ports in joined.items())
