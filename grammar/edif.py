@@ -6,6 +6,10 @@ as it was published, and what schematic tools write in its name, which the tests
 
 from __future__ import annotations
 
+import gc
+from collections.abc import Generator
+from contextlib import contextmanager
+
 from lark import UnexpectedInput
 
 from .edif_budget import Budget
@@ -20,7 +24,7 @@ from .edif_places import Places
 from .errors import NetlistError
 from .netlist import Netlist
 
-_PADDING = " \t\r\n\x1a\0"  # old systems mark the end of a text, or fill up its last block
+_PADDING = "\x1a\0"  # old systems mark the end of a text, or fill up its last block
 
 
 def read_edif(text: str, file: str) -> Netlist:
@@ -31,7 +35,27 @@ def read_edif(text: str, file: str) -> Netlist:
 
     Raises NetlistError where the text is no EDIF 2 0 0, is damaged, or grows beyond all bounds.
     """
-    text = text.rstrip(_PADDING)
+    with _no_search_for_cycles():
+        return _read(text if text[-1:] not in _PADDING else text.rstrip(_PADDING), file)
+
+
+@contextmanager
+def _no_search_for_cycles() -> Generator[None]:
+    """Have the garbage collector rest: forms and parts hold no cycles.
+
+    Otherwise it would search all that has been read, again and again, and large files would take longer than
+    in proportion.
+    """
+    was_enabled = gc.isenabled()
+    gc.disable()
+    try:
+        yield
+    finally:
+        if was_enabled:
+            gc.enable()
+
+
+def _read(text: str, file: str) -> Netlist:
     places = Places(text, file)
     check_beginning(text, places)
     try:

@@ -12,7 +12,8 @@ from .edif_names import integer
 from .edif_places import Places
 from .errors import NetlistError
 
-_BEGINNING = re.compile(r"\s*\(\s*edif(?![^\s()\"])", re.IGNORECASE | re.ASCII)
+_FIRST = re.compile(r"\S")
+_BEGINNING = re.compile(r"\(\s*edif(?![^\s()\"])", re.IGNORECASE | re.ASCII)
 _FORM_START = re.compile(r'\(\s*([^\s()"]*)(?:\s*\(\s*rename)?\s*([^\s()"]*)', re.IGNORECASE)
 _PARENTHESIS = re.compile(r'"[^"]*"|([()])')
 _STRING = re.compile(r'"[^"]*"')
@@ -33,19 +34,19 @@ _EXPECTATIONS = {
 
 def check_beginning(text: str, places: Places) -> None:
     """Raise NetlistError where the text is empty or no EDIF at all."""
-    if not text.strip():
+    first = _FIRST.search(text)
+    if first is None:
         raise NetlistError(
             "the file is empty",
             places.at(0),
             expected="an EDIF 2 0 0 netlist, which begins with (edif",
             remedy="export the netlist again",
         )
-    if not _BEGINNING.match(text):
-        offset = len(text) - len(text.lstrip())
+    if not _BEGINNING.match(text, first.start()):
         raise NetlistError(
             "this is not an EDIF file",
-            places.at(offset),
-            excerpt=places.line_at(offset),
+            places.at(first.start()),
+            excerpt=places.line_at(first.start()),
             expected="(edif name (edifVersion 2 0 0) ... as the first form",
             remedy="export the netlist as EDIF 2 0 0",
         )

@@ -47,10 +47,11 @@ class FlatCircuit:
         while self._waiting:
             sheet = self._waiting.pop()
             sheet.is_entered = True
-            self._walk(sheet)
+            self._walk(sheet, sheet.source.view.contents or Contents())
+            if sheet.outer is None:
+                sheet.source.view.contents = Contents()  # walked once and never again: it takes much memory
 
-    def _walk(self, sheet: SheetEnd) -> None:
-        contents = sheet.source.view.contents or Contents()
+    def _walk(self, sheet: SheetEnd, contents: Contents) -> None:
         ends = NameTable[End]()
         first_part, first_inner = len(self.parts), len(self._waiting)
         for instance in contents.instances:

@@ -20,7 +20,11 @@ def write_netlist(flat: FlatCircuit, places: Places, netlist: Netlist, notes: No
     keys = _name_nets(flat, places, netlist, notes)
     find = flat.nets.find
     builder = PartBuilder(places, lambda piece: keys[find(piece)], notes)
-    _add_parts([builder.build(end) for end in flat.parts], netlist, notes)
+    built: list[Built] = []
+    flat.parts.reverse()
+    while flat.parts:  # one goes as the other comes: both together take much memory
+        built.append(builder.build(flat.parts.pop()))
+    _add_parts(built, netlist, notes)
     for part in netlist.parts.values():
         for i, pin in enumerate(part.pins):
             if pin.net:

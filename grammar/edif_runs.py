@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterator
+from sys import intern
 
 from .edif_forms import (
     CellRef,
@@ -18,7 +19,7 @@ from .edif_forms import (
     PinNumber,
     Property,
 )
-from .edif_names import Name, decode, identifier
+from .edif_names import Name, decode
 
 _DEEPEST = 8  # as the terminal LIST
 
@@ -32,7 +33,7 @@ def _list(depth: int) -> str:
 
 
 _LIST = _list(_DEEPEST)
-_WORD = r'([^\s()"]++)\s*+'
+_WORD = r'(?:&(?=[^\s()"]))?+([^\s()"]++)\s*+'  # without the & that marks an identifier
 _RENAME = rf'\(\s*+rename\s++{_WORD}"([^"]*+)"\s*+\)\s*+'
 _NAMED = rf'\(\s*+name\s++{_WORD}(?:[^()"]++|"[^"]*+"|{_LIST})*+\)\s*+'
 _DISPLAYED = r'(?:\(\s*+stringdisplay\s*+)?+"([^"]*+)"'
@@ -69,7 +70,7 @@ def port_references(text: str, run: JoinedRun) -> Iterator[tuple[str, str, int]]
     """Yield port, instance (empty where a port of the cell itself is meant) and offset of each `portRef`."""
     for match in _PORT_REF_FORM.finditer(text, run.start, run.end):
         port, instance = match.groups("")
-        yield identifier(port), instance and identifier(instance), match.start()
+        yield intern(port), instance, match.start()
 
 
 def instance_items(text: str, run: InstanceRun) -> Iterator[Property | Designator | PinNumber]:
@@ -79,9 +80,9 @@ def instance_items(text: str, run: InstanceRun) -> Iterator[Property | Designato
         if last == _PROPERTY_VALUE:
             plain, _, renamed, value = match.group(1, 2, 3, 4)
             if value:  # many exporters write a row of empty fields
-                yield Property(identifier(plain) if plain else decode(renamed), decode(value))
+                yield Property(intern(plain) if plain else decode(renamed), decode(value))
         elif last == _PIN_NUMBER:
-            yield PinNumber(identifier(match[6] or match[7]), decode(match[8]))
+            yield PinNumber(match[6] or match[7], decode(match[8]))
         elif last == _DESIGNATOR_TEXT:
             yield Designator(decode(match[5]))
 
@@ -91,9 +92,9 @@ def read_instance(token: str, start: int) -> tuple[Name, str, InstanceRun]:
     match = _INSTANCE_FORM.match(token)
     assert match is not None  # the terminal has the same shape
     plain, named, renamed, display, view_ref, *_ = match.groups()
-    word = identifier(plain or named or renamed)
+    word = plain or named or renamed
     group = 1 if plain else 2 if named else 3
-    name = Name(word, word if display is None else decode(display), start + match.start(group))
+    name = Name(word, word if display is None else decode(display), start + _word_start(match, group))
     return name, view_ref, InstanceRun(start + match.end(), start + len(token))
 
 
@@ -102,8 +103,10 @@ def read_net(token: str, start: int) -> tuple[Name, JoinedRun]:
     match = _NET_FORM.match(token)
     assert match is not None
     plain, renamed, display = match.groups()
-    word = identifier(plain or renamed)
-    name = Name(word, word if display is None else decode(display), start + match.start(1 if plain else 2))
+    word = plain or renamed
+    name = Name(
+        word, word if display is None else decode(display), start + _word_start(match, 1 if plain else 2)
+    )
     joined = _JOINED_FORM.match(token, match.end())
     assert joined is not None
     return name, JoinedRun(start + joined.end(), start + len(token))
@@ -114,7 +117,7 @@ def read_property(token: str) -> Property:
     match = _PROPERTY_FORM.match(token)
     assert match is not None
     plain, _, renamed, value = match.groups()
-    return Property(identifier(plain) if plain else decode(renamed), decode(value))
+    return Property(intern(plain) if plain else decode(renamed), decode(value))
 
 
 def read_pin_number(token: str) -> PinNumber:
@@ -122,7 +125,7 @@ def read_pin_number(token: str) -> PinNumber:
     match = _PORT_INSTANCE_FORM.match(token)
     assert match is not None
     plain, named, number = match.groups("")
-    return PinNumber(identifier(plain or named), decode(number))
+    return PinNumber(plain or named, decode(number))
 
 
 def read_quoted(token: str) -> str:
@@ -136,12 +139,18 @@ def read_rename(token: str, start: int) -> Name:
     """Return the name that a rename defines."""
     match = _RENAME_FORM.match(token)
     assert match is not None
-    return Name(identifier(match[1]), decode(match[2]), start + match.start(1))
+    return Name(match[1], decode(match[2]), start + _word_start(match, 1))
 
 
 def read_view_ref(token: str) -> CellRef:
     """Return the cell that a `viewRef` names, its library and the view."""
     match = _VIEW_REF_FORM.match(token)
     assert match is not None
-    view, cell, library = match.groups()
-    return CellRef(identifier(cell) if cell else "", identifier(library) if library else "", identifier(view))
+    view, cell, library = match.groups("")
+    return CellRef(cell, library, view)
+
+
+def _word_start(match: re.Match[str], group: int) -> int:
+    """Return where a word starts in the text, its & included."""
+    start = match.start(group)
+    return start - 1 if match.string[start - 1] == "&" else start

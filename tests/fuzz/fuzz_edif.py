@@ -4,7 +4,8 @@
 
 Every file is one of the fixtures, changed in up to eight places: half of them have whole forms left out,
 doubled, moved or given another keyword, the others any text, and scraps that hurt. A file is read or
-refused with a NetlistError; anything else is a failure, and so is one that takes over two seconds. The seed and the number of a failure make it again.
+refused with a NetlistError; anything else is a failure, and so is one that takes
+over two seconds. The seed and the number of a failure make it again.
 """
 
 from __future__ import annotations

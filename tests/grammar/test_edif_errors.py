@@ -27,7 +27,7 @@ def test_empty_text(text: str) -> None:
 
 
 @pytest.mark.parametrize(
-    "text", ["* a SPICE list\nR1 a b 1k\n", "(kicad)", "edif", "(edifact x)", "\x7fELF\0\0"]
+    "text", ["* a SPICE list\nR1 a b 1k\n", "(orchard)", "edif", "(edifact x)", "\x7fELF\0\0"]
 )
 def test_no_edif_at_all(text: str) -> None:
     found = error(text)

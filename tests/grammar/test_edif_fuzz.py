@@ -1,4 +1,4 @@
-"""Any text is read or refused with a NetlistError; `python tests/fuzz/fuzz_edif.py 100000` is a longer run."""
+"""Any text is read or refused with a NetlistError; tests/fuzz/fuzz_edif.py does the same for longer."""
 
 from __future__ import annotations
 
