@@ -64,7 +64,8 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
         Follows the signal from each output to the switches: a common-emitter output pulls low, a follower
         pulls high, a driver turns it round at its collector and passes it at its emitter. A P-channel or
         PNP switch must be pulled low to conduct, an N-channel or NPN one high. Behind a transformer or a
-        driver circuit nothing is said.
+        driver circuit nothing is said. A MOSFET whose body diode leads out of a supply, or into ground,
+        stands the wrong way round.
     Why:
         Dead time, soft start and the limits all act by keeping the output transistors off. With the sense
         turned round, the switch is on when everything says off.
@@ -73,7 +74,18 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
     Source:
         common practice, no source
     Remedy:
-        Use the output the other way (emitter in place of collector), or add or leave out one inverting stage.
+        Use the output the other way (emitter in place of collector), or add or leave out one inverting
+        stage; exchange drain and source of a MOSFET that stands the wrong way round.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        R1 VCC C1 1k
+        M1 SW C1 0 0 NMOS
+        L1 VCC SW 100u
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        R1 E1 0 1k
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
     """
     for _, driven in _switches(controller, design):
         one = driven.transistor
@@ -121,6 +133,15 @@ def pull_down(controller: Controller, design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Fit some kilo-ohms from the gate to the source.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+        R1 E1 0 1k
     """
     solver = design.output_drive(controller)
     for _, driven in _mosfets(controller, design):
@@ -149,9 +170,9 @@ def turn_off(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is the gate emptied fast enough when the output lets go?
 
     What:
-        The outputs pull one way only, so something else must empty the gate: a driver whose emitter is on
-        the gate, or resistors. For resistors the greatest gate capacitance is printed that they empty
-        within the family's share of a period; below 1 nF a person must judge.
+        Looks for what empties the gate, since an output pulls one way only: a driver whose emitter is on
+        the gate, or resistors. Of resistors it prints the greatest gate capacitance that they empty within
+        the family's share of a period; below 1 nF a person must judge.
     Why:
         A gate emptied slowly keeps the switch half on: it heats, and in bridges meets the other switch.
     Formula:
@@ -161,6 +182,20 @@ def turn_off(controller: Controller, design: Design) -> Iterable[Verdict]:
     Remedy:
         Lower the resistor, or add a transistor that empties the gate (emitter to the gate, base to the
         output, a diode across).
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+        R1 E1 0 1k
+        R2 RT 0 22k
+        C1 CT 0 1n
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+        R1 E1 0 220
+        R2 RT 0 22k
+        C1 CT 0 1n
     """
     solver = design.output_drive(controller)
     timing = design.timing(controller)
@@ -208,6 +243,20 @@ def gate_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         common practice, no source: 20 V is the usual rating, 4.5 V what logic-level types are specified at
     Remedy:
         Divide or clamp the drive (a zener from gate to source), or feed it from another rail.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        V1 VCC 0 28
+        R1 VCC GATE 1k
+        R2 GATE C1 100
+        M1 SW GATE VCC VCC PMOS
+        L1 SW VOUT 100u
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        V1 VCC 0 28
+        R1 VCC GATE 1k
+        R2 GATE C1 1k
+        M1 SW GATE VCC VCC PMOS
+        L1 SW VOUT 100u
     """
     solver = design.output_drive(controller)
     for output, driven in _mosfets(controller, design):
