@@ -36,9 +36,16 @@ def complete_path(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: the path is looked for in the graph
     Source:
-        SLVS074 p.5 (common emitter and follower are the two ways the outputs are specified in).
+        SLVS074 p.5 (common emitter and follower are the two ways the outputs are specified in)
     Remedy:
         Add the pull-up or pull-down, or the load that is missing.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        M1 SW E1 0 0 NMOS
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        M1 SW E1 0 0 NMOS
+        R1 E1 0 1k
     """
     for output in _live(controller, design):
         for net, wanted in _sides(output):
@@ -102,15 +109,23 @@ def current(controller: Controller, design: Design) -> Iterable[Verdict]:
         maximum, the bases of bipolar drivers as junctions. Two joined outputs share, and may carry twice
         the current. Direct current only: the peak that charges a gate is short, and not counted.
     Why:
-        The outputs saturate no further above their recommended current, and are destroyed above the
-        absolute one; a pull-up or a base resistor a decade too small does it.
+        Above the recommended current an output no longer saturates, above the absolute one it is
+        destroyed; a pull-up or a base resistor a decade too small does it.
     Formula:
         I [A] by nodal analysis; for a plain pull-up I = (V(supply) - V(sat)) [V] / R [ohm]
     Source:
         0.2 A recommended: three second sources' data sheets; 0.25 A absolute: SLVS074 design example;
-        V(sat): SLVS074 p.5.
+        V(sat): SLVS074 p.5
     Remedy:
         Raise the resistance in the output's path, or put a transistor in between.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        V1 VCC 0 12
+        R1 VCC C1 47
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        V1 VCC 0 12
+        R1 VCC C1 470
     """
     for outputs in _groups(_live(controller, design)):
         yield _current_verdict(controller, design, outputs)
@@ -156,9 +171,17 @@ def voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         V(collector) [V] <= greatest supply in its path; with a winding, that of the clamp
     Source:
-        40 V recommended: three second sources' data sheets; 41 V absolute: SLVS074, from memory.
+        40 V recommended: three second sources' data sheets; 41 V absolute: SLVS074, from memory
     Remedy:
         Feed the output from a lower rail, or put a transistor of enough voltage in between.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        V1 VIN 0 48
+        R1 VIN C1 4.7k
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494
+        V1 VIN 0 24
+        R1 VIN C1 4.7k
     """
     for outputs in _groups(_live(controller, design)):
         collector = outputs[0].collector
@@ -252,9 +275,15 @@ def dissipation(controller: Controller, design: Design) -> Iterable[Verdict]:
         allowed: 1 W up to 45 degC, from there falling to nothing at 125 degC
     Source:
         SLVS074 p.5 (saturation voltage, supply current); a second source's data sheet (1 W up to 45 degC,
-        80 K/W, junction up to 125 degC).
+        80 K/W, junction up to 125 degC)
     Remedy:
         Lower the supply of the controller, or the output current.
+    Fails:
+        V1 VCC 0 36
+        [design] ambient = "-10 degC .. 85 degC"
+    Passes:
+        V1 VCC 0 24
+        [design] ambient = "-10 degC .. 85 degC"
     """
     supply = controller.net("supply")
     potential = design.potential(supply) if supply else None
