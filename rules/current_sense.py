@@ -23,16 +23,25 @@ def present(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is the current limited at all?
 
     What:
-        Looks for an amplifier whose inputs stand on a current-sense resistor.
+        Looks for an amplifier whose inputs stand on a current-sense resistor, and for a part that can send
+        the load's current through that resistor.
     Why:
         Without a limit the first short circuit, or a load that starts hard, takes the switch with it.
         A fuse saves the wiring, not the switch.
     Formula:
         none: connectivity
     Source:
-        common practice, no source.
+        common practice, no source
     Remedy:
         Put a sense resistor into the output's return and compare its voltage on the second amplifier.
+    Fails:
+        R1 REF 2IN- 1k
+        R2 0 2IN+ 1k
+    Passes:
+        R1 REF 2IN- 1k
+        R2 RTN 2IN+ 1k
+        R3 RTN 0 0.1
+        J1 VOUT RTN PUMP
     """
     amplifiers = [a for a in design.amplifiers(controller) if a.use != "unmapped"]
     if not amplifiers:
@@ -109,9 +118,19 @@ def sense_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         share = offset [V] / threshold [V]; drop = I(full load) [A] x R [ohm] / V(output) [V]
     Source:
-        SLVS074 p.4 (offset 10 mV); the limit of 5 % is common practice, no source.
+        SLVS074 p.4 (offset 10 mV); the limit of 5 % is common practice, no source
     Remedy:
         Raise threshold and sense resistance together.
+    Fails:
+        R1 REF 2IN- 100k
+        R2 2IN- 0 1k
+        R3 RTN 2IN+ 1k
+        R4 RTN 0 0.01
+    Passes:
+        R1 REF 2IN- 9.1k
+        R2 2IN- 0 1k
+        R3 RTN 2IN+ 1k
+        R4 RTN 0 0.1
     """
     found = design.trip(controller)
     if not isinstance(found, Trip):
@@ -159,9 +178,27 @@ def sense_polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         sign of the current that solves V(in+) - V(in-) = 0
     Source:
-        SLVS074 p.4 (polarity, common-mode range down to -0.3 V).
+        SLVS074 p.4 (polarity, common-mode range down to -0.3 V)
     Remedy:
         Exchange the ends of the sense resistor, or the amplifier's inputs.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF LIM RTN 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+        D1 SW VOUT DIODE
+        J1 VCC RTN BATTERY
+        R1 RTN 0 0.1
+        R2 REF LIM 9.1k
+        R3 LIM 0 1k
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF LIM RTN 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+        D1 SW VOUT DIODE
+        J1 VOUT RTN PUMP
+        R1 RTN 0 0.1
+        R2 REF LIM 9.1k
+        R3 LIM 0 1k
     """
     found, stage = design.trip(controller), design.power_stage(controller)
     if not isinstance(found, Trip) or not isinstance(stage, PowerStage) or not stage.sensed:
@@ -196,9 +233,23 @@ def pulse_by_pulse(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: what flows in the sense resistor
     Source:
-        common practice, no source (no latch within a cycle).
+        common practice, no source (no latch within a cycle)
     Remedy:
         Sense the averaged output current, or add a comparator with a latch on the dead-time pin.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF LIM SENSE 494
+        M1 SW E1 SENSE SENSE NMOS
+        L1 VCC SW 100u
+        D1 SW VOUT DIODE
+        J1 VOUT 0 PUMP
+        R1 SENSE 0 0.1
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 VCC E1 E2 C2 VCC OUTCTRL REF LIM SENSE 494
+        M1 SW E1 0 0 NMOS
+        L1 VCC SW 100u
+        D1 SW VOUT DIODE
+        J1 VOUT SENSE PUMP
+        R1 SENSE 0 0.1
     """
     stage = design.power_stage(controller)
     amplifier = next((a for a in design.amplifiers(controller) if a.use == "current"), None)
