@@ -82,13 +82,12 @@ def voltage_range(controller: Controller, design: Design) -> Iterable[Verdict]:
         V [V] by nodal analysis of the network on the pin, bias current [A] included
     Source:
         SLVS074 p.5 (zero duty at 3 V typical, 3.3 V maximum) and p.11 (0 V to 3.3 V sweep dead time from
-        its minimum to 100 %).
+        its minimum to 100 %)
     Remedy:
         Choose the divider, or a fixed resistor in series with the trimmer, so that the pin stays in range.
     Fails:
-        R1 VCC DTC 1k
-        R2 DTC 0 1k
-        [rails.VCC] voltage = "12 V"
+        R1 REF DTC 1k
+        R2 DTC 0 10k
     Passes:
         R1 REF DTC 10k
         R2 DTC 0 1k
@@ -166,19 +165,19 @@ def least_dead_time(controller: Controller, design: Design) -> Iterable[Verdict]
         dead time [s] = share(V) / oscillator frequency [Hz]; share = 0.03 + 0.97 V / 3.3 V (text model),
         (V + 0.11 V) / 3.0 V (ramp model), never below the controller's own 3 % to 5 %
     Source:
-        SLVS074 p.1 and p.11 (3 % and 5 % at 0 V, 100 % at 3.3 V).
+        SLVS074 p.1 and p.11 (3 % and 5 % at 0 V, 100 % at 3.3 V)
     Remedy:
         Raise the pin's voltage with a divider from the reference.
     Fails:
-        R1 DTC 0 100
-        R2 RT 0 12k
+        R1 DTC 0 1k
+        R2 RT 0 22k
         C1 CT 0 1n
-        [controllers.U1] dead_time = "3 us .. 5 us"
+        [controllers.U1] dead_time = "2 us .. 6 us"
     Passes:
-        R1 REF DTC 10k
-        R2 DTC 0 1k
-        R3 RT 0 22k
+        R1 DTC 0 1k
+        R2 RT 0 22k
         C1 CT 0 1n
+        R3 REF DTC 10k
         [controllers.U1] dead_time = "2 us .. 6 us"
     """
     net = controller.net("dead time")
@@ -314,25 +313,26 @@ def duty_headroom(controller: Controller, design: Design) -> Iterable[Verdict]:
     What:
         Subtracts the greatest dead time from the whole period and compares the rest with the duty that
         the recognised power stage needs over its rails, ideal parts taken. Stages with a transformer need
-        its turns ratio, which a netlist does not tell; there `maximum_duty` of the brief is compared.
+        its turns ratio, which a netlist does not tell; there `maximum_duty` of the brief is compared. A
+        buck fed below its output, or a boost fed above it, fails whatever the dead time.
     Why:
         At the lowest input the converter needs its widest pulse. What the dead time takes away is missing
         from the output voltage.
     Formula:
         1 - dead time share >= duty; buck Vo / Vi, boost 1 - Vi / Vo, inverting |Vo| / (Vi + |Vo|)
     Source:
-        volt-second balance of the inductor; SLVS074 p.11 (dead time over the pin's voltage).
+        volt-second balance of the inductor; SLVS074 p.11 (dead time over the pin's voltage)
     Remedy:
         Lower the voltage on the dead-time pin.
     Fails:
         R1 REF DTC 10k
         R2 DTC 0 3.3k
-        R3 OUTCTRL 0 1
-        [controllers.U1] maximum_duty = "80 %"
+        R3 OUTCTRL 0 0
+        [controllers.U1] maximum_duty = "75 %"
     Passes:
         R1 REF DTC 10k
         R2 DTC 0 1k
-        R3 OUTCTRL 0 1
+        R3 OUTCTRL 0 0
         [controllers.U1] maximum_duty = "75 %"
     """
     net = controller.net("dead time")
