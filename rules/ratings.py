@@ -38,7 +38,7 @@ def power(design: Design) -> Iterable[Verdict]:
         names. A resistor without a rating is asked about only where it takes more than the smallest usual
         chip case, 0402, stands. Resistors at the controller's outputs are taken as if the output conducted
         all the time: too much is then for a person to judge. Current-sense resistors have a rule of their
-        own. Those that fail stand alone: all others are one verdict, with the closest.
+        own. Each that fails has a verdict to itself; all others share one, which names the closest.
     Why:
         An overloaded resistor drifts, browns the board and opens, on the hottest day of the year.
     Formula:
@@ -48,6 +48,14 @@ def power(design: Design) -> Iterable[Verdict]:
         EEE-INST-002 section R2, ECSS-Q-ST-30-11C (from memory) or IEC 60115-8, by the policy
     Remedy:
         Fit the wattage printed, or share the power between two resistors.
+    Fails:
+        V1 VCC 0 24
+        R1 VCC 0 2.2k
+        parts: R1, power 0.25 W
+    Passes:
+        V1 VCC 0 24
+        R1 VCC 0 2.2k
+        parts: R1, power 1 W
     """
     derating = _power_share(design)
     loads: list[Load] = []
@@ -82,6 +90,15 @@ def voltage(design: Design) -> Iterable[Verdict]:
         EEE-INST-002 section R2 table 4 note 2, ECSS-Q-ST-30-11C (from memory) or IEC 60115-8, by the policy
     Remedy:
         Put two or more resistors in series, or fit a larger case.
+    Fails:
+        V1 VIN 0 400
+        R1 VIN 0 1MEG
+        parts: R1, voltage 350 V
+    Passes:
+        V1 VIN 0 400
+        R1 VIN N1 470k
+        R2 N1 0 470k
+        parts: R1-R2, voltage 350 V
     """
     derating = resistor_voltage(design.circuit.conditions.policy)
     loads: list[Load] = []
@@ -115,6 +132,14 @@ def package_assumed(design: Design) -> Iterable[Verdict]:
         common makers' data of thick-film chip resistors; the derating by the policy
     Remedy:
         Fit a larger case, or tell the rating in the parts list.
+    Fails:
+        V1 VCC 0 24
+        R1 VCC 0 4.7k
+        parts: R1, package 0603
+    Passes:
+        V1 VCC 0 24
+        R1 VCC 0 4.7k
+        parts: R1, package 1206
     """
     heat, pull = _power_share(design), resistor_voltage(design.circuit.conditions.policy)
     hot = [
