@@ -39,6 +39,14 @@ def voltage(design: Design) -> Iterable[Verdict]:
         EEE-INST-002 section C1 table 4, ECSS-Q-ST-30-11C (from memory) or common practice, by the policy
     Remedy:
         Fit the rated voltage printed, or another dielectric.
+    Fails:
+        V1 VCC 0 24
+        C1 VCC 0 100u
+        parts: C1, voltage 16 V
+    Passes:
+        V1 VCC 0 24
+        C1 VCC 0 100u
+        parts: C1, voltage 50 V
     """
     loads: list[Load] = []
     unrated: list[str] = []
@@ -58,9 +66,9 @@ def polarity(design: Design) -> Iterable[Verdict]:
 
     What:
         Takes a capacitor for a polarised one where its dielectric, value, model or type says so, or where
-        its pins are named + and -; an unmarked one never is. Its positive pin must not lie below its
-        negative one in regulation. The pins' names tell which is which, else the order in the list, the
-        positive one first: then a person must look.
+        its pins are named + and -; else never. Its positive pin must not lie below its negative one in
+        regulation. The pins' names tell which is which, or else the order in the list, the positive one
+        first: then a person must look.
     Why:
         A reversed electrolytic gasses and bursts; a reversed tantalum catches fire.
     Formula:
@@ -69,6 +77,14 @@ def polarity(design: Design) -> Iterable[Verdict]:
         common practice, no source
     Remedy:
         Turn the capacitor round.
+    Fails:
+        V1 VCC 0 24
+        C1 0 VCC 100u
+        parts: C1, dielectric aluminium
+    Passes:
+        V1 VCC 0 24
+        C1 VCC 0 100u
+        parts: C1, dielectric aluminium
     """
     found = design.stresses(IN_REGULATION).of.values()
     asked = [stress for stress in found if _is_polarised(design, stress.part)]
