@@ -41,6 +41,12 @@ def scope(design: Design) -> Iterable[Verdict]:
         IEC 60950-1 (60 V, 240 VA); IEC 62368-1, from memory
     Remedy:
         Follow the product standard and the local codes; leave to licensed practice what they ask it for.
+    Fails:
+        C1 VIN 0 100u
+        [rails.VIN] voltage = "90 V"
+    Passes:
+        C1 VIN 0 100u
+        [rails.VIN] voltage = "24 V"
     """
     reasons = [*_mains_reason(design), *_voltage_reason(design), *_power_reason(design)]
     if reasons:
@@ -68,6 +74,15 @@ def isolation(design: Design) -> Iterable[Verdict]:
         IEC 60384-14 (classes of capacitors); common practice, no source (the rule)
     Remedy:
         Take the part out, or put an isolating one in its place.
+    Fails:
+        R1 HV VOUT 1MEG
+        [rails.HV] voltage = "325 V"; circuit = "primary"
+        [rails.VOUT] voltage = "12 V"; circuit = "secondary"
+    Passes:
+        C1 HV VOUT 1n
+        parts: C1, dielectric Y1
+        [rails.HV] voltage = "325 V"; circuit = "primary"
+        [rails.VOUT] voltage = "12 V"; circuit = "secondary"
     """
     primary, secondary = design.declared("mains", "primary"), design.declared("secondary")
     if not primary or not secondary:
