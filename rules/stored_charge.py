@@ -50,6 +50,16 @@ def discharge(design: Design) -> Iterable[Verdict]:
         published texts; IEC 62368-1 asks for the same with one resistor open, from memory
     Remedy:
         Put bleeder resistors across the capacitor, two or more in series.
+    Fails:
+        C1 L N 470n
+        [rails.L] voltage = "230 V"; circuit = "mains"
+        [rails.N] voltage = "230 V"; circuit = "mains"
+    Passes:
+        C1 L N 470n
+        R1 L N1 470k
+        R2 N1 N 470k
+        [rails.L] voltage = "230 V"; circuit = "mains"
+        [rails.N] voltage = "230 V"; circuit = "mains"
     """
     groups = _mains(design)
     if len(groups) == 1:
@@ -81,6 +91,13 @@ def stored_energy(design: Design) -> Iterable[Verdict]:
         IEC 60204-1 (60 V within 5 s), as quoted in published texts; IEC 60950-1 (20 J), from memory
     Remedy:
         Put a bleeder across the capacitor, or a warning with the time to wait beside it.
+    Fails:
+        C1 HV 0 10u
+        [rails.HV] voltage = "325 V"
+    Passes:
+        C1 HV 0 10u
+        R1 HV 0 150k
+        [rails.HV] voltage = "325 V"
     """
     pairs: dict[tuple[str, str], list[Part]] = {}
     for stress in design.stresses().of.values():
