@@ -139,8 +139,9 @@ def sense_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     offset = controller.profile.figure("amplifier.offset").maximum or 0.0
     threshold = found.threshold.spread
     least = offset / (practice.maximum or 1.0)
+    share = percent(offset / threshold.nominal) if threshold.nominal > 0 else "more than all"
     message = (
-        f"offset of {engineering(offset, 'V')} is {percent(offset / threshold.nominal)} of the threshold "
+        f"offset of {engineering(offset, 'V')} is {share} of the threshold "
         f"{engineering(threshold.nominal, 'V')}{_drop(controller, design)}"
     )
     verdict = judge(
@@ -159,7 +160,7 @@ def _drop(controller: Controller, design: Design) -> str:
     amplifier = next(a for a in design.amplifiers(controller) if a.use == "current")
     output = next((a.output for a in design.amplifiers(controller) if a.output), "")
     rail = design.rail(output)
-    if load is None or rail is None or amplifier.sense is None:
+    if load is None or rail is None or rail.voltage.nominal <= 0 or amplifier.sense is None:
         return ""
     resistance = design.nominal(amplifier.sense.part) or 0.0
     return f"; at full load it takes {percent(load * resistance / rail.voltage.nominal)} of {output}"

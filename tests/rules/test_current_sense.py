@@ -204,3 +204,10 @@ def test_amplifiers_that_are_not_mapped_are_left_to_the_rule_that_says_so(ask: A
     ]
     names = ", ".join(f'"{name}"' for name in [*pins, "-", "-"])
     assert ask("current-limit.present", pump(), brief=f"[controllers.U1]\npins = [{names}]\n") == []
+
+
+def test_a_threshold_of_nothing_is_for_a_person(ask: Ask, pump: Board) -> None:
+    # Without its upper resistor the threshold stands at ground: any current limits.
+    (verdict,) = ask("current-limit.sense-voltage", pump(R9=None))
+    assert verdict.outcome is Outcome.REVIEW
+    assert "more than all of the threshold" in verdict.message
