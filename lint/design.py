@@ -261,15 +261,19 @@ class Design:
 
         return self._keep("output drive", controller.reference, make)
 
-    def stresses(self, regimes: Sequence[Regime] = WITH_FAULTS) -> Stresses:
-        """Return what resistors and capacitors stand while the converters are anywhere in `regimes`."""
+    def stresses(self, regimes: Sequence[Regime] = WITH_FAULTS, *, pulsed: bool = True) -> Stresses:
+        """Return what resistors and capacitors stand while the converters are anywhere in `regimes`.
+
+        pulsed: with the resistors that stand something only while an output conducts
+        """
 
         def read() -> Stresses:
             converters = [Operated(one, self._in_service(one)) for one in self.controllers]
             known = envelope(self.known, converters, regimes)
-            return stresses(self.circuit, known, self.controllers, self._conducting())
+            conducting = self._conducting() if pulsed else ()
+            return stresses(self.circuit, known, self.controllers, conducting)
 
-        return self._keep("stresses", ", ".join(regimes), read)
+        return self._keep("stresses", ", ".join(regimes) + (" and pulses" if pulsed else ""), read)
 
     def trip(self, controller: Controller, *, shorted: bool = False) -> Trip | Unsolved | NoLoop:
         """Return the current at which a controller's current loop takes over.
@@ -359,10 +363,11 @@ class Design:
         return self._keep("operation", controller.reference, lambda: self._operated(controller))
 
     def _conducting(self) -> Iterator[Growth]:
-        """Yield the networks round the controllers' outputs while these conduct."""
+        """Yield the networks round the controllers' outputs while these conduct, of two joined ones once."""
         for controller in self.controllers:
             drive = self.output_drive(controller)
-            networks = (drive.conducting(output) for output in drive.drive.outputs if output.live)
+            live = {(o.collector, o.emitter): o for o in reversed(drive.drive.outputs) if o.live}
+            networks = (drive.conducting(output) for output in live.values())
             yield from (network for network in networks if isinstance(network, Growth))
 
     def _in_service(self, controller: Controller) -> Operation:

@@ -86,7 +86,7 @@ def polarity(design: Design) -> Iterable[Verdict]:
         C1 VCC 0 100u
         parts: C1, dielectric aluminium
     """
-    found = design.stresses(IN_REGULATION).of.values()
+    found = design.stresses(IN_REGULATION, pulsed=False).of.values()
     asked = [stress for stress in found if _is_polarised(design, stress.part)]
     judged = [_polarity(design, stress) for stress in asked]
     yield from (verdict for verdict in judged if verdict is not None)
