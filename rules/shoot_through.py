@@ -40,29 +40,25 @@ def shoot_through(controller: Controller, design: Design) -> Iterable[Verdict]:
     Remedy:
         Raise the dead time, lower the gate's discharge resistance, or empty the gate with a transistor.
     Fails:
-        U1 0 0 COMP DTC CT RT 0 VBAT G1 G2 VBAT VBAT REF REF 0 REF 494
+        U1 1IN+ 1IN- FEEDBACK 0 CT RT 0 VCC E1 E2 VCC VCC REF REF 2IN- 2IN+ 494
         R1 RT 0 12k
         C1 CT 0 1n
-        R2 DTC 0 10
-        M1 DA G1 0 0 NMOS
-        M2 DB G2 0 0 NMOS
-        R3 G1 0 1k
-        R4 G2 0 1k
-        T1 DA VBAT DB SA 0 SB PRESS
-        D1 SA OUT DS
-        D2 SB OUT DS
+        M1 DRAIN1 E1 0 0 NMOS
+        M2 DRAIN2 E2 0 0 NMOS
+        T1 DRAIN1 VCC DRAIN2 SEC 0 PRESS
+        D1 SEC VOUT DIODE
+        R2 E1 0 1k
+        R3 E2 0 1k
     Passes:
-        U1 0 0 COMP DTC CT RT 0 VBAT G1 G2 VBAT VBAT REF REF 0 REF 494
+        U1 1IN+ 1IN- FEEDBACK 0 CT RT 0 VCC E1 E2 VCC VCC REF REF 2IN- 2IN+ 494
         R1 RT 0 12k
         C1 CT 0 1n
-        R2 DTC 0 10
-        M1 DA G1 0 0 NMOS
-        M2 DB G2 0 0 NMOS
-        R3 G1 0 47
-        R4 G2 0 47
-        T1 DA VBAT DB SA 0 SB PRESS
-        D1 SA OUT DS
-        D2 SB OUT DS
+        M1 DRAIN1 E1 0 0 NMOS
+        M2 DRAIN2 E2 0 0 NMOS
+        T1 DRAIN1 VCC DRAIN2 SEC 0 PRESS
+        D1 SEC VOUT DIODE
+        R2 E1 0 47
+        R3 E2 0 47
     """
     stage, net = design.power_stage(controller), controller.net("dead time")
     if not isinstance(stage, PowerStage) or stage.topology not in _ALTERNATING or not net:
