@@ -36,7 +36,7 @@ def driven(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         offset [V] = bias current [A] x resistance to the driving point [ohm]
     Source:
-        SLVS074 p.5 (input bias current of the dead-time control); common practice, no source (the rule).
+        SLVS074 p.5 (input bias current of the dead-time control); common practice, no source (the rule)
     Remedy:
         Tie the pin to ground, or to a divider from the reference pin of a few kilo-ohms.
     Fails:
@@ -268,7 +268,7 @@ def fed_from(controller: Controller, design: Design) -> Iterable[Verdict]:
     Formula:
         none: connectivity
     Source:
-        common practice, no source.
+        common practice, no source
     Remedy:
         Take the top of the divider to the reference pin.
     Fails:
