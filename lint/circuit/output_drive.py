@@ -29,6 +29,9 @@ _TEST_CURRENT = 1e-3
 # Parts on an output's own nets whose direct current the network tells.
 _TOLD = frozenset({"resistor", "trimmer", "capacitor", "diode", "transistor", "jumper", "fuse", "test point"})
 
+# An emitter pulls one way only: the gate of an N-channel type down by a PNP, that of a P-channel type up.
+_EMPTIED_BY = {"N": "P", "P": "N"}
+
 
 @dataclass(slots=True)
 class OutputDrive:
@@ -104,21 +107,29 @@ class OutputDrive:
         beside = {control}
         for connection in self.circuit.connections(control):
             if self.circuit.kind(connection.part) in ("resistor", "jumper"):
-                beside.update(
-                    n for n in self.circuit.other_nets(connection.part, control) if n not in self.known
-                )
+                others = self.circuit.other_nets(connection.part, control)
+                beside.update(net for net in others if not self._is_stiff(net))
         for place, reference in enumerate(driven.drivers):
             driver = self.drive.transistors.get(reference)
-            if driver is None or (driver.common in beside and (place > 0 or self._is_pulled(driver, beside))):
+            if driver is None:
                 return reference
+            pulled = place > 0 or self._is_pulled(driver, beside)
+            wanted = ("", _EMPTIED_BY.get(driven.transistor.polarity, ""))
+            for one in self.drive.transistors.values():  # the driver, or its counterpart in a pair
+                same = one.control == driver.control and one.common in beside
+                if same and pulled and one.polarity in wanted:
+                    return one.reference
         return ""
+
+    def _is_stiff(self, net: str) -> bool:
+        return net in self.known or net == self.controller.net("supply")
 
     def _is_pulled(self, driver: Transistor, beside: set[str]) -> bool:
         """Tell whether resistors lead from a driver's control terminal to a known potential or the supply."""
         waiting, seen = [driver.control], {driver.control, *beside}
         while waiting:
             net = waiting.pop()
-            if net in self.known or net == self.controller.net("supply"):
+            if self._is_stiff(net):
                 return True
             for connection in self.circuit.connections(net):
                 if self.circuit.kind(connection.part) in ("resistor", "trimmer", "jumper", "inductor"):
