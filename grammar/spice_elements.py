@@ -159,7 +159,10 @@ def _package(words: Words, models: Collection[str]) -> Element:
 
 def _ports(words: Words, models: Collection[str]) -> Element:
     """Read a code model: ports in brackets, with their types, then the model."""
-    return part(split(without_port_marks(words.line), exact=True), "A")
+    unmarked = split(without_port_marks(words.line), exact=True)
+    if not unmarked.texts:
+        raise _neither(words.line)
+    return part(unmarked, "A")
 
 
 def _instance(words: Words, models: Collection[str]) -> Element:

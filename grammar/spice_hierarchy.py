@@ -154,8 +154,10 @@ class Expansion:
         nets = tuple([known.get(node) or self._nets.of(level, element, at) for at, node in enumerate(nodes)])
         if level.chain:
             new = len(self._netlist.nets) - count
-            cost = _COST_OF_PART + 100 * len(nodes) + (_COST_OF_NET + 2 * len(level.path)) * new
-            self._run.budget.spend(cost, element.line)
+            names = 8 * len(level.path) * (1 + new)
+            self._run.budget.spend(
+                _COST_OF_PART + 100 * len(nodes) + _COST_OF_NET * new + names, element.line
+            )
         reference = element.reference
         if level.names or level.path:
             reference = level.path + level.names.get(reference, reference)

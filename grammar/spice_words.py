@@ -16,8 +16,8 @@ LONGEST_NAME = 255
 MOST_WORDS = 100_000
 """Words of one line: far more than the points of any waveform that is written out."""
 
-# A line without any of these is split at its blanks, which is several times faster.
-_SPECIAL = re.compile(r"""[,()={}"']""")
+# A line without any of these is split at its blanks, which is several times faster; a colon ends PARAMS:
+_SPECIAL = re.compile(r"""[,()={}"':]""")
 
 # Parentheses with no blank inside belong to the word they follow, as in Net-(C1-Pad1) and NAND(2).
 _WORD = re.compile(

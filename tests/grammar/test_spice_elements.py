@@ -299,6 +299,11 @@ def test_instances(line: str) -> None:
     assert found.attributes == {"k": "2"}
 
 
+def test_nothing_behind_params_is_positional() -> None:
+    found = part("X1 a b pump PARAMS: k")
+    assert ([pin.net for pin in found.pins], found.model) == (["a", "b"], "pump")
+
+
 @pytest.mark.construct("B3 X with a library file before the name")
 def test_a_file_name_before_the_subcircuit_is_no_node() -> None:
     found = part("XU2 d g s ..\\lib\\irf840.spi IRF840")
