@@ -7,6 +7,7 @@ from .errors import NetlistError
 
 _SPARE = 60_000  # parts, nets and ports that a small file may still grow to: under 100 MB
 _CHARACTERS_EACH = 10  # no part, net or port is written in less
+_CHARACTERS_OF_ITEMS = 50  # the same for what is said of a part, and for the ports that a net joins
 
 
 class Budget:
@@ -29,3 +30,7 @@ class Budget:
                 remedy="check the sizes of the arrays, and cells that use one another many times over; "
                 "else review one block at a time",
             )
+
+    def spend_on_text(self, start: int, end: int) -> None:
+        """Count a span of text that is read once more for every occurrence of what it stands in."""
+        self.spend((end - start) // _CHARACTERS_OF_ITEMS, start)

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from .edif_budget import Budget
 from .edif_ends import ArrayEnd, End, NoEnd, PartEnd, RipperEnd, SheetEnd, SymbolEnd, TieEnd
-from .edif_forms import Contents, Instance, Library
+from .edif_forms import Contents, Instance, InstanceRun, Library
 from .edif_instances import Description, describe, reference_of, symbol_of
 from .edif_library import Libraries, NameTable, Source
 from .edif_nets import NetPieces
@@ -69,7 +69,11 @@ class FlatCircuit:
         self, instance: Instance, sheet: SheetEnd, ends: NameTable[End], *, in_net: bool = False
     ) -> None:
         """Make the end that the nets of the sheet find under the name of an instance."""
-        name = instance.name
+        name, items = instance.name, instance.items
+        if isinstance(items, InstanceRun):
+            self._budget.spend_on_text(items.start, items.end)
+        else:
+            self._budget.spend(len(items), name.offset)
         said = describe(instance, self._text, sheet.source.library.scales)
         source = self._find(instance, sheet.source.library)
         if name.sizes:
@@ -99,7 +103,7 @@ class FlatCircuit:
         self, instance: Instance, said: Description, source: Source | None, sheet: SheetEnd, suffix: str = ""
     ) -> End:
         """Decide what an instance is, in the order: a mark on a net, a sheet, a part."""
-        self._budget.spend(1 + (len(source.ports.bits) if source else 0), instance.name.offset)
+        self._budget.spend(1 + (source.size() if source else 0), instance.name.offset)
         mark = self._mark(instance, said, source, sheet)
         if mark:
             return mark

@@ -58,6 +58,10 @@ class Source(NamedTuple):
     view: View
     ports: PortTable
 
+    def size(self) -> int:
+        """Return how many pins and properties each part made of this cell has."""
+        return len(self.ports.bits) + len(self.view.properties) + len(self.cell.properties)
+
 
 class Libraries:
     """All cells of a file."""

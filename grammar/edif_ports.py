@@ -59,7 +59,7 @@ class PortTable:
         self._keys[name.identifier] = keys
         implicit = _is_implicit(port)
         for key, display in zip(keys, displays, strict=True):
-            number = port.designator or (display if is_number(display) else "")
+            number = port.designator or next(filter(is_number, (display, key)), "")
             self.bits.append(PortBit(key, display, number, implicit, name.offset))
 
     def _add_bundles(self, view: View, budget: Budget) -> None:

@@ -64,6 +64,7 @@ class Wiring:
 
     def _connect_run(self, run: JoinedRun, pieces: Sequence[int]) -> None:
         """Connect plain references, of which a large file has hundreds of thousands."""
+        self._budget.spend_on_text(run.start, run.end)
         only = pieces[0] if len(pieces) == 1 else None
         find = self._ends.get
         for port, instance, offset in port_references(self._text, run):
@@ -90,6 +91,7 @@ class Wiring:
 
     def _connect(self, reference: PortRef, pieces: Sequence[int]) -> None:
         """Connect one reference, which may name an instance in an instance or a member of an array."""
+        self._budget.spend(1, reference.port.offset)
         if not reference.path:
             self._reach(self._sheet, "", reference.port, pieces)
             return

@@ -581,6 +581,13 @@ def test_pin_numbers() -> None:
     assert [pin.name for pin in netlist.parts["U1"].pins] == ["IN+", "OUT"]
 
 
+@construct("A5 pin numbers from the identifier of a port that is shown by name")
+def test_number_of_a_renamed_port() -> None:
+    cell = '(cell REG (cellType GENERIC) (view V (viewType NETLIST) (interface (port (rename &3 "VOUT")))))'
+    (pin,) = read("(instance U1 (viewRef V (cellRef REG)))", more=cell).parts["U1"].pins
+    assert (pin.number, pin.name) == ("3", "VOUT")
+
+
 @construct("A5 portRef by pin number where the ports have names, and by name where they have numbers")
 def test_port_by_number() -> None:
     netlist = read(

@@ -44,6 +44,12 @@ def read(text: str) -> Netlist | NetlistError:
         assert perf_counter() - start < 10 * max(1, len(text) / 1e6)
 
 
+def repeated(contents: str) -> str:
+    """A cell with these contents, used two thousand times."""
+    uses = "".join(f"(instance i{k} (viewRef V (cellRef B)))" for k in range(2000))
+    return f"{HEAD}(cell B (view V (contents (instance R) {contents}))) (cell T (view V (contents {uses})))))"
+
+
 READ = {
     "unknown forms": lambda: TOP + "(instance R)" + nested("(x ") + END,
     "nets in nets": lambda: TOP + nested("(net a (joined (portRef p)) ") + END,
@@ -111,6 +117,23 @@ REFUSED = {
         HEAD
         + "(cell a (view V (contents (instance x (viewRef V (cellRef b))))))"
         + "(cell b (view V (contents (instance x (viewRef V (cellRef a))))))))"
+    ),
+    "a long net many times": lambda: repeated(
+        "(net a (joined " + "(portRef p (instanceRef R))" * 20_000 + "))"
+    ),
+    "a long instance many times": lambda: repeated(
+        f"(instance X (viewRef V) {'(property P (string))' * 20_000})"
+    ),
+    "an odd net many times": lambda: repeated(
+        "(net a (joined (portRef (member p 0)) " + "(portRef p (instanceRef R))" * 20_000 + "))"
+    ),
+    "many properties many times": lambda: (
+        HEAD
+        + "(cell B (view V "
+        + "".join(f'(property P{i} (string "x"))' for i in range(20_000))
+        + ")) (cell T (view V (contents "
+        + "".join(f"(instance i{i} (viewRef V (cellRef B)))" for i in range(2000))
+        + ")))))"
     ),
     "a cell of many ports many times": lambda: (
         HEAD
