@@ -6,14 +6,15 @@ import re
 from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TypeAlias
-
-import networkx as nx
+from typing import TYPE_CHECKING, TypeAlias
 
 from ...grammar.netlist import Netlist, Part, Pin
 from ..parts_list import PartsList
 from .conditions import STANDARD_CONDITIONS, Conditions
 from .parts import PartReader, PartValue
+
+if TYPE_CHECKING:
+    import networkx as nx
 
 Node: TypeAlias = tuple[str, str]  # ("part", reference) or ("net", name)
 
@@ -55,6 +56,8 @@ class Circuit:
     @cached_property
     def graph(self) -> nx.MultiGraph[Node]:
         """Return the bipartite graph; the key of an edge is the index of the pin in its part."""
+        import networkx as nx  # here, for it takes longer to load than a board takes to review
+
         graph: nx.MultiGraph[Node] = nx.MultiGraph()
         graph.add_nodes_from(("net", name) for name in self.netlist.nets)
         graph.add_nodes_from(("part", name) for name in self.parts)

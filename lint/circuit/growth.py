@@ -187,18 +187,22 @@ class Growth:
     def _output_control(self, controller: Controller, net: str) -> None:
         """Let the output-control pin load the net: its current is told at the reference, and follows it."""
         current = controller.profile.figure("output-control.current").spread()
-        reference = self._highest_reference(controller)
+        reference = self._reference(controller)
         name = f"{controller.reference} {controller.pins['output control'].name} current"
-        ends = (current.minimum / reference, current.nominal / reference, current.maximum / reference)
+        ends = (
+            current.minimum / reference.maximum,
+            current.nominal / reference.nominal,
+            current.maximum / reference.maximum,
+        )
         value = self.add_parameter(Parameter(name, *ends))
         self.add(ControlledSource(name, net, GROUND, net, GROUND, value, "current"))
 
-    def _highest_reference(self, controller: Controller) -> float:
-        """Return the highest voltage of the reference: as the board has it, else as it is published."""
+    def _reference(self, controller: Controller) -> Spread:
+        """Return the reference's voltage: as the board has it, else as it is published."""
         potential = self.known.get(controller.net("reference") or "")
         if potential is not None and potential.origin == "reference" and potential.spread.maximum > 0:
-            return potential.spread.maximum  # without a supply it is none, and the pin draws as published
-        return controller.profile.figure("reference.voltage").spread().maximum
+            return potential.spread  # without a supply it is none, and the pin draws as published
+        return controller.profile.figure("reference.voltage").spread()
 
     def block(self, net: str, part: Part, reason: str) -> None:
         """Note that a part keeps a net's potential from being computed."""
