@@ -52,6 +52,9 @@ class Files:
     def parse(self, source: Source) -> list[Item]:
         """Return the items of a source, and remember its models."""
         items = parse(source, self._run.problems)
+        if source.doubtful_comment:
+            message = "`$` begins a comment here, though some exporters begin names with it"
+            self._run.notes.add("assumption", message, source.doubtful_comment, "$")
         pending: list[Sequence[Item]] = [items]
         while pending:
             for item in pending.pop():

@@ -23,6 +23,8 @@ JOINED = "\r"
 LONGEST_LINE = 1_000_000
 """Characters of a logical line. A real card is far shorter; long tables belong into files of their own."""
 
+_BEHIND_CARET = 200
+
 _COMMENT_LINE = re.compile(r"\n[^\S\n]*(?:[*#]|//)[^\n]*")
 _CONTINUATION = re.compile(r"\n[^\S\n]*\+")
 _QUOTED_OR_COMMENT = re.compile(
@@ -64,6 +66,7 @@ class Source:
 
     titled:       the first logical line is a title, and blank in the cleaned text
     dollar_names: `$` begins names here; otherwise it begins a comment after a blank
+    doubtful_comment: place of the first comment that might be such a name, None where there is none
     """
 
     def __init__(self, text: str, file: str, *, titled: bool) -> None:
@@ -73,7 +76,9 @@ class Source:
         self.text = text
         self.dollar_names = "$" in text and _DOLLAR_NAME.search(text) is not None
         self.title = Line(self, 1, "")
-        self.clean = _joined(_without_comments(text, dollar_names=self.dollar_names)) + "\n"
+        cleaned, doubtful = _without_comments(text, dollar_names=self.dollar_names)
+        self.doubtful_comment = Place(file, *doubtful) if doubtful else None
+        self.clean = _joined(cleaned) + "\n"
         if titled:
             end = self.clean.index("\n")
             self.title = Line(self, 1, self.clean[:end])
@@ -106,7 +111,9 @@ class Source:
         """Return the error `message` at `place`, with the physical line there as excerpt."""
         start = self.starts[place.line - 1]
         end = self.text.find("\n", start)
-        excerpt = self.text[start:] if end < 0 else self.text[start:end]
+        # An excerpt shows what is round the caret; a line of megabytes need not be kept for it.
+        end = min(len(self.text) if end < 0 else end, start + place.column + _BEHIND_CARET)
+        excerpt = self.text[start:end]
         return NetlistError(message, place, excerpt=excerpt, expected=expected, remedy=remedy)
 
 
@@ -122,8 +129,12 @@ def _blank(text: str) -> str:
     return JOINED.join(" " * len(piece) for piece in text.split(JOINED))
 
 
-def _without_comments(text: str, *, dollar_names: bool) -> str:
-    """Overwrite comments with blanks: whole lines, and the rest of a line after `;`, `//` or `$`."""
+def _without_comments(text: str, *, dollar_names: bool) -> tuple[str, tuple[int, int] | None]:
+    """Overwrite comments with blanks: whole lines, and the rest of a line after `;`, `//` or `$`.
+
+    Return the text, and line and column of the first comment that reads as a name, as $x does, if any.
+    """
+    doubtful = None
     if "*" in text or "#" in text or "//" in text:
         # With a line end before it the first line is like any other.
         text = _COMMENT_LINE.sub(lambda match: "\n" + " " * (len(match[0]) - 1), "\n" + text)[1:]
@@ -132,19 +143,27 @@ def _without_comments(text: str, *, dollar_names: bool) -> str:
         lines = text.split("\n")
         for index, line in enumerate(lines):
             if any(mark in line for mark in marks):
-                lines[index] = _cut(line, dollar_names=dollar_names)
+                start = _comment_start(line, dollar_names=dollar_names)
+                lines[index] = line[:start] + " " * (len(line) - start)
+                if (
+                    doubtful is None
+                    and line[start : start + 1] == "$"
+                    and line[start + 1 : start + 2].isalpha()
+                ):
+                    doubtful = (index + 1, start + 1)
         text = "\n".join(lines)
-    return text
+    return text, doubtful
 
 
-def _cut(line: str, *, dollar_names: bool) -> str:
+def _comment_start(line: str, *, dollar_names: bool) -> int:
+    """Return the index of the comment on a line, or the line's length."""
     for match in _QUOTED_OR_COMMENT.finditer(line):
         if match.lastgroup is None:
             continue
         followed = line[match.end() : match.end() + 1]
         if match.lastgroup != "dollar" or not dollar_names or followed.isspace():
-            return line[: match.start()] + " " * (len(line) - match.start())
-    return line
+            return match.start()
+    return len(line)
 
 
 def _joined(text: str) -> str:

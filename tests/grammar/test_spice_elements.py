@@ -299,6 +299,26 @@ def test_instances(line: str) -> None:
     assert found.attributes == {"k": "2"}
 
 
+@pytest.mark.parametrize(
+    ("line", "expected"),
+    [
+        ("R1 a b q w z", ("", "a b q w", "", "z")),
+        ("A1 [=1", ""),
+        ("A1 [in] ~ gate", ("A", "in", "", "gate")),
+        ("ZD1 a", ""),
+        ("DS1 gnd lamp", ("", "gnd", "", "lamp")),
+        ("X1 a b {k=1} pump", ("X", "a", "", "b")),
+        ("C1 a b c d", ("", "a b c", "", "d")),
+    ],
+)
+def test_odd_lines(line: str, expected: tuple[str, ...] | str) -> None:
+    if expected:
+        assert shape(line) == expected
+    else:
+        with pytest.raises(NetlistError):
+            part(line)
+
+
 def test_nothing_behind_params_is_positional() -> None:
     found = part("X1 a b pump PARAMS: k")
     assert ([pin.net for pin in found.pins], found.model) == (["a", "b"], "pump")

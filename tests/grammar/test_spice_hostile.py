@@ -52,6 +52,7 @@ HOSTILE = {
         "more than 1000 parts bear the reference of another",
     ),
     "bad lines": ('"t\\n" + "R1 a\\n" * 200_000', "R1 has too few nodes: 1 word follows"),
+    "long plain lines": ('"t\\nU1 " + "ab " * 100_001', "a line of more than 100000 words"),
     "open braces": ('"t\\nR1 a b " + "{" * 900_000', "`{` is never closed"),
     "open parentheses": ('"t\\nR1 a b 1" + "(" * 900_000', "1 parts, 0 notes"),
     "blank lines": ('"t\\nR1 a b 1" + "\\n" * 900_000 + "R2 a b 1"', "2 parts, 0 notes"),

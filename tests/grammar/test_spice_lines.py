@@ -81,6 +81,14 @@ def test_a_dollar_sign_begins_a_name_where_an_exporter_writes_such_names() -> No
     assert netlist.parts["R1"].attributes["tc"] == "0,0"
 
 
+@pytest.mark.construct("B8 dollar sign: comment or name")
+def test_a_comment_that_might_be_a_name_is_noted_once() -> None:
+    netlist = read("R1 a b 1k ; $x", "* $y", "R2 a b 1k $z", "R3 a b 1k $w", "R4 a b 1k $ w")
+    assert [(note.kind, note.place.line, note.place.column) for note in netlist.notes] == [
+        ("assumption", 4, 11)
+    ]
+
+
 @pytest.mark.construct("B1 quotes and braces protect comment characters")
 def test_quotes_and_braces_protect_comment_characters() -> None:
     netlist = read(
