@@ -4,28 +4,26 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import replace
-from math import isfinite
 
 from ..lint.circuit.amplifiers import Amplifier
-from ..lint.circuit.compensation import Compensation
 from ..lint.circuit.controllers import Controller
-from ..lint.circuit.loops import Regulation
 from ..lint.circuit.regimes import Regime
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, missing, unsolved
-from ..lint.quantity import Spread, engineering, percent
+from ..lint.quantity import Spread, engineering
 from ..lint.rule import rule
 from ..lint.verdict import Level, Limit, Outcome, Verdict
 
 
-def _pins(amplifier: Amplifier) -> tuple[str, str]:
+def input_roles(amplifier: Amplifier) -> tuple[str, str]:
+    """Return the roles of both inputs, in+ first."""
     return f"amplifier {amplifier.number} in+", f"amplifier {amplifier.number} in-"
 
 
 def _inputs(amplifier: Amplifier) -> tuple[tuple[str, str], ...]:
     """Return the role and the net of both inputs."""
-    plus, minus = _pins(amplifier)
+    plus, minus = input_roles(amplifier)
     return (plus, amplifier.plus), (minus, amplifier.minus)
 
 
@@ -34,7 +32,8 @@ def _driven(amplifier: Amplifier, design: Design) -> bool:
     return design.has_path(amplifier.plus) and design.has_path(amplifier.minus)
 
 
-def _mapped(controller: Controller, design: Design) -> list[Amplifier]:
+def mapped(controller: Controller, design: Design) -> list[Amplifier]:
+    """Return the amplifiers both of whose inputs are mapped and on a net."""
     return [a for a in design.amplifiers(controller) if a.use != "unmapped"]
 
 
@@ -61,7 +60,7 @@ def input_open(controller: Controller, design: Design) -> Iterable[Verdict]:
         U1 0 REF FEEDBACK DTC CT RT 0 C1 E1 E2 C2 VCC OUTCTRL REF 2IN- 0 494
         R1 REF 2IN- 1k
     """
-    inputs = {role: net for a in _mapped(controller, design) for role, net in _inputs(a)}
+    inputs = {role: net for a in mapped(controller, design) for role, net in _inputs(a)}
     adrift = {
         role: net
         for role, net in inputs.items()
@@ -115,12 +114,14 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
         R2 2IN- REF 1k
     """
     least = controller.profile.practice("amplifier.unused-difference")
-    for amplifier in _mapped(controller, design):
+    for amplifier in mapped(controller, design):
         if amplifier.use != "unused" or not _driven(amplifier, design):
             continue
         found = design.difference(amplifier.minus, amplifier.plus)
         if isinstance(found, Unsolved):
-            yield unsolved(found, f"tie-off of unused amplifier {amplifier.number}", pins=_pins(amplifier))
+            yield unsolved(
+                found, f"tie-off of unused amplifier {amplifier.number}", pins=input_roles(amplifier)
+            )
             continue
         yield judge(
             found,
@@ -128,9 +129,9 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
             f"unused amplifier {amplifier.number}: in- stands {found.spread} above in+",
             source=f"{controller.profile.figure('amplifier.offset').source}; {least.source}",
             rating=True,
-            pins=_pins(amplifier),
-            remedy=f"tie {controller.pins[_pins(amplifier)[0]].name} to ground and "
-            f"{controller.pins[_pins(amplifier)[1]].name} to the reference",
+            pins=input_roles(amplifier),
+            remedy=f"tie {controller.pins[input_roles(amplifier)[0]].name} to ground and "
+            f"{controller.pins[input_roles(amplifier)[1]].name} to the reference",
         )
 
 
@@ -183,7 +184,7 @@ def common_mode(controller: Controller, design: Design) -> Iterable[Verdict]:
     if most < least:
         return  # supply.range speaks of a supply that leaves no range at all
     limit = Limit(least, most, "V")
-    for amplifier in _mapped(controller, design):
+    for amplifier in mapped(controller, design):
         # One that is tied off stays off above the range as well, only without the maker's word for it.
         level = Level.WARNING if amplifier.use == "unused" else None
         for role, net in _inputs(amplifier):
@@ -257,7 +258,7 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
         R3 1IN+ 0 10k
         [controllers.U1] output = "VOUT"
     """
-    for amplifier in _mapped(controller, design):
+    for amplifier in mapped(controller, design):
         regime = {"voltage": Regime.SHORT_CIRCUIT, "current": Regime.NO_LOAD}.get(amplifier.use)
         if regime is None or not _driven(amplifier, design):
             continue
@@ -271,7 +272,7 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
 def _direction(
     controller: Controller, amplifier: Amplifier, regime: Regime, plus: Estimate, minus: Estimate
 ) -> Verdict:
-    names = [controller.pins[role].name for role in _pins(amplifier)]
+    names = [controller.pins[role].name for role in input_roles(amplifier)]
     right = plus.spread.nominal < minus.spread.nominal
     values = f"{engineering(plus.spread.nominal, 'V')} against {engineering(minus.spread.nominal, 'V')}"
     more = "output voltage" if amplifier.use == "voltage" else "current"
@@ -281,171 +282,7 @@ def _direction(
         message=f"at {regime} {names[0]} stands at {values} on {names[1]}: more {more} {does} the pulse",
         parts=tuple(dict.fromkeys((*plus.parts, *minus.parts))),
         nets=(amplifier.plus, amplifier.minus),
-        pins=_pins(amplifier),
+        pins=input_roles(amplifier),
         source="SLVS074 p.4",
         remedy="" if right else f"exchange {names[0]} and {names[1]}",
     )
-
-
-@rule("amplifier.compensation", level="warning", topic="error amplifier")
-def compensation(controller: Controller, design: Design) -> Iterable[Verdict]:
-    """Does the amplifier that regulates have a feedback path of its own?
-
-    What:
-        Looks for resistors and capacitors from FEEDBACK to the inverting input of the voltage amplifier,
-        and prints them with the corner frequencies they make.
-    Why:
-        Without one the amplifier works at its full gain of thousands: with the output filter behind it
-        the loop oscillates.
-    Formula:
-        corner [Hz] = 1 / (2 pi R [ohm] C [F]) of each resistor and capacitor in series
-    Source:
-        common practice, no source
-    Remedy:
-        Put a resistor and a capacitor in series from FEEDBACK to in-.
-    Fails:
-        R1 REF 1IN- 10k
-        R2 VOUT 1IN+ 14k
-        R3 1IN+ 0 10k
-        [controllers.U1] output = "VOUT"
-    Passes:
-        R1 REF 1IN- 10k
-        R2 VOUT 1IN+ 14k
-        R3 1IN+ 0 10k
-        R4 FEEDBACK N1 47k
-        C1 N1 1IN- 10n
-        [controllers.U1] output = "VOUT"
-    """
-    net = controller.net("feedback")
-    if not net:
-        return
-    voltage = [a for a in _mapped(controller, design) if a.use == "voltage"]
-    paths = [design.compensation(net, amplifier.minus) for amplifier in voltage]
-    for amplifier, path in zip(voltage, paths, strict=True):
-        verdict = _feedback_path(controller, amplifier, net, path)
-        if path is None and any(paths):
-            says = f"{verdict.message}, as a limit beside the other amplifier may"
-            yield replace(verdict, outcome=Outcome.INFORMATIONAL, message=says, remedy="")
-        else:
-            yield verdict
-
-
-def _feedback_path(
-    controller: Controller, amplifier: Amplifier, net: str, found: Compensation | None
-) -> Verdict:
-    pins = ("feedback", _pins(amplifier)[1])
-    names = [controller.pins[role].name for role in pins]
-    if found is None:
-        return Verdict(
-            outcome=Outcome.FAIL,
-            message=f"nothing joins {names[0]} to {names[1]}: the loop runs at the amplifier's full gain",
-            nets=(net, amplifier.minus),
-            pins=pins,
-            source="common practice, no source",
-            remedy=f"put a resistor and a capacitor in series from {names[0]} to {names[1]}",
-        )
-    corners = [f"{r} and {c} at {engineering(f, 'Hz')}" for r, c, f in found.corners]
-    gain = "finite gain at rest" if found.direct else "integrating"
-    return Verdict(
-        outcome=Outcome.PASS,
-        message=f"{', '.join(found.parts)} from {names[0]} to {names[1]}, {gain}"
-        + (f"; corner of {', '.join(corners)}" if corners else ""),
-        parts=found.parts,
-        nets=(net, amplifier.minus),
-        pins=pins,
-        source="common practice, no source",
-    )
-
-
-@rule("amplifier.feedback-pin", level="warning", topic="error amplifier")
-def feedback_pin(controller: Controller, design: Design) -> Iterable[Verdict]:
-    """Can the amplifiers and their inner sink move the feedback pin against what hangs on it?
-
-    What:
-        Computes the direct current between the pin and the parts on it, over the whole control range.
-    Why:
-        The amplifiers can only lift the pin and a small inner sink lowers it. A resistor that feeds more
-        into the pin than the sink takes holds the outputs off; one that draws too much to ground keeps
-        the amplifiers from shortening the pulse.
-    Formula:
-        I [A] out of the pin by nodal analysis, the pin anywhere in its control range
-    Source:
-        7500 class data sheet of a second source (0.3 mA into the pin); SLVS052 p.4 (2 mA out of it)
-    Remedy:
-        Raise the resistance of what hangs on the pin.
-    Fails:
-        R1 REF FEEDBACK 4.7k
-    Passes:
-        R1 REF FEEDBACK 47k
-    """
-    net = controller.net("feedback")
-    if not net:
-        return
-    found = design.feedback_current(controller)
-    if isinstance(found, Unsolved):
-        yield unsolved(found, "current at the feedback pin", pins=("feedback",))
-        return
-    into = controller.profile.figure("feedback.external-sink")
-    out = controller.profile.figure("feedback.source")
-    yield judge(
-        found,
-        Limit(-(into.maximum or 0.0), out.minimum, "A"),
-        f"{controller.pins['feedback'].name} delivers {found.spread} to what hangs on it",
-        source=f"{into.source}; {out.source}",
-        rating=True,
-        pins=("feedback",),
-        remedy="raise the resistances on the pin",
-    )
-
-
-@rule("amplifier.input-error", level="note", topic="error amplifier")
-def input_error(controller: Controller, design: Design) -> Iterable[Verdict]:
-    """Do the bias currents of the amplifier move the output by more than they should?
-
-    What:
-        Takes the share of the two bias currents from the spread of the output voltage.
-    Why:
-        A bias current through unequal source resistances moves the set point, and lower resistances cure
-        that. The offset, which no resistor cures, is told beside it.
-    Formula:
-        error = bias current [A] x difference of the source resistances [ohm] / set point [V]
-    Source:
-        SLVS074 p.4 (bias current, offset); the limit of 0.5 % is common practice, no source
-    Remedy:
-        Make the resistance seen by both inputs alike, or lower the divider's resistance.
-    Fails:
-        R1 REF 1IN- 1k
-        R2 VOUT 1IN+ 140k
-        R3 1IN+ 0 100k
-        [controllers.U1] output = "VOUT"
-    Passes:
-        R1 REF 1IN- 1k
-        R2 VOUT 1IN+ 14k
-        R3 1IN+ 0 10k
-        [controllers.U1] output = "VOUT"
-    """
-    found = design.regulation(controller)
-    if not isinstance(found, Regulation):
-        return
-    amplifier = next(a for a in design.amplifiers(controller) if a.use == "voltage")
-    spread = found.output.spread
-    if not isfinite(spread.maximum - spread.minimum) or spread.minimum <= 0 <= spread.maximum:
-        return  # feedback.output-voltage speaks of a loop that regulates to nothing
-    half_width = (spread.maximum - spread.minimum) / 2 / abs(spread.nominal)
-    bias = half_width * sum(
-        share for label, share in found.output.contributions if label.endswith(" current")
-    )
-    offset = half_width * sum(
-        share for label, share in found.output.contributions if label.endswith(" offset")
-    )
-    error = Spread(0.0, bias, bias, "")
-    practice = controller.profile.practice("amplifier.set-point-error")
-    verdict = judge(
-        Estimate(error, error, parts=found.output.parts),
-        practice.limit(),
-        f"bias currents move the output by up to {percent(bias)}, the offset by {percent(offset)}",
-        source=practice.source,
-        pins=_pins(amplifier),
-        remedy="lower the divider's resistances, or make both inputs see the same",
-    )
-    yield replace(verdict, measured=None, limit=None) if verdict.outcome is Outcome.PASS else verdict
