@@ -42,7 +42,8 @@ def test_every_keyword_has_a_maker() -> None:
 @pytest.mark.parametrize("path", FIXTURES, ids=lambda path: path.stem)
 def test_compiled_and_plain_parser_agree(path: Path) -> None:
     text = path.read_text(encoding="utf-8")
-    parsers = [edif_builder.build_parser(plugins) for plugins in ({}, import_module("lark_cython").plugins)]
+    choices: list[dict[str, Any]] = [{}, import_module("lark_cython").plugins]
+    parsers = [edif_builder.build_parser(plugins) for plugins in choices]
     plain, compiled = [cast(Any, parser).parse(text) for parser in parsers]  # lark types it as a tree
     assert plain == compiled
 
