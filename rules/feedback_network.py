@@ -9,7 +9,7 @@ from math import inf
 from ..grammar.netlist import Part
 from ..lint.circuit.amplifiers import Amplifier
 from ..lint.circuit.controllers import Controller
-from ..lint.circuit.growth import zener_voltage
+from ..lint.circuit.diodes import zener_voltage
 from ..lint.circuit.loops import Fault, Regulation
 from ..lint.circuit.power_stage import PowerStage
 from ..lint.design import Design

@@ -8,7 +8,7 @@ from math import inf, log
 
 from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
-from ..lint.circuit.growth import diode_nets
+from ..lint.circuit.diodes import diode_nets
 from ..lint.circuit.loops import Regulation, Trip
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved

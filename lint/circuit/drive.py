@@ -58,6 +58,7 @@ class Drive:
         read = (read_transistor(circuit, known, part) for part in circuit.parts.values())
         self.transistors = {one.reference: one for one in read if one is not None}
         self._controls = {one.control for one in self.transistors.values()}
+        self._switched = {net for one in self.transistors.values() if one.field_effect for net in one.mains}
         everything = windings(circuit)
         self.windings = tuple(winding for winding in everything if not self._is_of_the_drive(winding))
         self._drive_windings = tuple(winding for winding in everything if winding not in self.windings)
@@ -84,10 +85,16 @@ class Drive:
         return not self._power_nets.isdisjoint(mains) and self._controls.isdisjoint(mains)
 
     def _is_of_the_drive(self, winding: Winding) -> bool:
-        """Tell whether a winding leads to a control terminal: a bead, a drive transformer."""
+        """Tell whether a winding leads to a control terminal: a bead, a drive transformer.
+
+        What leads there by way of a drain or a source does so through a resistor from gate to source, or a
+        snubber, and is a winding of the power stage.
+        """
         if not winding.transformer:
             return not self._controls.isdisjoint(winding.nets)
-        return any(self._leads_to_control(net) for net in winding.nets if not self._is_stiff(net))
+        mains = {net for one in self.transistors.values() for net in one.mains}
+        starts = [net for net in winding.nets if not self._is_stiff(net) and net not in mains]
+        return any(self._leads_to_control(net) for net in starts)
 
     def _leads_to_control(self, start: str) -> bool:
         waiting, seen = [start], {start}
@@ -96,7 +103,7 @@ class Drive:
             if net in self._controls:
                 return True
             for other in self._passed(net):
-                if other not in seen:
+                if other not in seen and other not in self._switched:
                     seen.add(other)
                     waiting.append(other)
         return False

@@ -1,41 +1,28 @@
 """Growing the network round a pin: through resistive parts until nets of known potential.
 
-What a part means to direct current is one small function a kind, in the table `_MEANINGS`. A part that
-linear analysis does not cover is never passed over: it lands in `blocked` (the answer cannot be had), in
-`valueless` (its value is missing), in `diodes` (whether they conduct is solved for) or in `switches`
-(taken as off, and said so).
+What each kind of part means to direct current stands in `meanings`. A part that linear analysis does not
+cover is never passed over: it lands in `blocked` (the answer cannot be had), in `valueless` (its value is
+missing), in `diodes` (whether they conduct is solved for) or in `switches` (taken as off, and said so).
 """
 
 from __future__ import annotations
 
-import re
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
-from math import isfinite
 
 import numpy as np
 
-from ...grammar.netlist import Part, Pin
+from ...grammar.netlist import Part
 from ..quantity import Spread, engineering, percent
-from .alternating import fed_by
 from .controllers import Controller, ControllerPin
+from .diodes import Diode, forward_drop, zener_voltage
 from .graph import Circuit, Connection
+from .meanings import MEANINGS, opaque
 from .parts import defaults
 from .potentials import Potential
-from .solver import (
-    Array,
-    ControlledSource,
-    CurrentSource,
-    Element,
-    Network,
-    Resistor,
-    Sample,
-    Value,
-    VoltageSource,
-)
+from .solver import ControlledSource, CurrentSource, Element, Network, Resistor, Value
 from .states import Junction
-from .transistors import read_transistor
-from .worst_case import Parameter, Variation
+from .worst_case import Parameter
 
 GROUND = "\x00ground"  # the name of ground inside a network: no net of a file can have it
 
@@ -53,15 +40,6 @@ class Blocked:
     net: str
     part: str
     reason: str
-
-
-@dataclass(frozen=True, slots=True)
-class Diode:
-    """A diode on the network: whether it conducts is for the solution to tell."""
-
-    part: str
-    anode: str
-    cathode: str
 
 
 @dataclass(slots=True)
@@ -115,7 +93,7 @@ class Growth:
         return tuple(self._junction(diode) for diode in self.diodes)
 
     def _junction(self, diode: Diode) -> Junction:
-        drop = _spread_of("forward-drop")
+        drop = forward_drop()
         name = f"{diode.part} forward drop"
         value = self.add_parameter(Parameter(name, drop.minimum, drop.nominal, drop.maximum))
         return Junction(diode.part, diode.anode, diode.cathode, value, self._breakdown(diode))
@@ -159,7 +137,7 @@ class Growth:
             if controller.reference == part.reference:
                 self._controller_pin(controller, connection, net)
                 return
-        meaning = _MEANINGS.get(self.circuit.kind(part), _opaque)
+        meaning = MEANINGS.get(self.circuit.kind(part), opaque)
         meaning(self, part, net)
 
     def _controller_pin(self, controller: Controller, connection: Connection, net: str) -> None:
@@ -235,243 +213,3 @@ class Growth:
         return self.add_parameter(
             Parameter(part.reference, s.minimum, s.nominal, s.maximum, random=value.random)
         )
-
-
-# Below this a resistance is solved by its current as a short is: its conductance would drown all others.
-_SMALL = 1.0
-
-
-def _ends(part: Part) -> tuple[str, str]:
-    """Return the nets of a two-terminal part."""
-    first, second = part.pins
-    return _terminal(part, first), _terminal(part, second)
-
-
-def _terminal(part: Part, pin: Pin) -> str:
-    """Return a pin's net; an unconnected pin is alone on a net that nothing else is on."""
-    return pin.net or f"\x00{part.reference} pin {pin.number}"
-
-
-def _resistor(growth: Growth, part: Part, net: str) -> None:
-    if len(part.pins) != 2:
-        _opaque(growth, part, net)
-        return
-    value = growth.part_value(part)
-    if value is not None:
-        growth.use(part)
-        small = growth.parameters[part.reference].low < _SMALL
-        growth.add(Resistor(part.reference, *_ends(part), value, may_be_zero=small))
-        growth.follow(part)
-
-
-def _trimmer(growth: Growth, part: Part, net: str) -> None:
-    """Put in a trimmer as two resistances whose sum is its value; the wiper travels end to end."""
-    value = growth.part_value(part)
-    if value is None:
-        return
-    growth.use(part)
-    name = f"{part.reference} travel"
-    travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL, part.reference))
-    top, wiper, bottom = (_terminal(part, pin) for pin in in_trimmer_order(part))
-    growth.add(
-        Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True)
-    )
-    growth.add(Resistor(f"{part.reference} lower", wiper, bottom, _share(value, travel), may_be_zero=True))
-    growth.follow(part)
-
-
-_WIPER_NAMES = frozenset({"w", "wiper", "s", "slider"})
-
-
-def in_trimmer_order(part: Part) -> tuple[Pin, Pin, Pin]:
-    """Return a trimmer's pins as top, wiper, bottom.
-
-    The wiper is the pin named so, else the one numbered 2, else the middle one as listed (`RV1 top wiper
-    bottom 10k`).
-    """
-    pins = list(part.pins)
-    named = [pin for pin in pins if pin.name.casefold() in _WIPER_NAMES]
-    numbered = [pin for pin in pins if pin.number == "2"]
-    wiper = (named or numbered or pins[1:2])[0]
-    pins.remove(wiper)
-    return pins[0], wiper, pins[1]
-
-
-def _share(value: Value, travel: Value, *, rest: bool = False) -> Value:
-    def resistance(sample: Sample) -> Array:
-        share = travel(sample)
-        return value(sample) * (1.0 - share if rest else share)
-
-    return resistance
-
-
-def _short(growth: Growth, part: Part, net: str) -> None:
-    """Take an inductor, fuse or jumper as a short: direct current sees no more than that."""
-    if len(part.pins) != 2:
-        _opaque(growth, part, net)
-        return
-    growth.use(part)
-    growth.add(Resistor(part.reference, *_ends(part), lambda _: np.zeros(1), may_be_zero=True))
-    growth.follow(part)
-
-
-def _open(growth: Growth, part: Part, net: str) -> None:
-    """Take a test point or coupling as open: no direct current flows in it."""
-
-
-def _capacitor(growth: Growth, part: Part, net: str) -> None:
-    """Take a capacitor as open, or as a short while it holds no charge."""
-    if growth.empty_capacitors:
-        _short(growth, part, net)
-
-
-def _diode(growth: Growth, part: Part, net: str) -> None:
-    if len(part.pins) != 2:
-        _opaque(growth, part, net)
-        return
-    anode, cathode = diode_nets(part)
-    diode = Diode(part.reference, anode, cathode)
-    if (reason := _untold(growth, part)) != "":
-        growth.block(net, part, reason)
-    elif diode not in growth.diodes:
-        growth.diodes.append(diode)
-        growth.use(part)
-        growth.follow(part)
-
-
-def _untold(growth: Growth, part: Part) -> str:
-    """Return why a diode cannot be solved for, empty where it can."""
-    source = fed_by(growth.circuit, growth.known, growth.controllers, part)
-    if source:
-        return f"{part.reference} rectifies what {source} couples in"
-    if _ZENER_REFERENCE.match(part.reference.rpartition("/")[2]) and zener_voltage(part) is None:
-        return f"{part.reference} is a zener by its name, and nothing tells its voltage"
-    return ""
-
-
-# Reference designators that say zener (common practice, no source).
-_ZENER_REFERENCE = re.compile(r"(?:ZD|DZ|VZ|Z)\d", re.IGNORECASE)
-
-_VOLTS = r"(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V?|V)?"
-
-# A zener says so in words with its voltage (zener 5V1, TVS 16V, DZ12), or is a voltage and a power alone (15V
-# 1W). A voltage beside a current is the reverse rating of a rectifier.
-_NAMED_ZENER = re.compile(rf"(?<![A-Z])(?:ZENER|TVS|SUPPRESSOR|D?Z)[ _-]?{_VOLTS}(?![0-9A-Z])", re.IGNORECASE)
-_BARE_ZENER = re.compile(r"(\d{1,3})(?:V(\d{1,2})|\.(\d{1,2})V|V)(?:[ ,/]*[0-9./]+ ?m?W)?", re.IGNORECASE)
-
-
-def zener_voltage(part: Part) -> float | None:
-    """Return the zener voltage (V) that a diode's value or model states, None where neither does."""
-    for text in (part.value.strip(), part.model.strip()):
-        match = _NAMED_ZENER.search(text) or _BARE_ZENER.fullmatch(text)
-        if match is not None:
-            return float(f"{match[1]}.{match[2] or match[3] or '0'}")
-    return None
-
-
-def _spread_of(name: str) -> Spread:
-    row = defaults()["junction"][name]
-    return Spread(float(row["minimum"]), float(row["typical"]), float(row["maximum"]), "V")
-
-
-def diode_nets(part: Part) -> tuple[str, str]:
-    """Return the anode's and the cathode's net: by pin name where given, else anode first as in a list."""
-    first, second = part.pins
-    if first.name.casefold() in ("k", "c", "cathode") or second.name.casefold() in ("a", "anode"):
-        return second.net, first.net
-    return first.net, second.net
-
-
-def _switch(growth: Growth, part: Part, net: str) -> None:
-    """Take a transistor or switch as off, and say so: when it is on, the net is somewhere else.
-
-    Where it shares the net with a winding it is the converter's power switch, and the net's potential is
-    the converter's doing.
-    """
-    if part.reference in growth.conducting:
-        _conduct(growth, part)
-        return
-    neighbours = (growth.circuit.kind(connection.part) for connection in growth.circuit.connections(net))
-    if _WINDINGS.isdisjoint(neighbours):
-        growth.switches[part.reference] = None
-    else:
-        growth.block(net, part, f"{part.reference} switches it")
-
-
-_WINDINGS = frozenset({"inductor", "transformer", "relay"})
-
-
-def _conduct(growth: Growth, part: Part) -> None:
-    """Put in a transistor or switch that is on: next to nothing drops across it."""
-    transistor = read_transistor(growth.circuit, growth.known, part)
-    ends = transistor.mains if transistor is not None else tuple(pin.net for pin in part.pins[:2])
-    growth.use(part)
-    growth.add(Resistor(part.reference, ends[0], ends[1], lambda _: np.zeros(1), may_be_zero=True))
-    for net in ends:
-        growth.enter(net)
-
-
-def _voltage_source(growth: Growth, part: Part, net: str) -> None:
-    if len(part.pins) != 2:
-        _opaque(growth, part, net)
-        return
-    value = growth.part_value(part)
-    if value is not None:
-        growth.use(part)
-        growth.add(VoltageSource(part.reference, *_ends(part), value))
-        growth.follow(part)
-
-
-def _current_source(growth: Growth, part: Part, net: str) -> None:
-    if len(part.pins) != 2:
-        _opaque(growth, part, net)
-        return
-    value = growth.part_value(part)
-    if value is not None:
-        growth.use(part)
-        growth.add(CurrentSource(part.reference, *_ends(part), value))
-        growth.follow(part)
-
-
-def _controlled_source(growth: Growth, part: Part, net: str) -> None:
-    """Put in an E or G source of constant gain; any other is opaque."""
-    gain = _constant(part.value)
-    if part.element not in ("E", "G") or len(part.pins) != 4 or gain is None:
-        _opaque(growth, part, net)
-        return
-    growth.use(part)
-    a, b, control_a, control_b = (_terminal(part, pin) for pin in part.pins)
-    kind = "voltage" if part.element == "E" else "current"
-    growth.add(ControlledSource(part.reference, a, b, control_a, control_b, lambda _: np.full(1, gain), kind))
-    growth.follow(part)
-
-
-def _constant(text: str) -> float | None:
-    try:
-        number = float(text)
-    except ValueError:
-        return None
-    return number if isfinite(number) else None
-
-
-def _opaque(growth: Growth, part: Part, net: str) -> None:
-    growth.block(net, part, f"{part.reference} ({growth.circuit.kind(part)}) may feed or load it")
-
-
-_MEANINGS: dict[str, Callable[[Growth, Part, str], None]] = {
-    "resistor": _resistor,
-    "trimmer": _trimmer,
-    "capacitor": _capacitor,
-    "coupling": _open,
-    "test point": _open,
-    "inductor": _short,
-    "fuse": _short,
-    "jumper": _short,
-    "diode": _diode,
-    "transistor": _switch,
-    "switch": _switch,
-    "voltage source": _voltage_source,
-    "battery": _voltage_source,
-    "current source": _current_source,
-    "controlled source": _controlled_source,
-}

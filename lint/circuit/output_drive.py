@@ -14,9 +14,10 @@ from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
 from .answers import Probe, estimate
 from .controllers import Controller
+from .diodes import Diode
 from .drive import Drive, Driven
 from .graph import Circuit
-from .growth import Diode, Growth
+from .growth import Growth
 from .outputs import OutputTransistor
 from .potentials import Potential
 from .solver import CurrentSource, Resistor, VoltageSource

@@ -11,9 +11,9 @@ from dataclasses import dataclass
 
 from .amplifiers import Amplifier, SenseResistor, amplifier_for
 from .controllers import Controller
+from .diodes import diode_nets
 from .drive import Drive, Driven
 from .graph import Circuit
-from .growth import diode_nets
 from .potentials import Potential
 from .power_stage import NotRecognised, PowerStage, Switch
 from .transistors import Transistor

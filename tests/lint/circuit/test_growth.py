@@ -6,7 +6,9 @@ from collections.abc import Callable
 
 import pytest
 from pwmlint.grammar import Part, Pin, Place
-from pwmlint.lint.circuit.growth import Growth, diode_nets, in_trimmer_order
+from pwmlint.lint.circuit.diodes import diode_nets
+from pwmlint.lint.circuit.growth import Growth
+from pwmlint.lint.circuit.meanings import in_trimmer_order
 from pwmlint.lint.design import Design
 from pwmlint.lint.estimate import Estimate, Unsolved
 

@@ -3,9 +3,8 @@
 from __future__ import annotations
 
 import pytest
-
 from pwmlint.grammar import Part, Place
-from pwmlint.lint.circuit.growth import zener_voltage
+from pwmlint.lint.circuit.diodes import zener_voltage
 
 
 def diode(value: str, model: str = "") -> Part:
