@@ -291,7 +291,7 @@ def _taking_turns(
 ) -> tuple[Outcome, str, str]:
     """Judge push-pull mode: both outputs, each on its own net."""
     if len(live) == 2:
-        if _joined(live):
+        if not set(live[0].drives).isdisjoint(live[1].drives):
             says = "the two outputs are joined, which undoes the taking of turns"
             return Outcome.FAIL, says, "separate the outputs, or tie the output-control pin to ground"
         return Outcome.PASS, f"the outputs take turns at {_at(live[0])} and {_at(live[1])}", ""
