@@ -226,6 +226,10 @@ class Design:
         """Return what resistors alone join to a net of a controller's amplifiers."""
         return self._keep("reach", net, lambda: self._amplifier_reader(controller).reach(net))
 
+    def regulating(self, controller: Controller) -> Amplifier | None:
+        """Return the voltage amplifier that regulates: of two, the one that holds the output lower."""
+        return self._keep("regulating", controller.reference, lambda: self._regulating(controller))
+
     def regulation(self, controller: Controller) -> Regulation | Unsolved | NoLoop:
         """Return the output voltage that a controller's voltage loop regulates to."""
         return self._keep("regulation", controller.reference, lambda: self._regulation(controller))
@@ -239,13 +243,18 @@ class Design:
 
         return self._keep("power stage", controller.reference, read)
 
-    def output_after(self, controller: Controller, amplifier: Amplifier, fault: Fault) -> float:
-        """Return the output (V) after a resistor has failed: infinite where the loop loses it upwards."""
-        return self._loops(controller).output_after(amplifier, fault)
+    def output_after(self, controller: Controller, fault: Fault) -> float:
+        """Return the output (V) after a resistor has failed: infinite where every loop loses it upwards."""
+        loops = self._loops(controller)
+        voltage = [a for a in self.amplifiers(controller) if a.use == "voltage" and a.output]
+        return min(loops.output_after(amplifier, fault) for amplifier in voltage)
 
     def source_resistance(self, controller: Controller, net: str) -> Estimate | Unsolved:
         """Return the resistance (ohm) that a net is driven from in operation, sources still."""
-        known = potentials_in(Regime.NO_LOAD, self.known, controller, self._operation(controller))
+        operation = self._operation(controller)
+        known = potentials_in(Regime.NO_LOAD, self.known, controller, operation)
+        if operation.output and operation.output not in known:
+            known[operation.output] = Potential(operation.output, Spread.exact(0.0, "V"), "regime")
         return self._keep(
             "source resistance",
             net,
@@ -353,7 +362,7 @@ class Design:
 
     def _held_input(self, regime: Regime, controller: Controller, net: str) -> Estimate | None:
         """Return the potential of an input that the regulating amplifier holds equal to the other."""
-        amplifier = amplifier_for(self.amplifiers(controller), "voltage")
+        amplifier = self.regulating(controller)
         if regime not in REGULATING or amplifier is None or net not in (amplifier.plus, amplifier.minus):
             return None
         found = self.regulation(controller)
@@ -380,7 +389,7 @@ class Design:
 
     def _operated(self, controller: Controller) -> Operation:
         """Return what is known of the converter in operation: output, threshold, full load."""
-        voltage = amplifier_for(self.amplifiers(controller), "voltage")
+        voltage = self.regulating(controller)
         current = amplifier_for(self.amplifiers(controller), "current")
         regulation, trip = self.regulation(controller), self.trip(controller)
         shorted = self.trip(controller, shorted=True)
@@ -412,8 +421,18 @@ class Design:
             known[net] = Potential(net, reach, "amplifier", Variation.RANGE, label=label)
         return Loops(self.circuit, known, controller)
 
+    def _regulating(self, controller: Controller) -> Amplifier | None:
+        voltage = [a for a in self.amplifiers(controller) if a.use == "voltage"]
+        found = (
+            {a: self._loops(controller).regulation(a) for a in voltage if a.output}
+            if len(voltage) > 1
+            else {}
+        )
+        solved = {a: r.output.spread.nominal for a, r in found.items() if isinstance(r, Regulation)}
+        return min(solved, key=lambda a: solved[a]) if solved else next(iter(voltage), None)
+
     def _regulation(self, controller: Controller) -> Regulation | Unsolved | NoLoop:
-        amplifier = amplifier_for(self.amplifiers(controller), "voltage")
+        amplifier = self.regulating(controller)
         if amplifier is None:
             return NoLoop(f"no amplifier of {controller.reference} senses an output through resistors")
         if not amplifier.output:
@@ -431,7 +450,7 @@ class Design:
         return self._loops(controller).trip(amplifier, self._output_potential(controller, shorted=shorted))
 
     def _output_potential(self, controller: Controller, *, shorted: bool) -> Potential | None:
-        amplifier = amplifier_for(self.amplifiers(controller), "voltage")
+        amplifier = self.regulating(controller)
         if amplifier is None or not amplifier.output:
             return None
         net = amplifier.output

@@ -95,9 +95,9 @@ def _state(controller: Controller, pin: ControllerPin | None, design: Design) ->
 def _voltage(controller: Controller, net: str, design: Design) -> str:
     regulation = design.regulation(controller)
     if isinstance(regulation, Regulation):
-        for amplifier in design.amplifiers(controller):
-            if amplifier.use == "voltage" and net in (amplifier.plus, amplifier.minus):
-                return str(regulation.inputs.spread)
+        amplifier = design.regulating(controller)
+        if amplifier is not None and net in (amplifier.plus, amplifier.minus):
+            return str(regulation.inputs.spread)
     for amplifier in design.amplifiers(controller):
         if amplifier.sense is not None and net in (amplifier.plus, amplifier.minus):
             reach = design.reach(controller, net)

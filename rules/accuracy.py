@@ -53,7 +53,8 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
     found = design.regulation(controller)
     if not isinstance(found, Regulation) or found.output.spread.nominal <= 0:
         return  # feedback.output-voltage or feedback.complete speaks of it
-    output = next((a.output for a in design.amplifiers(controller) if a.use == "voltage"), "")
+    amplifier = design.regulating(controller)
+    output = amplifier.output if amplifier is not None else ""
     rail = design.rail(output)
     allowed = _allowed(rail)
     if rail is None or allowed is None:

@@ -159,7 +159,8 @@ def input_error(controller: Controller, design: Design) -> Iterable[Verdict]:
     found = design.regulation(controller)
     if not isinstance(found, Regulation):
         return
-    amplifier = next(a for a in design.amplifiers(controller) if a.use == "voltage")
+    amplifier = design.regulating(controller)
+    assert amplifier is not None  # it is the one that regulates
     spread = found.output.spread
     if not isfinite(spread.maximum - spread.minimum) or spread.minimum <= 0 <= spread.maximum:
         return  # feedback.output-voltage speaks of a loop that regulates to nothing

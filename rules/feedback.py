@@ -89,7 +89,9 @@ def _formula(design: Design, amplifier: Amplifier, found: Regulation) -> str:
 
 
 def _voltage_amplifier(controller: Controller, design: Design) -> Amplifier:
-    return next(a for a in design.amplifiers(controller) if a.use == "voltage")
+    amplifier = design.regulating(controller)
+    assert amplifier is not None  # the caller has its regulation
+    return amplifier
 
 
 def _pins(amplifier: Amplifier) -> tuple[str, ...]:

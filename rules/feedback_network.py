@@ -91,6 +91,7 @@ def _wrong_point(
         if stage is not None:
             bad[stage.input] = "the converter's input"
             bad.update({switch.node: "the switching node" for switch in stage.switches})
+            bad.update(dict.fromkeys(_before_filter(design, stage), "the pulses before the filter"))
         found = next((end for end in ends if end in bad and end), None)
         if found is not None:
             role = f"amplifier {amplifier.number} {name}"
@@ -103,6 +104,15 @@ def _wrong_point(
                 remedy="take the top of the divider to the output, behind the filter",
             )
     return None
+
+
+def _before_filter(design: Design, stage: PowerStage) -> list[str]:
+    """Return the nets on which a transformer's rectifiers meet the filter's inductor."""
+    if not (stage.transformer and stage.inductor):
+        return []
+    nets = (pin.net for reference in stage.rectifiers for pin in design.part(reference).pins)
+    filtered = {pin.net for pin in design.part(stage.inductor).pins}
+    return [net for net in nets if net in filtered and net != stage.output and not design.is_ground(net)]
 
 
 @rule("feedback.impedance", level="note", topic=_TOPIC)
@@ -178,11 +188,12 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
     found = design.regulation(controller)
     if not isinstance(found, Regulation):
         return
-    amplifier = _voltage_amplifiers(controller, design)[0]
+    amplifier = design.regulating(controller)
+    assert amplifier is not None  # it is the one that regulates
     threshold = _OVER_VOLTAGE * found.output.spread.nominal
     resistors = [p for p in found.output.parts if design.circuit.kind(design.part(p)) == "resistor"]
     faults = [Fault(part, shorted) for part in resistors for shorted in (False, True)]
-    rising = {fault: design.output_after(controller, amplifier, fault) for fault in faults}
+    rising = {fault: design.output_after(controller, fault) for fault in faults}
     over = {fault: volts for fault, volts in rising.items() if volts > threshold}
     clamps = _clamps(design, amplifier.output, min(over.values(), default=inf))
     across = [part.reference for part in _across(design, amplifier.output)]

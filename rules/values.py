@@ -115,7 +115,8 @@ def value_preferred(design: Design) -> Iterable[Verdict]:
     yield from (_outside(part, design) for part in others)
     if asked and not others:
         yield Verdict(
-            outcome=Outcome.PASS, message=f"{len(asked)} resistors and capacitors have values of their series"
+            outcome=Outcome.PASS,
+            message=f"all {len(asked)} resistors and capacitors asked have values of their series",
         )
 
 

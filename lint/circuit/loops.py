@@ -35,8 +35,8 @@ class Fault:
 
     def strike(self, growth: Growth) -> None:
         """Change a grown network as the fault does."""
-        element = growth.elements.pop(self.part)
-        if self.shorted:
+        element = growth.elements.pop(self.part, None)
+        if element is not None and self.shorted:
             growth.add(Resistor(self.part, element.a, element.b, lambda _: np.zeros(1), may_be_zero=True))
 
 

@@ -50,13 +50,20 @@ def _resistor(growth: Growth, part: Part, net: str) -> None:
 
 
 def _trimmer(growth: Growth, part: Part, net: str) -> None:
-    """Put in a trimmer as two resistances whose sum is its value; the wiper travels end to end."""
+    """Put in a trimmer as two resistances whose sum is its value; the wiper travels end to end.
+
+    With two pins only it is a rheostat: what lies between one end and the wiper.
+    """
     value = growth.part_value(part)
     if value is None:
         return
     growth.use(part)
     name = f"{part.reference} travel"
     travel = growth.add_parameter(Parameter(name, 0.0, 0.5, 1.0, Variation.TRAVEL, part.reference))
+    if len(part.pins) == 2:
+        growth.add(Resistor(part.reference, *_ends(part), _share(value, travel), may_be_zero=True))
+        growth.follow(part)
+        return
     top, wiper, bottom = (_terminal(part, pin) for pin in in_trimmer_order(part))
     growth.add(
         Resistor(f"{part.reference} upper", top, wiper, _share(value, travel, rest=True), may_be_zero=True)

@@ -244,8 +244,6 @@ def part_kind(part: Part, models: Mapping[str, str]) -> str:
         return "transistor"
     if kind == "resistor" and pins == 3:
         return "trimmer"
-    if kind == "trimmer" and pins == 2:
-        return "resistor"
     if kind in ("resistor", "capacitor", "inductor") and pins > 2:
         return "other"
     return kind

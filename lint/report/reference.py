@@ -36,6 +36,7 @@ def describe_rule(one: Rule) -> str:
         lines += ["", "Needs from the brief: " + ", ".join(one.needs)]
     for name, text in one.sections.items():
         lines += ["", name, indent(text, "  ")]
+    lines += ["", "In the examples U1 is a 494 with each pin on a net of the pin's name, unless written."]
     return "\n".join(lines)
 
 
