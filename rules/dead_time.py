@@ -7,6 +7,7 @@ from dataclasses import replace
 
 from ..lint.brief import ControllerBrief
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.power_stage import NotRecognised
 from ..lint.controllers import Figure
 from ..lint.design import Design
 from ..lint.estimate import Unsolved
@@ -173,11 +174,14 @@ def fed_from(controller: Controller, design: Design) -> Iterable[Verdict]:
         R2 DTC 0 1k
     """
     net = controller.net("dead time")
-    voltage = design.voltage(net) if net and design.has_path(net) else None
-    if voltage is None or isinstance(voltage, Unsolved):
-        return  # dead-time.driven or dead-time.range speaks of it
+    if not net or not design.has_path(net):
+        return  # dead-time.driven speaks of it
+    voltage = design.voltage(net)
     reference = controller.net("reference")
     others = [n for n in voltage.nets if n not in (net, reference) and _is_rail(design, n)]
+    others += [n for n in design.reach(controller, net).ends if n in _pulsed(controller, design)]
+    if not others and isinstance(voltage, Unsolved):
+        return  # dead-time.range speaks of it
     name = controller.pins["dead time"].name
     if others:
         yield Verdict(
@@ -192,6 +196,12 @@ def fed_from(controller: Controller, design: Design) -> Iterable[Verdict]:
     else:
         message = f"{name} is fed from nothing but the reference and ground"
         yield Verdict(outcome=Outcome.PASS, message=message, parts=voltage.parts, pins=_PIN)
+
+
+def _pulsed(controller: Controller, design: Design) -> tuple[str, ...]:
+    """Return the nets that the switches pull to and fro."""
+    stage = design.power_stage(controller)
+    return () if isinstance(stage, NotRecognised) else tuple(switch.node for switch in stage.switches)
 
 
 def _is_rail(design: Design, net: str) -> bool:

@@ -108,7 +108,7 @@ def _wrong_point(
 
 def _before_filter(design: Design, stage: PowerStage) -> list[str]:
     """Return the nets on which a transformer's rectifiers meet the filter's inductor."""
-    if not (stage.transformer and stage.inductor):
+    if not stage.transformer or stage.inductor not in design.netlist.parts:
         return []
     nets = (pin.net for reference in stage.rectifiers for pin in design.part(reference).pins)
     filtered = {pin.net for pin in design.part(stage.inductor).pins}

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator
 from dataclasses import replace
 
+from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.drive import Driven
 from ..lint.circuit.output_drive import OutputDrive
@@ -89,6 +90,10 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     for _, driven in _switches(controller, design):
         one = driven.transistor
+        if one.field_effect and one.polarity and _body_diode_conducts(controller, design, one):
+            says = f"the body diode of {one.reference} ({one.kind}) conducts from {' to '.join(_diode(one))}"
+            remedy = f"exchange drain and source of {one.reference}"
+            yield _about(driven, Outcome.FAIL, f"{says}: nothing turns it off", remedy)
         if driven.high is None or not one.polarity:
             continue
         way = "up" if driven.high else "down"
@@ -98,10 +103,6 @@ def polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
         else:
             remedy = "take the signal from the output's other end, or add or leave out an inverting stage"
             yield _about(driven, Outcome.FAIL, f"{says}, which turns it off", remedy)
-        if one.field_effect and _body_diode_conducts(controller, design, one):
-            says = f"the body diode of {one.reference} ({one.kind}) conducts from {' to '.join(_diode(one))}"
-            remedy = f"exchange drain and source of {one.reference}"
-            yield _about(driven, Outcome.FAIL, f"{says}: nothing turns it off", remedy)
 
 
 def _diode(one: Transistor) -> tuple[str, str]:
@@ -171,8 +172,9 @@ def turn_off(controller: Controller, design: Design) -> Iterable[Verdict]:
 
     What:
         Looks for what empties the gate, since an output pulls one way only: a driver whose emitter is on
-        the gate, or resistors. Of resistors it prints the greatest gate capacitance that they empty within
-        the family's share of a period; below 1 nF a person must judge.
+        the gate, or resistors. Of resistors, and of one between the driver and the gate, it prints the
+        greatest gate capacitance that they empty within the family's share of a period; below 1 nF a person
+        must judge.
     Why:
         A gate emptied slowly keeps the switch half on: it heats, and in bridges meets the other switch.
     Formula:
@@ -202,17 +204,38 @@ def turn_off(controller: Controller, design: Design) -> Iterable[Verdict]:
     for _, driven in _mosfets(controller, design):
         one = driven.transistor
         active = solver.discharger(driven)
+        between = _between(design, active, one) if active else None
         found = solver.discharge(driven)
-        if active:
+        if active and (between is None or isinstance(timing, Unsolved)):
             yield _about(driven, Outcome.PASS, f"{active} empties the gate of {one.reference}")
-        elif isinstance(found, Estimate) and found.spread.nominal > 0 and not isinstance(timing, Unsolved):
-            yield _emptied(controller, driven, found, timing.frequency.spread)
+        elif isinstance(timing, Unsolved):
+            continue  # oscillator.frequency speaks of it
+        elif between is not None:
+            resistance = design.nominal(between) or 0.0
+            yield _emptied(controller, driven, resistance, (between.reference,), timing.frequency.spread)
+        elif isinstance(found, Estimate) and found.spread.nominal > 0:
+            yield _emptied(controller, driven, found.spread.nominal, found.parts, timing.frequency.spread)
 
 
-def _emptied(controller: Controller, driven: Driven, found: Estimate, frequency: Spread) -> Verdict:
+def _between(design: Design, driver: str, one: Transistor) -> Part | None:
+    """Return the resistor between a driver and a gate, None where a wire or a diode is beside it."""
+    near = {pin.net for pin in design.part(driver).pins}
+    joining = [
+        connection.part
+        for connection in design.circuit.connections(one.control)
+        if not near.isdisjoint(design.circuit.other_nets(connection.part, one.control))
+        and one.common not in design.circuit.other_nets(connection.part, one.control)
+    ]
+    kinds = [design.circuit.kind(part) for part in joining]
+    alone = one.control not in near and kinds == ["resistor"]
+    return joining[0] if alone and (design.nominal(joining[0]) or 0.0) > 0 else None
+
+
+def _emptied(
+    controller: Controller, driven: Driven, resistance: float, parts: tuple[str, ...], frequency: Spread
+) -> Verdict:
     share = controller.profile.practice("gate-drive.turn-off").maximum
     assert share is not None
-    resistance = found.spread.nominal
     capacitance = share / frequency.nominal / resistance
     says = (
         f"{engineering(resistance, 'ohm')} empties up to {engineering(capacitance, 'F')} of gate of "
@@ -223,7 +246,7 @@ def _emptied(controller: Controller, driven: Driven, found: Estimate, frequency:
         "lower the resistor, or add a transistor that empties the gate" if outcome is Outcome.REVIEW else ""
     )
     verdict = _about(driven, outcome, says, remedy)
-    return replace(verdict, parts=tuple(dict.fromkeys((*verdict.parts, *found.parts))))
+    return replace(verdict, parts=tuple(dict.fromkeys((*verdict.parts, *parts))))
 
 
 @rule("gate-drive.voltage", level="error", topic=_TOPIC)

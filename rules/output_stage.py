@@ -28,8 +28,8 @@ def complete_path(controller: Controller, design: Design) -> Iterable[Verdict]:
     What:
         Common emitter: the emitter returns to ground, and the collector is fed from a supply through a
         load or a pull-up. Follower: the collector stands on a supply, and the emitter leads to ground
-        through a load or a pull-down. Whatever conducts counts as a path; a part of which nothing is
-        known is named as an assumption.
+        through a load or a pull-down. Whatever conducts counts as a path; whether a part of which nothing
+        is known does is for a person to judge.
     Why:
         The outputs are bare transistors: they pull one way only. An open collector without a pull-up
         never rises, an open emitter without a pull-down never falls, and a gate on it stays charged.
@@ -71,17 +71,22 @@ def _path_verdict(
     end = "collector" if net == output.collector else "emitter"
     says = f"output {output.number}, {output.use}: a path from its {end} to {wanted}"
     part = "pull-up" if wanted == "a supply" else "pull-down"
-    outcome = Outcome.FAIL if found is Path.NO else Outcome.PASS
-    guess = f"a part on {net} whose inside is not known is taken to complete the path"
+    outcome, how = _FOUND[found]
     return Verdict(
         outcome=outcome,
-        message=says if outcome is Outcome.PASS else f"{says} is missing",
+        message=f"{says}{how}",
         nets=(net,),
         pins=(f"output {output.number} {end}",),
-        assumptions=(guess,) if found is Path.UNKNOWN else (),
         source="SLVS074 p.5",
-        remedy=f"add a {part} or a load from {net} to {wanted}" if outcome is Outcome.FAIL else "",
+        remedy="" if found is Path.YES else f"add a {part} or a load from {net} to {wanted}",
     )
+
+
+_FOUND = {
+    Path.YES: (Outcome.PASS, ""),
+    Path.NO: (Outcome.FAIL, " is missing"),
+    Path.UNKNOWN: (Outcome.REVIEW, " is there only if a part whose inside is not known makes it"),
+}
 
 
 def _path(controller: Controller, design: Design, net: str, wanted: str) -> Path:
@@ -147,12 +152,17 @@ def _named(outputs: list[OutputTransistor]) -> str:
 def _current_verdict(controller: Controller, design: Design, outputs: list[OutputTransistor]) -> Verdict:
     names = _named(outputs)
     pins = tuple(pin for output in outputs for pin in output.pins)
-    found = design.output_drive(controller).current(outputs[0])
-    if isinstance(found, Unsolved):
-        return unsolved(found, f"current of {names}", pins=pins)
+    drive = design.output_drive(controller)
     figure = controller.profile.figure("output.current")
     assert figure.maximum is not None
     limit = Limit(None, figure.maximum * len(outputs), "A")
+    found = drive.current(outputs[0])
+    if isinstance(found, Unsolved):
+        # What a circuit draws comes on top of what the other parts do: that alone may be too much.
+        least = drive.current(outputs[0], strangers=False)
+        if isinstance(least, Unsolved) or limit.holds(least.spread.nominal):
+            return unsolved(found, f"current of {names}", pins=pins)
+        found = least
     says = f"{names} {'carry' if len(outputs) == 2 else 'carries'} {found.spread} when conducting"
     remedy = "raise the resistance in the path, or put a driver transistor in between"
     return judge(found, limit, says, source=figure.source, rating=True, pins=pins, remedy=remedy)

@@ -44,11 +44,14 @@ class OutputDrive:
     controller: Controller
     drive: Drive
 
-    def current(self, output: OutputTransistor) -> Estimate | Unsolved:
-        """Return the collector current (A) of a conducting output; where two are joined, of both together."""
-        stranger = self._stranger(output)
-        if stranger is not None:
-            return stranger
+    def current(self, output: OutputTransistor, *, strangers: bool = True) -> Estimate | Unsolved:
+        """Return the collector current (A) of a conducting output; where two are joined, of both together.
+
+        strangers: a part on the output whose current is not known makes it unsolved, else it is left out
+        """
+        obstacle = self._stranger(output) if strangers else self._unknown_supply()
+        if obstacle is not None:
+            return obstacle
         growth, source = self._conducting(output)
         found = estimate(growth, {"current": (lambda s: s.current(source), "A")})
         return found if isinstance(found, Unsolved) else found["current"]
@@ -185,12 +188,19 @@ class OutputDrive:
     def _controlled_in(self, growth: Growth) -> list[Transistor]:
         return [one for one in self.drive.transistors.values() if one.control in growth.nets and one.polarity]
 
+    def _unknown_supply(self) -> Unsolved | None:
+        """Return that nothing tells the voltage of the controller's supply, None where something does."""
+        supply = self.controller.net("supply")
+        if not supply or supply in self.known:
+            return None
+        need = f'brief: [rails.{supply}] voltage = "..."'
+        return Unsolved(f"the voltage of {supply} is not known", nets=(supply,), needs=(need,))
+
     def _stranger(self, output: OutputTransistor) -> Unsolved | None:
         """Return why an output's network cannot be solved: its supply, or a part on its own nets."""
-        supply = self.controller.net("supply")
-        if supply and supply not in self.known:
-            need = f'brief: [rails.{supply}] voltage = "..."'
-            return Unsolved(f"the voltage of {supply} is not known", nets=(supply,), needs=(need,))
+        unknown = self._unknown_supply()
+        if unknown is not None:
+            return unknown
         for net in output.drives:
             for connection in self.circuit.connections(net):
                 part = connection.part
