@@ -258,7 +258,7 @@ class Design:
         return self._keep(
             "source resistance",
             net,
-            lambda: source_resistance(self.circuit, known, self.controllers, net),
+            lambda: source_resistance(self.circuit, known, self.controllers, net, self._passed(controller)),
         )
 
     def output_drive(self, controller: Controller) -> OutputDrive:
@@ -419,7 +419,12 @@ class Design:
             reach = controller.profile.figure("feedback.control-range").spread()
             label = f"{controller.reference} amplifier output"
             known[net] = Potential(net, reach, "amplifier", Variation.RANGE, label=label)
-        return Loops(self.circuit, known, controller)
+        return Loops(self.circuit, known, controller, self._passed(controller))
+
+    def _passed(self, controller: Controller) -> frozenset[str]:
+        """Return the nets between a controller's amplifier inputs and what these sense."""
+        inputs = [net for a in self.amplifiers(controller) for net in (a.plus, a.minus) if net]
+        return frozenset(net for start in inputs for net in self.reach(controller, start).nets)
 
     def _regulating(self, controller: Controller) -> Amplifier | None:
         voltage = [a for a in self.amplifiers(controller) if a.use == "voltage"]

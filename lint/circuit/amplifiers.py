@@ -13,7 +13,7 @@ from .potentials import Potential
 _RESISTIVE = frozenset({"resistor", "trimmer", "jumper", "fuse"})
 
 # Parts that make a net part of the power path: its potential is the converter's doing.
-_POWER = frozenset({"inductor", "transformer", "diode", "transistor", "connector", "relay"})
+_POWER = frozenset({"inductor", "transformer", "diode", "transistor", "relay"})
 
 # Those that no amplifier's input has for itself, as it may have a clamp or a connector.
 _WINDINGS = frozenset({"inductor", "transformer"})
@@ -36,7 +36,8 @@ class Reach:
     """What resistors alone join to a net.
 
     nets:     the nets passed through
-    ends:     the nets of known potential, or of the power path, where the walk ended
+    ends:     the nets of known potential, or of the power path, where the walk ended; a net with a
+              connector is an end and is passed as well
     parts:    the resistive parts passed
     """
 
@@ -104,11 +105,13 @@ class AmplifierReader:
         waiting = [start]
         while waiting:
             net = waiting.pop()
-            if net in nets or net in ends:
+            if net in nets or (net in ends and not self._is_terminal(net)):
                 continue
             if net in self.known or self._is_power(net, start):
                 ends[net] = None
                 continue
+            if self._is_terminal(net):
+                ends[net] = None  # an output, or the far end of a sense line: its resistors tell
             nets[net] = None
             for part in self._resistive(net):
                 parts[part.reference] = None
@@ -134,6 +137,12 @@ class AmplifierReader:
         """Tell whether a net is part of the power path; an input's own net only where it is the output."""
         kinds = {self.circuit.kind(connection.part) for connection in self.circuit.connections(net)}
         return not (_WINDINGS if net == start else _POWER).isdisjoint(kinds) or net == self.output
+
+    def _is_terminal(self, net: str) -> bool:
+        """Tell whether a connector is on a net of unknown potential."""
+        return net not in self.known and any(
+            self.circuit.kind(connection.part) == "connector" for connection in self.circuit.connections(net)
+        )
 
     def _sense(self, plus: str, minus: str) -> SenseResistor | None:
         """Return the sense resistor whose ends the two inputs look at, or one that stands on ground."""
@@ -165,7 +174,8 @@ class AmplifierReader:
             n for n in ends if n in self.known and self.known[n].origin in ("brief", "name") and n != supply
         ]
         driven = [n for n in ends if n not in self.known and n != supply and not self._switching(n)]
-        return tuple(rails or driven)
+        converted = [n for n in driven if self._is_power(n, "")]
+        return tuple(rails or converted or driven)
 
     def _switching(self, net: str) -> bool:
         roles = ("output 1 collector", "output 1 emitter", "output 2 collector", "output 2 emitter")

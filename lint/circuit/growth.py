@@ -49,6 +49,7 @@ class Growth:
     stops: nets at which growth ends although their potential is not known (what the caller replaces by a
            free quantity or drives himself); nothing on them is called an obstacle
     empty_capacitors: capacitors hold no charge yet, and count as shorts
+    unloaded: nets whose connectors are taken as drawing nothing, which is said
     conducting: transistors and switches that are on, and count as shorts between their main terminals
     """
 
@@ -58,6 +59,7 @@ class Growth:
     stops: frozenset[str] = frozenset()
     empty_capacitors: bool = False
     conducting: frozenset[str] = frozenset()
+    unloaded: frozenset[str] = frozenset()
     elements: dict[str, Element] = field(default_factory=dict[str, Element])
     parameters: dict[str, Parameter] = field(default_factory=dict[str, Parameter])
     potentials: dict[str, Value] = field(default_factory=dict[str, Value])

@@ -75,11 +75,15 @@ class Trip:
 
 @dataclass(slots=True)
 class Loops:
-    """Solves the closed loops of one controller."""
+    """Solves the closed loops of one controller.
+
+    passed: the nets between its amplifiers' inputs and what these sense; a connector there senses as well
+    """
 
     circuit: Circuit
     known: Mapping[str, Potential]
     controller: Controller
+    passed: frozenset[str] = frozenset()
 
     def regulation(self, amplifier: Amplifier, fault: Fault | None = None) -> Regulation | Unsolved:
         """Return the output voltage at which the voltage amplifier's inputs are equal.
@@ -179,7 +183,7 @@ class Loops:
         return {name: potential for name, potential in self.known.items() if name != net}
 
     def _grow(self, amplifier: Amplifier, known: Mapping[str, Potential], stops: frozenset[str]) -> Growth:
-        growth = Growth(self.circuit, known, (self.controller,), stops)
+        growth = Growth(self.circuit, known, (self.controller,), stops, unloaded=self.passed - stops)
         return growth.grow(amplifier.plus, amplifier.minus)
 
     def _inputs_equal(self, growth: Growth, amplifier: Amplifier) -> Condition:

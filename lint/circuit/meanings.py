@@ -213,6 +213,14 @@ def _constant(text: str) -> float | None:
     return number if isfinite(number) else None
 
 
+def _connector(growth: Growth, part: Part, net: str) -> None:
+    """Stop at a connector, which may bring anything, but where the caller knows that it only senses."""
+    if net in growth.unloaded:
+        growth.assume(f"{part.reference} taken as drawing nothing from {net}")
+    else:
+        opaque(growth, part, net)
+
+
 def opaque(growth: Growth, part: Part, net: str) -> None:
     """Stop at a part whose current nothing tells."""
     growth.block(net, part, f"{part.reference} ({growth.circuit.kind(part)}) may feed or load it")
@@ -224,6 +232,7 @@ MEANINGS: dict[str, Callable[[Growth, Part, str], None]] = {
     "capacitor": _capacitor,
     "coupling": _open,
     "test point": _open,
+    "connector": _connector,
     "inductor": _short,
     "fuse": _short,
     "jumper": _short,

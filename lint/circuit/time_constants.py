@@ -45,10 +45,17 @@ def time_constant(
 
 
 def source_resistance(
-    circuit: Circuit, known: Mapping[str, Potential], controllers: Sequence[Controller], net: str
+    circuit: Circuit,
+    known: Mapping[str, Potential],
+    controllers: Sequence[Controller],
+    net: str,
+    unloaded: frozenset[str] = frozenset(),
 ) -> Estimate | Unsolved:
-    """Return the resistance (ohm) that a net is driven from, every source still (Thevenin's)."""
-    growth = _quiet(circuit, known, controllers, net, GROUND)
+    """Return the resistance (ohm) that a net is driven from, every source still (Thevenin's).
+
+    unloaded: nets whose connectors are taken as drawing nothing
+    """
+    growth = _quiet(circuit, known, controllers, net, GROUND, unloaded)
     if _is_complete(growth) and net in growth.network().floating():
         return Unsolved(f"net {net} has no direct-current path", nets=(net,))
     found = estimate(growth, {"resistance": (lambda s: s.voltage(net) / _TEST_CURRENT, "ohm")})
@@ -61,12 +68,18 @@ def _is_complete(growth: Growth) -> bool:
 
 
 def _quiet(
-    circuit: Circuit, known: Mapping[str, Potential], controllers: Sequence[Controller], a: str, b: str
+    circuit: Circuit,
+    known: Mapping[str, Potential],
+    controllers: Sequence[Controller],
+    a: str,
+    b: str,
+    unloaded: frozenset[str] = frozenset(),
 ) -> Growth:
     """Return the resistances round two nets, every source still, with the test current from `b` to `a`."""
     zero = Spread.exact(0.0, "V")
     quiet = {net: replace(potential, spread=zero, assumption="") for net, potential in known.items()}
-    growth = Growth(circuit, quiet, controllers).grow(*(net for net in (a, b) if net != GROUND))
+    growth = Growth(circuit, quiet, controllers, unloaded=unloaded)
+    growth.grow(*(net for net in (a, b) if net != GROUND))
     growth.elements = {name: e for name, e in growth.elements.items() if isinstance(e, Resistor)}
     growth.add(CurrentSource("test current", b, a, lambda _: np.full(1, _TEST_CURRENT)))
     return growth

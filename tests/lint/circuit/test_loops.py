@@ -85,10 +85,9 @@ class TestRegulation:
     def test_faults(self, fan_of: FanOf):
         design = fan_of()
         (controller,) = design.controllers
-        amplifier = design.amplifiers(controller)[0]
 
         def after(part: str, *, shorted: bool) -> float:
-            return design.output_after(controller, amplifier, Fault(part, shorted=shorted))
+            return design.output_after(controller, Fault(part, shorted=shorted))
 
         assert after("R9", shorted=False) == pytest.approx(2.5, abs=0.01)
         assert after("R8", shorted=True) == pytest.approx(2.5, abs=0.01)
@@ -134,3 +133,28 @@ class TestTrip:
     def test_no_shunt(self, fan_of: FanOf):
         design = fan_of(R13="R13 SHUNT 0 10k")
         assert isinstance(design.trip(design.controllers[0]), NoLoop)
+
+
+class TestVariants:
+    """What an engineer draws besides the plain divider."""
+
+    @pytest.mark.parametrize(("top", "number", "volts"), [("15k", 1, 5.0), ("8.1k", 2, 4.0)])
+    def test_of_two_voltage_amplifiers_the_lower_one_regulates(
+        self, fan_of: FanOf, top: str, number: int, volts: float
+    ):
+        # amplifier 2 as an over-voltage limit at 1 V x (1 + top / 2.7k): 6.6 V beside 5 V, or 4 V
+        changes = {"R13": "R13 SHUNT 0 2.7k tol=0", "D1": "D1 0 SW DS"}
+        design = fan_of(R14=f"R14 FAN SHUNT {top} tol=0", **changes)
+        (controller,) = design.controllers
+        regulating = design.regulating(controller)
+        assert regulating is not None
+        assert regulating.number == number
+        found = outcome(design)
+        assert not isinstance(found, NoLoop | Unsolved)
+        assert found.output.spread.nominal == pytest.approx(volts, abs=0.01)
+
+    def test_a_connector_on_the_sense_line_draws_nothing_and_that_is_said(self, fan_of: FanOf):
+        design = fan_of(R20="R20 FAN REMOTE 10", R8="R8 REMOTE SENSE 5.1k", J9="J9 REMOTE 0 FAR")
+        found = outcome(design)
+        assert not isinstance(found, NoLoop | Unsolved)
+        assert "J9 taken as drawing nothing from REMOTE" in found.output.assumptions
