@@ -1,9 +1,9 @@
 """The reader of SPICE-style lists: simulator decks, exporters' netlists and plain lists of parts.
 
-A list is read in four steps, one module or two for each: physical lines to logical ones (`spice_lines`), the
-structure of cards and blocks by the grammar `spice.lark` (`spice_blocks`), element lines by their letter
-(`spice_words`, `spice_elements`), and the levels of subcircuits to one flat netlist (`spice_scope`,
-`spice_hierarchy`).
+A list is read in four steps: physical lines to logical ones (`spice_lines`); the structure of cards and
+blocks by the grammar `spice.lark` (`spice_blocks`); element lines by their letter (`spice_words`,
+`spice_elements`, `spice_semiconductors`, `spice_sources`); and the levels of subcircuits to one flat netlist
+(`spice_scope` takes in the cards of a level, `spice_hierarchy` its parts, `spice_nets` its nets).
 """
 
 from __future__ import annotations

@@ -31,6 +31,7 @@ class Element:
                 a copy for each of many parts would be the largest thing kept of them
     first:      index among the line's positional words of the first node
     assumption: what the line leaves open and was decided here, else empty
+    places:     of the nodes, once they were sought for a long line
     """
 
     reference: str
@@ -43,7 +44,7 @@ class Element:
     source: Source
     first: int = 1
     assumption: str = ""
-    indexes: list[int] | None = None
+    places: list[Place] | None = None
 
     @property
     def line(self) -> Line:
@@ -53,19 +54,22 @@ class Element:
 
     def node_places(self) -> list[Place]:
         """Return the place of each node."""
+        if self.places is not None:
+            return self.places
         line = self.line
-        indexes = self.indexes or split(line, exact=True).indexes
-        return [line.place(index) for index in indexes[self.first : self.first + len(self.nodes)]]
+        indexes = split(line, exact=True).indexes[self.first : self.first + len(self.nodes)]
+        return list(line.places(indexes))
 
     def node_place(self, at: int) -> Place:
         """Return the place of one node."""
-        line = self.line
         word = at + self.first
-        if word < _FEW and is_plain(line.text):
-            return line.place(len(line.text) - len(line.text.split(None, word)[word]))
-        # A long line is asked for one node after the other: its words are sought once.
-        self.indexes = self.indexes or split(line, exact=True).indexes
-        return line.place(self.indexes[word])
+        if word < _FEW:
+            line = self.line
+            if is_plain(line.text):
+                return line.place(len(line.text) - len(line.text.split(None, word)[word]))
+        # A long line is asked for one node after the other: their places are sought once, and all together.
+        self.places = self.node_places()
+        return self.places[at]
 
     def index_of(self, text: str) -> int:
         """Return where `text` stands on the line, behind the nodes: the place for an error about it."""

@@ -4,9 +4,11 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
+from .expression import names_in
 from .spice_element import Element, is_value
 from .spice_nets import Level
 from .spice_parameters import Written
+from .spice_words import split
 
 # What the reader of elements adds is text for people, whatever it begins with.
 _TEXT = frozenset({"expression", "waveform", "timing", "library", "area"})
@@ -19,9 +21,7 @@ def evaluated(element: Element, level: Level) -> tuple[str, Mapping[str, str]]:
     The text of a value's expression is kept as the attribute "expression". What depends on the simulated
     circuit stays as written.
     """
-    attributes = element.attributes
-    if attributes:
-        attributes = {key: _text_of(text, key, element, level) for key, text in attributes.items()}
+    attributes = _attributes(element, level) if element.attributes else element.attributes
     value = element.value
     if not value or not (value[0] in "{'" or (value[0].isalpha() and _is_parameter(value, level))):
         return value, attributes
@@ -33,20 +33,42 @@ def evaluated(element: Element, level: Level) -> tuple[str, Mapping[str, str]]:
 
 def given_parameters(element: Element, level: Level) -> dict[str, float | None]:
     """Return the values that an instance hands to its subcircuit; None for one without a number."""
-    return {
-        key: level.scope.parameters.number(Written(element.line, text, element.index_of(text)))
-        for key, text in element.attributes.items()
-        if key not in _TEXT
-    }
+    texts = {key: text for key, text in element.attributes.items() if key not in _TEXT}
+    return _numbers(texts, element, level)
 
 
-def _text_of(text: str, key: str, element: Element, level: Level) -> str:
-    if key in _REFERENCES:
-        return " ".join(level.path + level.names.get(word, word) for word in text.split())
-    if key in _TEXT or text[:1] not in ("{", "'"):
-        return text
-    number = level.scope.parameters.number(Written(element.line, text, element.index_of(text)))
-    return text if number is None else _written(number)
+def _attributes(element: Element, level: Level) -> dict[str, str]:
+    attributes = dict(element.attributes)
+    expressions: dict[str, str] = {}
+    for key, text in element.attributes.items():
+        if key in _REFERENCES:
+            attributes[key] = " ".join(level.path + level.names.get(word, word) for word in text.split())
+        elif key in _TEXT:
+            continue
+        elif text.startswith("{") or (text.startswith("'") and _asks_for_parameters(text, level)):
+            expressions[key] = text
+        else:
+            attributes[key] = text.strip("'")
+    numbers = _numbers(expressions, element, level)
+    attributes.update({key: _written(number) for key, number in numbers.items() if number is not None})
+    return attributes
+
+
+def _asks_for_parameters(text: str, level: Level) -> bool:
+    """Return whether a text in single quotes is an expression: it may as well be a text, as 'TO-220' is."""
+    parameters = level.scope.parameters
+    names = names_in(text, parameters.functions)
+    return bool(names) and all(parameters.has(name) for name in names)
+
+
+def _numbers(texts: Mapping[str, str], element: Element, level: Level) -> dict[str, float | None]:
+    """Return the value of each of the `texts`, which are pairs at the end of the element's line."""
+    if not texts:
+        return {}
+    line = element.line
+    starts = {pair.key: pair.start for pair in split(line, exact=True).assignments}
+    parameters = level.scope.parameters
+    return {key: parameters.number(Written(line, text, starts.get(key, 0))) for key, text in texts.items()}
 
 
 def _is_parameter(word: str, level: Level) -> bool:

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import re
 from bisect import bisect_right
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from functools import cached_property
 from itertools import accumulate
 from typing import NamedTuple
@@ -55,6 +55,17 @@ class Line(NamedTuple):
             return Place(self.source.file, self.number, index + 1)
         before = self.text.count(JOINED, 0, index)
         return Place(self.source.file, self.number + before, index - self.text.rfind(JOINED, 0, index))
+
+    def places(self, indexes: Iterable[int]) -> Iterator[Place]:
+        """Yield the place of each of the rising `indexes`, in one pass over the text."""
+        number, start, done = self.number, 0, 0
+        for index in indexes:
+            joined = self.text.count(JOINED, done, index)
+            if joined:
+                number += joined
+                start = self.text.rindex(JOINED, done, index) + 1
+            done = index
+            yield Place(self.source.file, number, index - start + 1)
 
     def error(self, index: int, message: str, expected: str, remedy: str) -> NetlistError:
         """Return the error `message` at `index`, with the physical line as excerpt."""

@@ -32,8 +32,14 @@ def test_parameters_may_refer_forward() -> None:
 
 
 def test_attributes_may_be_expressions() -> None:
-    netlist = read("R1 a b 1k p={w/2} tol='w' mfg=hive", ".param w=2")
-    assert netlist.parts["R1"].attributes == {"p": "1", "tol": "2", "mfg": "hive"}
+    netlist = read("R1 a b 1k p={w/2} tol='w' mfg=hive package='TO-220' part='1N4148'", ".param w=2")
+    expected = {"p": "1", "tol": "2", "mfg": "hive", "package": "TO-220", "part": "1N4148"}
+    assert netlist.parts["R1"].attributes == expected
+
+
+def test_an_attribute_with_an_unknown_name_is_an_error_at_its_place() -> None:
+    (error,) = errors("R1 a b 1k p=1 tol={2*nosuch}")
+    assert (error.message, error.place) == ("unknown name nosuch", Place("press.cir", 2, 22))
 
 
 @pytest.mark.construct("B2 .param cycle")

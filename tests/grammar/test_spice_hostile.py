@@ -53,6 +53,13 @@ HOSTILE = {
     ),
     "bad lines": ('"t\\n" + "R1 a\\n" * 200_000', "R1 has too few nodes: 1 word follows"),
     "long plain lines": ('"t\\nU1 " + "ab " * 100_001', "a line of more than 100000 words"),
+    "many nets on one line": ('"t\\nU1 " + lines("n# ", 90_000) + "m"', "1 parts, 0 notes"),
+    "many nets on many lines": ('"t\\nU1 " + lines("n#\\n+", 90_000) + "m"', "1 parts, 0 notes"),
+    "many expressions on one line": (
+        '"t\\nR1 a b 1 " + lines("p#={1} ", 40_000) + "\\nX1 a s " + lines("p#=1 ", 40_000)'
+        ' + "\\n.subckt s p\\nR1 p 0 1\\n.ends\\n"',
+        "2 parts, 0 notes",
+    ),
     "open braces": ('"t\\nR1 a b " + "{" * 900_000', "`{` is never closed"),
     "open parentheses": ('"t\\nR1 a b 1" + "(" * 900_000', "1 parts, 0 notes"),
     "blank lines": ('"t\\nR1 a b 1" + "\\n" * 900_000 + "R2 a b 1"', "2 parts, 0 notes"),
