@@ -39,12 +39,17 @@ def series(name: str) -> tuple[float, ...]:
     return tuple(value / 100 for value in fine[:: _OF_E192[name]])
 
 
+def is_a_size(value: float) -> bool:
+    """Tell whether any part could have this value: neither zero nor negative, nor beyond all sizes."""
+    return _LEAST <= value <= _GREATEST
+
+
 def neighbours(value: float, name: str) -> tuple[float, float]:
     """Return the preferred values below and above `value`, both the same where it is preferred itself.
 
     Raises ValueError for a value that no part has: zero, negative, or beyond all sizes.
     """
-    if not _LEAST <= value <= _GREATEST:
+    if not is_a_size(value):
         raise ValueError(f"no preferred value near {value}")
     decade = floor(log10(value))
     values = [*_decade_values(name, decade), float(f"1e{decade + 1}")]

@@ -16,7 +16,7 @@ from ..lint.circuit.loops import Regulation, Trip
 from ..lint.design import Design
 from ..lint.estimate import Unsolved
 from ..lint.parts_list import PartsList
-from ..lint.preferred import is_preferred, nearest
+from ..lint.preferred import is_a_size, is_preferred, nearest
 from ..lint.quantity import engineering, percent
 from ..lint.rule import netlist_rule, rule
 from ..lint.verdict import Level, Outcome, Verdict
@@ -169,14 +169,15 @@ def _outside(part: Part, design: Design) -> Verdict:
     value, names, tolerance = _nominal(part, design), _series(part, design), _tolerance(part, design)
     unit = "ohm" if design.circuit.kind(part) == "resistor" else "F"
     told = f" at {percent(tolerance)}" if tolerance is not None else ""
-    near = [f"{engineering(nearest(value, name), unit)} ({name})" for name in names if name != "E48"]
+    near = [name for name in names if name != "E48" and is_a_size(value)]
+    values = [f"{engineering(nearest(value, name), unit)} ({name})" for name in near]
     return Verdict(
         outcome=Outcome.REVIEW,
         message=f"{part.reference}, {engineering(value, unit, 4)}{told}, is not of {', '.join(names)}",
         subject=part.reference,
         parts=(part.reference,),
         source="IEC 60063",
-        remedy=f"take {' or '.join(near)}",
+        remedy=f"take {' or '.join(values)}" if values else "no part has such a value: correct it",
     )
 
 

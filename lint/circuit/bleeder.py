@@ -17,6 +17,9 @@ _FIRST, _SECOND = "\x00first", "\x00second"
 # A smaller share of the voltage is rounding.
 _NOTHING = 1e-9
 
+# From this resistance (ohm) on a path is no better than the board it stands on (common practice, no source).
+_INSULATION = 1e12
+
 # A path of more resistors than this is no bleeder, but a board.
 _MOST_RESISTORS = 200
 
@@ -47,6 +50,8 @@ def bleeder(circuit: Circuit, first: Sequence[str], second: Sequence[str]) -> Bl
     across = {r.name: abs(float(solution.voltage(r.a, r.b)[1])) for r in resistors if r.a != r.b}
     shares = {name: share for name, share in across.items() if share > _NOTHING}
     least, nominal, most = (float(ohms) for ohms in 1.0 / solution.current_out_of(_FIRST))
+    if not 0 < least <= nominal <= most <= _INSULATION:
+        return None  # what is left of a current below rounding tells of no path
     return Bleeder(Spread(least, nominal, most, "ohm"), shares)
 
 
