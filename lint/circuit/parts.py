@@ -233,10 +233,12 @@ def part_kind(part: Part, models: Mapping[str, str]) -> str:
     models: `.model` name (casefolded) to type, as in `Netlist.models`
     """
     pins = len(part.pins)
+    letters = _LETTERS.match(part.reference.rpartition("/")[2])
+    prefix = letters.group().upper() if letters else ""
     kind = part_kinds()["elements"].get(part.element, "")
+    if kind == "resistor" and part_kinds()["prefixes"].get(prefix) == "trimmer":
+        kind = "trimmer"  # RV1 of a list is an element R; RVCC is a resistor
     if not kind:
-        letters = _LETTERS.match(part.reference.rpartition("/")[2])
-        prefix = letters.group().upper() if letters else ""
         kind = _by_prefix(prefix)
         if prefix == "RT" and not _THERMISTOR.search(f"{part.model} {part.value}"):
             kind = "resistor"  # the timing resistor's name in the data sheets, not the thermistor's letters

@@ -252,6 +252,11 @@ class TestWhatBlocks:
             netlist.nets[pin.net].pins.append((reference, index))
         assert unsolved(Design(netlist), "A").parts == (reference,)
 
+    def test_a_rheostat_travels_from_nothing_to_its_value(self, design_of: DesignOf):
+        found = design_of("V1 VIN 0 12\nRV1 VIN A 1k tol=0\nR2 A 0 1k tol=0").voltage("A")
+        assert not isinstance(found, Unsolved)
+        assert (found.spread.minimum, found.spread.maximum) == pytest.approx((6, 12))
+
     def test_a_trimmer_without_a_value(self, design_of: DesignOf):
         assert unsolved(design_of(SUPPLY + "RV1 VIN A 0 quince"), "A").parts == ("RV1",)
 

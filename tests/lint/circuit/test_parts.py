@@ -52,8 +52,8 @@ class TestKind:
     def test_a_resistor_of_three_pins_is_a_trimmer(self):
         assert part_kind(part("R7", 3), {}) == "trimmer"
 
-    def test_a_trimmer_of_two_pins_is_a_resistor(self):
-        assert part_kind(part("RV7", 2), {}) == "resistor"
+    def test_a_trimmer_of_two_pins_is_a_rheostat(self):
+        assert part_kind(part("RV7", 2), {}) == "trimmer"
 
     @pytest.mark.parametrize("reference", ["R1", "C1", "L1"])
     def test_one_with_many_pins_is_something_else(self, reference: str):
