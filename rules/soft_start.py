@@ -284,3 +284,56 @@ def _capacitor_for(measured: Estimate, wanted: Spread, capacitor: Part, design: 
     preferred = nearest(needed, "E6")
     makes = engineering(time_now * preferred / value, "s")
     return f"{engineering(preferred, 'F')} as {capacitor.reference} makes {makes} (E6)"
+
+
+@rule("soft-start.steady-state", level="warning", topic="soft start")
+def steady_state(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Does the soft start let go of the duty once it is over?
+
+    What:
+        Takes the pin's voltage after the start as a share of the reference, and the duty that it leaves
+        against the duty that the power stage needs at the lowest input.
+    Why:
+        The resistors that discharge the soft-start capacitor also hold the pin up afterwards. Too high,
+        and the converter never reaches its full pulse: it starts, and then fails at the lowest input.
+    Formula:
+        share = V(end) [V] / V(reference) [V], about 1 to 10 in practice; duty left = 1 - dead time share
+    Source:
+        SLVA001, from memory (resistors 1 to 10); volt-second balance of the inductor
+    Remedy:
+        Lower the resistor from the pin to ground, or raise the one from the reference.
+    Fails:
+        R1 REF DTC 1k
+        R2 DTC 0 1k
+        C1 REF DTC 1u
+    Passes:
+        R1 REF DTC 10k
+        R2 DTC 0 1k
+        C1 REF DTC 1u
+    """
+    net = controller.net("dead time")
+    capacitors = _capacitors(controller, design, "reference")
+    end = design.voltage(net) if net and capacitors else None
+    if end is None or isinstance(end, Unsolved):
+        return
+    reference = controller.profile.figure("reference.voltage").spread().nominal
+    share, left = end.spread.nominal / reference, design.dead_time(controller, end).share.spread.maximum
+    needed = design.needed_duty(controller)
+    most = 1 - needed.maximum if needed is not None else _MOST_DEAD_TIME
+    fits = left <= most
+    against = (
+        f"{percent(needed.maximum)} is needed" if needed is not None else f"{percent(1 - most)} is asked"
+    )
+    yield Verdict(
+        outcome=Outcome.PASS if fits else Outcome.REVIEW,
+        message=f"after the start {percent(share)} of the reference stays on the pin: "
+        f"{percent(1 - left)} of duty is left, {against}",
+        parts=(*(part.reference for part in capacitors), *end.parts),
+        pins=_PIN,
+        source="SLVA001, from memory",
+        remedy="" if fits else "lower the resistor from the pin to ground",
+    )
+
+
+# Where no duty is told: more dead time after the start is seldom meant (common practice, no source).
+_MOST_DEAD_TIME = 0.5

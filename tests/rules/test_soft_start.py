@@ -214,3 +214,23 @@ def test_each_of_two_controllers_is_asked(ask: Ask, pump: Board) -> None:
         ("U1", Outcome.PASS),
         ("U2", Outcome.FAIL),
     ]
+
+
+# ----------------------------------------------------------------------------------------- steady state
+
+
+def test_the_customary_ratio_leaves_the_duty(ask: Ask, pump: Board) -> None:
+    # 10 k over 1 k: 1/11 of the reference; 1 - (0.495 V + 0.11 V) / 3 V and less by the other lines
+    (verdict,) = ask("soft-start.steady-state", pump(R2="REF DTC 10k 1%", R3="DTC 0 1k 1%", C2="REF DTC 1u"))
+    assert verdict.outcome is Outcome.PASS
+    assert "9.1" in verdict.message
+
+
+def test_equal_resistors_keep_the_pulses_short(ask: Ask, pump: Board) -> None:
+    (verdict,) = ask("soft-start.steady-state", pump(R2="REF DTC 1k 1%", R3="DTC 0 1k 1%", C2="REF DTC 1u"))
+    assert verdict.outcome is Outcome.REVIEW
+    assert verdict.remedy == "lower the resistor from the pin to ground"
+
+
+def test_without_a_soft_start_there_is_no_end_of_it(ask: Ask, pump: Board) -> None:
+    assert ask("soft-start.steady-state", pump(C2=None)) == []
