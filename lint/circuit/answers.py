@@ -10,8 +10,9 @@ import numpy as np
 
 from ..estimate import Estimate, Method, Unsolved
 from .growth import Growth
+from .linear import Array
 from .monte_carlo import monte_carlo, statement
-from .solver import Array, Condition, Free, Network, Sample
+from .network import Condition, Free, Network, Sample
 from .states import MOST_JUNCTIONS, Junction, Probe, State, read_with_states
 from .worst_case import Analysis, analyse
 

@@ -10,7 +10,9 @@ import numpy as np
 from ...grammar.netlist import Part
 from ..quantity import Spread
 from .graph import Circuit
-from .solver import Array, Network, Resistor, Sample, Value, solve
+from .linear import Array
+from .network import Network, Resistor, Sample, Value
+from .solver import solve
 
 _FIRST, _SECOND = "\x00first", "\x00second"
 

@@ -18,9 +18,9 @@ from .controllers import Controller, ControllerPin
 from .diodes import Diode, forward_drop, zener_voltage
 from .graph import Circuit, Connection
 from .meanings import MEANINGS, opaque
+from .network import ControlledSource, CurrentSource, Element, Network, Resistor, Value
 from .parts import defaults
 from .potentials import Potential
-from .solver import ControlledSource, CurrentSource, Element, Network, Resistor, Value
 from .states import Junction
 from .worst_case import Parameter
 

@@ -14,13 +14,13 @@ import numpy as np
 
 from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
-from .amplifiers import Amplifier
+from .amplifiers import Amplifier, SenseResistor
 from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import Growth
+from .network import Condition, FreeCurrent, FreePotential, Resistor
 from .potentials import Potential
-from .solver import Condition, FreeCurrent, FreePotential, Resistor
 from .states import Probe
 from .trimming import settable, trimmers
 from .worst_case import Parameter
@@ -146,6 +146,7 @@ class Loops:
         growth.use(sense.part)
         resistor = Resistor(sense.part.reference, sense.near, sense.far, value)
         growth.add(resistor)
+        self._add_beside(growth, sense)
         if sense.far not in known:
             return Unsolved(
                 f"net {sense.far} has no known potential",
@@ -169,6 +170,15 @@ class Loops:
                 nets=(amplifier.plus, amplifier.minus),
             )
         return Trip(found["current"], found["threshold"], found["dissipation"], turned)
+
+    def _add_beside(self, growth: Growth, sense: SenseResistor) -> None:
+        """Add the resistors in parallel with a sense resistor: the load's current divides among them."""
+        for part in self.circuit.between(sense.near, sense.far):
+            beside = self.circuit.kind(part) == "resistor" and part.reference not in growth.elements
+            value = growth.part_value(part) if beside else None
+            if value is not None:
+                growth.use(part)
+                growth.add(Resistor(part.reference, sense.near, sense.far, value))
 
     def feedback_current(self) -> Estimate | Unsolved:
         """Return the current (A) out of the feedback pin into what hangs on it, over its control range."""

@@ -15,7 +15,8 @@ import numpy as np
 from ...grammar.netlist import Part, Pin
 from .alternating import fed_by
 from .diodes import Diode, diode_nets, is_zener_by_name, zener_voltage
-from .solver import Array, ControlledSource, CurrentSource, Resistor, Sample, Value, VoltageSource
+from .linear import Array
+from .network import ControlledSource, CurrentSource, Resistor, Sample, Value, VoltageSource
 from .transistors import read_transistor
 from .worst_case import Parameter, Variation
 

@@ -14,7 +14,7 @@ from math import log1p
 import numpy as np
 
 from ..quantity import Spread
-from .solver import Array
+from .linear import Array
 from .worst_case import Evaluate, Parameter, Samples, in_slices
 
 DEFAULT_SAMPLES = 10_000

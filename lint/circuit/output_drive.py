@@ -18,9 +18,9 @@ from .diodes import Diode
 from .drive import Drive, Driven
 from .graph import Circuit
 from .growth import Growth
+from .network import CurrentSource, Resistor, VoltageSource
 from .outputs import OutputTransistor
 from .potentials import Potential
-from .solver import CurrentSource, Resistor, VoltageSource
 from .transistors import Transistor
 from .worst_case import Parameter, Variation
 
@@ -111,8 +111,8 @@ class OutputDrive:
         beside = {control}
         for connection in self.circuit.connections(control):
             if self.circuit.kind(connection.part) in ("resistor", "jumper"):
-                others = self.circuit.other_nets(connection.part, control)
-                beside.update(net for net in others if not self._is_stiff(net))
+                others = set(self.circuit.other_nets(connection.part, control))
+                beside |= {net for net in others - {driven.transistor.common} if not self._is_stiff(net)}
         for place, reference in enumerate(driven.drivers):
             driver = self.drive.transistors.get(reference)
             if driver is None:
@@ -129,11 +129,11 @@ class OutputDrive:
         return net in self.known or net == self.controller.net("supply")
 
     def _is_pulled(self, driver: Transistor, beside: set[str]) -> bool:
-        """Tell whether resistors lead from a driver's control terminal to a known potential or the supply."""
+        """Tell whether resistors lead from a driver's control terminal to a stiff net or to its collector."""
         waiting, seen = [driver.control], {driver.control, *beside}
         while waiting:
             net = waiting.pop()
-            if self._is_stiff(net):
+            if self._is_stiff(net) or net == driver.output:
                 return True
             for connection in self.circuit.connections(net):
                 if self.circuit.kind(connection.part) in ("resistor", "trimmer", "jumper", "inductor"):

@@ -11,8 +11,8 @@ from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import Growth
+from .network import Element
 from .potentials import Potential
-from .solver import Element
 from .states import Probe
 
 

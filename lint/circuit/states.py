@@ -17,7 +17,9 @@ from typing import TypeAlias
 import numpy as np
 from numpy.typing import NDArray
 
-from .solver import Array, Network, Sample, Solution, Value, VoltageSource, solve
+from .linear import Array
+from .network import Network, Sample, Value, VoltageSource
+from .solver import Solution, solve
 
 Probe: TypeAlias = Callable[[Solution], Array]
 Truth: TypeAlias = NDArray[np.bool_]

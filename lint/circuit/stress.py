@@ -18,8 +18,9 @@ from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import Growth
+from .linear import Array
+from .network import Resistor
 from .potentials import Potential
-from .solver import Array, Resistor
 from .states import Probe
 
 # Beyond so many networks on the rails of a large board the rest is left unsolved, and named.

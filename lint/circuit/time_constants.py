@@ -14,8 +14,10 @@ from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import GROUND, Growth
+from .linear import Array
+from .network import CurrentSource, Resistor
 from .potentials import Potential
-from .solver import Array, CurrentSource, Resistor, Solution
+from .solver import Solution
 
 # A resistance is read as the voltage that this current makes across it; any value does for a linear network.
 _TEST_CURRENT = 1e-3

@@ -13,8 +13,10 @@ from .answers import estimate
 from .controllers import Controller
 from .graph import Circuit
 from .growth import GROUND, Growth
+from .linear import Array
+from .network import CurrentSource
 from .potentials import Potential
-from .solver import Array, CurrentSource, Solution
+from .solver import Solution
 from .states import Probe
 from .trimming import settable, trimmers
 from .worst_case import Parameter

@@ -10,7 +10,7 @@ from ..estimate import Unsolved
 from ..quantity import Spread
 from .answers import estimate
 from .growth import Growth
-from .solver import Condition, Free
+from .network import Condition, Free
 from .states import Probe
 from .worst_case import Parameter, Variation
 

@@ -22,7 +22,8 @@ from typing import TypeAlias
 import numpy as np
 
 from ..quantity import Spread
-from .solver import Array, Sample
+from .linear import Array
+from .network import Sample
 
 MOST_CORNER_PARAMETERS = 12
 _MOST_CORNERS = 25_600  # twelve parameters, two of them trimmers

@@ -10,7 +10,8 @@ import numpy as np
 from pwmlint.grammar import Netlist, read_bytes
 from pwmlint.lint.circuit.linear import Array
 from pwmlint.lint.circuit.monte_carlo import monte_carlo
-from pwmlint.lint.circuit.solver import Condition, FreePotential, Network, Resistor, Sample, Value, solve
+from pwmlint.lint.circuit.network import Condition, FreePotential, Network, Resistor, Sample, Value
+from pwmlint.lint.circuit.solver import solve
 from pwmlint.lint.circuit.worst_case import Parameter, Samples, analyse
 from pwmlint.lint.design import Design
 

@@ -18,8 +18,9 @@ import pytest
 from pwmlint.grammar import read_bytes
 from pwmlint.lint.circuit.graph import Circuit
 from pwmlint.lint.circuit.growth import Growth
+from pwmlint.lint.circuit.network import Condition, Free, FreeCurrent, FreePotential
 from pwmlint.lint.circuit.potentials import known_potentials
-from pwmlint.lint.circuit.solver import Condition, Free, FreeCurrent, FreePotential, Solution, solve
+from pwmlint.lint.circuit.solver import Solution, solve
 from pwmlint.lint.design import Design
 from pwmlint.lint.estimate import Estimate
 

@@ -10,8 +10,9 @@ from dataclasses import dataclass
 
 import numpy as np
 import pytest
+from pwmlint.lint.circuit.linear import Array
 from pwmlint.lint.circuit.monte_carlo import monte_carlo
-from pwmlint.lint.circuit.solver import Array, Sample
+from pwmlint.lint.circuit.network import Sample
 from pwmlint.lint.circuit.worst_case import Analysis, Parameter, Variation, analyse
 
 

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 from pwmlint.lint.circuit.answers import estimate
 from pwmlint.lint.circuit.growth import Growth
-from pwmlint.lint.circuit.solver import Condition, FreePotential, Value
+from pwmlint.lint.circuit.network import Condition, FreePotential, Value
 from pwmlint.lint.design import Design
 from pwmlint.lint.estimate import Estimate, Unsolved
 

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+from pwmlint.lint.circuit.linear import Array
 from pwmlint.lint.circuit.monte_carlo import coverage, monte_carlo, statement
-from pwmlint.lint.circuit.solver import Array, Sample
+from pwmlint.lint.circuit.network import Sample
 from pwmlint.lint.circuit.worst_case import Parameter, Variation
 from pwmlint.lint.quantity import Spread
 

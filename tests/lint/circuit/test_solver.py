@@ -7,7 +7,7 @@ from types import MappingProxyType
 
 import numpy as np
 import pytest
-from pwmlint.lint.circuit.solver import (
+from pwmlint.lint.circuit.network import (
     Condition,
     ControlledSource,
     CurrentSource,
@@ -18,11 +18,10 @@ from pwmlint.lint.circuit.solver import (
     Network,
     Resistor,
     Sample,
-    Solution,
     Value,
     VoltageSource,
-    solve,
 )
+from pwmlint.lint.circuit.solver import Solution, solve
 
 
 def constant(number: float) -> Value:

@@ -10,19 +10,18 @@ import numpy as np
 import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
-from pwmlint.lint.circuit.solver import (
-    Array,
+from pwmlint.lint.circuit.linear import Array
+from pwmlint.lint.circuit.network import (
     Condition,
     CurrentSource,
     FreePotential,
     Network,
     Resistor,
     Sample,
-    Solution,
     Value,
     VoltageSource,
-    solve,
 )
+from pwmlint.lint.circuit.solver import Solution, solve
 from scipy.sparse import coo_matrix
 from scipy.sparse.linalg import spsolve  # pyright: ignore[reportUnknownVariableType] - scipy is untyped
 

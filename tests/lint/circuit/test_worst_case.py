@@ -8,7 +8,8 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from pwmlint.lint.circuit.solver import Array, Sample
+from pwmlint.lint.circuit.linear import Array
+from pwmlint.lint.circuit.network import Sample
 from pwmlint.lint.circuit.worst_case import Analysis, Evaluate, Parameter, Samples, Variation, analyse
 
 Formula = Callable[[Sample], Array]
