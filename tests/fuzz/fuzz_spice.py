@@ -65,7 +65,7 @@ X1 n inner
 R9 x 0 {twice(rload)}
 """,
     """press
-M§Q1 d g s IRF540
+M§Q1 d g s BUZ11
 Q2 c b e 0 BC547 2
 E1 o 0 TABLE {V(a)} = (0,0) (1,5)
 G1 o 0 a b 1m

@@ -197,7 +197,7 @@ def test_behavioural_sources() -> None:
         ("D1 a k DX 2", ("D", "a k", "", "DX")),
         ("D1 a k DX off", ("D", "a k", "", "DX")),
         ("D1 a c a2 BAV70", ("D", "a c a2", "", "BAV70")),
-        ("D1 x y p m KBU6", ("D", "x y p m", "", "KBU6")),
+        ("D1 x y p m BRIDGE6", ("D", "x y p m", "", "BRIDGE6")),
         ("LED1 a k RED", ("D", "a k", "", "RED")),
         ("CR1 a k 1N4007", ("D", "a k", "", "1N4007")),
         ("ZD1 a k BZX84", ("D", "a k", "", "BZX84")),
@@ -230,8 +230,8 @@ def test_bipolar_transistors(line: str, expected: tuple[str, ...]) -> None:
     [
         ("M1 d g s b MX L=1u W=10u", ("M", "d g s b", "", "MX")),
         ("M1 d g s VX", ("M", "d g s", "", "VX")),
-        ("M1 d g s IRF540", ("M", "d g s", "", "IRF540")),
-        ("M1 d g s s IRF540 m=2", ("M", "d g s s", "", "IRF540")),
+        ("M1 d g s BUZ11", ("M", "d g s", "", "BUZ11")),
+        ("M1 d g s s BUZ11 m=2", ("M", "d g s s", "", "BUZ11")),
         ("MOV1 a b 275V", ("", "a b", "275V", "")),
     ],
 )
@@ -256,7 +256,7 @@ def test_field_effect_transistors(line: str, expected: tuple[str, ...]) -> None:
         ("T1 a 0 b 0 Z0=50 TD=1n", ("T", "a 0 b 0", "", "")),
         ("T1 p1 p2 s1 s2 s3 ETD39", ("", "p1 p2 s1 s2 s3", "", "ETD39")),
         ("O1 a 0 b 0 OX", ("O", "a 0 b 0", "", "OX")),
-        ("OC1 a k e c PC817", ("", "a k e c", "", "PC817")),
+        ("OC1 a k e c OPTO4", ("", "a k e c", "", "OPTO4")),
     ],
 )
 def test_other_letters(line: str, expected: tuple[str, ...]) -> None:
@@ -326,9 +326,9 @@ def test_nothing_behind_params_is_positional() -> None:
 
 @pytest.mark.construct("B3 X with a library file before the name")
 def test_a_file_name_before_the_subcircuit_is_no_node() -> None:
-    found = part("XU2 d g s ..\\lib\\irf840.spi IRF840")
-    assert ([pin.net for pin in found.pins], found.model) == (["d", "g", "s"], "IRF840")
-    assert found.attributes == {"library": "..\\lib\\irf840.spi"}
+    found = part("XU2 d g s ..\\lib\\buz11.spi BUZ11")
+    assert ([pin.net for pin in found.pins], found.model) == (["d", "g", "s"], "BUZ11")
+    assert found.attributes == {"library": "..\\lib\\buz11.spi"}
 
 
 @pytest.mark.construct("B3 N, P, Y and any other reference prefix: a plain list")
@@ -342,7 +342,7 @@ def test_a_file_name_before_the_subcircuit_is_no_node() -> None:
         ("CN1 a b HEADER2", ("", "a b", "", "HEADER2")),
         ("F1 in out 2A", ("", "in out", "2A", "")),
         ("FB1 in out 600R", ("", "in out", "600R", "")),
-        ("BR1 x y p m KBU6", ("", "x y p m", "", "KBU6")),
+        ("BR1 x y p m BRIDGE6", ("", "x y p m", "", "BRIDGE6")),
         ("BT1 p m 12V", ("", "p m", "12V", "")),
         ("RN1 1 2 3 4 5 10k", ("", "1 2 3 4 5", "10k", "")),
         ("TP1 vout", ("", "vout", "", "")),
@@ -385,7 +385,7 @@ def test_a_bare_word_is_a_model_a_parameter_or_a_value() -> None:
         "D1 a k",
         "D1 a 1N4148",
         "Q1 c b 2N2222",
-        "M1 d g IRF540",
+        "M1 d g BUZ11",
         "V1 a",
         "E1 a",
         "U1 494",

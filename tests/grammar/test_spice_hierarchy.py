@@ -140,7 +140,7 @@ def test_a_net_of_the_deck_that_is_named_like_a_net_of_a_sheet_is_another() -> N
         ("R_R14 a b 1k", "R14", "R"),
         ("r_r14 a b 1k", "r14", "R"),
         ("D_LED1 a b red", "LED1", "D"),
-        ("M§Q1 a g s IRF540", "Q1", "M"),
+        ("M§Q1 a g s BUZ11", "Q1", "M"),
         ("X§U1 a b amp", "U1", "X"),
         ("X1 a b amp", "X1", "X"),
         ("V_Vclock a 0 5", "V_Vclock", "V"),
