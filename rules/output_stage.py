@@ -9,7 +9,9 @@ from operator import eq
 
 from ..lint.circuit.conduction import Path, path
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.diodes import diode_nets, zener_voltage
 from ..lint.circuit.outputs import OutputTransistor
+from ..lint.circuit.parts import defaults
 from ..lint.controllers import Profile
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
@@ -200,7 +202,7 @@ def voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         if winding and not _clamped(design, collector):
             yield _unclamped(outputs, winding)
             continue
-        found = _highest(controller, design, collector)
+        found = (_clamp(design, collector) if winding else None) or _highest(controller, design, collector)
         if found is not None:
             yield _voltage_verdict(controller, outputs, found)
         elif _path(controller, design, collector, "a supply") is Path.YES:
@@ -236,6 +238,22 @@ def _clamped(design: Design, net: str) -> bool:
     """Tell whether a diode leads from a net to somewhere: a clamp, a rectifier, or a zener to ground."""
     parts = (connection.part for connection in design.circuit.connections(net))
     return any(design.circuit.kind(part) == "diode" for part in parts)
+
+
+def _clamp(design: Design, net: str) -> Estimate | None:
+    """Return the voltage at which a diode clamps a net: a zener from ground, or one to a rail."""
+    for part in (connection.part for connection in design.circuit.connections(net)):
+        if design.circuit.kind(part) != "diode" or len(part.pins) != 2:
+            continue
+        anode, cathode = diode_nets(part)
+        volts, rail = zener_voltage(part), design.potential(cathode)
+        if cathode == net and design.is_ground(anode) and volts is not None:
+            most = volts * (1 + float(defaults()["tolerance"]["zener"]["ratio"]))
+            spread = Spread(0.0, volts, most, "V")
+            return Estimate(spread, spread, parts=(part.reference,), nets=(net,))
+        if anode == net and rail is not None and rail.spread.minimum > 0:
+            return Estimate(rail.spread, rail.spread, parts=(part.reference,), nets=(net, cathode))
+    return None
 
 
 def _unclamped(outputs: list[OutputTransistor], winding: str) -> Verdict:

@@ -89,6 +89,10 @@ class PowerStageReader:
     def _is_ground(self, net: str) -> bool:
         return net in self._known and self._known[net].origin == "ground"
 
+    def _is_return(self, net: str) -> bool:
+        """Tell whether a net is ground, or the other side's: one that the brief puts at 0 V."""
+        return net in self._known and self._known[net].spread.maximum == 0
+
     def _is_stiff(self, net: str) -> bool:
         return net in self._known or net == self._controller.net("supply")
 
@@ -185,7 +189,7 @@ class PowerStageReader:
     def _bridge(self, switches: Sequence[Switch]) -> str:
         """Return what the switches make at a transformer; "forward" for one switch, or for two in series."""
         nodes = [switch.node for switch in switches]
-        grounds = [self._is_ground(switch.rail) for switch in switches]
+        grounds = [self._is_return(switch.rail) for switch in switches]
         if len(switches) == 1:
             return "forward"
         if len(switches) == 2 and len(set(nodes)) == 2:
