@@ -8,9 +8,10 @@ from dataclasses import replace
 from ..grammar.netlist import Part
 from ..lint.circuit.amplifiers import Amplifier, SenseResistor
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.converter import NoLoop
 from ..lint.circuit.loops import Trip
 from ..lint.derating import DEFAULT_POLICY, Derating, resistor_power
-from ..lint.design import Design, NoLoop
+from ..lint.design import Design
 from ..lint.estimate import Unsolved
 from ..lint.judge import judge, reports, unsolved
 from ..lint.preferred import next_wattage

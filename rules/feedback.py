@@ -9,8 +9,9 @@ from ..grammar.netlist import Part
 from ..lint.brief import Rail
 from ..lint.circuit.amplifiers import Amplifier
 from ..lint.circuit.controllers import Controller
+from ..lint.circuit.converter import NoLoop
 from ..lint.circuit.loops import Regulation
-from ..lint.design import Design, NoLoop
+from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
 from ..lint.preferred import nearest, nearest_pair
@@ -187,6 +188,8 @@ def divider_ratio(controller: Controller, design: Design) -> Iterable[Verdict]:
         return  # feedback.output-voltage or feedback.complete speaks of it
     amplifier = _voltage_amplifier(controller, design)
     actual, set_point = found.output.spread.nominal, found.inputs.spread.nominal
+    if actual == 0:
+        return  # a loop that regulates to nothing has no ratio
     says = (
         f"set point {engineering(set_point, 'V')} at the inputs, "
         f"ratio {engineering(set_point / actual, '', 4)} from {amplifier.output}"

@@ -110,7 +110,7 @@ class AmplifierReader:
             if net in self.known or self._is_power(net, start):
                 ends[net] = None
                 continue
-            if self._is_terminal(net):
+            if net != start and self._is_terminal(net):
                 ends[net] = None  # an output, or the far end of a sense line: its resistors tell
             nets[net] = None
             for part in self._resistive(net):

@@ -9,7 +9,7 @@ from typing import TextIO
 
 from ..controllers import Figure, Profile
 from ..quantity import engineering
-from ..rule import Rule
+from ..rule import EXAMPLES, Rule
 from .colour import shows_box_characters
 from .glyphs import spelt_out
 
@@ -36,7 +36,8 @@ def describe_rule(one: Rule) -> str:
         lines += ["", "Needs from the brief: " + ", ".join(one.needs)]
     for name, text in one.sections.items():
         lines += ["", name, indent(text, "  ")]
-    lines += ["", "In the examples U1 is a 494 with each pin on a net of the pin's name, unless written."]
+    if set(EXAMPLES) & set(one.sections):
+        lines += ["", "In the examples U1 is a 494 with each pin on a net of the pin's name, unless written."]
     return "\n".join(lines)
 
 

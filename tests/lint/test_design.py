@@ -9,7 +9,8 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 from pwmlint.lint.brief import BriefError
-from pwmlint.lint.design import Design, NoLoop
+from pwmlint.lint.circuit.converter import NoLoop
+from pwmlint.lint.design import Design
 from pwmlint.lint.estimate import Estimate, Method, Unsolved
 
 DesignOf = Callable[..., Design]

@@ -146,7 +146,7 @@ def test_a_trimmer_without_a_brief_is_swept(ask: Ask, pump: Board) -> None:
     ("changes", "need"),
     [
         pytest.param({"R6": "VOUT FB"}, "a value for R6", id="no value"),
-        pytest.param({"R20": "FB AUX 1k", "J3": "AUX 0 X"}, 'output = "..."', id="two nets it may sense"),
+        pytest.param({"R20": "FB AUX 1k", "L9": "AUX W9 1u"}, 'output = "..."', id="two nets it may sense"),
     ],
 )
 def test_an_output_that_cannot_be_had_is_open(
@@ -284,8 +284,8 @@ def test_amplifiers_tied_off_by_resistors_are_no_broken_dividers(ask: Ask, pump:
 
 
 def test_an_output_that_no_amplifier_senses_is_for_a_person(ask: Ask, pump: Board) -> None:
-    remote = pump("R20 VOUT VS 10", "J3 VS 0 SENSE", R6="VS FB 3.83k 1%")
-    (verdict,) = ask("feedback.complete", remote, brief='[controllers.U1]\noutput = "VOUT"\n')
+    other = pump("L9 VS W9 1u", R6="VS FB 3.83k 1%")
+    (verdict,) = ask("feedback.complete", other, brief='[controllers.U1]\noutput = "VOUT"\n')
     assert verdict.outcome is Outcome.REVIEW
     assert verdict.message == "no amplifier of U1 is joined by resistors to VOUT, but to VS"
 

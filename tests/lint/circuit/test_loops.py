@@ -6,8 +6,9 @@ from collections.abc import Callable
 
 import numpy as np
 import pytest
+from pwmlint.lint.circuit.converter import NoLoop
 from pwmlint.lint.circuit.loops import Fault, Regulation, Trip
-from pwmlint.lint.design import Design, NoLoop
+from pwmlint.lint.design import Design
 from pwmlint.lint.estimate import Unsolved
 
 FanOf = Callable[..., Design]
