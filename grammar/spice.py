@@ -67,6 +67,7 @@ def _read(
     try:
         items = files.parse(source)
         expansion.expand(Level(scope), items)
+        run.problems.raise_any()
         if not netlist.parts and scope.definitions:
             _expand_last(scope, expansion, run.notes)
     except NetlistError as error:

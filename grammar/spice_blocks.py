@@ -47,13 +47,14 @@ _OPENED_BY = {
     "ENDDATA": "`.data`",
     "ENDALIASES": "`.aliases`",
 }
-_CLOSED_BY = {
-    "SUBCKT": ".ends",
-    "IF": ".endif",
-    "CONTROL": ".endc",
-    "DATA": ".enddata",
-    "ALIASES": ".endaliases",
+_CLOSING = {
+    "SUBCKT": "ENDS",
+    "IF": "ENDIF",
+    "CONTROL": "ENDC",
+    "DATA": "ENDDATA",
+    "ALIASES": "ENDALIASES",
 }
+_SKIPPED = ("CONTROL", "DATA", "ALIASES")
 
 
 class Body(NamedTuple):
@@ -112,15 +113,15 @@ def parse(source: Source, problems: Problems) -> list[Item]:
     """Return the items of `source`; every error of structure goes to `problems`."""
 
     def recover(error: UnexpectedInput) -> bool:
-        """Report the token and go on without it; behind the end of the file nothing is left to go on with."""
+        """Report the token and go on without it; at the end of the file close every block that is open."""
         assert isinstance(error, UnexpectedToken), "the terminals cover every line"
         problems.add(_unexpected(source, error))
-        return offending(error).type != "$END"
+        while offending(error).type == "$END" and (opened := _innermost_open(error)) is not None:
+            problems.add(_unexpected(source, error))
+            error.interactive_parser.feed_token(Token(_CLOSING[opened.type], ""))
+        return True
 
-    try:
-        tree = _grammar().parse(source.clean, on_error=recover)  # pyright: ignore[reportUnknownMemberType]
-    except UnexpectedToken:
-        return []
+    tree = _grammar().parse(source.clean, on_error=recover)  # pyright: ignore[reportUnknownMemberType]
     return _Builder(source, problems).build(tree)
 
 
@@ -146,7 +147,7 @@ def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:
             "mind that the first line of a list is its title and is not read",
         )
     line = _card(source, opened).line
-    closing = _CLOSED_BY[opened.type]
+    closing = f".{_CLOSING[opened.type].casefold()}"
     if kind not in ("$END", "END"):
         card = _card(source, token)
         return card.line.error(
@@ -158,18 +159,24 @@ def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:
     return line.error(
         indent(line),
         f"`{line.text.split()[0]}` is never closed",
-        expected,
+        f"`{closing}` on a later line",
         f"add `{closing}` where the block ends",
     )
 
 
 def _innermost_open(error: UnexpectedToken) -> Token | None:
     """Return the token of the innermost block that is open where the parser stopped."""
-    stack = cast("list[object]", error.interactive_parser.parser_state.value_stack)  # pyright: ignore[reportUnknownMemberType]
-    for value in reversed(stack):
-        if isinstance(value, Token) and value.type in _CLOSED_BY:
-            return value
-    return None
+    parser = error.interactive_parser
+    stack = cast("list[object]", parser.parser_state.value_stack)  # pyright: ignore[reportUnknownMemberType]
+    opened: list[Token] = []
+    for value in stack:
+        if not isinstance(value, Token):
+            continue
+        if opened and value.type == _CLOSING[opened[-1].type]:
+            opened.pop()
+        elif value.type in _CLOSING and not (opened and opened[-1].type in _SKIPPED):
+            opened.append(value)
+    return opened[-1] if opened else None
 
 
 def _card(source: Source, token: Token) -> Card:

@@ -247,8 +247,8 @@ def test_an_alteration_is_not_read() -> None:
         (["R1 a b 1", ".control", "run"], "`.control` is never closed", 3),
         ([".subckt", ".ends", "R1 a b 1"], "a subcircuit without a name", 2),
         ([".subckt s a", "R1 a 0 1", ".end"], "`.subckt` is never closed", 2),
-        ([".subckt s a", ".if (1)", "R1 a 0 1", ".ends"], "`.if` is never closed", 3),
-        ([".if (1)", ".subckt s", ".endif"], "`.subckt` is never closed", 3),
+        ([".subckt s a", ".if (1)", "R1 a 0 1", ".ends"], "`.subckt` is never closed", 2),
+        ([".if (1)", ".subckt s", ".endif"], "`.if` is never closed", 2),
     ],
 )
 def test_unbalanced_blocks(lines: list[str], message: str, line: int) -> None:
@@ -256,6 +256,13 @@ def test_unbalanced_blocks(lines: list[str], message: str, line: int) -> None:
     assert (found.message, found.place.line) == (message, line)
     assert found.expected
     assert found.remedy
+
+
+def test_blocks_left_open_hide_no_other_errors() -> None:
+    found = errors("R1 a", ".subckt s a", ".if (1)", "R2 a b {2*x}", ".end")
+    assert [error.place.line for error in found] == [2, 3, 4]
+    found = errors("R1 a", "R2 a b {2*x}", ".subckt s a", ".subckt t a")
+    assert [error.place.line for error in found] == [2, 3, 4, 5]
 
 
 def test_a_block_that_is_closed_inside_another_is_an_error() -> None:
