@@ -113,9 +113,9 @@ def _diode(one: Transistor) -> tuple[str, str]:
 def _body_diode_conducts(controller: Controller, design: Design, one: Transistor) -> bool:
     """Tell whether a body diode leads out of a supply, or into ground: the wrong way for a switch."""
     anode, cathode = _diode(one)
-    potential = design.potential(anode)
-    supplied = potential is not None and potential.spread.minimum > 0
-    return supplied or anode == controller.net("supply") or design.is_ground(cathode)
+    high, low = design.potential(anode), design.potential(cathode)
+    supplied = high is not None and high.spread.minimum > 0
+    return supplied or anode == controller.net("supply") or (low is not None and low.spread.maximum == 0)
 
 
 @rule("gate-drive.pull-down", level="error", topic=_TOPIC)
