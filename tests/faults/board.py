@@ -23,6 +23,7 @@ SYMBOLS: Mapping[str, tuple[str, ...]] = {
     "fuse": ("1", "2"),
     "transformer": ("PA", "PCT", "PB", "SA", "SCT", "SB"),
     "half-bridge-transformer": ("PA", "PB", "SA", "SCT", "SB"),
+    "drive-transformer": ("PA", "PCT", "PB", "S1A", "S1B", "S2A", "S2B"),
     "half-bridge-driver": ("VCC", "HIN", "LIN", "COM", "LO", "VS", "HO", "VB"),
     "controller": (
         *("1IN+", "1IN-", "FEEDBACK", "DTC", "CT", "RT", "GND", "C1"),

@@ -13,6 +13,7 @@ from .catalogue import FAULTS, OWN, SOUND
 from .conftest import Tally
 from .explained import EXPLAINED
 from .fault import Fault
+from .harmless import HARMLESS
 from .published import PUBLISHED
 from .reviewing import FORMATS, Reviewer, concerns
 from .writers import WRITERS
@@ -117,3 +118,15 @@ def test_every_explanation_is_needed(reviewer: Reviewer) -> None:
             for verdict in concerns(reviewer.sound(board, form, told=told))
         }
         assert not EXPLAINED.get(board.name, {}).keys() - raised
+
+
+@pytest.mark.parametrize("change", [pytest.param(change, id=change.identity) for change in HARMLESS])
+def test_a_harmless_change_raises_no_alarm(change: Fault, reviewer: Reviewer, tally: Tally) -> None:
+    """What the sound board passes it passes with the change as well, told or not."""
+    changed = change.edit(change.board)
+    for form, told in zip(FORMATS, (True, False), strict=True):
+        review = reviewer.review(changed, form, told=told)
+        alarms = concerns(review)
+        tally.asked.update(verdict.rule.partition(".")[0] for verdict in review.verdicts)
+        tally.alarms.update(verdict.rule.partition(".")[0] for verdict in alarms)
+        assert not [f"{form}, told {told}: {v.rule}: {v.message}" for v in alarms]

@@ -14,7 +14,10 @@ _CONTROLLER = "494"
 # ------------------------------------------------------------------------------------ SPICE-style list
 
 _MODELS = {"diode": "D", "NMOS": "NMOS", "PMOS": "PMOS", "NPN": "NPN", "PNP": "PNP"}
-_SUBCIRCUITS = ("transformer", "half-bridge-transformer", "half-bridge-driver", "controller")
+_SUBCIRCUITS = (
+    *("transformer", "half-bridge-transformer", "drive-transformer"),
+    *("half-bridge-driver", "controller"),
+)
 
 
 def spice(board: Board) -> str:
