@@ -67,16 +67,19 @@ TOLERANCES = [
 SMALL_CAPACITORS = [("B", 0.1e-12), ("C", 0.25e-12), ("D", 0.5e-12), ("F", 1e-12), ("G", 2e-12)]
 
 
+@pytest.mark.construct("C codes of resistance")
 @pytest.mark.parametrize(("code", "ohm"), RESISTANCES)
 def test_resistance_codes(code: str, ohm: float) -> None:
     assert read_value(code, "resistance", spice=False).number == ohm
 
 
+@pytest.mark.construct("C codes of capacitance")
 @pytest.mark.parametrize(("code", "farad"), CAPACITANCES)
 def test_capacitance_codes(code: str, farad: float) -> None:
     assert read_value(code, "capacitance", spice=False).number == farad
 
 
+@pytest.mark.construct("C tolerance letters")
 @pytest.mark.parametrize(("letter", "low", "high"), TOLERANCES)
 def test_tolerance_letters_behind_a_code(letter: str, low: float, high: float) -> None:
     for code, ohm in (("4K7", 4700.0), ("4R7", 4.7), ("R10", 0.1)):
@@ -86,6 +89,7 @@ def test_tolerance_letters_behind_a_code(letter: str, low: float, high: float) -
     assert read_tolerance(letter) == pytest.approx((low, high))
 
 
+@pytest.mark.construct("C a letter that multiplies, a further one that is the tolerance")
 @pytest.mark.parametrize(
     ("code", "quantity", "number", "tolerance"),
     [
