@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
+from ...grammar.netlist import Part
 from .amplifiers import Amplifier, SenseResistor, amplifier_for
 from .controllers import Controller
 from .diodes import diode_nets
@@ -103,9 +104,10 @@ class PowerStageReader:
         return net in self._known and self._known[net].spread.minimum > 0
 
     def _diodes(self, net: str) -> list[_Diode]:
-        parts = [connection.part for connection in self._circuit.connections(net)]
-        parts = [part for part in parts if self._circuit.kind(part) == "diode" and len(part.pins) == 2]
-        return [_Diode(part.reference, *diode_nets(part)) for part in parts]
+        parts = {c.part.reference: c.part for c in self._circuit.connections(net)}
+        diodes = [part for part in parts.values() if self._circuit.kind(part) == "diode"]
+        found = [one for part in diodes for one in _inside(part)]
+        return [one for one in found if net in (one.anode, one.cathode)]
 
     # ------------------------------------------------------------------------- one inductor, no transformer
 
@@ -287,6 +289,18 @@ class PowerStageReader:
             self._circuit.kind(part) in kinds and other in self._circuit.other_nets(part, one)
             for part in parts
         )
+
+
+def _inside(part: Part) -> list[_Diode]:
+    """Return the diodes in one body: one, or two of three pins with a common anode or cathode as named."""
+    if len(part.pins) == 2:
+        return [_Diode(part.reference, *diode_nets(part))]
+    names = [pin.name.casefold().rstrip("0123456789") for pin in part.pins]
+    anodes = [pin.net for pin, name in zip(part.pins, names, strict=True) if name in ("a", "anode")]
+    cathodes = [pin.net for pin, name in zip(part.pins, names, strict=True) if name in ("k", "c", "cathode")]
+    if len(part.pins) != 3 or len(anodes) + len(cathodes) != 3:
+        return []
+    return [_Diode(part.reference, anode, cathode) for anode in anodes for cathode in cathodes]
 
 
 def _describe(switch: Switch) -> str:

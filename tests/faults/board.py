@@ -15,6 +15,7 @@ SYMBOLS: Mapping[str, tuple[str, ...]] = {
     "electrolytic": ("+", "-"),
     "inductor": ("1", "2"),
     "diode": ("A", "K"),
+    "dual-diode": ("A1", "A2", "K"),
     "NMOS": ("D", "G", "S"),
     "PMOS": ("D", "G", "S"),
     "NPN": ("C", "B", "E"),

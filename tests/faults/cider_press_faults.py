@@ -172,6 +172,17 @@ CIDER_PRESS_FAULTS = faults_of(
         without("R9", "R10", "R11", "R12", "C6", "C7", "R13"),
         "current-limit.present",
     ),
+    # ---- power stage
+    ("one rectifier turned round", reversed_("D3"), "output-mode.power-stage"),
+    ("both rectifiers turned round", all_of(reversed_("D3"), reversed_("D4")), "output-mode.power-stage"),
+    ("one rectifier past the choke", moved("D4", "K", "VOUT"), "output-mode.power-stage"),
+    ("both ends of the primary on one switch", moved("T1", "PB", "DRA"), "output-mode.power-stage"),
+    ("choke left out", without("L1"), "output-mode.power-stage"),
+    (
+        "the brief tells of a half-bridge",
+        brief("controllers.U1.topology", "half-bridge"),
+        "output-mode.power-stage",
+    ),
     # ---- ratings
     (
         "output capacitors of 16 V",

@@ -115,6 +115,15 @@ COLD_STORE_FAULTS = faults_of(
     ("R10 left out", without("R10"), "current-limit.trip-point"),
     ("fans' return straight to ground", moved("J2", "2", "GND"), "current-limit.present"),
     ("R13 shorted", joined("GND", "RTN"), "connections.shorted-part"),
+    # ---- power stage
+    ("both rectifiers turned round", all_of(reversed_("D3"), reversed_("D4")), "output-mode.power-stage"),
+    ("one rectifier turned round", reversed_("D3"), "output-mode.power-stage"),
+    ("lower switch not on the node", moved("M2", "D", "MID"), "output-mode.power-stage"),
+    (
+        "the brief tells of a push-pull stage",
+        brief("controllers.U1.topology", "push-pull"),
+        "output-mode.power-stage",
+    ),
     # ---- ratings
     ("bus capacitor of 50 V", rating("C1", voltage="50 V"), "rating.capacitor-voltage"),
     ("bus capacitor turned round", reversed_("C1"), "rating.capacitor-polarity"),

@@ -252,11 +252,10 @@ FROST_FAN_FAULTS = faults_of(
         "current-limit.sense-dissipation",
     ),
     # ---- power stage
-    (
-        "catch diode turned round",
-        reversed_("D1"),
-        "output-mode.topology",
-        "no rule asks whether a power stage is whole: it is merely not recognised",
-    ),
+    ("catch diode turned round", reversed_("D1"), "output-mode.power-stage"),
+    ("catch diode left out", without("D1"), "output-mode.power-stage"),
+    ("catch diode behind the choke", moved("D1", "K", "VOUT"), "output-mode.power-stage"),
+    ("choke to ground", moved("L1", "2", "GND"), "output-mode.power-stage"),
+    ("the brief's output on the wrong net", brief("controllers.U1.output", "RTN"), "output-mode.power-stage"),
     ("drain and source exchanged", swapped("M1", "D", "S"), "gate-drive.polarity gate-drive.pull-down"),
 )

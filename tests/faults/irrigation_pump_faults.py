@@ -85,6 +85,14 @@ IRRIGATION_PUMP_FAULTS = faults_of(
         "gate-drive.polarity output-mode.topology",
         "the sense of a transformer's windings is not in a netlist",
     ),
+    # ---- power stage
+    ("both rectifiers turned round", all_of(reversed_("D5"), reversed_("D6")), "output-mode.power-stage"),
+    ("one rectifier left out", without("D5"), "output-mode.power-stage"),
+    (
+        "the brief tells of a full bridge",
+        brief("controllers.U1.topology", "full-bridge"),
+        "output-mode.power-stage",
+    ),
     # ---- loops
     ("1IN+ and 1IN- exchanged", swapped("U1", "1IN+", "1IN-"), "amplifier.polarity"),
     ("R7 left out", without("R7"), "feedback.complete"),

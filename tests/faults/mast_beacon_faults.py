@@ -129,6 +129,9 @@ MAST_BEACON_FAULTS = faults_of(
         "rating.resistor-power rating.package-assumed",
     ),
     # ---- power stage
+    ("output diode turned round", reversed_("D1"), "output-mode.power-stage"),
+    ("output diode left out", without("D1"), "output-mode.power-stage"),
+    ("choke between switch and output", moved("L1", "1", "VOUT"), "output-mode.power-stage"),
     (
         "choke after the switch node's diode",
         joined("VBAT", "SW"),

@@ -10,7 +10,9 @@ from pwmlint.lint.rule import load_rules
 
 from .board import Board
 from .catalogue import FAULTS, OWN, SOUND
+from .cider_press import CIDER_PRESS
 from .conftest import Tally
+from .edits import added, all_of, without
 from .explained import EXPLAINED
 from .fault import Fault
 from .harmless import HARMLESS
@@ -130,3 +132,12 @@ def test_a_harmless_change_raises_no_alarm(change: Fault, reviewer: Reviewer, ta
         tally.asked.update(verdict.rule.partition(".")[0] for verdict in review.verdicts)
         tally.alarms.update(verdict.rule.partition(".")[0] for verdict in alarms)
         assert not [f"{form}, told {told}: {v.rule}: {v.message}" for v in alarms]
+
+
+def test_two_diodes_in_one_body_are_two_where_its_pins_have_names(reviewer: Reviewer) -> None:
+    """EDIF alone: a list gives the pins of such a part no names, and what is inside it is for a person."""
+    dual = all_of(without("D3", "D4"), added("D3", "dual-diode", "SECA SECB RECT", "ULTRAFAST 200V 16A"))
+    assert not concerns(reviewer.review(dual(CIDER_PRESS), "EDIF", told=True))
+    assert {verdict.rule for verdict in concerns(reviewer.review(dual(CIDER_PRESS), "SPICE", told=True))} == {
+        "output-mode.power-stage"
+    }

@@ -15,7 +15,7 @@ _CONTROLLER = "494"
 
 _MODELS = {"diode": "D", "NMOS": "NMOS", "PMOS": "PMOS", "NPN": "NPN", "PNP": "PNP"}
 _SUBCIRCUITS = (
-    *("transformer", "half-bridge-transformer", "drive-transformer"),
+    *("dual-diode", "transformer", "half-bridge-transformer", "drive-transformer"),
     *("half-bridge-driver", "controller"),
 )
 

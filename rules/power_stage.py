@@ -1,0 +1,89 @@
+"""Power stage: is what the outputs drive whole, and what the brief tells? The topic is output mode."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from ..lint.circuit.controllers import Controller
+from ..lint.circuit.diodes import diode_nets
+from ..lint.circuit.power_stage import NotRecognised, PowerStage
+from ..lint.design import Design
+from ..lint.rule import rule
+from ..lint.verdict import Outcome, Verdict
+
+
+@rule("output-mode.power-stage", level="error", topic="output mode", needs=("topology", "output"))
+def power_stage(controller: Controller, design: Design) -> Iterable[Verdict]:
+    """Is the power stage behind the outputs whole, and the one that the brief tells?
+
+    What:
+        Follows the outputs to the switches, and from these to windings, rectifiers and the output, and
+        compares what is recognised with the topology and the output of the brief. A stage that fits no
+        pattern wholly is for a person to judge: a diode turned round, a winding off its net, one rectifier
+        where two should take turns, or a topology that this review does not know.
+    Why:
+        A catch diode turned round shorts the supply at the first pulse. And whatever rests on the power
+        stage, such as the duty that it needs, is not asked where none is recognised.
+    Formula:
+        none: connectivity
+    Source:
+        common practice, no source
+    Remedy:
+        Hold the switches, windings and diodes against the topology, and the brief against the drawing.
+    Fails:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC 0 REF 2IN- 2IN+ 494
+        R1 VCC GATE 470
+        R2 GATE C1 47
+        M1 SW GATE VCC VCC PMOS
+        D1 SW 0 DIODE
+        L1 SW VOUT 100u
+        [controllers.U1] topology = "single-ended"; output = "VOUT"
+    Passes:
+        U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 0 E2 C2 VCC 0 REF 2IN- 2IN+ 494
+        R1 VCC GATE 470
+        R2 GATE C1 47
+        M1 SW GATE VCC VCC PMOS
+        D1 0 SW DIODE
+        L1 SW VOUT 100u
+        [controllers.U1] topology = "single-ended"; output = "VOUT"
+    """
+    told, stage = design.told(controller), design.power_stage(controller)
+    assert told is not None  # the rule needs topology and output
+    if isinstance(stage, NotRecognised):
+        yield _doubtful(f"no {told.topology} power stage is recognised: {stage.reason}")
+        return
+    recognised = f"the power stage is recognised as {stage.topology}, from {stage.input} to {stage.output}"
+    if stage.family != told.topology:
+        yield _doubtful(f"{recognised}; the brief tells {told.topology}", stage.evidence)
+    elif stage.output != told.output:
+        yield _doubtful(f"{recognised}; the brief's output is {told.output}", stage.evidence)
+    elif odd := _odd(design, stage):
+        yield _doubtful(f"{recognised}; {odd}", stage.evidence)
+    else:
+        yield Verdict(outcome=Outcome.PASS, message=recognised, assumptions=stage.evidence)
+
+
+def _odd(design: Design, stage: PowerStage) -> str:
+    """Return what does not fit in a stage that is recognised, empty for nothing."""
+    if stage.input == stage.output:
+        return "what feeds it is its own output"
+    if stage.family == "single-ended" or not stage.transformer:
+        return ""
+    rectifiers = [design.part(name) for name in stage.rectifiers]
+    if sum(len(part.pins) - 1 for part in rectifiers) < 2:  # three pins are two diodes in one body
+        only = ", ".join(stage.rectifiers)
+        return f"{only} alone rectifies what {stage.transformer} delivers in both directions"
+    cathodes = {diode_nets(part)[1] for part in rectifiers if len(part.pins) == 2}
+    if stage.inductor and len(cathodes) > 1 and stage.output in cathodes:
+        return f"a rectifier leads to {stage.output} past {stage.inductor}"
+    return ""
+
+
+def _doubtful(message: str, evidence: tuple[str, ...] = ()) -> Verdict:
+    return Verdict(
+        outcome=Outcome.REVIEW,
+        message=message,
+        assumptions=evidence,
+        source="common practice, no source",
+        remedy="hold switches, windings and diodes against the topology, and the brief against the drawing",
+    )
