@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable, Collection
+from functools import lru_cache
 
 from .errors import NetlistError
 from .spice_element import (
@@ -27,9 +28,11 @@ from .spice_lines import Line, indent
 from .spice_semiconductors import diode, is_size, junction_transistor, transistor
 from .spice_sources import behavioural_source, controlled_source, source
 from .spice_words import Words, split
+from .values import ValueTextError, read_value
 
 _RATING = re.compile(r"[+-]?\d+(?:[.,/]\d+)?(?:%|[a-zA-Z]*W|V|ppm)", re.IGNORECASE)
 _TRIMMER = re.compile(r"(?:RV|VR|P|POT|TRIM)\d", re.IGNORECASE)
+_NUMBER_BEGINS = frozenset("0123456789.+-")
 _LIBRARY_FILE = re.compile(r".*[.](?:lib|sub|spi|sp|inc|mod|cir|ckt)", re.IGNORECASE)
 
 
@@ -42,7 +45,31 @@ def read_element(line: Line, models: Collection[str]) -> Element:
     words = split(line, exact=letter in _NEED_INDEXES)
     if not words.texts or not words.texts[0][0].isalpha():
         raise _neither(line)
-    return _READERS.get(words.texts[0][0].upper(), _unknown)(words, models)
+    element = _READERS.get(words.texts[0][0].upper(), _unknown)(words, models)
+    quantity = _QUANTITIES.get(element.letter)
+    if quantity and (unreadable := _unreadable(element.value, quantity)):
+        index = max(0, line.text.rfind(element.value.split()[0]))
+        raise line.error(index, *unreadable, "correct the value")
+    return element
+
+
+# What the value of a letter measures.
+_QUANTITIES = {"R": "resistance", "C": "capacitance", "L": "inductance"}
+
+
+@lru_cache(maxsize=4096)
+def _unreadable(value: str, quantity: str) -> tuple[str, str] | None:
+    """Return why a value that begins as a number is none, and what was expected; None for any other.
+
+    A negative value is one: models of devices have them, and whether a board may is for the rules.
+    """
+    if value[:1] not in _NUMBER_BEGINS or (value[0] == "-" and value[1:2].isdigit()):
+        return None
+    try:
+        read_value(value, quantity, spice=True)
+    except ValueTextError as error:
+        return str(error), error.expected
+    return None
 
 
 def _neither(line: Line) -> NetlistError:

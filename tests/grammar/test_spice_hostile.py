@@ -12,6 +12,7 @@ import sys
 
 import pytest
 from pwmlint.grammar.errors import NetlistError
+from pwmlint.grammar.netlist import Place
 from pwmlint.grammar.spice import read_spice
 
 # Each text is made in the child: it says what it is, and a megabyte need not pass through a pipe.
@@ -129,9 +130,19 @@ def test_time_and_memory_are_bounded(text: str, result: str) -> None:
     assert memory <= 100e6 + 60 * size
 
 
-@pytest.mark.parametrize("value", ["nan", "inf", "-inf", "1e400", "NaN"])
-def test_values_that_are_no_numbers_stay_text(value: str) -> None:
+@pytest.mark.parametrize("value", ["nan", "inf", "NaN", "-5k", "RMOD"])
+def test_names_and_negative_values_stay_text(value: str) -> None:
+    # a name may be a model's, and models of devices have negative resistances
     assert read_spice(f"t\nR1 a b {value}\n", "x.cir").parts["R1"].value == value
+
+
+@pytest.mark.parametrize("value", ["1e400", "-inf", "--5k", "+k"])
+def test_a_number_that_is_none_is_an_error_with_its_place(value: str) -> None:
+    with pytest.raises(NetlistError) as caught:
+        read_spice(f"t\nR1 a b {value}\n", "x.cir")
+    assert caught.value.place == Place("x.cir", 2, 8)
+    assert caught.value.expected.startswith("a resistance such as")
+    assert caught.value.remedy == "correct the value"
 
 
 def test_a_nul_character_is_refused() -> None:
