@@ -13,11 +13,11 @@ from .growth import Growth
 from .linear import Array
 from .monte_carlo import monte_carlo, statement
 from .network import Condition, Free, Network, Sample
-from .states import MOST_JUNCTIONS, Junction, Probe, State, read_with_states
+from .states import MOST_JUNCTIONS, Junction, PiecewiseLinear, Probe, State
 from .worst_case import Analysis, analyse
 
-# The name under which the direction of the closed loops is read beside the probes.
-_DIRECTION = "direction of the loop"
+# The name under which the direction of the solution is read beside the probes.
+_DIRECTION = "direction"
 
 
 def estimate(
@@ -40,10 +40,10 @@ def estimate(
     if adrift and not growth.diodes:
         nets = tuple(sorted(adrift))
         return Unsolved(f"no direct-current path to net {', '.join(nets)}", nets=nets)
-    reads: dict[str, Probe] = {name: probe for name, (probe, _) in probes.items()}
-    reads[_DIRECTION] = lambda solution: solution.loop_direction
-    evaluation = _Evaluation(network, growth.junctions(), reads)
-    units = {name: unit for name, (_, unit) in probes.items()} | {_DIRECTION: ""}
+    evaluation = _Evaluation(
+        network, growth.junctions(), {name: probe for name, (probe, _) in probes.items()}
+    )
+    units = {name: unit for name, (_, unit) in probes.items()}
     analyses = analyse(list(growth.parameters.values()), evaluation, units)
     trouble = _trouble(growth, analyses, evaluation)
     if trouble is not None:
@@ -90,21 +90,24 @@ def _obstacle(growth: Growth) -> Unsolved | None:
 
 
 class _Evaluation:
-    """Evaluates the probes for the worst-case analysis, and keeps in mind which states were met."""
+    """Evaluates the probes for the worst-case analysis, and keeps in mind what was met on the way."""
 
     def __init__(self, network: Network, junctions: Sequence[Junction], probes: Mapping[str, Probe]) -> None:
-        self._network = network
-        self._junctions = junctions
-        self._probes = probes
+        self._network = PiecewiseLinear(network, junctions)
+        self._probes: dict[str, Probe] = {**probes, _DIRECTION: lambda solution: solution.direction}
         self.states: dict[str, dict[State, None]] = {junction.part: {} for junction in junctions}
         self.unsettled = False
+        self.upwards = self.downwards = False
         self.closed = bool(network.conditions)
 
     def __call__(self, sample: Sample, size: int) -> Mapping[str, Array]:
-        answers = read_with_states(self._network, self._junctions, self._probes, sample, size)
+        answers = self._network.read(self._probes, sample, size)
+        direction = answers.values.pop(_DIRECTION)
+        self.upwards = self.upwards or bool((direction > 0).any())
+        self.downwards = self.downwards or bool((direction < 0).any())
         for part, met in answers.states.items():
             self.states[part].update(dict.fromkeys(met))
-        if self._junctions and any(np.isnan(column).any() for column in answers.values.values()):
+        if self.states and any(np.isnan(column).any() for column in answers.values.values()):
             self.unsettled = True
         # A closed loop without a solution runs away: whatever it settles counts as infinite there.
         return {name: np.where(np.isnan(column), np.inf, column) for name, column in answers.values.items()}
@@ -115,8 +118,7 @@ def _trouble(growth: Growth, analyses: Mapping[str, Analysis], evaluation: _Eval
     if evaluation.unsettled:
         names = ", ".join(evaluation.states)
         return Unsolved(f"no state of {names} fits the network in every corner", parts=parts, nets=nets)
-    direction = analyses[_DIRECTION].spread
-    if direction.minimum < 0 < direction.maximum:
+    if evaluation.upwards and evaluation.downwards:
         reason = "the feedback changes its sign within the tolerances, so that nothing bounds the loop"
         return Unsolved(reason, parts, nets)
     for name, analysis in analyses.items():

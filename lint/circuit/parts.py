@@ -87,11 +87,15 @@ class PartReader:
         self._netlist = netlist
         self._conditions = conditions
         self._rows: Mapping[str, PartData] = parts_list.rows if parts_list is not None else {}
+        self._kinds: dict[str, str] = {}
         self._values: dict[str, PartValue | None] = {}
 
     def kind(self, part: Part) -> str:
         """Return the kind of part, such as "resistor"; "other" where nothing tells."""
-        return part_kind(part, self._netlist.models)
+        kind = self._kinds.get(part.reference)
+        if kind is None:
+            kind = self._kinds[part.reference] = part_kind(part, self._netlist.models)
+        return kind
 
     def value(self, part: Part) -> PartValue | None:
         """Return the part's value, or None where it has none or one that cannot be read."""

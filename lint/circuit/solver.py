@@ -1,51 +1,41 @@
-"""Modified nodal analysis of a small linear network, many samples at once.
+"""Solves a network by modified nodal analysis, many samples at once.
 
-Published method: C.-W. Ho, A. Ruehli, P. Brennan, "The modified nodal approach to network analysis",
-IEEE Transactions on Circuits and Systems, CAS-22, no. 6, June 1975, pp. 504-509.
-
-Two things are added to the textbook form. A net of known potential (ground, the reference, a rail) has no
-equation of its own; what it feeds goes to the right-hand side. And a free quantity is an unknown more, with
-its condition as an equation more: a closed loop is one linear solve for any network, not for a recognised
-shape of two resistors.
+Most samples of a worst case differ in nothing but what drives the network: a reference, an offset, a supply.
+So each matrix that occurs is solved once, for every drive by itself, and superposition makes the samples of
+these answers.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from collections.abc import Mapping
+from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
-from .linear import Array, solve_each
-from .network import (
-    Condition,
-    ControlledSource,
-    CurrentSource,
-    Element,
-    Free,
-    FreeCurrent,
-    FreePotential,
-    Network,
-    Resistor,
-    Sample,
-    VoltageSource,
-)
+from .equations import Equations
+from .linear import Array, Stack, orientation
+from .network import ControlledSource, CurrentSource, Element, Network, Resistor, Sample
+
+# Larger stacks are solved piece by piece: as many coefficients as the fast memory of a processor holds.
+_MOST_AT_ONCE = 60_000
 
 
 @dataclass(slots=True)
 class Solution:
     """Voltages and currents of one network, arrays of shape (samples,). Where no solution exists: NaN.
 
-    loop_direction: in which direction (1 or -1) the free quantities move what the conditions compare; 0 where
-                    they do not
+    direction: a sign, 1 or -1, that turns where the answers run away to infinity; 0 where they are undecided.
+               In a closed loop of resistances it is the direction in which the free quantities move what
+               the conditions compare.
     """
 
     network: Network
     sample: Sample
     size: int
-    _potentials: dict[str, Array]
-    _branches: dict[str, Array]
-    _free: dict[str, Array] = field(default_factory=dict[str, Array])
-    loop_direction: Array = field(default_factory=lambda: np.zeros(1))
+    direction: Array
+    _potentials: Mapping[str, Array]
+    _currents: Mapping[str, Array]
 
     @property
     def nets(self) -> set[str]:
@@ -60,14 +50,14 @@ class Solution:
 
     def free_current(self, name: str) -> Array:
         """Return the current in amperes that the conditions settled for the FreeCurrent `name`."""
-        return self._free[name]
+        return self._currents[name]
 
     def current(self, element: Element) -> Array:
         """Return the current through `element` from its `a` to its `b` terminal, in amperes."""
-        if element.name in self._branches:
-            return self._branches[element.name]
+        if element.name in self._currents:
+            return self._currents[element.name]
         if isinstance(element, CurrentSource):
-            return _array(element.current(self.sample), self.size)
+            return np.broadcast_to(element.current(self.sample), (self.size,))
         if isinstance(element, ControlledSource):
             control = self.voltage(element.control_a, element.control_b)
             return control * element.gain(self.sample)
@@ -87,162 +77,93 @@ class Solution:
         return total
 
 
-def solve(network: Network, sample: Sample, size: int) -> Solution:
-    """Solve `network` for every sample at once.
+class Solver:
+    """A network made ready for any number of samples.
 
-    sample: parameter name to an array of shape (size,)
     Raises ValueError where the network is not well posed (a floating net, as many conditions as free
-    quantities wanted): the caller must have looked. A sample without a solution (rails shorted, a
-    closed loop that nothing settles) gives NaN in every answer of that sample.
-    """
-    if len(network.free) != len(network.conditions):
-        raise ValueError("a closed loop needs one condition for each free quantity")
-    if network.floating():
-        raise ValueError(f"floating nets: {', '.join(sorted(network.floating()))}")
-    equations = _Equations(network, sample, size)
-    for element in network.elements:
-        equations.add(element)
-    for position, free in enumerate(network.free):
-        equations.add_free(position, free)
-    for position, condition in enumerate(network.conditions):
-        equations.add_condition(position, condition)
-    answer = solve_each(equations.matrix, equations.right, equations.settled)
-    return equations.solution(answer)
-
-
-def _array(value: Array | float, size: int) -> Array:
-    return np.broadcast_to(np.asarray(value, dtype=np.float64), (size,))
-
-
-class _Equations:
-    """The stacked matrix and right-hand side while they are being stamped.
-
-    Rows: Kirchhoff's current law of each ordinary net, then one equation a branch, then the conditions.
-    Columns: the potentials of the ordinary nets, the branch currents, the free quantities.
-    The samples are the last axis, so that every stamp is one run through memory.
+    quantities wanted): the caller must have looked.
     """
 
-    def __init__(self, network: Network, sample: Sample, size: int) -> None:
+    def __init__(self, network: Network) -> None:
+        if len(network.free) != len(network.conditions):
+            raise ValueError("a closed loop needs one condition for each free quantity")
+        if floating := network.floating():
+            raise ValueError(f"floating nets: {', '.join(sorted(floating))}")
         self.network = network
-        self.sample = sample
-        self.size = size
-        self.known = {net: _array(value(sample), size) for net, value in network.known.items()}
-        free_nets = {free.net for free in network.free if isinstance(free, FreePotential)}
-        self.known = {net: value for net, value in self.known.items() if net not in free_nets}
-        ordinary = [net for net in network.nets() if net not in self.known and net not in free_nets]
-        self.rows = {net: index for index, net in enumerate(ordinary)}
-        self.columns = dict(self.rows)
-        self.branches = [element for element in network.elements if self._has_branch(element)]
-        self.branch_index = {b.name: len(ordinary) + i for i, b in enumerate(self.branches)}
-        self.first_free = len(ordinary) + len(self.branches)
-        for position, free in enumerate(network.free):
-            if isinstance(free, FreePotential):
-                self.columns[free.net] = self.first_free + position
-        count = self.first_free + len(network.free)
-        # How a current divides between shorts in parallel may stay open; nothing else may.
-        self.settled = np.ones(count, dtype=np.bool_)
-        self.settled[len(ordinary) : self.first_free] = False
-        self.matrix: Array = np.zeros((count, count, size))
-        self.right: Array = np.zeros((count, size))
+        self._equations = Equations(network)
 
-    def add(self, element: Element) -> None:
-        if isinstance(element, CurrentSource):
-            self._inject(element.a, element.b, element.current(self.sample))
-        elif isinstance(element, ControlledSource) and element.kind == "current":
-            self._transconductance(element)
-        elif element.name in self.branch_index:
-            self._branch(element)
-        elif not self._settles_nothing(element):
-            assert isinstance(element, Resistor)
-            self._conductance(element.a, element.b, 1.0 / element.resistance(self.sample))
+    def solve(self, sample: Sample, size: int) -> Solution:
+        """Return the solution for every sample.
 
-    def add_free(self, position: int, free: Free) -> None:
-        if isinstance(free, FreeCurrent):
-            column = self.first_free + position
-            if free.a in self.rows:
-                self.matrix[self.rows[free.a], column] += 1.0
-            if free.b in self.rows:
-                self.matrix[self.rows[free.b], column] -= 1.0
-
-    def add_condition(self, position: int, condition: Condition) -> None:
-        row = self.first_free + position
-        self._potential(row, condition.a, 1.0)
-        self._potential(row, condition.b, -1.0)
-        self.right[row] += condition.difference(self.sample)
-
-    def solution(self, answer: Array) -> Solution:
-        potentials = {net: answer[column] for net, column in self.columns.items()}
-        potentials.update(self.known)
-        branches = {name: answer[index] for name, index in self.branch_index.items()}
-        free = {
-            free.name: answer[self.first_free + position]
-            for position, free in enumerate(self.network.free)
-            if isinstance(free, FreeCurrent)
-        }
-        direction = self._loop_direction(answer) if self.network.free else np.ones(1)
-        return Solution(self.network, self.sample, self.size, potentials, branches, free, direction)
-
-    def _loop_direction(self, answer: Array) -> Array:
-        """Return the sign of the determinant, that of the branches taken out; 0 where there is no answer.
-
-        The determinant is linear in every single resistance or gain. So where it has one sign in all corners
-        it is zero nowhere between them, and the closed loop runs away nowhere between them.
+        sample: parameter name to an array of shape (size,)
+        A sample without a solution (rails shorted, a closed loop that nothing settles) gives NaN in every
+        answer of that sample.
         """
-        sign, _ = np.linalg.slogdet(np.moveaxis(self.matrix, -1, 0))
-        direction = np.asarray(sign, dtype=np.float64) * (-1.0) ** len(self.branches)
-        return np.where(np.isnan(answer[self.first_free]), 0.0, direction)
-
-    def _has_branch(self, element: Element) -> bool:
-        """Tell whether the element's current is an unknown of its own (its conductance may be infinite)."""
-        if isinstance(element, Resistor):
-            return element.may_be_zero and not self._settles_nothing(element)
-        return isinstance(element, VoltageSource) or (
-            isinstance(element, ControlledSource) and element.kind == "voltage"
+        equations = self._equations
+        values, drives = equations.values(sample, size), equations.drives(sample, size)
+        step = max(1, _MOST_AT_ONCE // max(1, equations.unknowns * (equations.unknowns + len(drives))))
+        pieces = [
+            self._solved(values[:, i : i + step], drives[:, i : i + step]) for i in range(0, size, step)
+        ]
+        answers, directions = (np.concatenate(arrays, axis=-1) for arrays in zip(*pieces, strict=True))
+        columns = [*answers, *drives]
+        return Solution(
+            self.network,
+            sample,
+            size,
+            directions,
+            {net: columns[column] for net, column in equations.potentials.items()},
+            {name: columns[column] for name, column in equations.currents.items()},
         )
 
-    def _settles_nothing(self, element: Element) -> bool:
-        """Tell whether both ends are on one net (a wiper tied to its end), or each on a known one."""
-        return element.a == element.b or {element.a, element.b} <= self.known.keys()
+    def _solved(self, values: Array, drives: Array) -> tuple[Array, Array]:
+        """Return the unknowns and the direction, in each sample.
 
-    def _potential(self, row: int, net: str, factor: Array | float) -> None:
-        """Add `factor` times the potential of `net` to the left side of equation `row`."""
-        if net in self.columns:
-            self.matrix[row, self.columns[net]] += factor
-        else:
-            self.right[row] -= factor * self.known[net]
+        The determinant of all equations is linear in every single resistance or gain. So where it has one
+        sign in all corners, it vanishes nowhere between them, and no answer runs away there. That of the
+        moves is the same, over the determinant with the loops left open, which never vanishes in a network
+        of resistances; and it can be told where shorts in parallel leave the whole one at zero.
+        """
+        equations = self._equations
+        systems, system = _distinct(values)
+        matrix, right = equations.filled(values[:, systems])
+        if len(systems) == len(system):  # no two alike: superposition would only ask more
+            right, drives = _summed(right, drives), np.ones_like(drives[:1])
+        stack = Stack(matrix)
+        # Besides: by how much does everything move with the difference that each condition asks for?
+        nudges = np.eye(equations.unknowns)[:, equations.free_from :, None]
+        answers, doubtful = stack.solve(_beside(right, nudges))
+        each, moves = answers[:, : len(drives)], answers[equations.free_from :, len(drives) :]
+        unknowns = _summed(each.take(system, axis=2), drives)[:, 0]
+        if doubtful.any():
+            samples = np.flatnonzero(doubtful[system])
+            asked = _beside(_summed(right.take(system[samples], axis=2), drives[:, samples]), nudges)
+            found = stack.solve_singular(system[samples], asked, equations.settled)
+            unknowns[:, samples] = found[:, 0]
+            moves[:, :, system[samples]] = found[equations.free_from :, 1:]
+        turns = np.where(doubtful, 0.0, orientation(matrix)) if equations.active else orientation(moves)
+        return unknowns, turns[system]
 
-    def _conductance(self, a: str, b: str, conductance: Array) -> None:
-        for here, there in ((a, b), (b, a)):
-            if here in self.rows:
-                self._potential(self.rows[here], here, conductance)
-                self._potential(self.rows[here], there, -conductance)
 
-    def _inject(self, a: str, b: str, current: Array) -> None:
-        if a in self.rows:
-            self.right[self.rows[a]] -= current
-        if b in self.rows:
-            self.right[self.rows[b]] += current
+def solve(network: Network, sample: Sample, size: int) -> Solution:
+    """Solve a network for every sample at once: see `Solver`."""
+    return Solver(network).solve(sample, size)
 
-    def _transconductance(self, source: ControlledSource) -> None:
-        gain = source.gain(self.sample)
-        for net, sign in ((source.a, 1.0), (source.b, -1.0)):
-            if net in self.rows:
-                self._potential(self.rows[net], source.control_a, sign * gain)
-                self._potential(self.rows[net], source.control_b, -sign * gain)
 
-    def _branch(self, element: Element) -> None:
-        index = self.branch_index[element.name]
-        if element.a in self.rows:
-            self.matrix[self.rows[element.a], index] += 1.0
-        if element.b in self.rows:
-            self.matrix[self.rows[element.b], index] -= 1.0
-        self._potential(index, element.a, 1.0)
-        self._potential(index, element.b, -1.0)
-        if isinstance(element, Resistor):
-            self.matrix[index, index] -= element.resistance(self.sample)
-        elif isinstance(element, VoltageSource):
-            self.right[index] += element.voltage(self.sample)
-        elif isinstance(element, ControlledSource):
-            gain = element.gain(self.sample)
-            self._potential(index, element.control_a, -gain)
-            self._potential(index, element.control_b, gain)
+def _distinct(values: Array) -> tuple[NDArray[np.intp], NDArray[np.intp]]:
+    """Return one sample of each kind, and of which kind each sample is; all, where hardly two are alike."""
+    rows = np.ascontiguousarray(values.T)
+    as_bytes = rows.view(np.dtype((np.void, rows.itemsize * rows.shape[1])))[:, 0]
+    _, first, kinds = np.unique(as_bytes, return_index=True, return_inverse=True)
+    if 2 * len(first) > len(rows):
+        first = kinds = np.arange(len(rows))
+    return first, kinds
+
+
+def _summed(each: Array, drives: Array) -> Array:
+    """Return the sum over the drives, shape (unknowns, 1, samples)."""
+    return np.einsum("ids,ds->is", each, drives)[:, None]
+
+
+def _beside(right: Array, nudges: Array) -> Array:
+    return np.concatenate([right, np.broadcast_to(nudges, (*nudges.shape[:2], right.shape[2]))], axis=1)

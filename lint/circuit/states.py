@@ -19,7 +19,7 @@ from numpy.typing import NDArray
 
 from .linear import Array
 from .network import Network, Sample, Value, VoltageSource
-from .solver import Solution, solve
+from .solver import Solution, Solver
 
 Probe: TypeAlias = Callable[[Solution], Array]
 Truth: TypeAlias = NDArray[np.bool_]
@@ -36,6 +36,9 @@ class State(Enum):
     OFF = "blocks"
     ON = "conducts"
     BREAKDOWN = "is in breakdown"
+
+
+States: TypeAlias = tuple[State, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,46 +73,66 @@ class Answers:
     states: dict[str, tuple[State, ...]]
 
 
-def read_with_states(
-    network: Network, junctions: Sequence[Junction], probes: Mapping[str, Probe], sample: Sample, size: int
-) -> Answers:
-    """Solve `network` in every sample with its junctions in the states that fit, and read the probes."""
-    values = {name: np.full(size, np.nan) for name in probes}
-    met: dict[str, dict[State, None]] = {junction.part: {} for junction in junctions}
-    unsettled = np.arange(size)
-    for states in _likeliest_first(network, junctions, sample):
-        if not len(unsettled):
-            break
-        part = sample if len(unsettled) == size else _at(sample, unsettled)
-        solution = _solve_in(network, junctions, states, part, len(unsettled))
-        fits = None if solution is None else _borne_out(solution, junctions, states)
-        if solution is None or fits is None or not fits.any():
-            continue
-        for junction, state in zip(junctions, states, strict=True):
-            met[junction.part][state] = None
-        for name, probe in probes.items():
-            values[name][unsettled[fits]] = np.broadcast_to(probe(solution), (len(unsettled),))[fits]
-        unsettled = unsettled[~fits]
-    return Answers(values, {part: tuple(found) for part, found in met.items()})
+class PiecewiseLinear:
+    """A network with junctions on it, ready for any number of samples."""
 
+    def __init__(self, network: Network, junctions: Sequence[Junction]) -> None:
+        self._network = network
+        self._junctions = junctions
+        self._solvers: dict[States, Solver | None] = {}
 
-def _likeliest_first(
-    network: Network, junctions: Sequence[Junction], sample: Sample
-) -> Iterator[tuple[State, ...]]:
-    """Yield the combinations of states, the one that fits the first sample before all others.
-
-    Most samples share it, and one small solve is cheaper than a stack in a combination that nowhere fits.
-    """
-    combinations = list(product(*(junction.states for junction in junctions)))
-    if len(combinations) > 1:
-        first = _at(sample, np.arange(1))
-        for states in combinations:
-            solution = _solve_in(network, junctions, states, first, 1)
-            if solution is not None and _borne_out(solution, junctions, states).all():
-                combinations.remove(states)
-                yield states
+    def read(self, probes: Mapping[str, Probe], sample: Sample, size: int) -> Answers:
+        """Solve every sample with the junctions in the states that fit, and read the probes."""
+        values = {name: np.full(size, np.nan) for name in probes}
+        met: dict[str, dict[State, None]] = {junction.part: {} for junction in self._junctions}
+        unsettled = np.arange(size)
+        for states in self._likeliest_first(sample):
+            if not len(unsettled):
                 break
-    yield from combinations
+            part = sample if len(unsettled) == size else _at(sample, unsettled)
+            solution = self._solved_in(states, part, len(unsettled))
+            fits = None if solution is None else _borne_out(solution, self._junctions, states)
+            if solution is None or fits is None or not fits.any():
+                continue
+            for junction, state in zip(self._junctions, states, strict=True):
+                met[junction.part][state] = None
+            for name, probe in probes.items():
+                values[name][unsettled[fits]] = np.broadcast_to(probe(solution), (len(unsettled),))[fits]
+            unsettled = unsettled[~fits]
+        return Answers(values, {part: tuple(found) for part, found in met.items()})
+
+    def _likeliest_first(self, sample: Sample) -> Iterator[States]:
+        """Yield the combinations of states, the one that fits the first sample before all others.
+
+        Most samples share it, and one small solve is cheaper than a stack in a combination that nowhere fits.
+        """
+        combinations = list(product(*(junction.states for junction in self._junctions)))
+        if len(combinations) > 1:
+            first = _at(sample, np.arange(1))
+            for states in combinations:
+                solution = self._solved_in(states, first, 1)
+                if solution is not None and _borne_out(solution, self._junctions, states).all():
+                    combinations.remove(states)
+                    yield states
+                    break
+        yield from combinations
+
+    def _solved_in(self, states: States, sample: Sample, size: int) -> Solution | None:
+        """Return the solution with the junctions in `states`, None where a net that needs a path floats."""
+        if states not in self._solvers:
+            self._solvers[states] = self._solver(states)
+        solver = self._solvers[states]
+        return None if solver is None else solver.solve(sample, size)
+
+    def _solver(self, states: States) -> Solver | None:
+        pairs = zip(self._junctions, states, strict=True)
+        sources = [_source(junction, state) for junction, state in pairs if state is not State.OFF]
+        whole = replace(self._network, elements=(*self._network.elements, *sources))
+        floating = whole.floating()
+        if floating & whole.needed():
+            return None
+        kept = tuple(e for e in whole.elements if e.a not in floating and e.b not in floating)
+        return Solver(replace(whole, elements=kept))
 
 
 def _at(sample: Sample, rows: NDArray[np.int_]) -> Sample:
@@ -124,20 +147,7 @@ def _source(junction: Junction, state: State) -> VoltageSource:
     return VoltageSource(junction.part, junction.cathode, junction.anode, junction.breakdown)
 
 
-def _solve_in(
-    network: Network, junctions: Sequence[Junction], states: Sequence[State], sample: Sample, size: int
-) -> Solution | None:
-    """Return the solution with the junctions in given states, None where a net that needs a path floats."""
-    sources = [_source(j, s) for j, s in zip(junctions, states, strict=True) if s is not State.OFF]
-    whole = replace(network, elements=(*network.elements, *sources))
-    floating = whole.floating()
-    if floating & whole.needed():
-        return None
-    kept = tuple(e for e in whole.elements if not ({e.a, e.b} & floating))
-    return solve(replace(whole, elements=kept), sample, size)
-
-
-def _borne_out(solution: Solution, junctions: Sequence[Junction], states: Sequence[State]) -> Truth:
+def _borne_out(solution: Solution, junctions: Sequence[Junction], states: States) -> Truth:
     """Tell, sample by sample, whether the solution agrees with the states it was made with."""
     fits: Truth = np.ones(solution.size, dtype=np.bool_)
     for junction, state in zip(junctions, states, strict=True):

@@ -16,7 +16,7 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from enum import Enum, auto
-from math import prod
+from math import isfinite, prod
 from typing import TypeAlias
 
 import numpy as np
@@ -28,17 +28,14 @@ from .network import Sample
 MOST_CORNER_PARAMETERS = 12
 _MOST_CORNERS = 25_600  # twelve parameters, two of them trimmers
 _MOST_OUTER_CORNERS = 625  # four trimmers
-_MOST_ROWS_AT_ONCE = 1_024  # what the fast memory of a processor holds; more takes longer
+_MOST_ROWS_AT_ONCE = 1_000  # what the fast memory of a processor holds; more takes longer
 _MOST_STEPS = 20  # of the search for a worst corner
 
 # A trimmer is looked at along its travel, not only at the ends: between them a result may turn round.
 _TRAVEL = (0.0, 0.25, 0.5, 0.75, 1.0)
 
-# A parameter whose share of the spread is less is rounding, not a contribution.
+# A share of the spread that is less is rounding: no contribution, and no rank above another.
 _LEAST_SHARE = 1e-9
-
-# Contributions below this share are rounding, or as good as none.
-_CRUMB = 1e-6
 
 # A result may leave the corners by this share of its size before it counts as not monotonic (rounding).
 _ROUNDING = 1e-9
@@ -107,18 +104,17 @@ def analyse(
     samples = Samples(parameters)
     evaluate = in_slices(evaluate)
     loops = _OuterLoops(samples)
-    pieces = [samples.nominal(), samples.corners(), samples.star(), loops.rows]
-    cuts = np.cumsum([len(piece) for piece in pieces[:-1]])
-    rows = np.vstack(pieces)
+    corner_rows = samples.corners()
+    rows = np.vstack([samples.nominal(), samples.star(), loops.rows, corner_rows])
+    inside, around = 1 + samples.star_rows, len(rows) - len(corner_rows)
     found: dict[str, Analysis] = {}
     for name, column in evaluate(samples.as_sample(rows), len(rows)).items():
-        nominal, corners, star, around = np.split(column, cuts)
-        table = loops.table(around)
+        star, table, corners = column[1:inside], loops.table(column[inside:around]), column[around:]
         settled = True
         if not samples.has_all_corners:
             searched, settled = _Search(samples, evaluate, name).both_ends(*loops.directed(table))
             corners = np.concatenate([corners, searched])
-        analysis = _analysis(float(nominal[0]), corners, star, loops.statistical(table), units[name])
+        analysis = _analysis(column[:inside], corners, loops.statistical(table), units[name])
         contributions = _contributions(samples, star)
         found[name] = Analysis(*analysis[:2], contributions, monotonic=settled and analysis[2])
     return found
@@ -131,14 +127,14 @@ def in_slices(evaluate: Evaluate) -> Evaluate:
     """
 
     def sliced(sample: Sample, size: int) -> Mapping[str, Array]:
-        starts = range(0, size, _MOST_ROWS_AT_ONCE)
         with np.errstate(over="ignore", invalid="ignore"):
-            parts = [
-                evaluate(
-                    {name: column[i : i + _MOST_ROWS_AT_ONCE] for name, column in sample.items()}, length
-                )
-                for i, length in ((i, min(_MOST_ROWS_AT_ONCE, size - i)) for i in starts)
-            ]
+            if size <= _MOST_ROWS_AT_ONCE:
+                return evaluate(sample, size)
+            parts: list[Mapping[str, Array]] = []
+            for start in range(0, size, _MOST_ROWS_AT_ONCE):
+                piece = slice(start, min(start + _MOST_ROWS_AT_ONCE, size))
+                columns = {name: column[piece] for name, column in sample.items()}
+                parts.append(evaluate(columns, piece.stop - piece.start))
         return {name: np.concatenate([part[name] for part in parts]) for name in parts[0]}
 
     return sliced
@@ -209,13 +205,13 @@ class Samples:
 
     def combinations(self, choices: Mapping[int, Sequence[float]]) -> Array:
         """Return a row for every combination of the given values of parameters, the others at nominal."""
-        size = _grid_size(choices)
-        rows = np.repeat(self.nominal(), size, axis=0)
-        if choices:
-            positions = np.unravel_index(np.arange(size), [len(values) for values in choices.values()])
-            for (index, values), position in zip(choices.items(), positions, strict=True):
-                rows[:, index] = np.array(values)[position]
-        return rows
+        columns = np.repeat(self._nominal[:, None], _grid_size(choices), axis=1)
+        rounds = 1
+        for index, values in choices.items():
+            # The first parameter goes through its values once, each further one within each value before.
+            columns[index].reshape(rounds, len(values), -1)[:] = np.array(values)[:, None]
+            rounds *= len(values)
+        return columns.T
 
     def _choices(self, indices: Sequence[int]) -> dict[int, Sequence[float]]:
         return {index: _stations(self.parameters[index]) for index in indices}
@@ -242,6 +238,10 @@ class _OuterLoops:
         self.centres = samples.outer_corners()
         blocks = [np.vstack([c[None, :], samples.star_about(c, samples.tolerances)]) for c in self.centres]
         self.rows = np.vstack(blocks)
+        parameters = [samples.parameters[index] for index in samples.tolerances]
+        self._low = np.array([parameter.low for parameter in parameters], dtype=np.float64)
+        self._high = np.array([parameter.high for parameter in parameters], dtype=np.float64)
+        self._random = np.array([parameter.random for parameter in parameters], dtype=np.float64)
 
     def table(self, values: Array) -> Array:
         """Return the values at `rows`, a row for each outer corner."""
@@ -251,23 +251,18 @@ class _OuterLoops:
         """Return the least and the greatest value by root-sum-square, NaN where they are not to be had."""
         if not self.samples.has_all_outer_corners:
             return np.nan, np.nan
-        parameters = [self.samples.parameters[index] for index in self.samples.tolerances]
-        random = np.array([parameter.random for parameter in parameters], dtype=np.float64)
         with np.errstate(over="ignore", invalid="ignore"):
             half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
-            root_sum = np.sqrt(np.sum((half_widths * random) ** 2, axis=1))
-            half_width = root_sum + np.sum(half_widths * (1 - random), axis=1)
-            return float(np.min(table[:, 0] - half_width)), float(np.max(table[:, 0] + half_width))
+            root_sum = np.sqrt((half_widths**2) @ self._random**2)
+            half_width = root_sum + half_widths @ (1 - self._random)
+            return float((table[:, 0] - half_width).min()), float((table[:, 0] + half_width).max())
 
     def directed(self, table: Array) -> tuple[Array, Array]:
         """Return, for each outer corner, where its sensitivities put the least value, and the greatest."""
         rises = table[:, 2::2] >= table[:, 1::2]
-        parameters = [self.samples.parameters[index] for index in self.samples.tolerances]
-        low = np.array([parameter.low for parameter in parameters], dtype=np.float64)
-        high = np.array([parameter.high for parameter in parameters], dtype=np.float64)
         least, most = self.centres.copy(), self.centres.copy()
-        least[:, self.samples.tolerances] = np.where(rises, low, high)
-        most[:, self.samples.tolerances] = np.where(rises, high, low)
+        least[:, self.samples.tolerances] = np.where(rises, self._low, self._high)
+        most[:, self.samples.tolerances] = np.where(rises, self._high, self._low)
         return least, most
 
 
@@ -316,29 +311,38 @@ class _Search:
 
 
 def _analysis(
-    nominal: float, corners: Array, star: Array, statistical: tuple[float, float], unit: str
+    inside: Array, corners: Array, statistical: tuple[float, float], unit: str
 ) -> tuple[Spread, Spread, bool]:
-    """Return the spread, the statistical one, and whether the corners bound what lies between them."""
-    low, high = float(np.min(corners)), float(np.max(corners))
-    inside = np.append(star, nominal)
+    """Return the spread, the statistical one, and whether the corners bound what lies between them.
+
+    inside: the values between the corners, the nominal one first
+    """
+    nominal, low, high = float(inside[0]), float(corners.min()), float(corners.max())
     slack = max(_ROUNDING * max(abs(low), abs(high), abs(nominal)), _ROUNDED_ZERO)
-    finite = bool(np.isfinite([low, high, nominal]).all())
-    monotonic = not finite or bool(np.all(inside >= low - slack) and np.all(inside <= high + slack))
+    finite = isfinite(low) and isfinite(high) and isfinite(nominal)
+    monotonic = not finite or (inside.min() >= low - slack and inside.max() <= high + slack)
     spread = Spread(min(low, nominal), nominal, max(high, nominal), unit)
     least, most = _finite_or(statistical[0], spread.minimum), _finite_or(statistical[1], spread.maximum)
     return spread, Spread(min(least, nominal), nominal, max(most, nominal), unit), monotonic
 
 
 def _finite_or(value: float, fallback: float) -> float:
-    return value if np.isfinite(value) else fallback
+    return value if isfinite(value) else fallback
 
 
 def _contributions(samples: Samples, star: Array) -> tuple[tuple[str, float], ...]:
     with np.errstate(invalid="ignore"):
-        widths = np.nan_to_num(np.abs(star[1::2] - star[0::2]), posinf=0.0)
-    total = float(np.sum(widths))
+        differences: list[float] = (star[1::2] - star[0::2]).tolist()
+    widths = [abs(width) if isfinite(width) else 0.0 for width in differences]
+    total = sum(widths)
     if total == 0:
         return ()
     labels = [samples.parameters[i].label or samples.parameters[i].name for i in samples.varying]
-    ranked = sorted(zip(labels, (float(w) / total for w in widths), strict=True), key=lambda x: (-x[1], x[0]))
+    ranked = sorted(zip(labels, (width / total for width in widths), strict=True), key=_ranking)
     return tuple((label, share) for label, share in ranked if share > _LEAST_SHARE)
+
+
+def _ranking(contribution: tuple[str, float]) -> tuple[float, str]:
+    """Return what contributions are sorted by: equal ones by name, whatever rounding makes of them."""
+    label, share = contribution
+    return -round(share / _LEAST_SHARE), label

@@ -18,7 +18,7 @@ from pwmlint.lint.design import Design
 SLACK = 1.5  # what a busy machine may add to a ratio
 
 
-def quickest(*works: Callable[[], object], repeats: int = 25) -> list[float]:
+def quickest(*works: Callable[[], object], repeats: int = 100) -> list[float]:
     """Return the shortest time (s) of each work: of the run that others disturbed least.
 
     The works take turns, so that a busy spell of the machine hits them alike.
@@ -95,8 +95,8 @@ def test_closed_loop_spread_over_a_bare_solve():
     )
     print(f"\nspread of 256 corners over a bare solve: {whole / floor:.2f} ({1e3 * whole:.2f} ms)")
     print(f"of which one solve of 256 corners: {solving / floor:.2f} ({1e3 * solving:.2f} ms)")
-    # Wanted: 3. At six unknowns the bare solve takes 60 us, and the hundred numpy calls round it more.
-    assert whole / floor <= 12 * SLACK
+    # Wanted: 3. At six unknowns the bare solve takes 65 us, and the hundred numpy calls round it twice that.
+    assert whole / floor <= 5 * SLACK
 
 
 def test_monte_carlo_over_a_bare_solve():
@@ -104,6 +104,7 @@ def test_monte_carlo_over_a_bare_solve():
     whole, floor = quickest(
         lambda: monte_carlo(loop.parameters, loop.evaluate, {"OUT": "V"}, samples=10_000),
         bare(UNKNOWNS, 10_000),
+        repeats=25,
     )
     print(f"\nMonte Carlo of 10 000 draws over a bare solve: {whole / floor:.2f} ({1e3 * whole:.1f} ms)")
     assert whole / floor <= 5 * SLACK

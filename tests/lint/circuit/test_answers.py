@@ -100,6 +100,15 @@ class TestClosedLoops:
         assert isinstance(found, Unsolved)
         assert "sign" in found.reason
 
+    def test_a_source_that_feeds_back_on_itself_without_bound_within_the_tolerances(
+        self, design_of: DesignOf
+    ):
+        # (VREF - A) / R1 + (2 A - A) / R2 = 0: where R1 equals R2, A is infinite.
+        lines = "V1 VREF 0 5\nR1 VREF A 1k tol=1%\nR2 E A 1.001k tol=1%\nE1 E 0 A 0 2"
+        found = design_of(lines).voltage("A")
+        assert isinstance(found, Unsolved)
+        assert "sign" in found.reason
+
     def test_a_trimmer_that_shorts_the_feedback_at_its_stop(self, design_of: DesignOf):
         found = regulated(design_of(self.DIVIDER + "RV1 FB FB 0 10k tol=0"), "FB", "VREF")
         assert isinstance(found, Estimate)

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
+from itertools import product
 from types import MappingProxyType
 
 import numpy as np
@@ -349,5 +351,70 @@ class TestClosedLoops:
         )
         assert np.isnan(solve(loop, {}, 1).voltage("OUT"))
 
+    def test_many_solutions_that_differ_in_their_sources_alone(self):
+        # Twelve samples, two matrices: OUT = (VREF + offset) (1 + R1 / R2)
+        loop = Network(
+            (
+                Resistor("R1", "OUT", "FB", lambda s: s["R1"]),
+                Resistor("R2", "FB", "0", constant(10e3)),
+                CurrentSource("bias", "0", "FB", lambda s: s["bias"]),
+            ),
+            {"0": constant(0), "VREF": lambda s: s["VREF"]},
+            (FreePotential("OUT"),),
+            (Condition("FB", "VREF", lambda s: s["offset"]),),
+        )
+        grid = np.array(list(product((10e3, 30e3), (4.5, 5.0, 5.5), (-0.01, 0.01)))).T
+        sample: Sample = dict(zip(("R1", "VREF", "offset"), grid, strict=True)) | {"bias": np.full(12, 1e-6)}
+        expected = (grid[1] + grid[2]) * (1 + grid[0] / 10e3) - 1e-6 * grid[0]
+        assert solve(loop, sample, 12).voltage("OUT") == pytest.approx(expected)
+
     def test_nothing_to_solve(self):
         assert solved(resistor("R1", "VREF", "0", 1e3)).current_out_of("VREF") == pytest.approx(5e-3)
+
+
+class TestDirection:
+    """The sign that turns where answers run away to infinity."""
+
+    @staticmethod
+    def bridge(share: float) -> Network:
+        """Return a loop whose inputs see these shares of the output: half, and `share`."""
+        return network(
+            resistor("R1", "OUT", "PLUS", 10e3),
+            resistor("R2", "PLUS", "0", 10e3),
+            resistor("R3", "OUT", "MINUS", 10e3 * (1 - share)),
+            resistor("R4", "MINUS", "0", 10e3 * share),
+            free=(FreePotential("OUT"),),
+            conditions=(Condition("PLUS", "MINUS", constant(0.1)),),
+        )
+
+    @pytest.mark.parametrize(("share", "direction"), [(0.4, 1), (0.6, -1), (0.5, 0)])
+    def test_of_a_loop_is_that_of_what_its_condition_compares(self, share: float, direction: int):
+        assert solve(self.bridge(share), {}, 1).direction == direction
+
+    def test_two_loops_that_each_turn_the_other_way(self):
+        loops = network(
+            resistor("R1", "OUT1", "FB1", 10e3),
+            resistor("R2", "FB1", "0", 10e3),
+            resistor("R3", "OUT2", "FB2", 30e3),
+            resistor("R4", "FB2", "0", 10e3),
+            free=(FreePotential("OUT1"), FreePotential("OUT2")),
+            conditions=(Condition("FB1", "VREF", constant(0)), Condition("VREF", "FB2", constant(0))),
+        )
+        assert solve(loops, {}, 1).direction == -1
+
+    def test_is_told_beside_shorts_in_parallel(self):
+        loop = self.bridge(0.6)
+        shorts = (resistor("L1", "MINUS", "X", 0), resistor("L2", "MINUS", "X", 0))
+        assert solve(replace(loop, elements=(*loop.elements, *shorts)), {}, 1).direction == -1
+
+    @pytest.mark.parametrize("gain", [1.5, 2.5])
+    def test_of_a_source_that_feeds_back_on_itself(self, gain: float):
+        # (VREF - A) / R1 + (gain A - A) / R2 = 0: without bound at a gain of two.
+        latch = network(
+            resistor("R1", "VREF", "A", 1e3),
+            resistor("R2", "E", "A", 1e3),
+            ControlledSource("E1", "E", "0", "A", "0", constant(gain), "voltage"),
+        )
+        found = solve(latch, {}, 1)
+        assert found.voltage("A") == pytest.approx(5 / (2 - gain))
+        assert found.direction * found.voltage("A") < 0  # a branch turns the sign of the determinant
