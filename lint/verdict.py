@@ -14,6 +14,25 @@ from enum import StrEnum
 from ..grammar.netlist import Place
 from .quantity import Spread
 
+# What rules are about, in the order in which one walks round the board. A house's own topics come after
+# these, in alphabetical order.
+TOPICS = (
+    "connections",
+    "supply",
+    "reference",
+    "oscillator",
+    "dead time",
+    "soft start",
+    "output mode",
+    "output stage",
+    "gate drive",
+    "error amplifier",
+    "feedback",
+    "current limit",
+    "ratings",
+    "safety",
+)
+
 
 class Outcome(StrEnum):
     """The result kinds of SARIF 2.1.0 (section 3.27.9)."""

@@ -6,7 +6,6 @@ from collections.abc import Callable
 from pathlib import Path
 
 import pytest
-
 from pwmlint.lint import Review, Verdict, review
 
 Ask = Callable[..., list[Verdict]]
@@ -14,7 +13,9 @@ ReviewText = Callable[..., Review]
 
 
 def pytest_configure(config: pytest.Config) -> None:
-    config.addinivalue_line("markers", "construct(name): the construct of a netlist format that a test covers")
+    config.addinivalue_line(
+        "markers", "construct(name): the construct of a netlist format that a test covers"
+    )
 
 
 @pytest.fixture

@@ -8,28 +8,10 @@ from rich.cells import cell_len
 
 from ...grammar.netlist import Place
 from ..quantity import figure, percent
-from ..verdict import Outcome, Verdict
+from ..verdict import TOPICS, Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
 from .page import Page
 from .words import badness, counts, grouped, word
-
-# The order in which one walks round the board; a topic that is not named here follows in alphabetical order.
-_WALK = (
-    "connections",
-    "supply",
-    "reference",
-    "oscillator",
-    "dead time",
-    "soft start",
-    "output mode",
-    "output stage",
-    "gate drive",
-    "error amplifier",
-    "feedback",
-    "current limit",
-    "ratings",
-    "safety",
-)
 
 _INDENT = 11
 _LABEL = 9
@@ -82,7 +64,7 @@ def lead(verdict: Verdict) -> Piece:
 
 
 def _walk(topic: str) -> tuple[int, str]:
-    return (_WALK.index(topic) if topic in _WALK else len(_WALK), topic)
+    return (TOPICS.index(topic) if topic in TOPICS else len(TOPICS), topic)
 
 
 def _full(page: Page, verdict: Verdict) -> None:

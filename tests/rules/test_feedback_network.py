@@ -22,7 +22,9 @@ BATTERY = '[rails.VBAT]\nvoltage = "20 V .. 28 V"\n'
     [
         pytest.param({}, "VOUT", id="divider on the output"),
         pytest.param({"R6": "VS FB 3.83k 1%", "R20": "VOUT VS 10"}, "VOUT", id="through a resistor"),
-        pytest.param({"R6": "VS FB 3.83k", "R20": "VOUT VS 10", "J3": "VS 0 SENSE"}, "VOUT", id="remote sense"),
+        pytest.param(
+            {"R6": "VS FB 3.83k", "R20": "VOUT VS 10", "J3": "VS 0 SENSE"}, "VOUT", id="remote sense"
+        ),
     ],
 )
 def test_a_divider_on_the_output_senses_the_right_point(

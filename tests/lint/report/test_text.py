@@ -287,6 +287,7 @@ def test_write_suits_the_stream(faulty: Review, monkeypatch: pytest.MonkeyPatch)
         stream.flush()
         assert raw.getvalue().decode(encoding) == (SNAPSHOTS / f"{expected}.txt").read_text("utf-8")
 
+
 def test_the_recognised_power_stage_stands_below_the_pins(faulty: Review, printed: Printed) -> None:
     controller = replace(
         faulty.controllers[0],
