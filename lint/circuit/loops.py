@@ -34,7 +34,9 @@ class Fault:
     shorted: bool
 
     def strike(self, growth: Growth) -> None:
-        """Change a grown network as the fault does."""
+        """Change a grown network as the fault does, and hold all other parts at their nominal values."""
+        nominal = {n: replace(p, low=p.nominal, high=p.nominal) for n, p in growth.parameters.items()}
+        growth.parameters.update(nominal)
         element = growth.elements.pop(self.part, None)
         if element is not None and self.shorted:
             growth.add(Resistor(self.part, element.a, element.b, lambda _: np.zeros(1), may_be_zero=True))
