@@ -1,14 +1,15 @@
 """Piecewise-linear diodes: which of them conducts, found out sample by sample.
 
 A junction is off (open, its forward voltage below the drop), on (it holds the drop, its current forward) or,
-for a zener, in breakdown (it holds the zener voltage, its current backward). With few junctions every
-combination is tried; in each sample the one whose own conditions the solution bears out is kept. For a
-network of resistances and sources that combination is unique but on the edges between two.
+for a zener, in breakdown (it holds the zener voltage, its current backward). In each sample the combination
+is kept whose own conditions the solution bears out. With few junctions every one can be tried; what fits one
+sample is tried on all others first. For a network of resistances and sources that combination is unique but
+on the edges between two.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from enum import Enum
 from itertools import product
@@ -82,18 +83,21 @@ class PiecewiseLinear:
         self._solvers: dict[States, Solver | None] = {}
 
     def read(self, probes: Mapping[str, Probe], sample: Sample, size: int) -> Answers:
-        """Solve every sample with the junctions in the states that fit, and read the probes."""
+        """Solve every sample with the junctions in the states that fit, and read the probes.
+
+        From the first sample on that no states fit everything is NaN.
+        """
         values = {name: np.full(size, np.nan) for name in probes}
         met: dict[str, dict[State, None]] = {junction.part: {} for junction in self._junctions}
         unsettled = np.arange(size)
-        for states in self._likeliest_first(sample):
-            if not len(unsettled):
-                break
+        while len(unsettled):
             part = sample if len(unsettled) == size else _at(sample, unsettled)
-            solution = self._solved_in(states, part, len(unsettled))
-            fits = None if solution is None else _borne_out(solution, self._junctions, states)
-            if solution is None or fits is None or not fits.any():
-                continue
+            states = self._fitting(_at(part, np.arange(1)))
+            solution = None if states is None else self._solved_in(states, part, len(unsettled))
+            if states is None or solution is None:
+                break
+            fits = _borne_out(solution, self._junctions, states)
+            fits[0] = True  # it was borne out before: on the edge of two states, rounding may turn it round
             for junction, state in zip(self._junctions, states, strict=True):
                 met[junction.part][state] = None
             for name, probe in probes.items():
@@ -101,21 +105,25 @@ class PiecewiseLinear:
             unsettled = unsettled[~fits]
         return Answers(values, {part: tuple(found) for part, found in met.items()})
 
-    def _likeliest_first(self, sample: Sample) -> Iterator[States]:
-        """Yield the combinations of states, the one that fits the first sample before all others.
+    def _fitting(self, sample: Sample) -> States | None:
+        """Return the states that fit a single sample, None where there are none.
 
-        Most samples share it, and one small solve is cheaper than a stack in a combination that nowhere fits.
+        From all blocking: each solution says which junctions contradict it, and what they want to be. Where
+        that leads in a circle, the next combination is tried.
         """
-        combinations = list(product(*(junction.states for junction in self._junctions)))
-        if len(combinations) > 1:
-            first = _at(sample, np.arange(1))
-            for states in combinations:
-                solution = self._solved_in(states, first, 1)
-                if solution is not None and _borne_out(solution, self._junctions, states).all():
-                    combinations.remove(states)
-                    yield states
-                    break
-        yield from combinations
+        if not self._junctions:
+            return ()
+        untried = dict.fromkeys(product(*(junction.states for junction in self._junctions)))
+        wanted: States = (State.OFF,) * len(self._junctions)
+        while untried:
+            states = wanted if wanted in untried else next(iter(untried))
+            del untried[states]
+            solution = self._solved_in(states, sample, 1)
+            if solution is not None:
+                wanted = _wanted(solution, self._junctions, states)
+                if wanted == states:
+                    return states
+        return None
 
     def _solved_in(self, states: States, sample: Sample, size: int) -> Solution | None:
         """Return the solution with the junctions in `states`, None where a net that needs a path floats."""
@@ -153,6 +161,21 @@ def _borne_out(solution: Solution, junctions: Sequence[Junction], states: States
     for junction, state in zip(junctions, states, strict=True):
         fits &= _agrees(solution, junction, state)
     return fits
+
+
+def _wanted(solution: Solution, junctions: Sequence[Junction], states: States) -> States:
+    """Return the states that the first sample asks for where it contradicts those it was solved with."""
+    return tuple(
+        state if _agrees(solution, junction, state)[0] else _other(solution, junction, state)
+        for junction, state in zip(junctions, states, strict=True)
+    )
+
+
+def _other(solution: Solution, junction: Junction, state: State) -> State:
+    if state is not State.OFF:
+        return State.OFF
+    forward = solution.voltage(junction.anode, junction.cathode)[0] > 0
+    return State.ON if forward else State.BREAKDOWN
 
 
 def _agrees(solution: Solution, junction: Junction, state: State) -> Truth:
