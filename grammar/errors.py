@@ -44,7 +44,7 @@ class NetlistError(Exception):
 
 def _describe(error: NetlistError) -> str:
     where = error.place.file if error.place.line == 0 else str(error.place)
-    lines = [f"{printable(where)}: {printable(error.message)}"]
+    lines = [no_command(f"{printable(where)}: {printable(error.message)}")]
     if error.excerpt:
         lines += _excerpt(error.excerpt, error.place.column)
     if error.expected:
@@ -67,3 +67,12 @@ def _excerpt(text: str, column: int) -> list[str]:
 def printable(text: str) -> str:
     r"""Return `text` with every character that could steer a terminal written as an escape, `\x1b` style."""
     return "".join(c if c.isprintable() else c.encode("unicode_escape").decode("ascii") for c in text)
+
+
+# What CI servers take for a command of theirs when a line of a log begins with it, blanks apart.
+_COMMANDS = ("::", "##")
+
+
+def no_command(line: str) -> str:
+    """Return `line`, with a backslash before it where a CI server would take it for a command."""
+    return f"\\{line}" if line.lstrip().startswith(_COMMANDS) else line

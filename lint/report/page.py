@@ -14,7 +14,7 @@ from rich.cells import cell_len, chop_cells
 from rich.console import Console
 from rich.text import Text
 
-from ...grammar.errors import printable
+from ...grammar.errors import no_command, printable
 from .bar import Piece
 from .glyphs import ASCII, Glyphs, spelt_out
 
@@ -55,7 +55,7 @@ class Page:
 
     def heading(self, title: str, rule: str, notes: Sequence[Piece] = ()) -> None:
         """Put `title`, a rule of the character `rule`, and `notes` at the right end of the line."""
-        title = self.say(title)
+        title = no_command(self.say(title))
         shown = [(self.say(text), style) for text, style in notes]
         taken = cell_len(title) + sum(cell_len(text) for text, _ in shown)
         gap = " " if shown else ""
@@ -90,4 +90,4 @@ def wrap(text: str, width: int) -> list[str]:
             continue
         pieces = chop_cells(word, width)
         lines[-1:] = [*([lines[-1]] if lines[-1] else []), *pieces]
-    return [line.replace(_GLUE, " ") for line in lines]
+    return [no_command(line.replace(_GLUE, " ")) for line in lines]

@@ -300,3 +300,16 @@ def test_the_recognised_power_stage_stands_below_the_pins(faulty: Review, printe
     unknown = replace(controller, power_stage="", evidence=("the outputs drive nothing",))
     report = printed(replace(faulty, controllers=(unknown,)))
     assert "  drives   not recognised\n           the outputs drive nothing\n" in report
+
+
+@pytest.mark.parametrize("command", ["::error::", "##[error]", "::stop-commands::pears"])
+def test_a_name_is_no_command_of_a_ci_server(command: str, sound: Review, printed: Printed) -> None:
+    verdict = Verdict(
+        outcome=Outcome.REVIEW,
+        message=f"{command} {'x' * 60} {command}",
+        nets=(command,),
+        topic=command,
+        rule="a.b",
+    )
+    report = printed(replace(sound, verdicts=(verdict,), name=command))
+    assert not [line for line in report.splitlines() if line.lstrip().startswith(("::", "##"))]
