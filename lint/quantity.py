@@ -68,6 +68,8 @@ class Spread:
             return nominal
         low = engineering(self.minimum, self.unit, digits)
         high = engineering(self.maximum, self.unit, digits)
+        if low == nominal == high:
+            return nominal
         number, _, unit = low.partition(" ")
         shared = number if unit == high.partition(" ")[2] else low
         return f"{nominal} ({shared} .. {high})"

@@ -201,8 +201,9 @@ def _within(
     if lost:
         return unsolved(lost[0], f"range of {controller.pins[role].name}", pins=(role,))
     solved = {regime: answer for regime, answer in found.items() if isinstance(answer, Estimate)}
-    least = min(solved, key=lambda regime: solved[regime].spread.minimum)
-    most = max(solved, key=lambda regime: solved[regime].spread.maximum)
+    # Rounded, so that of regimes that are equal the first one is named on every machine.
+    least = min(solved, key=lambda regime: round(solved[regime].spread.minimum, 9))
+    most = max(solved, key=lambda regime: round(solved[regime].spread.maximum, 9))
     everywhere = _over(solved[least], solved[most], solved[Regime.NO_LOAD])
     where = f"lowest at {least}, highest at {most}" if least is not most else f"both ends at {least}"
     return judge(

@@ -19,6 +19,9 @@ from .worst_case import Analysis, analyse
 # The name under which the direction of the solution is read beside the probes.
 _DIRECTION = "direction"
 
+# No controller's pin stands in a network as large as this; a netlist that has one shall not stop a review.
+_MOST_ELEMENTS = 250
+
 
 def estimate(
     growth: Growth,
@@ -77,6 +80,11 @@ def _obstacle(growth: Growth) -> Unsolved | None:
     if len(growth.diodes) > MOST_JUNCTIONS:
         names = tuple(diode.part for diode in growth.diodes)
         return Unsolved(f"too many diodes on one network: {', '.join(names)}", parts=names)
+    if len(growth.elements) > _MOST_ELEMENTS:
+        nets = tuple(growth.nets)[:1]
+        return Unsolved(
+            f"the network round {nets[0]} has {len(growth.elements)} parts, too many to solve", nets=nets
+        )
     if not growth.blocked:
         return None
     nets = dict.fromkeys(blocked.net for blocked in growth.blocked)

@@ -115,3 +115,10 @@ class TestClosedLoops:
         assert found.spread.maximum == np.inf
         # At the other stop 10 kohm in parallel to 10 kohm; the resistors at their ends.
         assert found.spread.minimum == pytest.approx(2.5 * (1 + 37.917 * (1 / 10.1 + 1 / 10)))
+
+
+def test_a_network_too_large_to_solve_is_left_open(design_of: Callable[..., Design]):
+    rungs = "\n".join(f"R{i} N{i} N{i + 1} 1k\nR{1000 + i} N{i + 1} 0 1k" for i in range(200))
+    found = design_of(f"V1 N0 0 5\n{rungs}").voltage("N200")
+    assert isinstance(found, Unsolved)
+    assert found.reason == "the network round N200 has 400 parts, too many to solve"
