@@ -67,6 +67,18 @@ class Rail:
         low, high = self.voltage.minimum, self.voltage.maximum
         return Spread(low - abs(low) * share, self.voltage.nominal, high + abs(high) * share, "V")
 
+    @property
+    def deviation(self) -> tuple[float, float] | None:
+        """Return the shares of its nominal voltage by which it may fall and grow, None where none are told.
+
+        On a negative rail the end farther below ground is the greater one.
+        """
+        band, nominal = self.band, self.voltage.nominal
+        if nominal == 0 or band.minimum == band.maximum:
+            return None
+        fall, grow = sorted((band.minimum / nominal - 1, band.maximum / nominal - 1))
+        return fall, grow
+
 
 @dataclass(frozen=True, slots=True)
 class ControllerBrief:

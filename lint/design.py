@@ -233,7 +233,7 @@ class Design:
         return converter.trip_shorted if shorted else converter.trip
 
     def output_after(self, controller: Controller, fault: Fault) -> float:
-        """Return the output (V) after a resistor has failed: infinite where every loop loses it upwards."""
+        """Return how far from ground (V) the output goes after a resistor has failed."""
         return self.converter(controller).output_after(fault)
 
     def source_resistance(self, controller: Controller, net: str) -> Estimate | Unsolved:

@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 
-from ..lint.brief import Rail
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.loops import Regulation
 from ..lint.design import Design
@@ -51,13 +50,13 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
         [rails.VOUT] voltage = "12 V"; tolerance = "5 %"
     """
     found = design.regulation(controller)
-    if not isinstance(found, Regulation) or found.output.spread.nominal <= 0:
+    if not isinstance(found, Regulation) or found.output.spread.nominal == 0:
         return  # feedback.output-voltage or feedback.complete speaks of it
     amplifier = design.regulating(controller)
     output = amplifier.output if amplifier is not None else ""
     rail = design.rail(output)
-    allowed = _allowed(rail)
-    if rail is None or allowed is None:
+    told = rail.deviation if rail is not None else None
+    if told is None:
         need = f'brief: [rails.{output}] tolerance = "..."'
         yield Verdict(outcome=Outcome.OPEN, message=f"accuracy of {output}: no tolerance told", needs=(need,))
         return
@@ -71,7 +70,7 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
             pins=_PIN,
         )
         return
-    deviation = _deviation(found.output)
+    allowed, deviation = Limit(*told, ""), _deviation(found.output)
     nominal = engineering(found.output.spread.nominal, "V")
     says = f"{output} spreads {_percentages(deviation.spread)} about {nominal}"
     remedy = _better(deviation, _voltage(controller, design), allowed)
@@ -84,20 +83,13 @@ def _voltage(controller: Controller, design: Design) -> Spread:
     return known.spread if known is not None else controller.profile.figure("reference.voltage").spread()
 
 
-def _allowed(rail: Rail | None) -> Limit | None:
-    """Return the deviation that the brief allows a rail, None where it tells no width."""
-    if rail is None or rail.band.minimum == rail.band.maximum or rail.voltage.nominal <= 0:
-        return None
-    nominal = rail.voltage.nominal
-    return Limit(rail.band.minimum / nominal - 1, rail.band.maximum / nominal - 1, "")
-
-
 def _deviation(output: Estimate) -> Estimate:
     """Return an output voltage's deviation from its nominal value, as a ratio."""
     nominal = output.spread.nominal
 
     def about_nominal(spread: Spread) -> Spread:
-        return Spread(spread.minimum / nominal - 1, 0.0, spread.maximum / nominal - 1, "")
+        least, most = sorted((spread.minimum / nominal - 1, spread.maximum / nominal - 1))
+        return Spread(least, 0.0, most, "")
 
     ends = f"{engineering(output.spread.minimum, 'V', 4)} .. {engineering(output.spread.maximum, 'V', 4)}"
     return replace(

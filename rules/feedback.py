@@ -195,27 +195,20 @@ def divider_ratio(controller: Controller, design: Design) -> Iterable[Verdict]:
         f"ratio {engineering(set_point / actual, '', 4)} from {amplifier.output}"
     )
     rail = design.rail(amplifier.output)
-    band = _band(rail)
-    if rail is None or band is None or found.settable is not None:
+    allowed = rail.deviation if rail is not None else None
+    if rail is None or allowed is None or found.settable is not None:
         yield replace(reports(found.inputs, says, pins=_pins(amplifier)), measured=None)
         return
     error = actual / rail.voltage.nominal - 1
     verdict = judge(
         Estimate(Spread.exact(error, ""), Spread.exact(error, ""), parts=found.output.parts),
-        _half_of(band, rail.voltage.nominal),
+        Limit(allowed[0] / 2, allowed[1] / 2, ""),
         f"{says}: {percent(error)} from the wanted {engineering(rail.voltage.nominal, 'V')}",
         source="common practice, no source: half of the output's tolerance",
         pins=_pins(amplifier),
         remedy=_pair(design, amplifier, found, rail),
     )
     yield replace(verdict, assumptions=())
-
-
-def _half_of(band: Limit, nominal: float) -> Limit:
-    """Return half of a rail's band as a ratio about its nominal voltage."""
-    assert band.minimum is not None
-    assert band.maximum is not None
-    return Limit((band.minimum / nominal - 1) / 2, (band.maximum / nominal - 1) / 2, "")
 
 
 @rule("feedback.complete", level="error", topic="feedback")

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import replace
-from math import inf
+from math import inf, isinf
 
 from ..grammar.netlist import Part
 from ..lint.circuit.amplifiers import Amplifier
@@ -190,7 +190,9 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
         return
     amplifier = design.regulating(controller)
     assert amplifier is not None  # it is the one that regulates
-    threshold = _OVER_VOLTAGE * found.output.spread.nominal
+    regulated = found.output.spread.nominal
+    sign = -1.0 if regulated < 0 else 1.0
+    threshold = _OVER_VOLTAGE * abs(regulated)
     resistors = [p for p in found.output.parts if design.circuit.kind(design.part(p)) == "resistor"]
     faults = [Fault(part, shorted) for part in resistors for shorted in (False, True)]
     rising = {fault: design.output_after(controller, fault) for fault in faults}
@@ -198,16 +200,19 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
     clamps = _clamps(design, amplifier.output, min(over.values(), default=inf))
     across = [part.reference for part in _across(design, amplifier.output)]
     if not over:
-        message = f"no single resistor lifts {amplifier.output} above {engineering(threshold, 'V')}"
+        does = "lifts {} above" if sign > 0 else "pulls {} below"
+        limit = engineering(sign * threshold, "V")
+        message = f"no single resistor {does.format(amplifier.output)} {limit}"
         yield Verdict(outcome=Outcome.PASS, message=message, parts=tuple(resistors))
         return
-    said = "; ".join(_told(fault, volts) for fault, volts in over.items())
+    said = "; ".join(_told(fault, sign * volts) for fault, volts in over.items())
+    goes = "rises" if sign > 0 else "falls"
     clamped = f"; {', '.join(clamps)} across {amplifier.output} takes it" if clamps else ""
     if not clamps and across:
         clamped = f"; whether {', '.join(across)} across {amplifier.output} is to take it is not seen"
     verdict = Verdict(
         outcome=Outcome.PASS if clamps else Outcome.REVIEW,
-        message=f"{amplifier.output} rises with {said}{clamped}",
+        message=f"{amplifier.output} {goes} with {said}{clamped}",
         parts=(*dict.fromkeys(fault.part for fault in over), *clamps),
         nets=(amplifier.output,),
         source="common practice, no source",
@@ -219,7 +224,7 @@ def single_fault(controller: Controller, design: Design) -> Iterable[Verdict]:
 
 def _told(fault: Fault, volts: float) -> str:
     how = "shorted" if fault.shorted else "open"
-    where = "as far as the duty goes" if volts == inf else f"to {engineering(volts, 'V')}"
+    where = "as far as the duty goes" if isinf(volts) else f"to {engineering(volts, 'V')}"
     return f"{fault.part} {how} {where}"
 
 

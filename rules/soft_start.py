@@ -218,7 +218,7 @@ def _charging(controller: Controller, design: Design, seconds: float) -> str:
     found, farads = design.regulation(controller), design.output_capacitance(controller)
     if not isinstance(found, Regulation) or not farads or seconds <= 0:
         return ""
-    current = farads * found.output.spread.nominal / seconds
+    current = farads * abs(found.output.spread.nominal) / seconds
     trip = design.trip(controller)
     share = ""
     if isinstance(trip, Trip):

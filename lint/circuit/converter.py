@@ -154,9 +154,14 @@ class Converter:
         return self._loops.feedback_current()
 
     def output_after(self, fault: Fault) -> float:
-        """Return the output (V) after a resistor has failed: infinite where every loop loses it upwards."""
+        """Return how far from ground (V) the output goes after a resistor has failed.
+
+        Infinite where every loop loses it that way.
+        """
+        regulation = self.regulation
+        below = isinstance(regulation, Regulation) and regulation.output.spread.nominal < 0
         sensing = [amplifier for amplifier in self.voltage_amplifiers if amplifier.output]
-        return min(self._loops.output_after(amplifier, fault) for amplifier in sensing)
+        return min(self._loops.output_after(a, fault, below_ground=below) for a in sensing)
 
     # In operation
 

@@ -113,15 +113,17 @@ class Loops:
         reach = settable(growth, probes, "output", [FreePotential(output)], [condition])
         return Regulation(found["output"], found["inputs"], trimmers(growth), reach)
 
-    def output_after(self, amplifier: Amplifier, fault: Fault) -> float:
-        """Return the output (V) that the loop goes to after a fault, nominal parts otherwise.
+    def output_after(self, amplifier: Amplifier, fault: Fault, *, below_ground: bool = False) -> float:
+        """Return how far from ground (V) the output goes after a fault, nominal parts otherwise.
 
-        Where no output makes the inputs equal any more, the loop is lost: upwards without bound when the
-        amplifier then asks for the longest pulse, down to nothing when it asks for none.
+        below_ground: the converter makes a negative output
+        Where no output makes the inputs equal any more, the loop is lost: away from ground without bound when
+        the amplifier then asks for the longest pulse, back to nothing when it asks for none.
         """
         found = self.regulation(amplifier, fault)
         if isinstance(found, Regulation):
-            return max(0.0, found.output.spread.nominal)
+            volts = found.output.spread.nominal
+            return max(0.0, -volts if below_ground else volts)
         output = amplifier.output
         zero = Potential(output, Spread.exact(0.0, "V"), "regime")
         growth = self._grow(amplifier, {**self.known, output: zero}, frozenset())
