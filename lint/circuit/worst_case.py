@@ -105,11 +105,11 @@ def analyse(
     evaluate = in_slices(evaluate)
     loops = _OuterLoops(samples)
     corner_rows = samples.corners()
-    rows = np.vstack([samples.nominal(), samples.star(), loops.rows, corner_rows])
-    inside, around = 1 + samples.star_rows, len(rows) - len(corner_rows)
+    rows = np.vstack([samples.nominal(), samples.star(), samples.halfway(), loops.rows, corner_rows])
+    ends, inside, around = 1 + samples.star_rows, 1 + 2 * samples.star_rows, len(rows) - len(corner_rows)
     found: dict[str, Analysis] = {}
     for name, column in evaluate(samples.as_sample(rows), len(rows)).items():
-        star, table, corners = column[1:inside], loops.table(column[inside:around]), column[around:]
+        star, table, corners = column[1:ends], loops.table(column[inside:around]), column[around:]
         settled = True
         if not samples.has_all_corners:
             searched, settled = _Search(samples, evaluate, name).both_ends(*loops.directed(table))
@@ -194,6 +194,13 @@ class Samples:
     def star(self) -> Array:
         """Return two rows a varying parameter: it alone at its low end, then at its high end."""
         return self.star_about(self._nominal, self.varying)
+
+    def halfway(self) -> Array:
+        """Return two rows a varying parameter: it alone half the way to its low end, then to its high end.
+
+        Between the corners a quantity may turn round and come back: here it is caught on the way.
+        """
+        return (self.star() + self._nominal) / 2
 
     def star_about(self, centre: Array, indices: Sequence[int]) -> Array:
         """Return two rows a parameter about any centre: it alone at its low end, then at its high end."""

@@ -263,3 +263,11 @@ class TestSamples:
         corners = samples.outer_corners()
         assert len(corners) == 10
         assert set(corners[:, 0]) == {1.0}
+
+
+@pytest.mark.parametrize("turn", [0.2, 0.3, 0.7, 0.8])
+def test_a_quantity_that_turns_between_nominal_and_an_end_is_flagged(turn: float):
+    # (x - turn)^2 over 0 .. 1 about 0.5: the corners alone bound the nominal value and still miss the zero
+    parameters = [Parameter("x", 0.0, 0.5, 1.0)]
+    found = analyse(parameters, lambda sample, _: {"it": (sample["x"] - turn) ** 2}, {"it": ""})["it"]
+    assert not found.monotonic
