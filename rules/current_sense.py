@@ -48,9 +48,11 @@ def present(controller: Controller, design: Design) -> Iterable[Verdict]:
         return  # connections.controller-found speaks of it
     sensing = next((a for a in amplifiers if a.sense is not None), None)
     if sensing is None or sensing.sense is None:
+        following = [a for a in amplifiers if a.use == "signal"]
         yield Verdict(
             outcome=Outcome.REVIEW,
-            message=f"no amplifier of {controller.reference} stands on a current-sense resistor",
+            message=f"no amplifier of {controller.reference} stands on a current-sense resistor"
+            + "".join(f"; amplifier {a.number} follows {', '.join(a.driven_by)}" for a in following),
             remedy="limit the current, or tell what else does",
         )
         return

@@ -218,7 +218,8 @@ def complete(controller: Controller, design: Design) -> Iterable[Verdict]:
     What:
         Looks for an amplifier whose input is joined by resistors to the converter's output and to ground.
         A missing half, or one that stands behind a capacitor or off the pin, leaves it incomplete. An
-        output equal to the set point needs no lower half.
+        output equal to the set point needs no lower half. An input that another part drives, such as an
+        opto-coupler, is for a person to judge; amplifiers that are tied off regulate nothing.
     Why:
         Without the upper half the amplifier never sees the output and the duty runs to its end; without
         the lower half the output settles at the set point itself.
@@ -247,10 +248,16 @@ def complete(controller: Controller, design: Design) -> Iterable[Verdict]:
     mapped = [a for a in design.amplifiers(controller) if a.use != "unmapped"]
     if not mapped:
         return  # connections.controller-found speaks of it
+    following = [a for a in mapped if any(name in design.netlist.parts for name in a.driven_by)]
     halves = [half for half in (_lone_half(controller, design, a) for a in mapped) if half is not None]
     need = design.missing(controller, "output")
-    if halves:
+    if following:
+        yield from (_follows(amplifier) for amplifier in following)
+    elif halves:
         yield halves[0]
+    elif need and all(a.use == "current" or _is_tied_off(controller, design, a) for a in mapped):
+        message = f"no amplifier of {controller.reference} is meant to regulate a voltage"
+        yield Verdict(outcome=Outcome.INFORMATIONAL, message=message)
     elif need:
         yield Verdict(
             outcome=Outcome.OPEN,
@@ -259,6 +266,25 @@ def complete(controller: Controller, design: Design) -> Iterable[Verdict]:
         )
     else:
         yield _unreached(controller, design, mapped)
+
+
+def _follows(amplifier: Amplifier) -> Verdict:
+    """Leave an amplifier whose input another part drives to a person: the loop through it is not computed."""
+    drivers = ", ".join(amplifier.driven_by)
+    return Verdict(
+        outcome=Outcome.REVIEW,
+        message=f"amplifier {amplifier.number} follows {drivers}: what is regulated there is not computed",
+        parts=amplifier.driven_by,
+        nets=(amplifier.plus, amplifier.minus),
+        pins=_pins(amplifier),
+        remedy=f"work out the loop through {drivers} by hand, its polarity included",
+    )
+
+
+def _is_tied_off(controller: Controller, design: Design, amplifier: Amplifier) -> bool:
+    """Tell whether in+ of an unused amplifier stands at ground; amplifier.unused judges its in-."""
+    ends = design.reach(controller, amplifier.plus).ends
+    return amplifier.use == "unused" and bool(ends) and all(design.is_ground(end) for end in ends)
 
 
 def _unreached(controller: Controller, design: Design, amplifiers: Sequence[Amplifier]) -> Verdict:

@@ -64,8 +64,10 @@ def sense_point(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     found = design.power_stage(controller)
     stage = found if isinstance(found, PowerStage) else None
+    # Beside an amplifier that regulates, the other may watch the input: a panel's voltage, a limit to it.
+    meant = ("voltage", "unused") if _voltage_amplifiers(controller, design) else ("signal", "unused")
     for amplifier in design.amplifiers(controller):
-        if amplifier.use not in ("voltage", "unused"):
+        if amplifier.use not in meant:
             continue
         wrong = _wrong_point(controller, design, amplifier, stage)
         if wrong:

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 
 from ...grammar.netlist import Part
+from .compensation import compensation
 from .controllers import Controller
 from .graph import Circuit
 from .potentials import Potential
@@ -17,6 +18,12 @@ _POWER = frozenset({"inductor", "transformer", "diode", "transistor", "relay"})
 
 # Those that no amplifier's input has for itself, as it may have a clamp or a connector.
 _WINDINGS = frozenset({"inductor", "transformer"})
+
+# Parts that may set an input's potential by themselves: an opto-coupler, another amplifier, a zener.
+_DRIVING = frozenset({"integrated circuit", "other", "diode", "transistor", "switch", "relay", "connector"})
+
+# Parts that make a voltage of what a rectifier delivers, or take it off the board.
+_SMOOTHING = frozenset({"capacitor", "inductor", "connector", "battery"})
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,7 +55,12 @@ class Reach:
 
 @dataclass(frozen=True, slots=True)
 class Amplifier:
-    """One error amplifier and its use: "voltage", "current", "unused" or "unmapped"."""
+    """One error amplifier and its use: "voltage", "current", "signal", "unused" or "unmapped".
+
+    outputs:   of a voltage amplifier, the nets that may be the output it senses; output: the one it is
+    driven_by: of one that follows a signal, the parts or nets that set its inputs by other means than
+               resistors from an output
+    """
 
     number: int
     plus: str
@@ -58,6 +70,7 @@ class Amplifier:
     outputs: tuple[str, ...] = ()
     sense: SenseResistor | None = None
     sensed_by: str = ""
+    driven_by: tuple[str, ...] = ()
 
 
 @dataclass(slots=True)
@@ -90,7 +103,30 @@ class AmplifierReader:
             if outputs:
                 output = outputs[0] if len(outputs) == 1 else ""
                 return Amplifier(number, plus, minus, "voltage", output, outputs, sensed_by=sensed_by)
-        return Amplifier(number, plus, minus, "unused")
+        drivers: tuple[str, ...] = ()
+        if not self._is_ground(plus):  # with in+ at ground it is off, whatever is at in-
+            drivers = tuple(dict.fromkeys((*self._drivers(plus, minus), *self._drivers(minus, minus))))
+        return Amplifier(number, plus, minus, "signal" if drivers else "unused", driven_by=drivers)
+
+    def _drivers(self, net: str, inverting: str) -> Iterator[str]:
+        """Yield the parts that may drive an input, and the nets beyond its resistors that do.
+
+        A rail counts only on an amplifier with a feedback path: one without may be tied off to it.
+        """
+        feedback, supply = self.controller.net("feedback"), self.controller.net("supply")
+        reach = self.reach(net)
+        for passed in reach.nets:
+            parts = (connection.part for connection in self.circuit.connections(passed))
+            if passed != feedback:
+                yield from (p.reference for p in parts if self._is_driving(p))
+        regulates = bool(feedback) and compensation(self.circuit, self.known, feedback, inverting) is not None
+        for end in reach.ends:
+            rail = end in self.known and self.known[end].origin not in ("ground", "reference")
+            if (regulates and rail) or (end not in self.known and end not in (feedback, supply)):
+                yield end
+
+    def _is_driving(self, part: Part) -> bool:
+        return self.circuit.kind(part) in _DRIVING and part.reference != self.controller.reference
 
     def reach(self, net: str) -> Reach:
         """Walk from `net` through resistive parts to where the potential is known or set by power parts."""
@@ -135,8 +171,8 @@ class AmplifierReader:
 
     def _is_power(self, net: str, start: str) -> bool:
         """Tell whether a net is part of the power path; an input's own net only where it is the output."""
-        kinds = {self.circuit.kind(connection.part) for connection in self.circuit.connections(net)}
-        return not (_WINDINGS if net == start else _POWER).isdisjoint(kinds) or net == self.output
+        power = _WINDINGS if net == start else _POWER
+        return not power.isdisjoint(self._kinds(net)) or net == self.output
 
     def _is_terminal(self, net: str) -> bool:
         """Tell whether a connector is on a net of unknown potential."""
@@ -173,9 +209,21 @@ class AmplifierReader:
         rails = [
             n for n in ends if n in self.known and self.known[n].origin in ("brief", "name") and n != supply
         ]
-        driven = [n for n in ends if n not in self.known and n != supply and not self._switching(n)]
+        unknown = [n for n in ends if n not in self.known and n != supply and not self._switching(n)]
+        driven = [n for n in unknown if not self._pulses(n)]
         converted = [n for n in driven if self._is_power(n, "")]
         return tuple(rails or converted or driven)
+
+    def _pulses(self, net: str) -> bool:
+        """Tell whether a winding is rectified onto a net without a capacitor: a current signal."""
+        parts = [connection.part for connection in self.circuit.connections(net)]
+        diodes = [part for part in parts if self.circuit.kind(part) == "diode"]
+        sources = {other for diode in diodes for other in self.circuit.other_nets(diode, net)}
+        wound = any("transformer" in self._kinds(source) for source in sources)
+        return wound and self._kinds(net).isdisjoint(_SMOOTHING)
+
+    def _kinds(self, net: str) -> set[str]:
+        return {self.circuit.kind(connection.part) for connection in self.circuit.connections(net)}
 
     def _switching(self, net: str) -> bool:
         roles = ("output 1 collector", "output 1 emitter", "output 2 collector", "output 2 emitter")

@@ -279,8 +279,16 @@ def test_amplifiers_tied_off_by_resistors_are_no_broken_dividers(ask: Ask, pump:
     tied = "PLUS REF COMP DTC CT RT 0 DRN 0 0 DRN VBAT 0 REF REF PLUS 494"
     changes = dict.fromkeys(("R4", "R5", "R6", "R7", "R8", "R9", "R10", "R11", "C3"))
     (verdict,) = ask("feedback.complete", pump("R20 PLUS 0 10k", U1=tied, **changes))
-    assert verdict.outcome is Outcome.OPEN
-    assert verdict.needs == ('brief: [controllers.U1] output = "..."',)
+    assert verdict.outcome is Outcome.INFORMATIONAL
+    assert verdict.message == "no amplifier of U1 is meant to regulate a voltage"
+
+
+def test_an_input_that_an_opto_coupler_drives_is_for_a_person(ask: Ask, pump: Board) -> None:
+    """False alarm guarded against: the resistor to ground is the opto-coupler's load."""
+    board = pump("U2 LED SG FB REF 817", "J3 LED SG SECONDARY", R6=None)
+    (verdict,) = ask("feedback.complete", board, brief='[controllers.U1]\noutput = "VOUT"\n')
+    assert verdict.outcome is Outcome.REVIEW
+    assert verdict.message == "amplifier 1 follows U2: what is regulated there is not computed"
 
 
 def test_an_output_that_no_amplifier_senses_is_for_a_person(ask: Ask, pump: Board) -> None:

@@ -56,6 +56,21 @@ def test_a_divider_on_the_controllers_supply_fails(ask: Ask, pump: Board) -> Non
     assert verdict.message == "1IN+ senses VBAT, the controller's supply"
 
 
+def test_an_amplifier_beside_the_regulating_one_may_watch_the_input(ask: Ask, pump: Board) -> None:
+    """False alarm guarded against: it shortens the pulse where a solar panel gives way."""
+    panel = {
+        "U1": "FB SET COMP DTC CT RT 0 DRN 0 0 DRN VBAT 0 REF PANEL SET 494",
+        "R9": "VBAT PANEL 54.9k 1%",
+        "R10": "PANEL 0 10k 1%",
+        "R11": "COMP CP 47k",
+        "C9": "CP PANEL 47n",
+    }
+    brief = '[rails.VBAT]\nvoltage = "15 V .. 23 V"\n[controllers.U1]\noutput = "VOUT"\n'
+    (verdict,) = ask("feedback.sense-point", pump(**panel), brief=brief)
+    assert (verdict.outcome, verdict.message) == (Outcome.PASS, "1IN+ senses VOUT")
+    assert ask("amplifier.unused", pump(**panel), brief=brief) == []
+
+
 def test_an_unused_amplifier_tied_to_the_reference_senses_nothing(ask: Ask, pump: Board) -> None:
     """False alarm guarded against: the reference and ground are no wrong points."""
     unused = "FB SET COMP DTC CT RT 0 DRN 0 0 DRN VBAT 0 REF REF 0 494"

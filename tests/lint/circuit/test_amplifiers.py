@@ -28,6 +28,21 @@ class TestUses:
         u1 = "U1 SENSE SET COMP DTC CT RT 0 DRIVE 0 0 DRIVE VCC MODE VREF VREF 0 494"
         assert amplifiers(fan_of(U1=u1, R5="", R6=""))[1].use == "unused"
 
+    def test_what_another_part_drives_is_a_signal(self, fan_of: FanOf):
+        first = amplifiers(fan_of(R8="U9 X1 X2 SENSE VREF 817"))[0]
+        assert (first.use, first.driven_by) == ("signal", ("U9",))
+
+    def test_a_rectified_winding_without_a_capacitor_is_a_signal(self, fan_of: FanOf):
+        u1 = "U1 SENSE SET COMP DTC CT RT 0 DRIVE 0 0 DRIVE VCC MODE VREF LIMIT PULSES 494"
+        lines = ("T1 SW2 SW3 W1 W2", "D8 W1 PULSES DX", "D9 W2 PULSES DX", "R14 PULSES 0 10")
+        more = {line.split()[0]: line for line in lines}
+        second = amplifiers(fan_of(U1=u1, **more))[1]
+        assert (second.use, second.driven_by) == ("signal", ("D8", "D9"))
+
+    def test_in_plus_at_ground_is_tied_off_whatever_is_at_the_other(self, fan_of: FanOf):
+        u1 = "U1 SENSE SET COMP DTC CT RT 0 DRIVE 0 0 DRIVE VCC MODE VREF AUX 0 494"
+        assert amplifiers(fan_of(U1=u1, J9="J9 AUX 0 X"))[1].use == "unused"
+
     def test_through_a_trimmer(self, fan_of: FanOf):
         lines = {"R8": "R8 FAN T 4.7k", "RV": "RV1 T SENSE B 1k", "R9": "R9 B 0 4.7k"}
         assert amplifiers(fan_of(**lines))[0].output == "FAN"
