@@ -12,6 +12,7 @@ from ..lint.circuit.controllers import Controller
 from ..lint.circuit.diodes import diode_nets, zener_voltage
 from ..lint.circuit.outputs import OutputTransistor
 from ..lint.circuit.parts import defaults
+from ..lint.circuit.potentials import Potential
 from ..lint.controllers import Profile
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
@@ -270,6 +271,9 @@ def _unclamped(outputs: list[OutputTransistor], winding: str) -> Verdict:
 
 def _highest(controller: Controller, design: Design, collector: str) -> Estimate | None:
     """Return the greatest known potential above ground that direct current can bring to a collector."""
+    own = design.potential(collector)
+    if own is not None or collector == controller.net("supply"):
+        return _at(own, collector) if own is not None else None  # nothing lifts it above its own supply
     transistors = design.output_drive(controller).drive.transistors
 
     def is_known(net: str) -> bool:
@@ -281,11 +285,16 @@ def _highest(controller: Controller, design: Design, collector: str) -> Estimate
             continue
         arrives = partial(eq, net)
         way = path(design.circuit, transistors, collector, arrives, controller.reference, is_known)
-        if net == collector or way is Path.YES:
-            assumptions = (potential.assumption,) if potential.assumption else ()
-            nets = tuple(dict.fromkeys((collector, net)))
-            best = Estimate(potential.spread, potential.spread, nets=nets, assumptions=assumptions)
+        if way is Path.YES:
+            best = _at(potential, collector)
     return best
+
+
+def _at(potential: Potential, collector: str) -> Estimate:
+    """Return a potential that arrives at a collector."""
+    assumptions = (potential.assumption,) if potential.assumption else ()
+    nets = tuple(dict.fromkeys((collector, potential.net)))
+    return Estimate(potential.spread, potential.spread, nets=nets, assumptions=assumptions)
 
 
 @rule("output-stage.dissipation", level="error", topic=_TOPIC)

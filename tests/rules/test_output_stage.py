@@ -151,6 +151,15 @@ def test_a_higher_rail_behind_a_pull_up_counts(ask: Ask) -> None:
     assert "60.0 V" in verdict.message
 
 
+def test_a_followers_collector_sees_its_own_supply_and_nothing_beyond(ask: Ask) -> None:
+    """False alarm guarded against: through a driver and a drive transformer it led to the bridge's 320 V."""
+    parts = ("VHI VHI 0 320", "R16 D1 0 1k", "Q1 VBAT D1 P QN", "T1 P 0 G SW DRIVE", "M1 VHI G SW NM")
+    (verdict,) = ask("output-stage.voltage", board("VBAT D1 NC3 NC2", parts))
+    assert verdict.outcome is Outcome.PASS
+    assert verdict.measured is not None
+    assert verdict.measured.nominal == 24
+
+
 def test_a_winding_without_a_clamp_is_for_a_person(ask: Ask) -> None:
     (verdict,) = ask("output-stage.voltage", board("D1 0 NC3 NC2", ("L1 VBAT D1 1m",)))
     assert verdict.outcome is Outcome.REVIEW
