@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import stat
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
@@ -55,15 +56,28 @@ def read_bytes(
 
 def _bytes_of(path: Path) -> bytes:
     try:
+        _refuse_endless(path)
         return path.read_bytes()
     except OSError as error:
         raise NetlistError(
             _REASONS.get(type(error), f"cannot be read: {error.strerror}"),
             Place(str(path), 0, 0),
-            expected="a netlist file: EDIF 2 0 0 or a SPICE-style list",
+            expected=_EXPECTED,
             remedy="check the path and the permission to read it",
         ) from error
 
+
+def _refuse_endless(path: Path) -> None:
+    """Raise NetlistError for a path, or a link, that leads to a device or to a file beyond all size."""
+    status = path.stat()
+    device = stat.S_ISCHR(status.st_mode) or stat.S_ISBLK(status.st_mode)
+    if device or status.st_size > _LARGEST_FILE:
+        message = "this is a device" if device else f"the file is larger than {_LARGEST_FILE:,} bytes"
+        raise NetlistError(message, Place(str(path), 0, 0), expected=_EXPECTED, remedy="name the right file")
+
+
+_LARGEST_FILE = 500_000_000
+_EXPECTED = "a netlist file: EDIF 2 0 0 or a SPICE-style list"
 
 _REASONS: dict[type[OSError], str] = {
     FileNotFoundError: "there is no such file",

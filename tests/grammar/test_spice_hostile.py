@@ -9,8 +9,10 @@ from __future__ import annotations
 import json
 import subprocess
 import sys
+from pathlib import Path
 
 import pytest
+from pwmlint.grammar import read
 from pwmlint.grammar.errors import NetlistError
 from pwmlint.grammar.netlist import Place
 from pwmlint.grammar.spice import read_spice
@@ -148,3 +150,20 @@ def test_a_number_that_is_none_is_an_error_with_its_place(value: str) -> None:
 def test_a_nul_character_is_refused() -> None:
     with pytest.raises(NetlistError, match="NUL"):
         read_spice("t\nR1 a\0 b 1\n", "x.cir")
+
+
+def test_a_link_to_a_device_without_end_is_refused(tmp_path: Path) -> None:
+    (tmp_path / "hive.cir").symlink_to("/dev/zero")
+    with pytest.raises(NetlistError, match="this is a device") as refused:
+        read(tmp_path / "hive.cir")
+    assert (refused.value.expected, refused.value.remedy) == (
+        "a netlist file: EDIF 2 0 0 or a SPICE-style list",
+        "name the right file",
+    )
+
+
+def test_a_file_beyond_all_size_is_refused_before_it_is_read(tmp_path: Path) -> None:
+    with (tmp_path / "hive.cir").open("wb") as stream:
+        stream.truncate(500_000_001)  # a hole: nothing is written
+    with pytest.raises(NetlistError, match="larger than 500,000,000 bytes"):
+        read(tmp_path / "hive.cir")
