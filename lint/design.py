@@ -11,6 +11,7 @@ from difflib import get_close_matches
 from typing import TypeVar, cast
 
 from ..grammar.netlist import Netlist, Part, Place
+from . import needs
 from .brief import Brief, BriefError, ControllerBrief, Rail
 from .circuit.amplifiers import Amplifier, Reach
 from .circuit.compensation import Compensation, compensation
@@ -90,7 +91,7 @@ class Design:
         told = self.told(controller)
         if told is not None and getattr(told, need) is not None:
             return ""
-        return f'brief: [controllers.{controller.reference}] {need} = "..."'
+        return needs.controller(controller.reference, need)
 
     # What the circuit does
 

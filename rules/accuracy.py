@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 
+from ..lint import needs
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.loops import Regulation
 from ..lint.design import Design
@@ -57,7 +58,7 @@ def needed_accuracy(controller: Controller, design: Design) -> Iterable[Verdict]
     rail = design.rail(output)
     told = rail.deviation if rail is not None else None
     if told is None:
-        need = f'brief: [rails.{output}] tolerance = "..."'
+        need = needs.rail(output, "tolerance", declared=rail is not None)
         yield Verdict(outcome=Outcome.OPEN, message=f"accuracy of {output}: no tolerance told", needs=(need,))
         return
     if found.trimmers:

@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from dataclasses import replace
 
 from ..grammar.netlist import Part
+from ..lint import needs
 from ..lint.circuit.envelope import IN_REGULATION
 from ..lint.circuit.parts import Rating
 from ..lint.circuit.stress import Stress
@@ -150,7 +151,7 @@ def _untold(design: Design, unrated: list[str]) -> Iterator[Verdict]:
         return
     about = [f"no voltage rating is told of {some(unrated)}"] if unrated else []
     about += [f"the voltage across {some(list(blind))} is not known"] if blind else []
-    rails = dict.fromkeys(f'brief: [rails.{net}] voltage = "..."' for nets in blind.values() for net in nets)
+    rails = dict.fromkeys(needs.rail(net) for nets in blind.values() for net in nets)
     yield Verdict(
         outcome=Outcome.OPEN,
         message="; ".join(about),

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 
+from ..lint import needs
 from ..lint.circuit.amplifiers import Amplifier
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.regimes import Regime
@@ -176,7 +177,7 @@ def common_mode(controller: Controller, design: Design) -> Iterable[Verdict]:
     if voltage is None:
         return
     if isinstance(voltage, Unsolved):
-        yield missing(f'brief: [rails.{supply}] voltage = "..."', "common-mode range of the amplifiers")
+        yield missing(needs.rail(supply or ""), "common-mode range of the amplifiers")
         return
     low = controller.profile.figure("amplifier.common-mode-low")
     headroom = controller.profile.figure("amplifier.common-mode-headroom").minimum or 0.0

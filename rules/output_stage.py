@@ -7,6 +7,7 @@ from dataclasses import replace
 from functools import partial
 from operator import eq
 
+from ..lint import needs
 from ..lint.circuit.conduction import Path, path
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.diodes import diode_nets, zener_voltage
@@ -207,7 +208,7 @@ def voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
         if found is not None:
             yield _voltage_verdict(controller, outputs, found)
         elif _path(controller, design, collector, "a supply") is Path.YES:
-            need = f'brief: [rails.{controller.net("supply")}] voltage = "..."'
+            need = needs.rail(controller.net("supply") or "")
             message = f"voltage at the collector of {_named(outputs)}: its supply is not known"
             yield Verdict(outcome=Outcome.OPEN, message=message, nets=(collector,), needs=(need,))
 

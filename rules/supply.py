@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 
+from ..lint import needs
 from ..lint.circuit.controllers import Controller
 from ..lint.design import Design
 from ..lint.estimate import Unsolved
@@ -45,7 +46,7 @@ def supply_range(controller: Controller, design: Design) -> Iterable[Verdict]:
         return  # connections.pin-open or connections.controller-found speaks of it
     voltage = design.voltage(net)
     if isinstance(voltage, Unsolved):
-        need = f'brief: [rails.{net}] voltage = "..."'
+        need = needs.rail(net)
         reason = f"neither the brief, a source nor the name tells the voltage of net {net}"
         yield unsolved(Unsolved(reason, nets=(net,), needs=(need,)), "supply voltage", pins=_PIN)
         return
@@ -86,7 +87,7 @@ def _by_name_only(verdict: Verdict, net: str, design: Design) -> Verdict:
     assert verdict.measured is not None
     if not verdict.limit.holds(verdict.measured.nominal):
         return verdict
-    need = f'brief: [rails.{net}] voltage = "..."'
+    need = needs.rail(net)
     return replace(verdict, outcome=Outcome.REVIEW, level=None, needs=(need,))
 
 

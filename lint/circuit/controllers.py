@@ -13,6 +13,7 @@ from types import MappingProxyType
 
 from ...grammar.netlist import Netlist, Part, Place
 from ..controllers import Profile, generic_number, load, plain_name
+from ..needs import toml_key
 
 # A part with fewer pins (a resistor of value 494) is no controller, whatever its name.
 _LEAST_PINS = 8
@@ -294,7 +295,7 @@ class _Mapping:
     def _remedy(self) -> str:
         first, second, *_ = self._profile.pins
         return (
-            f"add to the brief, under [controllers.{_toml_key(self._part.reference)}]: "
+            f"add to the brief, under [controllers.{toml_key(self._part.reference)}]: "
             f'pins = ["{first.name}", "{second.name}", ...] with one name or number for each of the '
             f"{len(self._part.pins)} nodes, in the netlist's order"
         )
@@ -304,9 +305,3 @@ def _listed(names: list[str]) -> str:
     """Return names as a sentence lists them: "A, B and C"."""
     *first, last = names
     return f"{', '.join(first)} and {last}" if first else last
-
-
-def _toml_key(reference: str) -> str:
-    """Return a reference designator as a TOML key, quoted where a path or a mark demands it."""
-    bare = reference.isascii() and reference.replace("_", "").replace("-", "").isalnum()
-    return reference if bare else f'"{reference}"'

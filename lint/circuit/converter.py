@@ -9,6 +9,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
 
+from .. import needs
 from ..brief import ControllerBrief, Rail
 from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
@@ -122,7 +123,7 @@ class Converter:
             return Unsolved(
                 f"amplifier {amplifier.number} reaches several nets: {', '.join(amplifier.outputs)}",
                 nets=amplifier.outputs,
-                needs=(f'brief: [controllers.{reference}] output = "..."',),
+                needs=(needs.controller(reference, "output"),),
             )
         return self._loops.regulation(amplifier)
 

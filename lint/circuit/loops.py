@@ -12,6 +12,7 @@ from math import inf, isinf
 
 import numpy as np
 
+from .. import needs
 from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
 from .amplifiers import Amplifier, SenseResistor
@@ -155,7 +156,7 @@ class Loops:
             return Unsolved(
                 f"net {sense.far} has no known potential",
                 nets=(sense.far,),
-                needs=(f'brief: [rails.{sense.far}] voltage = "..."',),
+                needs=(needs.rail(sense.far),),
             )
         condition = self._inputs_equal(growth, amplifier)
         found = _trip(growth, resistor, FreeCurrent("load", sense.far, sense.near), condition)

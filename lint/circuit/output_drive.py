@@ -10,6 +10,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from .. import needs
 from ..estimate import Estimate, Unsolved
 from ..quantity import Spread
 from .answers import Probe, estimate
@@ -193,7 +194,7 @@ class OutputDrive:
         supply = self.controller.net("supply")
         if not supply or supply in self.known:
             return None
-        need = f'brief: [rails.{supply}] voltage = "..."'
+        need = needs.rail(supply)
         return Unsolved(f"the voltage of {supply} is not known", nets=(supply,), needs=(need,))
 
     def _stranger(self, output: OutputTransistor) -> Unsolved | None:

@@ -23,11 +23,16 @@ class ReferenceLoad:
     total:    current out of the pin's net, in A
     branches: (part or pin, current in A) of everything on the net, the greatest first
     unknown:  parts on the net whose current cannot be told, each as a sentence
+    bounded:  nets that resistors lead to and whose potential cannot be computed: taken anywhere between
+              ground and the reference
+    certain:  the total with nothing drawn from these nets; the total itself where there are none
     """
 
     total: Estimate
     branches: tuple[tuple[str, Estimate], ...]
     unknown: tuple[str, ...]
+    bounded: tuple[str, ...]
+    certain: Estimate
 
 
 def reference_load(
@@ -44,10 +49,11 @@ def reference_load(
     net = controller.net("reference")
     if not net:
         return Unsolved(f"the reference pin of {controller.reference} is not mapped or hangs open")
-    potentials = dict(known)
+    potentials, bounded = dict(known), dict[str, Potential]()
     growth = Growth(circuit, potentials, controllers).grow(net, from_known=True)
     while growth.blocked:
-        potentials.update(_bounded(growth, potentials[net]))
+        bounded |= _bounded(growth, potentials[net])
+        potentials |= bounded
         growth = Growth(circuit, potentials, controllers).grow(net, from_known=True)
     elements = [element for element in growth.elements.values() if net in (element.a, element.b)]
     probes: dict[str, tuple[Probe, str]] = {"total": (lambda s: s.current_out_of(net), "A")}
@@ -56,8 +62,13 @@ def reference_load(
     if isinstance(found, Unsolved):
         return found
     total = found.pop("total")
+    open_ended = Growth(circuit, known, controllers, frozenset(bounded)).grow(net, from_known=True)
+    certain = estimate(open_ended, {"total": probes["total"]}) if bounded else {"total": total}
+    if isinstance(certain, Unsolved):
+        return certain
     branches = sorted(found.items(), key=lambda item: (-item[1].spread.maximum, item[0]))
-    return ReferenceLoad(total, tuple(branches), _unknown(growth, controllers, net))
+    unknown = _unknown(growth, controllers, net)
+    return ReferenceLoad(total, tuple(branches), unknown, tuple(bounded), certain["total"])
 
 
 def _bounded(growth: Growth, reference: Potential) -> dict[str, Potential]:

@@ -72,16 +72,17 @@ def test_wide_resistors_are_named_for_a_tight_reference(ask: Ask) -> None:
 
 
 @pytest.mark.parametrize(
-    "brief",
+    ("rail", "keys"),
     [
-        pytest.param('[controllers.U1]\noutput = "OUT"\n', id="no rail"),
-        pytest.param('[rails.OUT]\nvoltage = "5 V"\n[controllers.U1]\noutput = "OUT"\n', id="no tolerance"),
+        pytest.param("", 'voltage = "...", tolerance = "..."', id="no rail"),
+        pytest.param('[rails.OUT]\nvoltage = "5 V"\n', 'tolerance = "..."', id="no tolerance"),
     ],
 )
-def test_without_a_tolerance_it_is_open(ask: Ask, brief: str) -> None:
+def test_without_a_tolerance_it_is_open(ask: Ask, rail: str, keys: str) -> None:
+    brief = f'{rail}[controllers.U1]\noutput = "OUT"\n'
     (verdict,) = ask("reference.needed-accuracy", board(), brief=brief)
     assert verdict.outcome is Outcome.OPEN
-    assert verdict.needs == ('brief: [rails.OUT] tolerance = "..."',)
+    assert verdict.needs == (f"brief: [rails.OUT] {keys}",)
 
 
 def test_an_output_that_is_set_on_the_bench_is_not_asked(ask: Ask) -> None:

@@ -98,7 +98,7 @@ def test_an_unknown_part_leaves_the_load_open_until_the_brief_tells_it(ask: Ask)
     netlist = board("U7 VREF SET 0 GAUGE")
     (verdict,) = ask("reference.load", netlist)
     assert verdict.outcome is Outcome.OPEN
-    assert verdict.needs == ('brief: [rails.VREF] load = "..."',)
+    assert verdict.needs == ('brief: [rails.VREF] voltage = "...", load = "..."',)
     assert "U7" in verdict.message
     told = '[rails.VREF]\nvoltage = "5 V"\nload = "1 mA .. 2 mA"\n'
     (verdict,) = ask("reference.load", netlist, brief=told)
@@ -107,6 +107,19 @@ def test_an_unknown_part_leaves_the_load_open_until_the_brief_tells_it(ask: Ask)
     assert verdict.measured.maximum > 2.5e-3
     assert any("parts other than resistors" in assumption for assumption in verdict.assumptions)
     (verdict,) = ask("reference.load", netlist, brief=told.replace("2 mA", "12 mA"))
+    assert verdict.outcome is Outcome.FAIL
+
+
+def test_a_branch_that_leaves_the_board_is_open_where_only_its_other_end_decides(ask: Ask) -> None:
+    """False alarm guarded against: a thermostat's pull-up through a connector, taken as shorted to ground."""
+    (verdict,) = ask("reference.load", board("R20 VREF HOT 100", "J3 HOT LIFT THERMOSTAT"))
+    assert verdict.outcome is Outcome.OPEN
+    assert verdict.needs == ('brief: [rails.HOT] voltage = "..."',)
+    assert verdict.message.endswith("the most only if something pulls HOT to ground")
+    told = '[rails.HOT]\nvoltage = "4.6 V .. 5 V"\n'
+    (verdict,) = ask("reference.load", board("R20 VREF HOT 100", "J3 HOT LIFT THERMOSTAT"), brief=told)
+    assert verdict.outcome is Outcome.PASS
+    (verdict,) = ask("reference.load", board("R20 VREF 0 330", "R21 VREF HOT 100", "J3 HOT LIFT THERMOSTAT"))
     assert verdict.outcome is Outcome.FAIL
 
 

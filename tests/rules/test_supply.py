@@ -94,11 +94,11 @@ def test_a_name_tells_the_voltage_as_an_assumption(ask: Ask) -> None:
     assert any("by its name" in assumption for assumption in verdict.assumptions)
 
 
-@pytest.mark.parametrize("net", ["+40V", "7V0"])
-def test_a_spread_that_only_a_name_suggests_is_for_a_person_to_judge(ask: Ask, net: str) -> None:
+@pytest.mark.parametrize(("net", "key"), [("+40V", '"+40V"'), ("7V0", "7V0")])
+def test_a_spread_that_only_a_name_suggests_is_for_a_person_to_judge(ask: Ask, net: str, key: str) -> None:
     (verdict,) = ask("supply.range", board(supply=net))
     assert (verdict.outcome, verdict.level) == (Outcome.REVIEW, None)
-    assert verdict.needs == (f'brief: [rails.{net}] voltage = "..."',)
+    assert verdict.needs == (f'brief: [rails.{key}] voltage = "..."',)
 
 
 def test_a_name_whose_nominal_voltage_is_outside_fails(ask: Ask) -> None:

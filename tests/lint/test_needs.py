@@ -1,0 +1,22 @@
+"""What an open verdict asks for can be written into a brief as it stands."""
+
+from __future__ import annotations
+
+import tomllib
+
+import pytest
+from pwmlint.lint import needs
+
+NAMES = ["VOUT", "mast_5V-2", "+12V", "psu/U1", "N$12", "Net-(U1-Pad3)", "a.b", 'a "b"', "A\\B", "été"]
+
+
+@pytest.mark.parametrize("name", NAMES)
+def test_every_name_is_a_key_of_a_table(name: str) -> None:
+    table, line = needs.controller(name, "output").removeprefix("brief: ").split("] ")
+    assert tomllib.loads(f"{table}]\n{line}\n") == {"controllers": {name: {"output": "..."}}}
+
+
+def test_a_rail_is_asked_for_with_its_voltage() -> None:
+    assert needs.rail("VOUT", "load") == 'brief: [rails.VOUT] voltage = "...", load = "..."'
+    assert needs.rail("VOUT", "load", declared=True) == 'brief: [rails.VOUT] load = "..."'
+    assert needs.rail("+12V", "voltage") == 'brief: [rails."+12V"] voltage = "..."'
