@@ -8,6 +8,7 @@ from math import isfinite
 
 import numpy as np
 
+from .. import needs
 from ..estimate import Estimate, Method, Unsolved
 from .growth import Growth
 from .linear import Array
@@ -93,7 +94,7 @@ def _obstacle(growth: Growth) -> Unsolved | None:
         reason="no potential can be computed for " + "; ".join(reasons),
         parts=tuple(dict.fromkeys(blocked.part for blocked in growth.blocked)),
         nets=tuple(nets),
-        needs=tuple(f'brief: [rails.{net}] voltage = "..."' for net in nets),
+        needs=tuple(needs.rail(net) for net in nets),
     )
 
 
