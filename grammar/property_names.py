@@ -25,8 +25,9 @@ class Meaning(NamedTuple):
 
 
 class FitWords(NamedTuple):
-    """Words about whether a part is fitted; see property_names.toml."""
+    """Words about whether a part is fitted; see property_names.toml. `single`: those of `anywhere` alone."""
 
+    single: frozenset[str]
     anywhere: re.Pattern[str]
     alone: frozenset[str]
     yes: frozenset[str]
@@ -73,6 +74,7 @@ def fit_words() -> FitWords:
     table = _table()["fit"]
     anywhere = "|".join(r"\s+".join(map(re.escape, words.split())) for words in table["anywhere"])
     return FitWords(
+        frozenset(words for words in table["anywhere"] if " " not in words),
         re.compile(rf"(?<![^\W_])(?:{anywhere})(?![^\W_])", re.IGNORECASE),
         frozenset(table["alone"]),
         frozenset(table["yes"]),

@@ -31,6 +31,7 @@ class Element:
                 a copy for each of many parts would be the largest thing kept of them
     first:      index among the line's positional words of the first node
     assumption: what the line leaves open and was decided here, else empty
+    fitted:     False where the last word of the line says that the part is left out, as DNP does
     places:     of the nodes, once they were sought for a long line
     """
 
@@ -45,6 +46,7 @@ class Element:
     first: int = 1
     assumption: str = ""
     places: list[Place] | None = None
+    fitted: bool = True
 
     @property
     def line(self) -> Line:
@@ -104,7 +106,7 @@ PREFIXES = {
     **dict.fromkeys(("JP", "KL", "LS", "MH", "MOV", "MT", "OC", "OK", "OPT", "PC", "RL", "RN"), ""),
     **dict.fromkeys(("SW", "TP", "TR"), ""),
 }
-_ONE_NODE = ("TP", "MH", "MT", "FID", "HS")
+_ONE_NODE = frozenset(("TP", "MH", "MT", "MP", "H", "FID", "HS"))
 
 _SHAPES = {
     "D": "anode, cathode and a model",
@@ -179,13 +181,21 @@ def made(
     return Element(texts[0], letter, there, value, model, attributes, place, line.source, 1, assumption)
 
 
+def has_one_node(words: Words) -> bool:
+    """Return whether the line is that of a test point, a hole or the like: one node, and perhaps a model."""
+    return len(words.texts) in (2, 3) and prefix_of(words) in _ONE_NODE
+
+
 def part(words: Words, letter: str = "") -> Element:
     """Read a part of any kind: its nodes, then its model, or its value where it has no letter."""
     texts = words.texts
-    if len(texts) == 2 and prefix_of(words) in _ONE_NODE:
+    one = has_one_node(words)
+    if one and len(texts) == 2:
         return made(words, letter, 1)
     if len(texts) < 3:
         too_few(words, letter)
+    if len(texts) == 3 and not one and letter != "A":
+        return made(words, letter, 2, assumption="two words: taken as two nodes, without a model")
     last = texts[-1]
     if not letter and is_value(last):
         return made(words, letter, len(texts) - 2, value=last)

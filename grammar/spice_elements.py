@@ -12,10 +12,12 @@ from collections.abc import Callable, Collection
 from functools import lru_cache
 
 from .errors import NetlistError
+from .property_names import fit_words
 from .spice_element import (
     NOTHING,
     PREFIXES,
     Element,
+    has_one_node,
     is_value,
     made,
     part,
@@ -31,6 +33,7 @@ from .spice_words import Words, split
 from .values import ValueTextError, read_value
 
 _RATING = re.compile(r"[+-]?\d+(?:[.,/]\d+)?(?:%|[a-zA-Z]*W|V|ppm)", re.IGNORECASE)
+_APART = re.compile(r"(?:meg|[kmunpµμ])?(?:ohms?|[ΩΩFH])|meg|k", re.IGNORECASE)  # 10 k, 100 uH
 _TRIMMER = re.compile(r"(?:RV|VR|P|POT|TRIM)\d", re.IGNORECASE)
 _NUMBER_BEGINS = frozenset("0123456789.+-")
 _LIBRARY_FILE = re.compile(r".*[.](?:lib|sub|spi|sp|inc|mod|cir|ckt)", re.IGNORECASE)
@@ -45,13 +48,23 @@ def read_element(line: Line, models: Collection[str]) -> Element:
     words = split(line, exact=letter in _NEED_INDEXES)
     if not words.texts or not words.texts[0][0].isalpha():
         raise _neither(line)
-    element = _READERS.get(words.texts[0][0].upper(), _unknown)(words, models)
+    last = words.texts[-1].casefold()
+    fitted = last not in fit_words().single or last in models
+    if not fitted and len(words.texts) > _WITH_VALUE:
+        words = words._replace(texts=words.texts[:-1], indexes=words.indexes[:-1])
+    if has_one_node(words):
+        element = part(words)
+    else:
+        element = _READERS.get(words.texts[0][0].upper(), _unknown)(words, models)
+    element.fitted = fitted
     quantity = _QUANTITIES.get(element.letter)
     if quantity and (unreadable := _unreadable(element.value, quantity)):
         index = max(0, line.text.rfind(element.value.split()[0]))
         raise line.error(index, *unreadable, "correct the value")
     return element
 
+
+_WITH_VALUE = 4  # words of the shortest line that has a value or a model: a reference and two nodes before it
 
 # What the value of a letter measures.
 _QUANTITIES = {"R": "resistance", "C": "capacitance", "L": "inductance"}
@@ -113,13 +126,13 @@ def _two_nodes(words: Words, models: Collection[str]) -> Element:
 
 
 def _valued(words: Words, letter: str, value: str = "", model: str = "") -> Element:
-    """Make a part whose value may stand as `R=`, `C=` or `L=` at the end."""
+    """Make a part whose value may stand as `R=`, `C=`, `L=` or `value=` at the end."""
     element = made(words, letter, 2, value, model)
-    named = letter.casefold()
-    if named in element.attributes and not value:
-        attributes = dict(element.attributes)
-        element.value = attributes.pop(named)
-        element.attributes = attributes or NOTHING
+    for named in (letter.casefold(), "value"):
+        if named in element.attributes and not element.value:
+            attributes = dict(element.attributes)
+            element.value = attributes.pop(named)
+            element.attributes = attributes or NOTHING
     return element
 
 
@@ -133,10 +146,18 @@ def _long_two_nodes(words: Words, letter: str, models: Collection[str]) -> Eleme
         return made(words, letter, 2, value=third, model=fourth)
     if is_value(third) and (not third.isdigit() or _RATING.fullmatch(fourth)):
         return made(words, letter, 2, value=f"{third} {rest}")
+    if third.isdigit() and f" {third},{fourth}" in words.line.text:
+        # A decimal comma, between nodes that blanks part: kept, for who reads the value to say so.
+        return made(words, letter, 2, value=f"{third},{rest}")
     trimmer = letter == "R" and (is_value(fourth) or _TRIMMER.match(texts[0]))
     if trimmer and all(_RATING.fullmatch(word) for word in texts[5:]):
         assumption = "" if _TRIMMER.match(texts[0]) else "three nodes and a value: taken as a trimmer"
         return made(words, letter, 3, value=rest, assumption=assumption)
+    if third.isdigit() and _APART.fullmatch(fourth):
+        return made(words, letter, 2, value=f"{third} {rest}")
+    if third.isdigit() and len(texts) == 5 and prefix_of(words) == letter:
+        assumption = f"{third} is taken as the value, {fourth} as its model or a remark"
+        return made(words, letter, 2, value=f"{third} {fourth}", assumption=assumption)
     return part(words, PREFIXES.get(prefix_of(words), ""))
 
 

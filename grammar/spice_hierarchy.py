@@ -7,6 +7,7 @@ from collections.abc import Callable, Sequence
 
 from .errors import NetlistError
 from .netlist import Netlist, Part
+from .property_names import leaves_out
 from .spice_blocks import Body, Definition, Item
 from .spice_element import Element
 from .spice_elements import read_element
@@ -24,6 +25,8 @@ DEEPEST = 50
 """Levels of subcircuits in subcircuits."""
 
 MOST_DUPLICATES = 1000
+
+_VALUED = frozenset("RCL")
 
 # Bytes, measured and rounded up, that a part without pins, a net and an empty instance take.
 _COST_OF_PART = 500
@@ -172,6 +175,12 @@ class Expansion:
         value, attributes = element.value, element.attributes
         if attributes or not value[:1].isdecimal():
             value, attributes = evaluated(element, level)
+        fitted = element.fitted
+        if element.letter in _VALUED and (not value[:1].isdecimal() or " " in value):
+            fitted = fitted and not leaves_out(value)
+        if not fitted:
+            message = f"{reference} is marked as not fitted, and left out of the circuit"
+            self._run.notes.add("not-fitted", message, element.place, reference)
         self._netlist.parts[reference] = Part(
             reference,
             element.letter,
@@ -181,6 +190,7 @@ class Expansion:
             element.place,
             attributes,
             pins_known,
+            fitted,
         )
 
     def _unique(self, element: Element, reference: str) -> str:

@@ -12,6 +12,7 @@ _WAVEFORM = re.compile(
     r"(?:dc|ac|pulse|sine?|exp|pwl|sffm|am|pat|tbl|trnoise|trrandom|wavefile|distof[12]|external)(?![^\W_])",
     re.IGNORECASE,
 )
+_DECIMAL_COMMA = re.compile(r",\d+[^\s,]*")
 _CONTROLLED = re.compile(r"(?:value|vol|cur|poly|table|laplace|freq|chebyshev|pwl)(?![^\W_])", re.IGNORECASE)
 _REGULATOR = re.compile(r"7[89]\d\d|[13]17|337")  # a VR1 with this number is no trimmer of 7805 ohm
 
@@ -28,6 +29,9 @@ def source(words: Words, models: Collection[str]) -> Element:
     attributes = attributes_of(words)
     value, at = _dc_value(texts, attributes.pop("dc", ""))
     waveform = [_raw(words, at, to_pairs=True)] if at < len(texts) else []
+    if waveform and (comma := _DECIMAL_COMMA.match(waveform[0])) and value.isdigit():
+        value += comma[0]  # kept, for who reads the value to say so
+        waveform = [waveform[0][comma.end() :].lstrip()] if comma.end() < len(waveform[0]) else []
     if "ac" in attributes:
         waveform.append(f"AC {attributes.pop('ac')}")
     if waveform:
@@ -55,6 +59,8 @@ def _not_a_source(words: Words) -> Element | None:
     prefix = prefix_of(words)
     if len(texts) < 4 or _WAVEFORM.match(texts[3]):
         return None
+    if prefix == "VD":
+        return None if is_value(texts[3]) else part(words, "D")
     if prefix == "VR" and len(texts) == 5:
         if is_value(texts[4]) and not _REGULATOR.fullmatch(texts[4]):
             return made(words, "R", 3, value=texts[4])

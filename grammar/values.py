@@ -12,7 +12,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass, replace
-from functools import lru_cache
+from functools import cache, lru_cache
 from math import isfinite
 from typing import NamedTuple
 
@@ -124,10 +124,15 @@ class _Refusal(NamedTuple):
 def _read(text: str, quantity: str, spice: bool) -> Value | _Refusal:
     if len(text) > _LONGEST_TEXT:
         return _Refusal(f"a text of {len(text)} characters is too long for a value", 1)
-    found, beside = _facts(words(text, "" if spice else quantity), quantity, spice)
+    apart = _apart(quantity).match(text) if spice else None
+    whole = f"{apart[1]}{apart[2]}{text[apart.end() :]}" if apart else text
+    found, beside = _facts(words(whole, "" if spice else quantity), quantity, spice)
     if found is None:
         return _Refusal(_nothing_found(text, quantity, beside), _column(text))
     ambiguous = found.ambiguous or _comma_trap(text, spice)
+    if apart and not ambiguous:
+        ambiguous = f'"{apart[0].strip()}" is taken as {found.number:g} {UNITS[quantity]}: a simulator ends '
+        ambiguous += "the value at the blank"
     value = Value(found.number, UNITS[quantity], found.tolerance, ambiguous=ambiguous)
     for fact in beside:
         value = _with(value, fact)
@@ -198,6 +203,13 @@ def _nothing_found(text: str, quantity: str, beside: list[Fact]) -> str:
     if any(isinstance(fact, Bare) for fact in beside) and quantity in ("capacitance", "inductance"):
         return f"{_short(text)} gives the {quantity} without a unit"
     return f"no {quantity} in {_short(text)}"
+
+
+@cache
+def _apart(quantity: str) -> re.Pattern[str]:
+    """Return the pattern of a number and, behind a blank, its scale: to a simulator two words."""
+    unit = {"resistance": "ohms?|Ω|Ω", "capacitance": "F", "inductance": "H"}.get(quantity, "(?!)")
+    return re.compile(rf"\s*([0-9.]+)\s+((?:meg|[tgkmunpµμ])(?:{unit})?)(?![^\s,])", re.IGNORECASE)
 
 
 def _comma_trap(text: str, spice: bool) -> str:

@@ -210,7 +210,7 @@ def value_ambiguous(design: Design) -> Iterable[Verdict]:
     codes = [reference for reference in doubtful if _drops_digits(design.part(reference).value)]
     for reference, value in doubtful.items():
         if reference not in codes:
-            yield _trap(reference, value)
+            yield _trap(design.part(reference), value)
     if codes:
         yield Verdict(
             outcome=Outcome.INFORMATIONAL,
@@ -226,12 +226,19 @@ def value_ambiguous(design: Design) -> Iterable[Verdict]:
 _MARKING_CODE = re.compile(r"\d*[a-ln-z]+\d+\w*", re.IGNORECASE)
 
 
+# A decimal comma, or a blank before the scale.
+_CUT = re.compile(r"\d,\d|\d\s+[a-zµ]", re.IGNORECASE)
+
+
 def _drops_digits(text: str) -> bool:
     return _MARKING_CODE.fullmatch(text.strip()) is not None
 
 
-def _trap(reference: str, value: Value) -> Verdict:
+def _trap(part: Part, value: Value) -> Verdict:
+    reference = part.reference
     remedy = {"ohm": "1MEG for mega, 1m for milli", "F": "1u or 1e-6, without the F"}.get(value.unit, "1e-3")
+    if _CUT.search(part.value):
+        remedy = "4.7k, with a point and without a blank"
     return Verdict(
         outcome=Outcome.FAIL,
         message=f"{reference}: {value.ambiguous}",

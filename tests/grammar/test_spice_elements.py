@@ -37,6 +37,7 @@ def shape(line: str, cards: str = MODELS) -> tuple[str, str, str, str]:
         ("R1 a b 10k", ("R", "a b", "10k", "")),
         ("R1 a b 4k7", ("R", "a b", "4k7", "")),
         ("R1 a b R=10k", ("R", "a b", "10k", "")),
+        ("R1 a b value=10k", ("R", "a b", "10k", "")),
         ("R1 a b RMOD", ("R", "a b", "", "RMOD")),
         ("R1 a b RMOD 10k", ("R", "a b", "10k", "RMOD")),
         ("R1 a b 10k RMOD", ("R", "a b", "10k", "RMOD")),
@@ -306,7 +307,7 @@ def test_instances(line: str) -> None:
         ("A1 [=1", ""),
         ("A1 [in] ~ gate", ("A", "in", "", "gate")),
         ("ZD1 a", ""),
-        ("DS1 gnd lamp", ("", "gnd", "", "lamp")),
+        ("DS1 gnd lamp", ("", "gnd lamp", "", "")),
         ("X1 a b {k=1} pump", ("X", "a", "", "b")),
         ("C1 a b c d", ("", "a b c", "", "d")),
     ],
@@ -357,6 +358,104 @@ def test_a_file_name_before_the_subcircuit_is_no_node() -> None:
 )
 def test_plain_lists(line: str, expected: tuple[str, ...]) -> None:
     assert shape(line) == expected
+
+
+@pytest.mark.construct("B3 a part of two nodes without a model")
+@pytest.mark.parametrize(
+    "line", ["F1 vin vbat", "JP2 1 2", "FB3 vin 5V", "J4 vin gnd", "BT1 vin gnd", "SW1 a b"]
+)
+def test_two_words_are_two_nodes(line: str) -> None:
+    reference, *nodes = line.split()
+    netlist = read_spice(f"t\n{line}\n", "x.cir")
+    assert [pin.net for pin in netlist.parts[reference].pins] == nodes
+    assert [note.message for note in netlist.notes] == [
+        f"{reference}: two words: taken as two nodes, without a model"
+    ]
+
+
+@pytest.mark.construct("B3 a part of one node: test point, hole, heat sink")
+@pytest.mark.parametrize("line", ["TP1 vout", "H1 gnd", "HS2 gnd", "MP1 gnd", "MH1 gnd", "FID1 gnd"])
+def test_parts_of_one_node(line: str) -> None:
+    net = line.split()[1]
+    assert shape(line) == ("", net, "", "")
+    assert shape(f"{line} BIG") == ("", net, "", "BIG")
+
+
+@pytest.mark.construct("B3 a value and its unit or a remark, with a blank between")
+@pytest.mark.parametrize(
+    ("line", "expected", "assumed"),
+    [
+        ("R1 a b 10 k", ("R", "a b", "10 k", ""), False),
+        ("R1 a b 4.7 k 1%", ("R", "a b", "4.7 k 1%", ""), False),
+        ("C1 a b 10 uF 25V", ("C", "a b", "10 uF 25V", ""), False),
+        ("L1 a b 100 uH", ("L", "a b", "100 uH", ""), False),
+        ("R1 a b 100 METAL", ("R", "a b", "100 METAL", ""), True),
+        ("RN1 1 2 3 PACK", ("", "1 2 3", "", "PACK"), False),
+        ("R1 1 2 3 10k", ("R", "1 2 3", "10k", ""), True),
+    ],
+)
+def test_a_value_apart_from_its_unit(line: str, expected: tuple[str, ...], assumed: bool) -> None:
+    assert shape(line, "") == expected
+    assert bool(read_spice(f"t\n{line}\n", "x.cir").notes) is assumed
+
+
+@pytest.mark.construct("B5 a decimal comma")
+@pytest.mark.parametrize(
+    ("line", "expected"),
+    [
+        ("R1 a b 4,7k", ("R", "a b", "4,7k", "")),
+        ("R1 1 2 4,7 1%", ("R", "1 2", "4,7 1%", "")),
+        ("V1 in 0 12,5", ("V", "in 0", "12,5", "")),
+        ("R1,1,2,3,10k", ("R", "1 2 3", "10k", "")),
+        ("R1 1, 2, 3, 10k", ("R", "1 2 3", "10k", "")),
+        ("V1 in 0 12, AC 1", ("V", "in 0", "12", "")),
+    ],
+)
+def test_a_decimal_comma_stays_in_the_value(line: str, expected: tuple[str, ...]) -> None:
+    assert shape(line, "") == expected
+
+
+def test_a_waveform_may_follow_a_decimal_comma() -> None:
+    found = part("V1 in 0 12,5 AC 1")
+    assert (found.value, found.attributes) == ("12,5", {"waveform": "AC 1"})
+
+
+@pytest.mark.construct("A6 parts that are not fitted, in a list")
+@pytest.mark.parametrize(
+    ("line", "value", "model"),
+    [
+        ("R1 a b 10k DNP", "10k", ""),
+        ("R1 a b 10k,1%,dni", "10k 1%", ""),
+        ("R1 a b DNP", "DNP", ""),
+        ("C1 a b NC", "NC", ""),
+        ("C1 a b open", "open", ""),
+        ("R1 a b 0R (not fitted)", "0R not fitted", ""),
+        ("D1 a k BAT DNF", "", "BAT"),
+        ("D1 a k DNP", "", "DNP"),
+        ("Q1 c b e QX DNI", "", "QX"),
+        ("U1 1 2 3 4 5 6 7 8 393 DNP", "", "393"),
+    ],
+)
+def test_a_part_marked_as_not_fitted(line: str, value: str, model: str) -> None:
+    netlist = read_spice(f"t\n{line}\n", "x.cir")
+    (found,) = netlist.parts.values()
+    assert (found.fitted, found.value, found.model) == (False, value, model)
+    assert [(note.kind, note.subject) for note in netlist.notes] == [("not-fitted", found.reference)]
+
+
+@pytest.mark.parametrize(
+    "line", ["C1 a b 100 NF", "R1 a b 10k", "SW1 a b OPEN", "M1 d g s s NM", "D1 a k dnp"]
+)
+def test_what_only_looks_like_such_a_mark(line: str) -> None:
+    netlist = read_spice(f"t\n{line}\n.model dnp d\n.model nm nmos\n", "x.cir")
+    assert all(found.fitted for found in netlist.parts.values())
+
+
+@pytest.mark.construct("B3 V and I")
+def test_a_diode_may_go_by_vd_and_a_source_too() -> None:
+    assert shape("VD1 a k 1N4148") == ("D", "a k", "", "1N4148")
+    assert shape("VD1 d 0 5") == ("V", "d 0", "5", "")
+    assert shape("VDD1 d 0 DC 5") == ("V", "d 0", "5", "")
 
 
 @pytest.mark.construct("B8 number of nodes without a definition is an assumption")

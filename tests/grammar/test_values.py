@@ -197,7 +197,7 @@ def test_negative_values_of_parts_are_errors(quantity: str) -> None:
     [
         ("10", 10.0),
         ("10kOhm", 10e3),
-        ("10 k", 10.0),  # a blank ends a number
+        ("10 ohm", 10.0),
         ("1MEG", 1e6),
         ("1meg", 1e6),
         ("1MEGOHM", 1e6),
@@ -240,6 +240,11 @@ def test_text_of_a_spice_list(text: str, number: float) -> None:
         ("1F", "capacitance", 1e-15, "F is femto"),
         ("5A", "current", 5.0, "atto"),
         ("1,5k", "resistance", 1.0, "comma"),
+        ("10 k", "resistance", 10e3, "ends the value at the blank"),
+        ("4.7 kohms 5%", "resistance", 4.7e3, "ends the value at the blank"),
+        ("0.1 uF", "capacitance", 0.1e-6, "ends the value at the blank"),
+        ("100 uH 3A", "inductance", 100e-6, "ends the value at the blank"),
+        ("10 M", "resistance", 10e-3, "mega is written MEG"),
     ],
 )
 def test_traps_of_a_spice_list_are_said(text: str, quantity: str, number: float, sentence: str) -> None:

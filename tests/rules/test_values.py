@@ -148,6 +148,13 @@ def test_a_value_with_two_readings_fails_as_a_warning(ask: Ask, part: str, says:
     assert verdict.parts == (part.split()[0],)
 
 
+@pytest.mark.parametrize("value", ["4,7k", "4.7 k"])
+def test_a_value_that_a_comma_or_a_blank_ends(ask: Ask, value: str) -> None:
+    (verdict,) = ask("connections.value-ambiguous", board(f"R9 OUT 0 {value}"))
+    assert (verdict.outcome, verdict.level) == (Outcome.FAIL, "warning")
+    assert verdict.remedy.endswith("such as 4.7k, with a point and without a blank")
+
+
 def test_marking_codes_are_only_listed(ask: Ask) -> None:
     (verdict,) = ask("connections.value-ambiguous", board("R8 OUT 0 4k7", "R9 OUT 0 2R2"))
     assert verdict.outcome is Outcome.INFORMATIONAL
