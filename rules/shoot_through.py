@@ -6,6 +6,7 @@ from collections.abc import Iterable
 
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.drive import Driven
+from ..lint.circuit.output_drive import OutputDrive
 from ..lint.circuit.power_stage import PowerStage
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
@@ -85,6 +86,10 @@ def _off_in_time(controller: Controller, design: Design, driven: Driven, seconds
         message = f"{active} has {engineering(least, 's')} of dead time to empty the gate of {reference}"
         return Verdict(outcome=Outcome.INFORMATIONAL, message=message, parts=(active, reference))
     found = solver.discharge(driven)
+    between = _transformers(design, found) if _both_ways(solver, driven) else ""
+    if between:
+        message = f"{between} drives the gate of {reference}: whether it empties it {within} is not computed"
+        return Verdict(outcome=Outcome.INFORMATIONAL, message=message, parts=(reference,))
     if isinstance(found, Unsolved) or found.spread.maximum <= 0:
         return Verdict(
             outcome=Outcome.REVIEW,
@@ -105,4 +110,21 @@ def _off_in_time(controller: Controller, design: Design, driven: Driven, seconds
         assumptions=found.assumptions,
         source="common practice, no source",
         remedy="" if emptied else "raise the dead time, or lower the gate's discharge resistance",
+    )
+
+
+def _transformers(design: Design, found: Estimate | Unsolved) -> str:
+    """Return the transformers that keep a gate's discharge from being solved, empty for none."""
+    parts = found.parts if isinstance(found, Unsolved) else ()
+    return ", ".join(name for name in parts if design.circuit.kind(design.part(name)) == "transformer")
+
+
+def _both_ways(solver: OutputDrive, driven: Driven) -> bool:
+    """Tell whether a driver has a counterpart that pulls the other way: base and emitter joined to its own."""
+    transistors = solver.drive.transistors
+    drivers = [transistors[name] for name in driven.drivers if name in transistors]
+    return any(
+        (one.control, one.common) == (other.control, other.common) and one.polarity != other.polarity
+        for one in drivers
+        for other in transistors.values()
     )

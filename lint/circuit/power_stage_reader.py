@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from ...grammar.netlist import Part
 from .amplifiers import Amplifier, SenseResistor, amplifier_for
 from .controllers import Controller
+from .delivery import delivered
 from .diodes import diode_nets
 from .drive import Drive, Driven
 from .graph import Circuit
@@ -51,8 +52,10 @@ class PowerStageReader:
         found = [self._switch(one) for one in self._drive.driven() if self._drive.is_switch(one.transistor)]
         switches = tuple(switch for switch in found if switch is not None)
         if not switches or len(switches) != len(found):
-            what = "which side of it a switch connects to" if found else "a transistor at a winding"
-            return NotRecognised(f"{what} was not found from the outputs of {self._controller.reference} on")
+            outputs = f"the outputs of {self._controller.reference}"
+            if not found:
+                return NotRecognised(f"no transistor at a winding is found behind {outputs}")
+            return NotRecognised(f"a switch behind {outputs} has no side, or both, on a winding")
         nodes = dict.fromkeys(switch.node for switch in switches)
         touched = [winding for winding in self._drive.windings if not nodes.keys().isdisjoint(winding.nets)]
         transformers = [winding for winding in touched if winding.transformer]
@@ -81,6 +84,12 @@ class PowerStageReader:
         if sense is None or self._is_stiff(net):
             return net
         return {sense.near: sense.far, sense.far: sense.near}.get(net, net)
+
+    def _delivered(self, net: str) -> str:
+        """Return the sensed output to which the load's current goes on, else what is past sense."""
+        shunt = self._controller.profile.practice("sense-resistor").maximum or 0.0
+        found = delivered(self._circuit, net, self._sensed_outputs, shunt)
+        return found if found is not None else self._past_sense(net)
 
     @property
     def _sense(self) -> SenseResistor | None:
@@ -112,21 +121,24 @@ class PowerStageReader:
     # ------------------------------------------------------------------------- one inductor, no transformer
 
     def _with_inductor(self, switches: Sequence[Switch], inductor: Winding) -> PowerStage | NotRecognised:
-        if len(switches) == 2:
+        places = _places(switches)
+        if len(places) == 2:
             return self._synchronous(switches, inductor)
-        if len(switches) != 1:
-            return NotRecognised(f"{len(switches)} switches share {inductor.name}")
+        if len(places) != 1:
+            return NotRecognised(f"{len(places)} switches share {inductor.name}")
         switch = switches[0]
         node, far = switch.node, inductor.others(switch.node)[0]
         for diode in self._diodes(node):
             other = self._past_sense(diode.anode if diode.cathode == node else diode.cathode)
             topology = self._topology(switch, far, other, into_node=diode.cathode == node)
             if topology:
-                output = {"buck": self._past_sense(far), "boost": other, "inverting": other}[topology]
+                outputs = {"buck": self._delivered(far), "boost": self._delivered(other)}
+                output = outputs.get(topology, other)
                 source = far if topology == "boost" else switch.rail
                 says = f"{diode.reference} stands between {other} and {node}"
                 return self._stage(topology, switches, source, output, inductor, (diode.reference,), says)
-        return NotRecognised(f"no diode on {node} completes the path of {inductor.name}")
+        why = f"no diode on {node} makes a buck, boost or inverting stage of {inductor.name}"
+        return NotRecognised(why)
 
     def _topology(self, switch: Switch, far: str, other: str, *, into_node: bool) -> str:
         """Return the topology of one switch, one inductor and one diode; empty where they fit none.
@@ -151,12 +163,13 @@ class PowerStageReader:
 
     def _synchronous(self, switches: Sequence[Switch], inductor: Winding) -> PowerStage | NotRecognised:
         """Recognise two switches on one node: the lower one stands in for the diode, or the upper one."""
-        lower = [switch for switch in switches if self._is_ground(switch.rail)]
-        upper = [switch for switch in switches if not self._is_ground(switch.rail)]
+        places = _places(switches)
+        lower = [switch for switch in places if self._is_ground(switch.rail)]
+        upper = [switch for switch in places if not self._is_ground(switch.rail)]
         if len(lower) != 1 or len(upper) != 1:
             return NotRecognised(f"two switches on {switches[0].node}, not one to ground and one to a supply")
         far, rail = inductor.others(lower[0].node)[0], upper[0].rail
-        output = self._past_sense(far)
+        output = self._delivered(far)
         says = f"{lower[0].reference} takes the place of a diode"
         if output in self._sensed_outputs and self._is_positive(rail):
             return self._stage("buck", switches, rail, output, inductor, (lower[0].reference,), says)
@@ -190,12 +203,14 @@ class PowerStageReader:
 
     def _bridge(self, switches: Sequence[Switch]) -> str:
         """Return what the switches make at a transformer; "forward" for one switch, or for two in series."""
-        nodes = [switch.node for switch in switches]
-        grounds = [self._is_return(switch.rail) for switch in switches]
-        if len(switches) == 1:
+        places = _places(switches)
+        nodes = [switch.node for switch in places]
+        grounds = [self._is_return(switch.rail) for switch in places]
+        if len(places) == 1:
             return "forward"
-        if len(switches) == 2 and len(set(nodes)) == 2:
-            return "push-pull" if all(grounds) or not any(grounds) else "forward"
+        if len(places) == 2 and len(set(nodes)) == 2:
+            upper = [switch for switch in places if self._is_positive(switch.rail)]
+            return "forward" if len(upper) == 1 else "push-pull"
         legs = [sorted(g for n, g in zip(nodes, grounds, strict=True) if n == node) for node in set(nodes)]
         if all(leg == [False, True] for leg in legs):
             return {1: "half-bridge", 2: "full-bridge"}.get(len(legs), "")
@@ -219,7 +234,7 @@ class PowerStageReader:
         for net in dict.fromkeys(diode.cathode for diode in rectifiers):
             inductors = [w for w in self._drive.windings if net in w.nets and not w.transformer]
             inductor = inductors[0] if len(inductors) == 1 else None
-            output = self._past_sense(inductor.others(net)[0]) if inductor is not None else net
+            output = self._delivered(inductor.others(net)[0] if inductor is not None else net)
             # The second diode of a floating winding starts from the winding's return, not from ground.
             onto = [diode for diode in self._diodes(net) if diode.cathode == net]
             returns = [diode for diode in onto if diode in rectifiers or self._is_ground(diode.anode)]
@@ -289,6 +304,11 @@ class PowerStageReader:
             self._circuit.kind(part) in kinds and other in self._circuit.other_nets(part, one)
             for part in parts
         )
+
+
+def _places(switches: Sequence[Switch]) -> list[Switch]:
+    """Return one switch of each place: those in parallel count as one."""
+    return list({(switch.node, switch.rail): switch for switch in reversed(switches)}.values())[::-1]
 
 
 def _inside(part: Part) -> list[_Diode]:

@@ -43,8 +43,20 @@ def windings(circuit: Circuit) -> tuple[Winding, ...]:
 
 
 def _nets(circuit: Circuit, references: tuple[str, ...]) -> tuple[str, ...]:
+    """Return the nets of parts; of a transformer's pin with a capacitor in series, the net beyond it."""
+    transformer = len({pin.net for name in references for pin in circuit.parts[name].pins}) > 2
     pins = (pin for reference in references for pin in circuit.parts[reference].pins)
-    return tuple(dict.fromkeys(pin.net for pin in pins if pin.net))
+    nets = (_beyond_capacitor(circuit, pin.net) if transformer else pin.net for pin in pins if pin.net)
+    return tuple(dict.fromkeys(nets))
+
+
+def _beyond_capacitor(circuit: Circuit, net: str) -> str:
+    """Return the net that a capacitor leads to from a net on which nothing else but one pin is."""
+    parts = [connection.part for connection in circuit.connections(net)]
+    capacitors = [part for part in parts if circuit.kind(part) == "capacitor"]
+    if len(parts) != 2 or len(capacitors) != 1:
+        return net
+    return next(iter(circuit.other_nets(capacitors[0], net)), net)
 
 
 def _coupled(circuit: Circuit) -> list[tuple[str, ...]]:

@@ -94,6 +94,21 @@ FORWARD = (
     "D2 0 RECT DS",
     "L1 RECT OUT 100u",
 )
+TWO_SWITCH_FORWARD = (
+    "TR2 D1 0 GH SH GL PGND DRIVE",
+    "M1 VBAT GH SH SH NM",
+    "M2 DL GL PGND PGND NM",
+    "D3 PGND SH DS",
+    "D4 DL VBAT DS",
+    "TR1 SH DL SA 0 PRESS",
+    "D1 SA RECT DS",
+    "D2 0 RECT DS",
+    "L1 RECT OUT 100u",
+)
+PARALLEL_PUSH_PULL = (*PUSH_PULL, "M3 PA GC 0 0 NM", "M4 PB GD 0 0 NM", "R24 D1 GC 10", "R25 D2 GD 10")
+SERIES_CAPACITOR = (*HALF_BRIDGE[:5], "C22 SW PRI 1u", "TR1 PRI MID SA 0 SB PRESS", *HALF_BRIDGE[6:])
+PAST_A_DIODE = (*P_CHANNEL_BUCK[:4], "L1 SW CHARGER 100u", "C21 CHARGER 0 470u", "D5 CHARGER OUT DS")
+PAST_A_SHUNT = (*P_CHANNEL_BUCK[:4], "L1 SW SHUNT 100u", "R22 SHUNT OUT 0.05", "J2 OUT 0 PUMP")
 FLYBACK = ("M1 PA G 0 0 NM", "R20 D1 G 10", "R21 G 0 1k", "TR1 PA VBAT SA 0 PRESS", "D1 SA OUT DS")
 
 COLLECTOR, EMITTER = "D1 0 0 D1", "VBAT D1 D1 VBAT"
@@ -152,6 +167,27 @@ def stage(
             COLLECTORS, FULL_BRIDGE, "full-bridge", ("M1", "M2", "M3", "M4"), ("D1", "D2"), id="full-bridge"
         ),
         pytest.param(EMITTER, FORWARD, "forward", ("M1",), ("D1",), id="forward"),
+        pytest.param(
+            EMITTER, TWO_SWITCH_FORWARD, "forward", ("M1", "M2"), ("D1",), id="forward, two switches"
+        ),
+        pytest.param(
+            EMITTERS,
+            PARALLEL_PUSH_PULL,
+            "push-pull",
+            ("M1", "M3", "M2", "M4"),
+            ("D1", "D2"),
+            id="push-pull, switches in parallel",
+        ),
+        pytest.param(
+            COLLECTORS,
+            SERIES_CAPACITOR,
+            "half-bridge",
+            ("M1", "M2"),
+            ("D1", "D2"),
+            id="half-bridge, capacitor in series",
+        ),
+        pytest.param(COLLECTOR, PAST_A_DIODE, "buck", ("M1",), ("D1",), id="buck, diode to the battery"),
+        pytest.param(COLLECTOR, PAST_A_SHUNT, "buck", ("M1",), ("D1",), id="buck, shunt to the output"),
         pytest.param(EMITTER, FLYBACK, "flyback", ("M1",), ("D1",), id="flyback"),
     ],
 )
@@ -236,7 +272,7 @@ def test_what_flows_in_the_sense_resistor(
 @pytest.mark.parametrize(
     ("outputs", "parts", "says"),
     [
-        pytest.param(COLLECTOR, ("R20 VBAT D1 1k",), "was not found", id="no power stage"),
+        pytest.param(COLLECTOR, ("R20 VBAT D1 1k",), "no transistor at a winding", id="no power stage"),
         pytest.param(
             COLLECTOR, (*P_CHANNEL_BUCK[:3], "L1 SW OUT 100u"), "no diode on SW", id="no catch diode"
         ),
@@ -256,7 +292,7 @@ def test_what_flows_in_the_sense_resistor(
         pytest.param(
             COLLECTOR,
             ("M1 SW G VBAT VBAT PM", "M2 SW G VBAT VBAT PM", *SYNCHRONOUS_BUCK[2:]),
-            "not one to ground and one to a supply",
+            "no diode on SW",
             id="two switches side by side",
         ),
         pytest.param(
@@ -265,7 +301,7 @@ def test_what_flows_in_the_sense_resistor(
         pytest.param(
             COLLECTOR,
             ("M1 SW G HI HI PM", *P_CHANNEL_BUCK[1:], "L3 IN HI 1u"),
-            "which side of it",
+            "no side, or both, on a winding",
             id="inductors on both sides of a switch",
         ),
         pytest.param(
