@@ -120,7 +120,7 @@ def _transformers(design: Design, found: Estimate | Unsolved) -> str:
 
 
 def _both_ways(solver: OutputDrive, driven: Driven) -> bool:
-    """Tell whether a driver has a counterpart that pulls the other way: base and emitter joined to its own."""
+    """Tell whether a driver has a counterpart that pulls the other way, joined at base and emitter."""
     transistors = solver.drive.transistors
     drivers = [transistors[name] for name in driven.drivers if name in transistors]
     return any(
