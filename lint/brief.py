@@ -36,6 +36,10 @@ _CONTROLLER_KEYS = (
 
 _ABSOLUTE_ZERO = -273.15
 
+# Beyond any board, in SI units: a slip of the pen, which would be divided by or squared later.
+_HOTTEST, _HIGHEST_VOLTAGE, _LARGEST_CURRENT, _LEAST_CURRENT = 1e3, 1e7, 1e7, 1e-9
+_LOWEST_FREQUENCY, _HIGHEST_FREQUENCY, _LONGEST_TIME = 1.0, 1e10, 1e7
+
 
 class BriefError(NetlistError):
     """A brief that cannot be read, or that says something impossible."""
@@ -129,7 +133,7 @@ def read_brief(path: str | Path) -> Brief:
     brief = Brief(
         file=document.file,
         name=design.text("name") or "",
-        ambient=design.spread("ambient", "degC", least=_ABSOLUTE_ZERO),
+        ambient=design.spread("ambient", "degC", least=_ABSOLUTE_ZERO, most=_HOTTEST),
         derating=design.choice("derating", DERATING_POLICIES),
         rails=MappingProxyType({rail.net: rail for rail in rails if rail is not None}),
         controllers=MappingProxyType(controllers),
@@ -141,9 +145,9 @@ def read_brief(path: str | Path) -> Brief:
 def _rail(net: str, table: Table) -> Rail | None:
     """Return a rail, or None where its voltage is missing or wrong: a mistake is then noted."""
     table.know(_RAIL_KEYS)
-    voltage = table.spread("voltage", "V")
+    voltage = table.spread("voltage", "V", least=-_HIGHEST_VOLTAGE, most=_HIGHEST_VOLTAGE)
     tolerance = table.quantity("tolerance", "", least=0.0, most=0.99)
-    load = table.spread("load", "A", least=0.0)
+    load = table.spread("load", "A", least=0.0, most=_LARGEST_CURRENT)
     circuit = table.choice("circuit", CIRCUITS)
     if not table.has("voltage"):
         table.mistake("voltage", f"the rail {net} has no voltage", expected='voltage = "12 V"')
@@ -156,11 +160,13 @@ def _controller(reference: str, table: Table) -> ControllerBrief:
         reference=reference,
         place=table.place,
         topology=table.choice("topology", TOPOLOGIES),
-        switching_frequency=table.spread("switching_frequency", "Hz", least=0.0),
-        dead_time=table.spread("dead_time", "s", least=0.0),
+        switching_frequency=table.spread(
+            "switching_frequency", "Hz", least=_LOWEST_FREQUENCY, most=_HIGHEST_FREQUENCY
+        ),
+        dead_time=table.spread("dead_time", "s", least=0.0, most=_LONGEST_TIME),
         maximum_duty=table.spread("maximum_duty", "", least=0.0, most=1.0),
-        soft_start=table.spread("soft_start", "s", least=0.0),
-        current_limit=table.spread("current_limit", "A", least=0.0),
+        soft_start=table.spread("soft_start", "s", least=0.0, most=_LONGEST_TIME),
+        current_limit=table.spread("current_limit", "A", least=_LEAST_CURRENT, most=_LARGEST_CURRENT),
         output=table.text("output"),
         pins=table.texts("pins"),
         shut_off_by_dead_time=table.flag("shut_off_by_dead_time") or False,

@@ -325,8 +325,8 @@ def dissipation(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     supply = controller.net("supply")
     potential = design.potential(supply) if supply else None
-    if potential is None:
-        return  # supply.range asks for the rail
+    if potential is None or potential.spread.minimum < 0:
+        return  # supply.range asks for the rail, and says that one below ground is none
     if design.brief is None or design.brief.ambient is None:
         need = 'brief: [design] ambient = "..."'
         yield Verdict(outcome=Outcome.OPEN, message="dissipation against the package", needs=(need,))
@@ -373,8 +373,12 @@ def _power(
         drops.append((drop.nominal, drop.maximum))
     pairs = list(zip(drops, currents, strict=True))
     least = supply.minimum * quiescent.minimum
-    nominal = supply.nominal * quiescent.nominal + duty * sum(d[0] * c.spread.nominal for d, c in pairs)
-    most = supply.maximum * quiescent.maximum + duty * sum(d[1] * c.spread.maximum for d, c in pairs)
+    nominal = supply.nominal * quiescent.nominal + duty * sum(
+        d[0] * max(0.0, c.spread.nominal) for d, c in pairs
+    )
+    most = supply.maximum * quiescent.maximum + duty * sum(
+        d[1] * max(0.0, c.spread.maximum) for d, c in pairs
+    )
     spread = Spread(least, nominal, most, "W")
     formula = f"{engineering(supply.maximum, 'V')} x {engineering(quiescent.maximum, 'A')}"
     formula += "".join(

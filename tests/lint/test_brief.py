@@ -141,7 +141,10 @@ def test_tables_may_be_written_inline(write: Write) -> None:
         ('"1.5 us .. 4 us"', '"1.5 us .. 4 V"', 17, 24, '"V" is no unit', "a time such as 5 ms"),
         ('"45 kHz', '"45 V', 16, 24, '"V" is no unit', "a frequency such as 50 kHz"),
         ('"45 %"', '"145 %"', 18, 16, "out of its range", "at least 0 and at most 1"),
-        ('"0 A', '"-1 A', 12, 8, "out of its range", "at least 0 A"),
+        ('"45 kHz', '"0 Hz', 16, 23, "out of its range", "at least 1 Hz"),
+        ('"6.6 A', '"0 A', 20, 17, "out of its range", "at least 1e-09 A"),
+        ('"21 V .. 29 V"', '"1e300 V"', 8, 11, "out of its range", "at most 1e+07 V"),
+        ('"0 A', '"-1 A', 12, 8, "out of its range", "at least 0 A and at most 1e+07 A"),
         (
             '"2 %"',
             "0.02",

@@ -195,6 +195,14 @@ def test_the_dissipation_is_added_up(ask: Ask) -> None:
     assert verdict.limit.maximum == pytest.approx(1.0)
 
 
+@pytest.mark.parametrize(("supply", "verdicts"), [("0 V", 1), ("-5 V", 0), ("-5 V .. 24 V", 0)])
+def test_a_supply_that_is_none_heats_nothing(ask: Ask, supply: str, verdicts: int) -> None:
+    netlist = board("D1 0 NC3 NC2", ("R16 VBAT D1 1k",))
+    brief = f'{ambient("45")}[rails.VBAT]\nvoltage = "{supply}"\n'
+    found = ask("output-stage.dissipation", netlist, brief=brief)
+    assert [verdict.outcome for verdict in found] == [Outcome.PASS] * verdicts
+
+
 def test_a_hot_package_fails(ask: Ask) -> None:
     # 1 W x (125 - 105) / (125 - 45) = 0.25 W are left at 105 degC
     netlist = board("D1 0 NC3 NC2", ("R16 VBAT D1 1k",))
