@@ -29,6 +29,7 @@ from .circuit.potentials import Potential, known_potentials
 from .circuit.power_stage import NotRecognised, PowerStage
 from .circuit.reference_load import ReferenceLoad, reference_load
 from .circuit.regimes import Regime
+from .circuit.sensed_current import SensedCurrent, sensed_current
 from .circuit.stress import Stresses, stresses
 from .circuit.time_constants import time_constant
 from .circuit.timing import Timing, timing
@@ -160,6 +161,13 @@ class Design:
     def full_load(self, controller: Controller) -> float | None:
         """Return the greatest load (A) that the brief puts on a controller's output, None if untold."""
         return self.converter(controller).full_load
+
+    def sensed_load(self, controller: Controller) -> SensedCurrent | None:
+        """Return what flows in a controller's current-sense resistor at full load, None if untold."""
+        load, duty = self.full_load(controller), self.needed_duty(controller)
+        if load is None:
+            return None
+        return sensed_current(self.power_stage(controller), load, duty.maximum if duty is not None else None)
 
     def has_path(self, net: str) -> bool:
         """Tell whether a direct-current path joins a net to a known potential."""

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import replace
+from math import inf
 
 from ..grammar.netlist import Part
 from ..lint.circuit.amplifiers import Amplifier, SenseResistor
@@ -30,9 +31,10 @@ def trip_point(controller: Controller, design: Design) -> Iterable[Verdict]:
     What:
         Solves for the current through the sense resistor at which the current amplifier's inputs are
         equal, for whatever resistor network stands round it, over tolerances, trimmer travel, reference
-        spread, offset and bias currents. Held against `current_limit` of the brief, else against the
-        full load of the output rail. Where the output's voltage moves the threshold, the current into
-        a short circuit is told as well.
+        spread, offset and bias currents. Held against `current_limit` of the brief, else against what the
+        full load of the output rail sends through the resistor. Where a trimmer sets it, every unit must be
+        able to reach a current that is wanted. Where the output's voltage moves the threshold, the current
+        into a short circuit is told as well.
     Why:
         A limit that sits too low starves the load on a cold morning; one that sits too high lets the
         switch, the inductor and the source carry what they were not chosen for.
@@ -73,7 +75,30 @@ def trip_point(controller: Controller, design: Design) -> Iterable[Verdict]:
         yield reports(found.current, says, pins=pins)
         return
     remedy = _resistor_for(found, limit, sense)
+    if found.settable is not None:
+        yield _settable(found, limit, says, source, pins, remedy)
+        return
     yield judge(found.current, limit, says, source=source, pins=pins, remedy=remedy)
+
+
+def _settable(
+    found: Trip, limit: Limit, says: str, source: str, pins: tuple[str, ...], remedy: str
+) -> Verdict:
+    """Judge a limit with trimmers: some current that is wanted must be within reach of every unit."""
+    assert found.settable is not None
+    low, high = found.settable
+    trimmers = ", ".join(found.trimmers)
+    least, most = limit.minimum or 0.0, limit.maximum if limit.maximum is not None else inf
+    inside = low <= high and low <= most and high >= least
+    reach = f"{engineering(low, 'A')} to {engineering(high, 'A')}"
+    every = (
+        f"{trimmers} sets it from {reach} on every unit" if low <= high else f"{trimmers} sets no unit alike"
+    )
+    verdict = reports(found.current, f"{says}; {every}", pins=pins, source=source)
+    if inside:
+        set_up = f"{trimmers} set on the bench for a limit as wanted"
+        return replace(verdict, outcome=Outcome.PASS, assumptions=(*verdict.assumptions, set_up))
+    return replace(verdict, outcome=Outcome.FAIL, limit=limit, margin=None, remedy=remedy)
 
 
 def _formula(found: Trip, sense: SenseResistor) -> str:
@@ -112,8 +137,8 @@ def _wanted(design: Design, controller: Controller) -> tuple[Limit | None, str]:
         wanted = told.current_limit
         top = wanted.maximum if wanted.maximum > wanted.minimum else None
         return Limit(wanted.minimum, top, "A"), "brief: current_limit"
-    load = design.full_load(controller)
-    return (Limit(load, None, "A"), "brief: load") if load is not None else (None, "")
+    load = design.sensed_load(controller)
+    return (Limit(load.average, None, "A"), "brief: load") if load is not None else (None, "")
 
 
 def _resistor_for(found: Trip, limit: Limit, sense: SenseResistor) -> str:
@@ -205,8 +230,8 @@ def _derating(design: Design) -> tuple[Derating, str]:
 
 
 def _at_full_load(design: Design, controller: Controller, sense: Part) -> str:
-    load = design.full_load(controller)
+    load = design.sensed_load(controller)
     resistance = design.nominal(sense)
     if load is None or resistance is None:
         return ""
-    return f"{engineering(load**2 * resistance, 'W')} at full load, "
+    return f"{engineering(load.effective**2 * resistance, 'W')} at full load, "

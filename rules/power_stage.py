@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 
+from ..lint import needs
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.diodes import diode_nets
 from ..lint.circuit.power_stage import NotRecognised, PowerStage
@@ -12,15 +13,15 @@ from ..lint.rule import rule
 from ..lint.verdict import Outcome, Verdict
 
 
-@rule("output-mode.power-stage", level="error", topic="output mode", needs=("topology", "output"))
+@rule("output-mode.power-stage", level="error", topic="output mode")
 def power_stage(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is the power stage behind the outputs whole, and the one that the brief tells?
 
     What:
         Follows the outputs to the switches, and from these to windings, rectifiers and the output, and
-        compares what is recognised with the topology and the output of the brief. A stage that fits no
-        pattern wholly is for a person to judge: a diode turned round, a winding off its net, one rectifier
-        where two should take turns, or a topology that this review does not know.
+        compares what is recognised with the topology and the output of the brief, where it tells them. A
+        stage that fits no pattern wholly is for a person to judge: a diode turned round, a winding off its
+        net, one rectifier where two should take turns, or a topology that this review does not know.
     Why:
         A catch diode turned round shorts the supply at the first pulse. And whatever rests on the power
         stage, such as the duty that it needs, is not asked where none is recognised.
@@ -48,15 +49,20 @@ def power_stage(controller: Controller, design: Design) -> Iterable[Verdict]:
         [controllers.U1] topology = "single-ended"; output = "VOUT"
     """
     told, stage = design.told(controller), design.power_stage(controller)
-    assert told is not None  # the rule needs topology and output
+    topology, output = (told.topology, told.output) if told is not None else (None, None)
     if isinstance(stage, NotRecognised):
-        yield _doubtful(f"no {told.topology} power stage is recognised: {stage.reason}")
+        if topology is not None:
+            yield _doubtful(f"no {topology} power stage is recognised: {stage.reason}")
+            return
+        need = needs.controller(controller.reference, "topology")
+        message = f"no power stage is recognised: {stage.reason}"
+        yield Verdict(outcome=Outcome.OPEN, message=message, needs=(need,))
         return
     recognised = f"the power stage is recognised as {stage.topology}, from {stage.input} to {stage.output}"
-    if stage.family != told.topology:
-        yield _doubtful(f"{recognised}; the brief tells {told.topology}", stage.evidence)
-    elif stage.output != told.output:
-        yield _doubtful(f"{recognised}; the brief's output is {told.output}", stage.evidence)
+    if topology is not None and stage.family != topology:
+        yield _doubtful(f"{recognised}; the brief tells {topology}", stage.evidence)
+    elif output is not None and stage.output != output:
+        yield _doubtful(f"{recognised}; the brief's output is {output}", stage.evidence)
     elif odd := _odd(design, stage):
         yield _doubtful(f"{recognised}; {odd}", stage.evidence)
     else:

@@ -10,6 +10,7 @@ from ..grammar.netlist import Part
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.diodes import diode_nets
 from ..lint.circuit.loops import Regulation, Trip
+from ..lint.circuit.power_stage import PowerStage
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
@@ -319,10 +320,13 @@ def steady_state(controller: Controller, design: Design) -> Iterable[Verdict]:
     reference = controller.profile.figure("reference.voltage").spread().nominal
     share, left = end.spread.nominal / reference, design.dead_time(controller, end).share.spread.maximum
     needed = design.needed_duty(controller)
+    stage = design.power_stage(controller)
+    if needed is None and isinstance(stage, PowerStage) and stage.topology in _LIMITED_DUTY:
+        return  # half the period has to be left for the transformer's reset, and the turns ratio is not told
     most = 1 - needed.maximum if needed is not None else _MOST_DEAD_TIME
     fits = left <= most
     against = (
-        f"{percent(needed.maximum)} is needed" if needed is not None else f"{percent(1 - most)} is asked"
+        f"{percent(needed.maximum)} is needed" if needed is not None else f"{percent(1 - most)} is usual"
     )
     yield Verdict(
         outcome=Outcome.PASS if fits else Outcome.REVIEW,
@@ -334,6 +338,9 @@ def steady_state(controller: Controller, design: Design) -> Iterable[Verdict]:
         remedy="" if fits else "lower the resistor from the pin to ground",
     )
 
+
+# Single switches at a transformer that must empty again within the period.
+_LIMITED_DUTY = frozenset({"forward", "flyback"})
 
 # Where no duty is told: more dead time after the start is seldom meant (common practice, no source).
 _MOST_DEAD_TIME = 0.5

@@ -68,12 +68,16 @@ class Trip:
     threshold:   the voltage across the sense resistor at that moment
     dissipation: the power in the sense resistor at that moment
     reversed:    the current must flow from the far end of the sense resistor to the near one
+    trimmers:    what can be set on the bench
+    settable:    the lowest and the highest current (A) to which every unit can be set, as of a Regulation
     """
 
     current: Estimate
     threshold: Estimate
     dissipation: Estimate
     reversed: bool = False
+    trimmers: tuple[str, ...] = ()
+    settable: tuple[float, float] | None = None
 
 
 @dataclass(slots=True)
@@ -159,13 +163,14 @@ class Loops:
                 needs=(needs.rail(sense.far),),
             )
         condition = self._inputs_equal(growth, amplifier)
-        found = _trip(growth, resistor, FreeCurrent("load", sense.far, sense.near), condition)
+        free = FreeCurrent("load", sense.far, sense.near)
+        found = _trip(growth, resistor, free, condition)
         turned = not isinstance(found, Unsolved) and found["current"].spread.nominal < 0
         if turned:
             # The current flows the other way: sensed below ground, or on the way out of the high side.
             growth.elements[resistor.name] = resistor = replace(resistor, a=sense.far, b=sense.near)
-            reverse = FreeCurrent("load", sense.near, sense.far)
-            found = _trip(growth, resistor, reverse, condition)
+            free = FreeCurrent("load", sense.near, sense.far)
+            found = _trip(growth, resistor, free, condition)
         if isinstance(found, Unsolved):
             return found
         if isinf(found["current"].spread.nominal):
@@ -174,7 +179,10 @@ class Loops:
                 parts=found["current"].parts,
                 nets=(amplifier.plus, amplifier.minus),
             )
-        return Trip(found["current"], found["threshold"], found["dissipation"], turned)
+        probes = {"current": _trip_probes(resistor)["current"]}
+        reach = settable(growth, probes, "current", [free], [condition])
+        figures = (found["current"], found["threshold"], found["dissipation"])
+        return Trip(*figures, turned, trimmers(growth), reach)
 
     def _add_beside(self, growth: Growth, sense: SenseResistor) -> None:
         """Add the resistors in parallel with a sense resistor: the load's current divides among them."""
@@ -224,8 +232,10 @@ def _trip(
     found = estimate(growth, probes, [free], [condition])
     if isinstance(found, Unsolved):
         return found
-    greatest = [max(abs(found[name].spread.minimum), abs(found[name].spread.maximum)) for name in probes]
-    bound = Spread(0.0, 0.0, greatest[0] * greatest[1], heat[1])
+    spreads = [found[name].spread for name in probes]
+    greatest = [max(abs(spread.minimum), abs(spread.maximum)) for spread in spreads]
+    nominal = abs(spreads[0].nominal * spreads[1].nominal)
+    bound = Spread(0.0, nominal, greatest[0] * greatest[1], heat[1])
     return {**found, "dissipation": replace(found["current"], spread=bound, statistical=bound)}
 
 

@@ -113,6 +113,48 @@ def test_a_trimmer_in_the_threshold_widens_the_band(ask: Ask, pump: Board) -> No
     assert verdict.measured.minimum < 4.95 < 7.0 < verdict.measured.maximum
 
 
+def test_a_trimmed_limit_must_be_within_reach_of_every_unit(ask: Ask, pump: Board) -> None:
+    # Wiper from ground to 0.52 V over 0.1 ohm: up to 5.2 A, less offset, reference spread and tolerances.
+    board = pump(R10="LIM0 0 1 1%", R9="REF TOP 9.1k 1%", RV1="TOP LIM LIM0 1k 10%")
+    told = '{}[controllers.U1]\noutput = "VOUT"\ncurrent_limit = "{}"\n'
+    (verdict,) = ask("current-limit.trip-point", board, brief=told.format("", "3 A .. 3.5 A"))
+    assert verdict.outcome is Outcome.PASS
+    assert "RV1 sets it from" in verdict.message
+    (verdict,) = ask("current-limit.trip-point", board, brief=told.format("", "6 A .. 7 A"))
+    assert verdict.outcome is Outcome.FAIL
+
+
+def test_a_boosts_switch_carries_more_than_the_load(ask: Ask) -> None:
+    # 12 V to 24 V, 2 A: 4 A in the choke, half of the time in the switch; 0.495 V / 0.1 ohm stop 4.95 A.
+    board = """press lamp
+U1 FB SET COMP DTC CT RT 0 VIN DRV DRV VIN VIN 0 REF LIM CS 494
+R1 DRV 0 470
+M1 SW DRV CS CS NM
+R2 CS 0 0.1 1%
+L1 VIN SW 47u
+D1 SW VOUT DS
+C1 VOUT 0 470u
+R3 VOUT FB 43k
+R4 FB 0 5k
+R5 REF SET 5.1k
+R6 SET 0 5.1k
+R7 REF LIM 9.1k
+R8 LIM 0 1k
+J1 VOUT 0 LAMP
+.model NM NMOS
+.model DS D
+.end
+"""
+    rails = '[rails.VIN]\nvoltage = "12 V"\n[rails.VOUT]\nvoltage = "24 V"\nload = "0 A .. {} A"\n'
+    brief = rails + '[controllers.U1]\noutput = "VOUT"\n'
+    (verdict,) = ask("current-limit.trip-point", board, brief=brief.format("2"))
+    assert verdict.limit is not None
+    assert verdict.limit.minimum == pytest.approx(2.0)  # 4 A for half of the time
+    assert verdict.outcome is Outcome.PASS
+    (verdict,) = ask("current-limit.sense-dissipation", board, brief=brief.format("2"))
+    assert verdict.message.startswith("R2 takes 800 mW at full load")  # 4 A x 4 A x 0.1 ohm, half of the time
+
+
 def test_an_output_that_feeds_the_threshold_folds_the_limit_back(ask: Ask, pump: Board) -> None:
     # From the output as well: 5 V / 9.1 kohm and 12.1 V / 24 kohm against 1 kohm; shorted, 5 V alone
     (verdict,) = ask("current-limit.trip-point", pump("R20 VOUT LIM 24k 1%"))
