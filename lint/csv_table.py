@@ -60,12 +60,17 @@ class CsvTable:
     def rows(self) -> Iterator[dict[str, Cell]]:
         """Yield each row that is not blank, kind to Cell; of two columns of a kind the first that is filled.
 
-        Raises csv.Error for a cell beyond all size; `line` then tells where.
+        Raises csv.Error for a cell beyond all size and for a quotation mark that is never closed; `line` then
+        tells where.
         """
         below = self._lines[self._heading + 1 :]
         reader = csv.reader((f"{line}\n" for line in below), delimiter=self.delimiter)
         self.line = self._heading + 2
         for texts in reader:
+            # A cell that is still open at the end has swallowed all rows below it, and the last line end too.
+            open_at_end = reader.line_num == len(below) and not below[-1].rstrip().endswith('"')
+            if open_at_end and texts and texts[-1].endswith("\n"):
+                raise csv.Error("a quotation mark opens a cell and is never closed")
             row: dict[str, Cell] = {}
             for index, text, column in self._placed(texts):
                 known = self.columns.get(index)

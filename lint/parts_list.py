@@ -39,7 +39,12 @@ _WITH_COMMA = re.compile(r"[-+±]?[0-9]+,[0-9]+[^0-9,]*")
 # Percent. Up to here a bare tolerance may as well be a fraction: both 0.1 % and 10 % are sold.
 _DOUBTFUL_TOLERANCE = 0.2
 
-_NOTHING = frozenset({"", "-", "--", "\N{EN DASH}", "\N{EM DASH}", "n/a", "none", "?"})
+_NOTHING = frozenset(
+    {
+        *("", "-", "--", "\N{EN DASH}", "\N{EM DASH}", "?", "*", "~"),
+        *("n/a", "n.a.", "na", "none", "null", "tba", "tbd", "unknown"),
+    }
+)
 
 _REMEDY = "correct the cell, or leave it empty where the figure is not known"
 
@@ -123,7 +128,12 @@ class _Reader:
                 if len(self._mistakes) >= _MOST_ERRORS:
                     break
         except csv.Error as problem:
-            self._mistake(str(problem), Place(self._file, self._table.line, 1), expected="a row of cells")
+            self._mistake(
+                str(problem),
+                Place(self._file, self._table.line, 1),
+                expected="a row of cells",
+                remedy="close the quotation mark of the cell, or shorten it",
+            )
         if self._mistakes:
             first, *others = self._mistakes
             first.also = tuple(others[: _MOST_ERRORS - 1])
@@ -170,7 +180,7 @@ class _Reader:
 
     def _value(self, row: Mapping[str, Cell]) -> str:
         """Return the text of the value, a decimal comma made a point where the comma cuts no cells."""
-        text = _text(row, "value")
+        text = _text(row, "value") or _text(row, "comment")
         # "10,1%" is a value and its tolerance, whatever cuts the cells.
         return text.replace(",", ".") if "%" not in text and self._has_decimal_comma(text) else text
 

@@ -10,12 +10,13 @@ from collections.abc import Iterable, Iterator
 from dataclasses import replace
 
 from ..grammar.netlist import Part
+from ..grammar.property_names import leaves_out
 from ..grammar.values import Value, ValueTextError, read_value
 from ..lint.circuit.controllers import Controller
 from ..lint.circuit.loops import Regulation, Trip
 from ..lint.design import Design
 from ..lint.estimate import Unsolved
-from ..lint.parts_list import PartsList
+from ..lint.parts_list import PartData, PartsList
 from ..lint.preferred import is_a_size, is_preferred, nearest
 from ..lint.quantity import engineering, percent
 from ..lint.rule import netlist_rule, rule
@@ -254,9 +255,10 @@ def value_conflict(design: Design) -> Iterable[Verdict]:
     """Do the parts list and the netlist agree on every value?
 
     What:
-        Compares the value of each part in the two, as numbers: 4k7 and 4700 agree. Rows without a part
-        are listed, and so are fitted resistors, trimmers, capacitors and inductors without a row. Nothing
-        is asked where there is no parts list.
+        Compares the value of each part in the two, as numbers: 4k7 and 4700 agree. A part that the list
+        alone marks as not fitted (DNP) is a conflict too. Rows without a part are listed, and so are fitted
+        resistors, trimmers, capacitors and inductors without a row. Nothing is asked where there is no
+        parts list.
     Why:
         The board is built from the parts list and reviewed from the netlist: where they differ, another
         circuit is built than the one reviewed.
@@ -294,7 +296,11 @@ def _conflict(part: Part, design: Design, listed: PartsList) -> Verdict | None:
     """Return the verdict on a part whose value the parts list gives otherwise, None where they agree."""
     row = listed.rows.get(part.reference)
     drawn = design.circuit.reader.written(part)
-    if row is None or not row.value or not part.value or drawn is None:
+    if row is None:
+        return None
+    if leaves_out(row.value):
+        return _left_out(part, row)
+    if not row.value or not part.value or drawn is None:
         return None
     try:
         bought = read_value(row.value, _QUANTITIES[drawn.unit], spice=False)
@@ -313,6 +319,17 @@ def _conflict(part: Part, design: Design, listed: PartsList) -> Verdict | None:
     )
     # A text with two readings may be what makes the difference: connections.value-ambiguous says which.
     return replace(verdict, level=Level.WARNING) if drawn.ambiguous else verdict
+
+
+def _left_out(part: Part, row: PartData) -> Verdict:
+    return Verdict(
+        outcome=Outcome.FAIL,
+        message=f'{part.reference} is in the netlist, and the parts list leaves it out: "{row.value}"',
+        subject=part.reference,
+        parts=(part.reference,),
+        places=(part.place, row.place),
+        remedy="mark it as not fitted in the schematic, or correct the parts list",
+    )
 
 
 def _strays(design: Design, listed: PartsList) -> list[str]:

@@ -195,6 +195,30 @@ def test_cells_beyond_all_size(write: Write) -> None:
     assert "R1" in read_parts_list(write("x" * 200_000 + "\nRef,Value\nR1,1k\n")).rows
 
 
+@pytest.mark.parametrize("end", ["", "\n", "\n\n"])
+def test_a_quotation_mark_that_is_never_closed(write: Write, end: str) -> None:
+    error = refused(write(f'Ref,Value\nR1,1k\n"R2,1k\nR3,1k\nR4,1k{end}'))
+    assert (error.place.line, error.message) == (3, "a quotation mark opens a cell and is never closed")
+    assert error.remedy == "close the quotation mark of the cell, or shorten it"
+    assert list(read_parts_list(write(f'Ref,Note\nR1,"a\nb\n"{end}')).rows) == ["R1"]
+    assert list(read_parts_list(write(f'Ref,Note\nR1,5" long{end}')).rows) == ["R1"]
+
+
+def test_where_nothing_is_called_the_value_the_comment_is_it(write: Write) -> None:
+    rows = read_parts_list(write("Designator,Comment,Footprint\nR1,10k,0805\n")).rows
+    assert (rows["R1"].value, rows["R1"].package) == ("10k", "0805")
+    rows = read_parts_list(write("Designator,Comment,Value\nR1,beside U1,10k\nR2,1k,\n")).rows
+    assert [part.value for part in rows.values()] == ["10k", "1k"]
+
+
+@pytest.mark.parametrize("cell", ["n.a.", "NA", "TBD", "*", "unknown", "?", "-"])
+def test_cells_that_say_nothing(write: Write, cell: str) -> None:
+    part = read_parts_list(write(f"Ref,Value,Tolerance,P_max,V.max [V]\nR1,{cell},{cell},{cell},50\n")).rows[
+        "R1"
+    ]
+    assert (part.value, part.tolerance, part.power, part.voltage) == ("", None, None, 50.0)
+
+
 def test_the_number_of_parts_is_bounded(write: Write) -> None:
     rows = "".join(f"R{number}0000-R{number}9999,1k\n" for number in range(1, 24))
     error = refused(write("Ref,Value\n" + rows))

@@ -24,6 +24,11 @@ from pwmlint.lint.references import expand
         ("R5-R5", ["R5"]),
         ("  ,; ", []),
         ("Total", ["Total"]),
+        ("R1-3, 5-6, 8", ["R1", "R2", "R3", "R5", "R6", "R8"]),
+        ("C10 12", ["C10", "C12"]),
+        ("R1 & R2 and R3", ["R1", "R2", "R3"]),
+        ("Total 2", ["Total", "2"]),
+        ("10, R1", ["10", "R1"]),
     ],
 )
 def test_lists_and_ranges(text: str, references: list[str]) -> None:

@@ -206,6 +206,15 @@ def test_an_order_number_contradicts_nothing(ask: Ask) -> None:
     assert verdict.outcome is Outcome.PASS
 
 
+@pytest.mark.parametrize("value", ["DNP", "1k3 DNP", "not fitted"])
+def test_a_part_that_only_the_parts_list_leaves_out(ask: Ask, value: str) -> None:
+    parts = ALL.replace("R14,1.3 kohm", f"R14,{value}")
+    (verdict,) = ask("connections.value-conflict", board(), parts=parts)
+    assert (verdict.outcome, verdict.level) == (Outcome.FAIL, "error")
+    assert verdict.message == f'R14 is in the netlist, and the parts list leaves it out: "{value}"'
+    assert len(verdict.places) == 2
+
+
 def test_many_names_are_cut_short(ask: Ask) -> None:
     parts = ALL + "R101-R120,1k\n"
     (verdict,) = ask("connections.value-conflict", board(), parts=parts)
