@@ -123,8 +123,8 @@ def pull_down(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is each gate held at its source while the controller is without supply?
 
     What:
-        Looks for resistors from the gate to the source. A driver that holds it only while it has a supply
-        is named for a person to judge.
+        Looks for resistors from the gate to the source. A driver that holds it only while it has a supply is
+        named for a person to judge, and so is a bipolar follower whose base resistors hold at the source.
     Why:
         A gate that floats at power-up is charged through the switch's own drain capacitance as the input
         rises, and the switch conducts before anything controls it.
@@ -156,6 +156,9 @@ def pull_down(controller: Controller, design: Design) -> Iterable[Verdict]:
             yield _about(driven, Outcome.PASS, says)
         elif found.needs or found.parts:
             continue  # a part of which nothing is known stands between: connections or values speak of it
+        elif follower := _holding_follower(solver, driven):
+            says = f"no resistor holds the gate of {one.reference}, {follower} does to a junction's drop"
+            yield _about(driven, Outcome.REVIEW, says, remedy)
         elif driven.drivers:
             says = (
                 f"only {', '.join(driven.drivers)} holds the gate of {one.reference}, while it has a supply"
@@ -164,6 +167,20 @@ def pull_down(controller: Controller, design: Design) -> Iterable[Verdict]:
         else:
             says = f"nothing holds the gate of {one.reference} while the controller is without supply"
             yield _about(driven, Outcome.FAIL, says, remedy)
+
+
+def _holding_follower(solver: OutputDrive, driven: Driven) -> str:
+    """Return the follower that empties a gate without a supply, empty for none.
+
+    Its collector is at the switch's source and resistors hold its base there: a gate that is lifted by more
+    than a junction's drop makes it conduct.
+    """
+    one = driven.transistor
+    follower = solver.drive.transistors.get(solver.discharger(driven))
+    if follower is None or follower.field_effect is not False or follower.output != one.common:
+        return ""
+    base = replace(driven, transistor=replace(one, control=follower.control))
+    return follower.reference if isinstance(solver.discharge(base), Estimate) else ""
 
 
 @rule("gate-drive.turn-off", level="error", topic=_TOPIC)

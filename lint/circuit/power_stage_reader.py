@@ -54,7 +54,7 @@ class PowerStageReader:
         if not switches or len(switches) != len(found):
             outputs = f"the outputs of {self._controller.reference}"
             if not found:
-                return NotRecognised(f"no transistor at a winding is found behind {outputs}")
+                return NotRecognised(f"no transistor at a winding is found behind {outputs}{self._unread()}")
             return NotRecognised(f"a switch behind {outputs} has no side, or both, on a winding")
         nodes = dict.fromkeys(switch.node for switch in switches)
         touched = [winding for winding in self._drive.windings if not nodes.keys().isdisjoint(winding.nets)]
@@ -65,6 +65,12 @@ class PowerStageReader:
             return self._with_inductor(switches, touched[0])
         names = ", ".join(winding.name for winding in touched)
         return NotRecognised(f"the switches share no single winding, but touch {names}")
+
+    def _unread(self) -> str:
+        """Return the end of a sentence: of which transistors nothing tells the terminals, if of any."""
+        transistors = (p for p in self._circuit.parts.values() if self._circuit.kind(p) == "transistor")
+        unread = [p.reference for p in transistors if p.reference not in self._drive.transistors]
+        return f"; no names of pins tell the terminals of {', '.join(unread)}" if unread else ""
 
     # ------------------------------------------------------------------------------------- switches
 

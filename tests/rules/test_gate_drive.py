@@ -108,6 +108,11 @@ def test_the_gate_is_held(ask: Ask, outputs: str, parts: tuple[str, ...], outcom
     assert verdict.outcome is outcome
 
 
+def test_a_follower_that_holds_the_gate_by_itself_is_told_as_that(ask: Ask) -> None:
+    (verdict,) = ask("gate-drive.pull-down", board(EMITTER, (*N_BOOST, *EMPTIED[:3])))
+    assert verdict.message == "no resistor holds the gate of M1, Q8 does to a junction's drop"
+
+
 def test_a_base_needs_no_pull_down(ask: Ask) -> None:
     """False alarm guarded against: a bipolar switch without base current is off."""
     parts = ("Q1 SW B 0 QN", "R16 D1 B 220", "D9 SW OUT DS", "L1 VBAT SW 100u")

@@ -208,6 +208,29 @@ def test_stages_are_recognised(
     assert tuple(switch.reference for switch in found.switches) == switches
 
 
+def test_transistors_of_untold_terminals_are_named(tmp_path: Path) -> None:
+    board = """(edif mast (edifVersion 2 0 0) (edifLevel 0) (keywordMap (keywordLevel 0))
+ (library parts (edifLevel 0) (technology (numberDefinition))
+  (cell FET (cellType GENERIC) (view n (viewType NETLIST) (interface (port &1) (port &2) (port &3))))
+  (cell PWM (cellType GENERIC) (view n (viewType NETLIST) (interface
+   (port &1) (port &2) (port &3) (port &4) (port &5) (port &6) (port &7) (port &8)
+   (port &9) (port &10) (port &11) (port &12) (port &13) (port &14) (port &15) (port &16))))
+  (cell mast (cellType GENERIC) (view n (viewType NETLIST) (interface) (contents
+   (instance U1 (viewRef n (cellRef PWM)) (property VALUE (string "494")))
+   (instance M1 (viewRef n (cellRef FET)) (property VALUE (string "NMOS")))
+   (net GND (joined (portRef &7 (instanceRef U1)) (portRef &3 (instanceRef M1))))
+   (net DRV (joined (portRef &9 (instanceRef U1)) (portRef &1 (instanceRef M1))))
+   (net SW (joined (portRef &2 (instanceRef M1))))))))
+ (design mast (cellRef mast (libraryRef parts))))
+"""
+    path = tmp_path / "mast.edf"
+    path.write_text(board, encoding="utf-8")
+    design = Design(read(path))
+    found = design.power_stage(design.controllers[0])
+    assert isinstance(found, NotRecognised)
+    assert found.reason.endswith("no names of pins tell the terminals of M1")
+
+
 def test_the_brief_calls_every_stage_of_one_switch_single_ended(tmp_path: Path) -> None:
     found = stage(tmp_path, EMITTER, FLYBACK)
     assert isinstance(found, PowerStage)
