@@ -49,3 +49,16 @@ def pump() -> Board:
         return "\n".join(["irrigation pump", *lines, *more, ".model PM PMOS", ".model DS D", ".end", ""])
 
     return write
+
+
+@pytest.fixture
+def without_pins() -> Callable[..., str]:
+    """Return a function that writes the lines of a brief which map U1's pins, but not the numbers given."""
+    functions = ["1IN+", "1IN-", "FEEDBACK", "DTC", "CT", "RT", "GND", "C1", "E1", "E2", "C2", "VCC"]
+    functions += ["OUTPUT CTRL", "REF", "2IN-", "2IN+"]
+
+    def write(*numbers: int) -> str:
+        pins = ["-" if number in numbers else name for number, name in enumerate(functions, start=1)]
+        return f"\n[controllers.U1]\npins = {pins}\n"
+
+    return write

@@ -13,6 +13,9 @@ from pwmlint.lint import Outcome, Verdict
 
 Ask = Callable[..., list[Verdict]]
 Board = Callable[..., str]
+Mapping = Callable[..., str]
+
+AMPLIFIER_INPUTS = (1, 2, 15, 16)
 
 RAILS = """
 [rails.VBAT]
@@ -405,47 +408,13 @@ def test_a_loop_that_regulates_to_nothing_has_no_error_to_share(ask: Ask, pump: 
     "rule", ["input-open", "unused", "common-mode", "polarity", "compensation", "input-error"]
 )
 def test_amplifiers_that_are_not_mapped_are_left_to_the_rule_that_says_so(
-    ask: Ask, pump: Board, rule: str
+    ask: Ask, pump: Board, without_pins: Mapping, rule: str
 ) -> None:
-    pins = [
-        "-",
-        "-",
-        "FEEDBACK",
-        "DTC",
-        "CT",
-        "RT",
-        "GND",
-        "C1",
-        "E1",
-        "E2",
-        "C2",
-        "VCC",
-        "OUTPUT CTRL",
-        "REF",
-    ]
-    names = ", ".join(f'"{name}"' for name in [*pins, "-", "-"])
-    assert ask(f"amplifier.{rule}", pump(), brief=f"{RAILS}\n[controllers.U1]\npins = [{names}]\n") == []
+    assert ask(f"amplifier.{rule}", pump(), brief=RAILS + without_pins(*AMPLIFIER_INPUTS)) == []
 
 
 @pytest.mark.parametrize("rule", ["compensation", "feedback-pin"])
 def test_a_feedback_pin_that_is_not_mapped_is_left_to_the_rule_that_says_so(
-    ask: Ask, pump: Board, rule: str
+    ask: Ask, pump: Board, without_pins: Mapping, rule: str
 ) -> None:
-    pins = [
-        "1IN+",
-        "1IN-",
-        "-",
-        "DTC",
-        "CT",
-        "RT",
-        "GND",
-        "C1",
-        "E1",
-        "E2",
-        "C2",
-        "VCC",
-        "OUTPUT CTRL",
-        "REF",
-    ]
-    names = ", ".join(f'"{name}"' for name in [*pins, "2IN-", "2IN+"])
-    assert ask(f"amplifier.{rule}", pump(), brief=f"[controllers.U1]\npins = [{names}]\n") == []
+    assert ask(f"amplifier.{rule}", pump(), brief=without_pins(3)) == []
