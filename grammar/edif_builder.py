@@ -16,7 +16,7 @@ from lark import Lark, Token, Transformer
 
 from .edif_forms import CellRef, Designator, Edif, Instance, JoinedRun, Net, PinNumber, Property
 from .edif_make import NAMED_FORMS, PLAIN_FORMS, edif
-from .edif_names import Name, identifier
+from .edif_names import Name, identifier, shown
 from .edif_runs import (
     read_instance,
     read_net,
@@ -128,7 +128,7 @@ class FormBuilder(Transformer[Token, Edif]):
 
     def rename(self, items: _Items) -> Name:
         """`(rename identifier "text")` in another spelling than the usual one."""
-        return items[1]._replace(display=items[2])
+        return items[1]._replace(display=shown(items[2], items[1].identifier))
 
     def display(self, items: _Items) -> str:
         """`(stringDisplay "text" ...)`."""

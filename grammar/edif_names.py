@@ -56,6 +56,11 @@ def decode(text: str) -> str:
     return text
 
 
+def shown(name: str, word: str) -> str:
+    """Return the name that a rename gives; the identifier `word` where it is blank, for that names no net."""
+    return name if name and not name.isspace() else word
+
+
 def _characters(escape: re.Match[str]) -> str:
     codes = escape[1].split()
     if any(len(code) > 3 or int(code) > _HIGHEST_CODE for code in codes):

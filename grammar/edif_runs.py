@@ -19,7 +19,7 @@ from .edif_forms import (
     PinNumber,
     Property,
 )
-from .edif_names import Name, decode
+from .edif_names import Name, decode, shown
 
 _DEEPEST = 8  # as the terminal LIST
 
@@ -94,7 +94,9 @@ def read_instance(token: str, start: int) -> tuple[Name, str, InstanceRun]:
     plain, named, renamed, display, view_ref, *_ = match.groups()
     word = plain or named or renamed
     group = 1 if plain else 2 if named else 3
-    name = Name(word, word if display is None else decode(display), start + _word_start(match, group))
+    name = Name(
+        word, word if display is None else shown(decode(display), word), start + _word_start(match, group)
+    )
     return name, view_ref, InstanceRun(start + match.end(), start + len(token))
 
 
@@ -105,7 +107,9 @@ def read_net(token: str, start: int) -> tuple[Name, JoinedRun]:
     plain, renamed, display = match.groups()
     word = plain or renamed
     name = Name(
-        word, word if display is None else decode(display), start + _word_start(match, 1 if plain else 2)
+        word,
+        word if display is None else shown(decode(display), word),
+        start + _word_start(match, 1 if plain else 2),
     )
     joined = _JOINED_FORM.match(token, match.end())
     assert joined is not None
@@ -139,7 +143,7 @@ def read_rename(token: str, start: int) -> Name:
     """Return the name that a rename defines."""
     match = _RENAME_FORM.match(token)
     assert match is not None
-    return Name(match[1], decode(match[2]), start + _word_start(match, 1))
+    return Name(match[1], shown(decode(match[2]), match[1]), start + _word_start(match, 1))
 
 
 def read_view_ref(token: str) -> CellRef:

@@ -31,6 +31,8 @@ from .value_words import (
 
 _LONGEST_TEXT = 400
 
+_GREATEST = 1e12  # V, A or W; the square of what is beyond leaves the range of a float sooner or later
+
 _EXPECTED = {
     "resistance": "a resistance such as 4k7, 100 ohm or 10M",
     "capacitance": "a capacitance with its unit, such as 100nF or 4u7",
@@ -192,6 +194,10 @@ def _refusal(value: Value, quantity: str, text: str) -> _Refusal | None:
     numbers = (value.number, value.voltage, value.power, value.current, *(value.tolerance or ()))
     if not all(isfinite(number) for number in numbers if number is not None):
         return _Refusal(f"{_short(text)} holds a number that is not finite", _column(text))
+    if max(map(abs, filter(None, (value.voltage, value.power, value.current))), default=0.0) > _GREATEST or (
+        quantity in ("voltage", "current", "power") and abs(value.number) > _GREATEST
+    ):
+        return _Refusal(f"{_short(text)} is beyond anything on a board", _column(text))
     if value.number < 0 and quantity in ("resistance", "capacitance", "inductance", "power"):
         return _Refusal(f"{_short(text)} is a negative {quantity}", _column(text))
     return None

@@ -21,6 +21,9 @@ _PLAIN_UNITS = frozenset({"%", "degC", "K", "ppm/K", ""})
 # Less than a thousandth of a picofarad or picoampere is the rounding of a zero.
 _LEAST_SHOWN = 1e-15
 
+# Digits before the point from which on a number is printed with a power of ten: no part is of such a size.
+_MOST_DIGITS = 9
+
 _SYMBOLS = {"ohm": "Ω", "degC": "°C"}
 
 
@@ -95,6 +98,8 @@ def engineering(value: float, unit: str = "", digits: int = 3) -> str:
     exponent = floor(log10(abs(rounded)))
     power = 0 if unit in _PLAIN_UNITS else max(-12, min(9, 3 * floor(exponent / 3)))
     decimals = max(0, digits - 1 - (exponent - power))
+    if exponent - power >= _MOST_DIGITS:
+        return f"{rounded:.{digits - 1}e} {symbol}".strip()
     number = f"{rounded / 10.0**power:.{decimals}f}"
     return f"{number} {_PREFIXES[power]}{symbol}".strip()
 

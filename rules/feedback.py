@@ -14,7 +14,7 @@ from ..lint.circuit.loops import Regulation
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, reports, unsolved
-from ..lint.preferred import nearest, nearest_pair
+from ..lint.preferred import is_a_size, nearest, nearest_pair
 from ..lint.quantity import Spread, engineering, percent
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
@@ -136,9 +136,9 @@ def _pair(design: Design, amplifier: Amplifier, found: Regulation, rail: Rail) -
     divider = design.divider(amplifier)
     wanted, set_point = rail.voltage.nominal, found.inputs.spread.nominal
     values = [design.nominal(part) or 0.0 for part in divider or ()]
-    if divider is None or not 0 < set_point < wanted:
+    ratio = wanted / set_point - 1 if 0 < set_point < wanted else 0.0
+    if divider is None or not all(map(is_a_size, (*values, ratio * values[1]))):
         return f"change the network so that {engineering(wanted, 'V')} makes the amplifier's inputs equal"
-    ratio = wanted / set_point - 1
     top = nearest(ratio * values[1], "E96")
     makes = engineering(set_point * (1 + top / values[1]), "V", 4)
     alone = f"{divider[0].reference} {engineering(top, 'ohm')} (E96) alone makes {makes}"

@@ -14,7 +14,7 @@ from ..lint.circuit.reference_load import ReferenceLoad
 from ..lint.design import Design
 from ..lint.estimate import Estimate, Unsolved
 from ..lint.judge import judge, unsolved
-from ..lint.preferred import neighbours
+from ..lint.preferred import is_a_size, neighbours
 from ..lint.quantity import Spread, engineering
 from ..lint.rule import rule
 from ..lint.verdict import Limit, Outcome, Verdict
@@ -125,7 +125,7 @@ def _less(found: ReferenceLoad, design: Design, net: str, limit: float) -> str:
     for name, current in found.branches:
         part = design.netlist.parts.get(name)
         left = current.spread.maximum - excess
-        if part is not None and _can_be_raised(part, design) and left > 0:
+        if part is not None and left > 0 and _can_be_raised(part, current.spread.maximum / left, design):
             return _raised(part, current.spread.maximum / left, design, net)
     factor = found.total.spread.maximum / limit
     return f"raise the resistances of all branches {engineering(factor)} times, or feed some from the supply"
@@ -135,8 +135,9 @@ def _less(found: ReferenceLoad, design: Design, net: str, limit: float) -> str:
 _LINK = 1e-3
 
 
-def _can_be_raised(part: Part, design: Design) -> bool:
-    return design.circuit.kind(part) == "resistor" and (design.nominal(part) or 0.0) > _LINK
+def _can_be_raised(part: Part, factor: float, design: Design) -> bool:
+    value = design.nominal(part) or 0.0
+    return design.circuit.kind(part) == "resistor" and value > _LINK and is_a_size(value * factor)
 
 
 def _raised(part: Part, factor: float, design: Design, net: str) -> str:

@@ -222,7 +222,7 @@ def _charging(controller: Controller, design: Design, seconds: float) -> str:
     current = farads * abs(found.output.spread.nominal) / seconds
     trip = design.trip(controller)
     share = ""
-    if isinstance(trip, Trip):
+    if isinstance(trip, Trip) and trip.current.spread.nominal > 0:
         share = f", {percent(current / trip.current.spread.nominal)} of the current limit"
     return f"; charging the output's {engineering(farads, 'F')} takes {engineering(current, 'A')}{share}"
 

@@ -10,6 +10,7 @@ from math import log, sqrt
 from ..grammar.netlist import Part
 from ..lint.circuit.bleeder import Bleeder, bleeder
 from ..lint.design import Design
+from ..lint.preferred import is_a_size
 from ..lint.quantity import Spread, engineering
 from ..lint.rule import netlist_rule
 from ..lint.verdict import Limit, Outcome, Verdict
@@ -120,8 +121,9 @@ class _Across:
 
     @classmethod
     def of(cls, design: Design, parts: Iterable[Part]) -> _Across:
-        """Return those of `parts` that have a value, together."""
-        values = {part.reference: value for part in parts if (value := design.circuit.value(part))}
+        """Return those of `parts` that have a value which a part can have, together."""
+        found = ((part.reference, design.circuit.value(part)) for part in parts)
+        values = {name: value for name, value in found if value and is_a_size(value.spread.nominal)}
         spreads = [value.spread for value in values.values()]
         ends = (sum(s.minimum for s in spreads), sum(s.nominal for s in spreads))
         return cls(tuple(values), Spread(*ends, sum(s.maximum for s in spreads), "F"))
@@ -134,7 +136,7 @@ class _Across:
 
     def energy(self, volts: float) -> float:
         """Return the greatest energy (J) at a voltage."""
-        return self.capacitance.maximum * volts**2 / 2
+        return self.capacitance.maximum * volts * volts / 2
 
     def is_dangerous(self, volts: float) -> bool:
         """Tell whether they hold, at a voltage, what can shock or burn."""

@@ -458,6 +458,17 @@ def test_references_that_lead_nowhere() -> None:
 # ----------------------------------------------------------------------------------------------- A4 names
 
 
+@construct("A4 rename with a blank string: the identifier counts")
+@pytest.mark.parametrize("blank", ['""', '"  "', '"\n"', '(stringDisplay "" (display X))'])
+def test_blank_rename(blank: str) -> None:
+    netlist = read(
+        f'(instance (rename R1 {blank}) {R} (property VALUE (string "1k")))'
+        f"(net (rename SENSE {blank}) (joined (portRef &1 (instanceRef R1))))"
+    )
+    assert list(netlist.parts) == ["R1"]
+    assert [pin.net for pin in netlist.parts["R1"].pins] == ["SENSE", ""]
+
+
 @construct("A4 rename with a stringDisplay, identifier as a name")
 def test_renames() -> None:
     netlist = read(

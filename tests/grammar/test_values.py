@@ -186,6 +186,19 @@ def test_impossible_values(text: str, column: int, message: str) -> None:
         assert caught.value.column == column
 
 
+@pytest.mark.parametrize(
+    ("text", "quantity"), [("1e13", "voltage"), ("-1e300", "voltage"), ("2e12", "current")]
+)
+def test_a_source_beyond_anything_on_a_board_is_refused(text: str, quantity: str) -> None:
+    with pytest.raises(ValueTextError, match="beyond anything on a board"):
+        simulate(text, quantity)
+
+
+def test_a_rating_beyond_anything_on_a_board_is_refused() -> None:
+    with pytest.raises(ValueTextError, match="beyond anything on a board"):
+        read("10k 1e13V", "resistance")
+
+
 @pytest.mark.parametrize("quantity", ["resistance", "capacitance", "inductance", "power"])
 def test_negative_values_of_parts_are_errors(quantity: str) -> None:
     with pytest.raises(ValueTextError, match="negative"):

@@ -64,7 +64,7 @@ def test_a_part_gone(review_text: ReviewText, pump: Board, part: str) -> None:
     assert review_text(pump(**{part: None}), brief=BRIEF).verdicts
 
 
-@pytest.mark.parametrize("value", ["0", "", "1e-30"])
+@pytest.mark.parametrize("value", ["0", "", "1e-30", "1e16", "1e300", "1u"])
 @pytest.mark.parametrize("part", [part for part in PARTS if part[0] in "RC"])
 def test_a_value_that_no_part_has(review_text: ReviewText, pump: Board, part: str, value: str) -> None:
     first, second = lines_of(pump())[part].split()[:2]
