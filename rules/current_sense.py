@@ -209,8 +209,10 @@ def sense_polarity(controller: Controller, design: Design) -> Iterable[Verdict]:
     amplifier = next(a for a in design.amplifiers(controller) if a.use == "current")
     assert amplifier.sense is not None
     sense = amplifier.sense
-    # The input's return leaves the board at the near end: there the near end is the lower one.
-    right = found.reversed == (stage.sensed == "input")
+    # Where the current enters at the far end, as from a supply, the near end is the lower one.
+    far = design.potential(sense.far)
+    from_supply = far is not None and far.spread.minimum > 0
+    right = found.reversed == (stage.sensed == "input" or (stage.sensed == "switch" and from_supply))
     does = "brings the amplifier's inputs together" if right else "drives the amplifier's inputs apart"
     yield Verdict(
         outcome=Outcome.PASS if right else Outcome.FAIL,

@@ -96,7 +96,8 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
     """Is an amplifier that is not used tied off so that its output stays off?
 
     What:
-        Computes how far in- stands above in+ on an amplifier that senses neither an output nor a current.
+        Computes how far in- stands above in+ on an amplifier that senses neither an output nor a current. One
+        that follows a signal must have a threshold above ground.
     Why:
         The amplifiers share one output, and the one that asks for the shorter pulse wins. An unused one
         whose inputs are joined, or nearly equal, is decided by its own offset: some boards run, some
@@ -116,6 +117,8 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
     """
     least = controller.profile.practice("amplifier.unused-difference")
     for amplifier in mapped(controller, design):
+        if amplifier.use == "signal" and _rests_at_ground(controller, design, amplifier):
+            yield _decided_by_offset(controller, amplifier)
         if amplifier.use != "unused" or not _driven(amplifier, design):
             continue
         found = design.difference(amplifier.minus, amplifier.plus)
@@ -134,6 +137,25 @@ def unused(controller: Controller, design: Design) -> Iterable[Verdict]:
             remedy=f"tie {controller.pins[input_roles(amplifier)[0]].name} to ground and "
             f"{controller.pins[input_roles(amplifier)[1]].name} to the reference",
         )
+
+
+def _rests_at_ground(controller: Controller, design: Design, amplifier: Amplifier) -> bool:
+    """Tell whether in- of an amplifier stands at ground, and a resistor to ground is on its in+."""
+    minus = design.reach(controller, amplifier.minus).ends
+    plus = design.reach(controller, amplifier.plus).ends
+    return bool(minus) and all(map(design.is_ground, minus)) and any(map(design.is_ground, plus))
+
+
+def _decided_by_offset(controller: Controller, amplifier: Amplifier) -> Verdict:
+    plus, minus = (controller.pins[role].name for role in input_roles(amplifier))
+    return Verdict(
+        outcome=Outcome.REVIEW,
+        message=f"{minus} stands at ground, and so does {plus} while nothing drives it: the offset decides",
+        nets=(amplifier.plus, amplifier.minus),
+        pins=input_roles(amplifier),
+        source=controller.profile.figure("amplifier.offset").source,
+        remedy=f"put {minus} at a positive threshold",
+    )
 
 
 _REGIMES = (

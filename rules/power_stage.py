@@ -58,7 +58,8 @@ def power_stage(controller: Controller, design: Design) -> Iterable[Verdict]:
         message = f"no power stage is recognised: {stage.reason}"
         yield Verdict(outcome=Outcome.OPEN, message=message, needs=(need,))
         return
-    recognised = f"the power stage is recognised as {stage.topology}, from {stage.input} to {stage.output}"
+    ends = f"{stage.input or 'a supply not seen'} to {stage.output or 'several outputs'}"
+    recognised = f"the power stage is recognised as {stage.topology}, from {ends}"
     if topology is not None and stage.family != topology:
         yield _doubtful(f"{recognised}; the brief tells {topology}", stage.evidence)
     elif output is not None and stage.output != output:

@@ -235,7 +235,8 @@ class Converter:
     @cached_property
     def power_stage(self) -> PowerStage | NotRecognised:
         """Return the power stage that the outputs drive, or why none was recognised."""
-        return PowerStageReader(self.circuit, self.known, self.controller, self.amplifiers).read()
+        told = (self.controller, self.amplifiers, self._declared_output)
+        return PowerStageReader(self.circuit, self.known, *told).read()
 
     @cached_property
     def output_drive(self) -> OutputDrive:

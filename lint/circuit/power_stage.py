@@ -26,6 +26,15 @@ class Switch:
         """Return the switch's reference designator."""
         return self.driven.transistor.reference
 
+    @property
+    def sentence(self) -> str:
+        """Return a sentence on it: what it is, what it switches and who drives it."""
+        outputs = " and ".join(str(number) for number in self.driven.outputs)
+        through = f" through {', '.join(self.driven.drivers)}" if self.driven.drivers else ""
+        transistor = self.driven.transistor
+        says = f"{self.reference} ({transistor.kind}) switches {self.node} to {self.rail}"
+        return f"{says}, driven by output {outputs}{through}" if transistor.control else says
+
 
 @dataclass(frozen=True, slots=True)
 class PowerStage:

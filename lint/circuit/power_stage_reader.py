@@ -18,8 +18,10 @@ from .drive import Drive, Driven
 from .graph import Circuit
 from .potentials import Potential
 from .power_stage import NotRecognised, PowerStage, Switch
-from .transistors import Transistor
 from .windings import Winding
+
+# From this capacitance (F) on a capacitor feeds a switch's pulses; less filters (common practice, no source).
+_BUFFER = 1e-6
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,6 +40,7 @@ class PowerStageReader:
         known: Mapping[str, Potential],
         controller: Controller,
         amplifiers: Sequence[Amplifier],
+        declared_output: str = "",
     ) -> None:
         self._circuit = circuit
         self._known = known
@@ -45,7 +48,8 @@ class PowerStageReader:
         self._amplifiers = amplifiers
         self._drive = Drive(circuit, known, controller)
         voltage = amplifier_for(amplifiers, "voltage")
-        self._sensed_outputs = voltage.outputs if voltage is not None else ()
+        declared = (declared_output,) if declared_output else ()
+        self._sensed_outputs = voltage.outputs if voltage is not None else declared
 
     def read(self) -> PowerStage | NotRecognised:
         """Return the power stage, or why none was recognised."""
@@ -262,7 +266,7 @@ class PowerStageReader:
         says: str,
         transformer: str = "",
     ) -> PowerStage:
-        evidence = [_describe(switch) for switch in switches]
+        evidence = [switch.sentence for switch in switches]
         if inductor is not None:
             evidence.append(f"{inductor.name} lies between {' and '.join(inductor.nets)}")
         evidence.append(says)
@@ -289,8 +293,9 @@ class PowerStageReader:
             return ""
         ends = tuple(net for net in (sense.near, sense.far) if not self._is_ground(net))
         mains = {net for switch in switches for net in switch.driven.transistor.mains}
-        if any(net in mains and not self._is_stiff(net) for net in ends):
-            return "switch"
+        at_switch = [net for net in ends if net in mains and not self._is_stiff(net)]
+        if at_switch:
+            return "input" if any(self._is_buffered(net) for net in at_switch) else "switch"
         if output in ends:
             return "output"
         for net in ends:
@@ -299,6 +304,14 @@ class PowerStageReader:
             if net == source or self._share_a_part(net, source):
                 return "input"
         return ""
+
+    def _is_buffered(self, net: str) -> bool:
+        """Tell whether a capacitor from a net to ground takes the pulses of the switch off what feeds it."""
+        parts = (connection.part for connection in self._circuit.connections(net))
+        capacitors = (p for p in parts if self._circuit.kind(p) == "capacitor")
+        grounded = (p for p in capacitors if any(map(self._is_ground, self._circuit.other_nets(p, net))))
+        values = (self._circuit.value(part) for part in grounded)
+        return any(value is not None and value.spread.nominal >= _BUFFER for value in values)
 
     def _share_a_part(self, one: str, other: str) -> bool:
         """Tell whether a load, a connector or a capacitor stands between two nets."""
@@ -327,13 +340,3 @@ def _inside(part: Part) -> list[_Diode]:
     if len(part.pins) != 3 or len(anodes) + len(cathodes) != 3:
         return []
     return [_Diode(part.reference, anode, cathode) for anode in anodes for cathode in cathodes]
-
-
-def _describe(switch: Switch) -> str:
-    """Return a sentence on one switch: what it is, what it switches and who drives it."""
-    driven = switch.driven
-    outputs = " and ".join(str(number) for number in driven.outputs)
-    through = f" through {', '.join(driven.drivers)}" if driven.drivers else ""
-    transistor: Transistor = driven.transistor
-    says = f"{switch.reference} ({transistor.kind}) switches {switch.node} to {switch.rail}"
-    return says if not transistor.control else f"{says}, driven by output {outputs}{through}"

@@ -138,6 +138,27 @@ def test_a_current_that_trips_the_limit_flows_the_right_way(
     assert "brings the amplifier's inputs together" in verdict.message
 
 
+def test_the_current_of_a_high_side_switch_enters_from_its_supply(ask: Ask, pump: Board) -> None:
+    """False alarm guarded against: the switch's end of the resistor falls as the current rises."""
+    high = {
+        "U1": "FB SET COMP DTC CT RT 0 DRN 0 0 DRN VBAT 0 REF LOW HIGH 494",
+        "R9": "VBAT HIGH 10k 0.1%",
+        "R10": "HIGH 0 2k 0.1%",
+        "R11": "VSW LOW 10k 0.1%",
+        "R15": "LOW 0 2k 0.1%",
+        "R16": "REF LOW 100k 1%",
+        "R12": "VBAT VSW 0.02 1%",
+        "R13": "VSW GATE 1k",
+        "M1": "SW GATE VSW VSW PM",
+        "J2": "VOUT 0 PUMP",
+    }
+    rails = '[rails.VBAT]\nvoltage = "20 V .. 28 V"\n'
+    (verdict,) = ask("current-limit.sense-polarity", pump(**high), brief=rails)
+    assert (verdict.outcome, verdict.message[:14]) == (Outcome.PASS, "switch current")
+    (verdict,) = ask("current-limit.sense-polarity", pump("C9 VSW 0 470u", **high), brief=rails)
+    assert (verdict.outcome, verdict.message[:13]) == (Outcome.PASS, "input current")
+
+
 def test_a_current_that_drives_the_inputs_apart_never_trips_the_limit(ask: Ask, pump: Board) -> None:
     exchanged = {**HIGH_SIDE, "R9": "VX LIM 1k 1%", "R11": "VOUT SNS 1k 1%"}
     (verdict,) = ask("current-limit.sense-polarity", pump(**exchanged), brief=RAILS)

@@ -157,6 +157,14 @@ def test_two_amplifiers_in_use_leave_none_to_tie_off(ask: Ask, pump: Board) -> N
     assert ask("amplifier.unused", pump(**OVER_VOLTAGE)) == []
 
 
+def test_a_signal_is_not_compared_with_ground(ask: Ask, pump: Board) -> None:
+    over_voltage = {**NO_LIMIT, "U1": inputs(plus="OVER", minus="LEVEL"), "D9": "OVER VOUT DS"}
+    (verdict,) = ask("amplifier.unused", pump("R20 OVER 0 10k", "R21 LEVEL 0 10k", **over_voltage))
+    assert verdict.outcome is Outcome.REVIEW
+    assert verdict.message.endswith("the offset decides")
+    assert ask("amplifier.unused", pump("R20 OVER 0 10k", "R21 LEVEL REF 10k", **over_voltage)) == []
+
+
 def test_a_tie_off_of_unknown_voltage_is_open(ask: Ask, pump: Board) -> None:
     (verdict,) = ask(
         "amplifier.unused", pump("J9 AUX 0 X", **{**NO_LIMIT, "U1": inputs(plus="0", minus="AUX")})
