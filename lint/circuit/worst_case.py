@@ -200,7 +200,7 @@ class Samples:
 
         Between the corners a quantity may turn round and come back: here it is caught on the way.
         """
-        return (self.star() + self._nominal) / 2
+        return self.star() / 2 + self._nominal / 2  # halved first: the sum of two vast values overflows
 
     def star_about(self, centre: Array, indices: Sequence[int]) -> Array:
         """Return two rows a parameter about any centre: it alone at its low end, then at its high end."""
