@@ -23,7 +23,7 @@ from .circuit.duty import needed_duty
 from .circuit.envelope import WITH_FAULTS, Operated, envelope
 from .circuit.graph import Circuit
 from .circuit.growth import Growth
-from .circuit.loops import Fault, Regulation, Trip
+from .circuit.loops import Fault, FeedbackLoad, Regulation, Trip
 from .circuit.output_drive import OutputDrive
 from .circuit.potentials import Potential, known_potentials
 from .circuit.power_stage import NotRecognised, PowerStage
@@ -142,9 +142,9 @@ class Design:
         """Return by how much (V) the direct voltage of a net stands above that of another."""
         return self._keep("difference", f"{net} - {other}", lambda: difference(self._growth(), net, other))
 
-    def feedback_current(self, controller: Controller) -> Estimate | Unsolved:
-        """Return the current (A) out of a controller's feedback pin, its voltage anywhere in its range."""
-        return self.converter(controller).feedback_current
+    def feedback_load(self, controller: Controller) -> FeedbackLoad | Unsolved:
+        """Return what hangs on a controller's feedback pin, its voltage anywhere in its control range."""
+        return self.converter(controller).feedback_load
 
     def compensation(self, output: str, inverting: str) -> Compensation | None:
         """Return the feedback path from an amplifier's output net to its inverting input's net."""

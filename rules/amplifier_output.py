@@ -113,21 +113,26 @@ def feedback_pin(controller: Controller, design: Design) -> Iterable[Verdict]:
     net = controller.net("feedback")
     if not net:
         return
-    found = design.feedback_current(controller)
+    found = design.feedback_load(controller)
     if isinstance(found, Unsolved):
         yield unsolved(found, "current at the feedback pin", pins=("feedback",))
         return
     into = controller.profile.figure("feedback.external-sink")
     out = controller.profile.figure("feedback.source")
-    yield judge(
-        found,
+    verdict = judge(
+        found.current,
         Limit(-(into.maximum or 0.0), out.minimum, "A"),
-        f"{controller.pins['feedback'].name} delivers {found.spread} to what hangs on it",
+        f"{controller.pins['feedback'].name} delivers {found.current.spread} to what hangs on it",
         source=f"{into.source}; {out.source}",
         rating=True,
         pins=("feedback",),
         remedy="raise the resistances on the pin",
     )
+    if found.untold and verdict.outcome is Outcome.PASS:
+        message = f"{verdict.message}; {'; '.join(found.untold)}"
+        needs = ("a look by hand at what these parts draw from the pin, or feed into it",)
+        verdict = replace(verdict, outcome=Outcome.OPEN, message=message, needs=needs)
+    yield verdict
 
 
 @rule("amplifier.input-error", level="note", topic="error amplifier")

@@ -18,7 +18,7 @@ from .controllers import Controller
 from .drive import Drive
 from .graph import Circuit
 from .growth import Growth
-from .loops import Fault, Loops, Regulation, Trip
+from .loops import Fault, FeedbackLoad, Loops, Regulation, Trip
 from .output_drive import OutputDrive
 from .potentials import Potential
 from .power_stage import NotRecognised, PowerStage
@@ -150,9 +150,9 @@ class Converter:
         return self._loops.trip(amplifier, output)
 
     @cached_property
-    def feedback_current(self) -> Estimate | Unsolved:
-        """Return the current (A) out of the feedback pin, its voltage anywhere in its range."""
-        return self._loops.feedback_current()
+    def feedback_load(self) -> FeedbackLoad | Unsolved:
+        """Return what hangs on the feedback pin, its voltage anywhere in its control range."""
+        return self._loops.feedback_load()
 
     def output_after(self, fault: Fault) -> float:
         """Return how far from ground (V) the output goes after a resistor has failed.

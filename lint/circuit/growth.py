@@ -33,6 +33,10 @@ _PIN_CURRENTS = {"dead time": "dead-time.bias-current", "supply": "supply.curren
 _SWITCHING_ROLES = ("output 1 collector", "output 1 emitter", "output 2 collector", "output 2 emitter")
 
 
+# Parts that draw no direct current.
+_IDLE = frozenset({"capacitor", "test point", "coupling"})
+
+
 @dataclass(frozen=True, slots=True)
 class Blocked:
     """A net on which a part sits that linear analysis does not cover."""
@@ -89,6 +93,16 @@ class Growth:
     def network(self) -> Network:
         """Return the network grown so far, ready for the solver."""
         return Network(tuple(self.elements.values()), dict(self.potentials))
+
+    def untold(self, net: str) -> tuple[str, ...]:
+        """Return what is on the net, draws current, and has no part in the network: each as a sentence."""
+        told = {*self.parts, *(controller.reference for controller in self.controllers)}
+        parts = {c.part.reference: self.circuit.kind(c.part) for c in self.circuit.connections(net)}
+        return tuple(
+            f"what {reference} ({kind}) draws from {net} is not known"
+            for reference, kind in parts.items()
+            if reference not in told and kind not in _IDLE
+        )
 
     def junctions(self) -> tuple[Junction, ...]:
         """Return the diodes on the network as junctions, their drops among the parameters."""

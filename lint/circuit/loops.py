@@ -44,6 +44,18 @@ class Fault:
 
 
 @dataclass(frozen=True, slots=True)
+class FeedbackLoad:
+    """What hangs on the feedback pin.
+
+    current: out of the pin into it, in A
+    untold:  parts on the net whose current cannot be told, each as a sentence
+    """
+
+    current: Estimate
+    untold: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class Regulation:
     """An output in regulation.
 
@@ -193,14 +205,14 @@ class Loops:
                 growth.use(part)
                 growth.add(Resistor(part.reference, sense.near, sense.far, value))
 
-    def feedback_current(self) -> Estimate | Unsolved:
-        """Return the current (A) out of the feedback pin into what hangs on it, over its control range."""
+    def feedback_load(self) -> FeedbackLoad | Unsolved:
+        """Return what hangs on the feedback pin, the pin's voltage anywhere in its control range."""
         net = self.controller.net("feedback")
         if not net:
             return Unsolved(f"the feedback pin of {self.controller.reference} is not mapped")
         growth = Growth(self.circuit, self.known, (self.controller,)).grow(net, from_known=True)
         found = estimate(growth, {"current": (lambda s: s.current_out_of(net), "A")})
-        return found if isinstance(found, Unsolved) else found["current"]
+        return found if isinstance(found, Unsolved) else FeedbackLoad(found["current"], growth.untold(net))
 
     def _without(self, net: str) -> dict[str, Potential]:
         return {name: potential for name, potential in self.known.items() if name != net}

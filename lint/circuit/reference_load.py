@@ -67,8 +67,7 @@ def reference_load(
     if isinstance(certain, Unsolved):
         return certain
     branches = sorted(found.items(), key=lambda item: (-item[1].spread.maximum, item[0]))
-    unknown = _unknown(growth, controllers, net)
-    return ReferenceLoad(total, tuple(branches), unknown, tuple(bounded), certain["total"])
+    return ReferenceLoad(total, tuple(branches), growth.untold(net), tuple(bounded), certain["total"])
 
 
 def _bounded(growth: Growth, reference: Potential) -> dict[str, Potential]:
@@ -88,18 +87,3 @@ def _bounded(growth: Growth, reference: Potential) -> dict[str, Potential]:
 def _out_of(net: str, element: Element) -> Probe:
     sign = 1.0 if element.a == net else -1.0
     return lambda solution: sign * solution.current(element)
-
-
-# Parts that draw no direct current.
-_IDLE = frozenset({"capacitor", "test point", "coupling"})
-
-
-def _unknown(growth: Growth, controllers: Sequence[Controller], net: str) -> tuple[str, ...]:
-    """Return what is on the net, draws current, and has no part in the network that was solved."""
-    told = {*growth.parts, *(controller.reference for controller in controllers)}
-    parts = {c.part.reference: growth.circuit.kind(c.part) for c in growth.circuit.connections(net)}
-    return tuple(
-        f"what {reference} ({kind}) draws from {net} is not known"
-        for reference, kind in parts.items()
-        if reference not in told and kind not in _IDLE
-    )

@@ -386,6 +386,14 @@ def test_a_supervisor_on_the_feedback_pin_is_open(ask: Ask, pump: Board) -> None
     assert verdict.needs == ('brief: [rails.OVP] voltage = "..."',)
 
 
+def test_a_coupler_on_the_feedback_pin_leaves_its_load_open(ask: Ask, pump: Board) -> None:
+    (verdict,) = ask("amplifier.feedback-pin", pump("XU9 LED 0 COMP REF COUPLER"))
+    assert verdict.outcome is Outcome.OPEN
+    assert "what U9 (integrated circuit) draws from COMP is not known" in verdict.message
+    (overloaded,) = ask("amplifier.feedback-pin", pump("XU9 LED 0 COMP REF COUPLER", R20="REF COMP 4.7k"))
+    assert overloaded.outcome is Outcome.FAIL
+
+
 # ------------------------------------------------------------------------------------------- input-error
 
 
