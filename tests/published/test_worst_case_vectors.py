@@ -195,7 +195,7 @@ class TestMonteCarlo:
             free=(FreePotential("out"),),
             conditions=(Condition("in", "reference", lambda s: np.zeros(1)),),
         )
-        sample = dict(zip(("reference", "top", "bottom"), drawn, strict=True))
+        sample: Sample = dict(zip(("reference", "top", "bottom"), drawn, strict=True))
         output = solve(network, sample, 10_000).voltage("out")
         assert np.min(output) == pytest.approx(11.66604131937126, rel=1e-12)
         assert np.max(output) == pytest.approx(12.496864476146131, rel=1e-12)

@@ -8,10 +8,8 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from pwmlint.lint.circuit.linear import Array
-from pwmlint.lint.circuit.network import Network, Resistor, Value
-from pwmlint.lint.circuit.solver import Solution
-from pwmlint.lint.circuit.states import Junction, PiecewiseLinear, State
+from pwmlint.lint.circuit.network import Network, Resistor, Sample, Value
+from pwmlint.lint.circuit.states import Junction, PiecewiseLinear, Probe, State
 
 DROP, ZENER = 0.6, 5.1
 
@@ -24,8 +22,11 @@ def reading(name: str) -> Value:
     return lambda sample: sample[name]
 
 
-def output(solution: Solution) -> Array:
-    return solution.voltage("OUT")
+def voltage_of(net: str) -> Probe:
+    return lambda solution: solution.voltage(net)
+
+
+output = voltage_of("OUT")
 
 
 def test_the_higher_of_two_supplies_feeds_the_output():
@@ -84,8 +85,8 @@ def test_every_sample_obeys_the_law_of_its_diodes(supplies: list[tuple[float, fl
         Junction("DB", "OUT", "B", constant(DROP)),
         Junction("DC", "OUT", "C", constant(DROP), constant(ZENER)),
     ]
-    sample = dict(zip(nets, np.array(supplies).T, strict=True))
-    probes = {net: lambda s, net=net: s.voltage(net) for net in ("OUT", *nets)}
+    sample: Sample = dict(zip(nets, np.array(supplies).T, strict=True))
+    probes = {net: voltage_of(net) for net in ("OUT", *nets)}
     read = PiecewiseLinear(network, diodes).read(probes, sample, len(supplies)).values
     current = {net: (sample[net] - read[net]) / 1e3 for net in nets}
     assert read["OUT"] / 2.2e3 == pytest.approx(sum(current.values()), abs=1e-9)
