@@ -6,12 +6,9 @@ as it was published, and what schematic tools write in its name, which the tests
 
 from __future__ import annotations
 
-import gc
-from collections.abc import Generator
-from contextlib import contextmanager
-
 from lark import UnexpectedInput
 
+from .collector import collector_paused
 from .edif_budget import Budget
 from .edif_builder import parse
 from .edif_errors import check_beginning, check_dialect, explain
@@ -35,24 +32,8 @@ def read_edif(text: str, file: str) -> Netlist:
 
     Raises NetlistError where the text is no EDIF 2 0 0, is damaged, or grows beyond all bounds.
     """
-    with _no_search_for_cycles():
+    with collector_paused():
         return _read(text if text[-1:] not in _PADDING else text.rstrip(_PADDING), file)
-
-
-@contextmanager
-def _no_search_for_cycles() -> Generator[None]:
-    """Have the garbage collector rest: forms and parts hold no cycles.
-
-    Otherwise it would search all that has been read, again and again, and large files would take longer than
-    in proportion.
-    """
-    was_enabled = gc.isenabled()
-    gc.disable()
-    try:
-        yield
-    finally:
-        if was_enabled:
-            gc.enable()
 
 
 def _read(text: str, file: str) -> Netlist:

@@ -24,7 +24,6 @@ _ANALYSES = frozenset(
         *("prot", "protect", "unprot", "unprotect", "wcase", "width"),
     )
 )
-_STEP_WORDS = ("param", "list", "dec", "oct", "lin")
 _FUNCTION = re.compile(r"\s*\.\w+\s+([^\W\d]\w*)\s*\(([^()]*)\)\s*=?\s*")
 _LIKE_FUNCTION = re.compile(r"\s*\.\w+\s+[^\W\d]\w*\s*\([^()]*\)\s*=", re.IGNORECASE)
 

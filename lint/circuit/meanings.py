@@ -171,26 +171,18 @@ def _conduct(growth: Growth, part: Part) -> None:
         growth.enter(net)
 
 
-def _voltage_source(growth: Growth, part: Part, net: str) -> None:
-    if len(part.pins) != 2:
-        opaque(growth, part, net)
-        return
-    value = growth.part_value(part)
-    if value is not None:
-        growth.use(part)
-        growth.add(VoltageSource(part.reference, *_ends(part), value))
-        growth.follow(part)
+def _source(kind: type[VoltageSource | CurrentSource]) -> Callable[[Growth, Part, str], None]:
+    def put_in(growth: Growth, part: Part, net: str) -> None:
+        if len(part.pins) != 2:
+            opaque(growth, part, net)
+            return
+        value = growth.part_value(part)
+        if value is not None:
+            growth.use(part)
+            growth.add(kind(part.reference, *_ends(part), value))
+            growth.follow(part)
 
-
-def _current_source(growth: Growth, part: Part, net: str) -> None:
-    if len(part.pins) != 2:
-        opaque(growth, part, net)
-        return
-    value = growth.part_value(part)
-    if value is not None:
-        growth.use(part)
-        growth.add(CurrentSource(part.reference, *_ends(part), value))
-        growth.follow(part)
+    return put_in
 
 
 def _controlled_source(growth: Growth, part: Part, net: str) -> None:
@@ -240,8 +232,8 @@ MEANINGS: dict[str, Callable[[Growth, Part, str], None]] = {
     "diode": _diode,
     "transistor": _switch,
     "switch": _switch,
-    "voltage source": _voltage_source,
-    "battery": _voltage_source,
-    "current source": _current_source,
+    "voltage source": _source(VoltageSource),
+    "battery": _source(VoltageSource),
+    "current source": _source(CurrentSource),
     "controlled source": _controlled_source,
 }

@@ -13,7 +13,6 @@ from .potentials import Potential
 
 Polarity: TypeAlias = Literal["N", "P", ""]
 
-_CONTROL = frozenset({"g", "gate", "b", "base"})
 _OUTPUT = frozenset({"d", "drain", "c", "collector"})
 _COMMON = frozenset({"s", "source", "e", "emitter"})
 
