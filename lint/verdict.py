@@ -9,6 +9,7 @@ from __future__ import annotations
 import hashlib
 from collections import Counter
 from dataclasses import dataclass
+from datetime import date
 from enum import StrEnum
 
 from ..grammar.netlist import Place
@@ -94,6 +95,27 @@ class Limit:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Deviation:
+    """An accepted verdict: somebody answers for it with a reason (term: deviation permit, ISO 9000).
+
+    rule, subject: patterns as written, "*" stands for any text
+    reason, owner: why it is accepted, and who answers for it
+    expires:       the last day on which it counts; None: until it is taken back
+    accepted:      the value that was accepted, in the base unit of `unit`; a worse one is not; None: any
+    place:         where it stands in the file of deviations
+    """
+
+    rule: str
+    subject: str
+    reason: str
+    owner: str
+    expires: date | None = None
+    accepted: float | None = None
+    unit: str = ""
+    place: Place
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Verdict:
     """What one rule says of one subject, with everything that a reader needs to check it.
 
@@ -107,6 +129,8 @@ class Verdict:
     source:      where the limit comes from
     needs:       the inputs that are missing (an open verdict), each as the reader would write it
     remedy:      what to do about it, values to the preferred series
+    deviation:   filled in by the engine where the verdict fails, is open or for a person to judge, and is
+                 accepted: it then stops no gate
     """
 
     outcome: Outcome
@@ -129,6 +153,7 @@ class Verdict:
     source: str = ""
     needs: tuple[str, ...] = ()
     remedy: str = ""
+    deviation: Deviation | None = None
 
     @property
     def fingerprint(self) -> str:
@@ -183,24 +208,34 @@ class Review:
     controllers: tuple[ControllerReview, ...]
     verdicts: tuple[Verdict, ...]
     cautions: tuple[str, ...] = ()
+    deviations: str | None = None
 
     @property
     def counts(self) -> dict[str, int]:
-        """Return how many verdicts had each outcome, every outcome named."""
+        """Return how many verdicts had each outcome, every outcome named; accepted ones are counted too."""
         found = Counter(verdict.outcome for verdict in self.verdicts)
         return {outcome.value: found[outcome] for outcome in Outcome}
+
+    @property
+    def accepted(self) -> int:
+        """Return how many verdicts a deviation accepts."""
+        return sum(verdict.deviation is not None for verdict in self.verdicts)
 
     def passes(self, gate: Level | None, *, strict: bool = False) -> bool:
         """Tell whether the gate passes.
 
         gate:   the least level of a failed verdict that stops it; None lets every verdict through
         strict: verdicts that are open or for a person to judge stop it as well
+
+        An accepted verdict stops no gate.
         """
         if gate is None:
             return True
         levels = tuple(Level)
         stopping = levels[: levels.index(gate) + 1]
         for verdict in self.verdicts:
+            if verdict.deviation is not None:
+                continue
             if verdict.outcome is Outcome.FAIL and verdict.level in stopping:
                 return False
             if strict and verdict.outcome in (Outcome.OPEN, Outcome.REVIEW):

@@ -1,0 +1,37 @@
+"""How a command answers: by exit status, on standard output, and to the user on standard error."""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Iterable
+from contextlib import suppress
+from difflib import get_close_matches
+
+from ...grammar.errors import printable
+from ..report.delivery import send
+
+PASSED, NOT_PASSED, TROUBLE, INTERRUPTED = 0, 1, 2, 130
+
+EXIT = """exit status: 0 the gate passed, 1 it did not, 2 something could not be reviewed or written,
+130 interrupted"""
+
+
+def tell(message: str) -> None:
+    """Print a message on standard error; where nobody listens any more there is nobody to tell."""
+    with suppress(BrokenPipeError):
+        print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go
+
+
+def show(text: str) -> int:
+    """Print a text on standard output, in characters that it can carry, and return the exit status."""
+    from ..report.reference import shown
+
+    send(lambda stream: stream.write(shown(text, stream)))
+    return PASSED
+
+
+def unknown(kind: str, name: str, known: Iterable[str]) -> int:
+    """Tell that there is no such thing, name the nearest ones, and return the exit status."""
+    near = get_close_matches(name, known := list(known), n=3)
+    tell(f"pwmlint: there is no {kind} {printable(name)}\n  known:    {', '.join(near or known)}")
+    return TROUBLE
