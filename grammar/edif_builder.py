@@ -14,6 +14,7 @@ from typing import Any, cast
 
 from lark import Lark, Token, Transformer
 
+from .compiled import compiled
 from .edif_forms import CellRef, Designator, Edif, Instance, JoinedRun, Net, PinNumber, Property
 from .edif_make import NAMED_FORMS, PLAIN_FORMS, edif
 from .edif_names import Name, identifier, shown
@@ -53,13 +54,15 @@ def _parser() -> Lark:
 
 def build_parser(plugins: dict[str, Any]) -> Lark:
     """Return a new parser with the given plugins of lark; none for plain lark."""
+    grammar = Path(__file__).with_name("edif.lark")
     return Lark(
-        Path(__file__).with_name("edif.lark").read_text(encoding="utf-8"),
+        grammar.read_text(encoding="utf-8"),
         parser="lalr",
         lexer="basic",  # a keyword is known by its parenthesis, so the lexer needs no context
         start="edif",
         transformer=FormBuilder(),
         g_regex_flags=re.ASCII,
+        cache=compiled(grammar),
         _plugins=plugins,
     )
 

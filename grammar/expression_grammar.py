@@ -18,6 +18,7 @@ from lark import (
     v_args,  # pyright: ignore[reportUnknownVariableType]  # lark leaves its wrapper untyped
 )
 
+from .compiled import compiled
 from .unexpected import in_words, offending
 
 LONGEST = 10_000
@@ -143,8 +144,9 @@ def _unexpected(text: str, error: UnexpectedInput) -> ExpressionError:
 
 @cache
 def _grammar() -> Lark:
-    text = (Path(__file__).parent / "expression.lark").read_text(encoding="utf-8")
-    return Lark(text, parser="lalr", transformer=_Nodes())
+    grammar = Path(__file__).with_name("expression.lark")
+    text = grammar.read_text(encoding="utf-8")
+    return Lark(text, parser="lalr", transformer=_Nodes(), cache=compiled(grammar))
 
 
 def _node(kind: str, index: int, head: str, parts: tuple[Node, ...]) -> Node:

@@ -14,6 +14,7 @@ from typing import TYPE_CHECKING, NamedTuple, TypeAlias, cast
 
 from lark import Lark, ParseTree, Token, UnexpectedInput, UnexpectedToken
 
+from .compiled import compiled
 from .errors import NetlistError
 from .spice_lines import Line, Source, indent
 from .spice_words import Assignment, split
@@ -127,8 +128,9 @@ def parse(source: Source, problems: Problems) -> list[Item]:
 
 @cache
 def _grammar() -> Lark:
-    text = (Path(__file__).parent / "spice.lark").read_text(encoding="utf-8")
-    return Lark(text, parser="lalr", lexer="basic", start="deck")
+    grammar = Path(__file__).with_name("spice.lark")
+    text = grammar.read_text(encoding="utf-8")
+    return Lark(text, parser="lalr", lexer="basic", start="deck", cache=compiled(grammar))
 
 
 def _unexpected(source: Source, error: UnexpectedToken) -> NetlistError:

@@ -16,6 +16,8 @@ from lark import (
 )
 from lark.exceptions import LarkError
 
+from .compiled import compiled
+
 # Digits are kept as text, sign included, until the multiplier is known: 4.7 nF is then 4.7e-09 to the bit.
 
 
@@ -289,11 +291,12 @@ def _signed(sign: str | None, digits: str) -> str:
 
 @cache
 def _parser() -> Lark:
-    grammar = Path(__file__).with_name("value.lark").read_text(encoding="utf-8")
+    grammar = Path(__file__).with_name("value.lark")
     return Lark(
-        grammar,
+        grammar.read_text(encoding="utf-8"),
         parser="lalr",
         start=["word", "simulated"],
         maybe_placeholders=True,
         transformer=_Facts(),
+        cache=compiled(grammar),
     )
