@@ -6,6 +6,7 @@ import sys
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import replace
 from pathlib import Path
+from typing import NamedTuple
 
 from ..grammar import Netlist, Place, read, read_bytes
 from .brief import Brief, read_brief
@@ -38,11 +39,31 @@ def review(
     method:     the worst-case analysis that decides
     Raises NetlistError, or its kinds BriefError and PartsListError, for an input that cannot be read.
     """
+    inputs = read_inputs(netlist, brief=brief, parts_list=parts_list, allow_include=allow_include)
+    return review_netlist(inputs.netlist, inputs.brief, inputs.parts_list, method=method)
+
+
+class Inputs(NamedTuple):
+    """What a review is made of, as read: the netlist, and what was given or found beside it."""
+
+    netlist: Netlist
+    brief: Brief | None
+    parts_list: PartsList | None
+
+
+def read_inputs(
+    netlist: str | Path,
+    *,
+    brief: str | Path | None = None,
+    parts_list: str | Path | None = None,
+    allow_include: Sequence[Path] = (),
+) -> Inputs:
+    """Read a netlist and what belongs to it; the arguments and errors are those of `review`."""
     brief_path = brief if brief is not None else _beside(netlist, ".brief.toml")
     parts_path = parts_list if parts_list is not None else _beside(netlist, ".parts.csv")
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
-    return review_netlist(_read(netlist, allow_include), told, listed, method=method)
+    return Inputs(_read(netlist, allow_include), told, listed)
 
 
 def review_netlist(

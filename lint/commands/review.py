@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import argparse
-import os
 from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import Any
@@ -11,9 +10,10 @@ from typing import Any
 from ...grammar.errors import NetlistError
 from ..estimate import Method
 from ..report import FORMATS, Gate
-from ..report.delivery import STANDARD_OUTPUT, DeliveryError, Target, deliver
+from ..report.delivery import DeliveryError, Target, deliver
 from ..verdict import Level, Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
+from .targets import add_targets, targets
 
 STANDARD_INPUT = "-"
 NEVER = "never"
@@ -32,23 +32,6 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     parser.set_defaults(command=_run, parser=parser)
 
 
-class _Pairs(argparse.Action):
-    """Collects --format and --output into pairs, in the order given: one completes what the other began."""
-
-    def __call__(
-        self,
-        parser: argparse.ArgumentParser,
-        namespace: argparse.Namespace,
-        values: str | Sequence[Any] | None,
-        option_string: str | None = None,
-    ) -> None:
-        pairs: list[dict[str, Any]] = getattr(namespace, self.dest) or [{}]
-        if self.const in pairs[-1]:
-            pairs.append({})
-        pairs[-1][self.const] = values
-        setattr(namespace, self.dest, pairs)
-
-
 def _add_options(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("netlists", nargs="+", metavar="NETLIST", help="a netlist, or - for standard input")
     parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML)")
@@ -61,22 +44,7 @@ def _add_options(parser: argparse.ArgumentParser) -> None:
         metavar="DIR",
         help="a folder besides the netlist's own from which it may include; may be repeated",
     )
-    parser.add_argument(
-        "--format",
-        action=_Pairs,
-        dest="pairs",
-        const="format",
-        choices=list(FORMATS),
-        help="the report's format (text); repeat --format and --output in pairs for several reports",
-    )
-    parser.add_argument(
-        "--output",
-        action=_Pairs,
-        dest="pairs",
-        const="output",
-        metavar="FILE",
-        help="where the report goes (-)",
-    )
+    add_targets(parser, FORMATS)
     parser.add_argument(
         "--gate",
         choices=[*(level.value for level in Level), NEVER],
@@ -96,11 +64,11 @@ def _add_options(parser: argparse.ArgumentParser) -> None:
 
 def _run(options: argparse.Namespace) -> int:
     netlists: list[str] = options.netlists
-    targets = _targets(options)
+    wanted = _targets(options)
     gate = Gate(None if options.gate == NEVER else Level(options.gate), options.strict)
 
     reviews = _review_each(netlists, options)
-    written = [_deliver(target, reviews, gate) for target in targets] if reviews else []
+    written = [_deliver(target, reviews, gate) for target in wanted] if reviews else []
     if len(reviews) < len(netlists) or not all(written):
         return TROUBLE
     return PASSED if all(gate.passes(review) for review in reviews) else NOT_PASSED
@@ -111,22 +79,7 @@ def _targets(options: argparse.Namespace) -> list[Target]:
     parser: argparse.ArgumentParser = options.parser
     if options.netlists.count(STANDARD_INPUT) > 1:
         parser.error("standard input can be read once only: give - once")
-    pairs: list[dict[str, str]] = options.pairs or [{}]
-    targets = [Target(**pair) for pair in pairs]
-    outputs = [target.output for target in targets]
-    inputs = [path for path in (*options.netlists, options.brief, options.parts_list) if path]
-    for output in outputs:
-        where = "standard output" if output == STANDARD_OUTPUT else output
-        if outputs.count(output) > 1:
-            parser.error(f"two reports would go to {where}: give each --format its own --output")
-        if output != STANDARD_OUTPUT and any(_same_file(output, path) for path in inputs):
-            parser.error(f"the report would overwrite what is reviewed: {where}")
-    return targets
-
-
-def _same_file(one: str, other: str) -> bool:
-    """Tell whether two paths lead to one file; what does not exist yet is no other's file."""
-    return os.path.exists(one) and os.path.exists(other) and os.path.samefile(one, other)
+    return targets(options, (*options.netlists, options.brief, options.parts_list))
 
 
 def _review_each(netlists: Iterable[str], options: argparse.Namespace) -> list[Review]:

@@ -1,7 +1,7 @@
 """Reports: one module per format, each with `write(reviews, stream, gate)`.
 
 A new format is a module here and a line in `FORMATS`. A report computes nothing of a circuit: it prints what
-the review says.
+the review says. The formats of a comparison have a table of their own, and `write(comparison, stream, gate)`.
 """
 
 from __future__ import annotations
@@ -9,12 +9,18 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from importlib import import_module
-from typing import Protocol, TextIO
+from typing import TYPE_CHECKING, Protocol, TextIO
 
 from ..verdict import Level, Review
 
+if TYPE_CHECKING:
+    from ..compare.comparison import Comparison
+
 # Name on the command line -> module; loaded only when asked for, so that a JSON report needs no rich.
 FORMATS = {"text": ".text", "json": ".json"}
+
+# The same for what changed between two revisions.
+COMPARISON_FORMATS = {"text": ".compare_text", "markdown": ".compare_markdown", "json": ".compare_json"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,4 +54,18 @@ class Writer(Protocol):
 def writer(name: str) -> Writer:
     """Return the writer of the format `name`, a key of `FORMATS`."""
     write: Writer = import_module(FORMATS[name], __package__).write
+    return write
+
+
+class ComparisonWriter(Protocol):
+    """Writes a comparison to `stream` in one format."""
+
+    def __call__(self, comparison: Comparison, stream: TextIO, gate: Gate) -> None:
+        """Write everything; raise OSError where the stream does."""
+        ...
+
+
+def comparison_writer(name: str) -> ComparisonWriter:
+    """Return the writer of the format `name`, a key of `COMPARISON_FORMATS`."""
+    write: ComparisonWriter = import_module(COMPARISON_FORMATS[name], __package__).write
     return write

@@ -7,11 +7,14 @@ import sys
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TextIO
+from typing import TYPE_CHECKING, TextIO
 
 from ...grammar.errors import printable
 from ..verdict import Review
-from . import Gate, writer
+from . import Gate, comparison_writer, writer
+
+if TYPE_CHECKING:
+    from ..compare.comparison import Comparison
 
 STANDARD_OUTPUT = "-"
 
@@ -32,6 +35,12 @@ def deliver(target: Target, reviews: Sequence[Review], gate: Gate) -> None:
     """Write one report of `reviews`. Raises DeliveryError where it cannot be written."""
     write = writer(target.format)
     send(lambda stream: write(reviews, stream, gate), target.output)
+
+
+def deliver_comparison(target: Target, comparison: Comparison, gate: Gate) -> None:
+    """Write one report of a comparison. Raises DeliveryError where it cannot be written."""
+    write = comparison_writer(target.format)
+    send(lambda stream: write(comparison, stream, gate), target.output)
 
 
 def send(write: Callable[[TextIO], object], output: str = STANDARD_OUTPUT) -> None:

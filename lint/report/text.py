@@ -6,20 +6,19 @@ be checked and what would open it, then the cautions, the count and the gate's a
 
 from __future__ import annotations
 
-import os
 from collections.abc import Iterator, Sequence
-from io import StringIO
 from typing import TextIO
 
 from rich.cells import cell_len
 from rich.console import Console
 
 from ..verdict import ControllerReview, Outcome, PinRow, Review, Verdict
-from . import Gate, colour
+from . import Gate
 from .bar import Piece
 from .findings import asks, lead, name, topics
-from .glyphs import ASCII, BOX, Glyphs
+from .glyphs import BOX, Glyphs
 from .page import Page
+from .paper import answer, on_paper
 from .words import counts, grouped, word
 
 _LABEL = 12
@@ -33,20 +32,7 @@ _STATE = 3
 
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     """Write the report of `reviews` to `stream`, in colours and characters that the stream can show."""
-    coloured = colour.wanted(stream, os.environ)
-    sheet = StringIO()
-    console = Console(
-        file=sheet,
-        width=colour.width(stream, os.environ),
-        height=1,  # of no meaning here, but asked of the terminal at every line where it is not given
-        color_system="standard" if coloured else None,
-        force_terminal=coloured,
-        force_jupyter=False,
-        no_color=not coloured,
-        legacy_windows=False,
-    )
-    render(reviews, console, gate, BOX if colour.shows_box_characters(stream) else ASCII)
-    stream.write(sheet.getvalue())
+    on_paper(stream, lambda console, glyphs: render(reviews, console, gate, glyphs))
 
 
 def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyphs = BOX) -> None:
@@ -67,11 +53,11 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
         _taken_for_granted(page, review)
         _cautions(page, review.cautions)
         _not_applicable(page, review.verdicts)
-        _answer(page, counts(review.verdicts), gate, gate.passes(review))
+        answer(page, counts(review.verdicts), gate, gate.passes(review))
     if len(reviews) > 1:
         passed = sum(gate.passes(review) for review in reviews)
         told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
-        _answer(page, told, gate, passed == len(reviews))
+        answer(page, told, gate, passed == len(reviews))
 
 
 def _title(page: Page, review: Review) -> None:
@@ -217,18 +203,3 @@ def _not_applicable(page: Page, verdicts: Sequence[Verdict]) -> None:
         listed = ", ".join(dict.fromkeys(rules))
         page.paragraph(f"{len(rules)} not applicable: {listed}", 2, style="dim")
         page.blank()
-
-
-def _answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None:
-    """Print the count and the gate's answer, on one line where they fit."""
-    answer: list[Piece] = [
-        (f"gate {gate}: ", "bold"),
-        ("passed", "bold green") if passed else ("not passed", "bold red"),
-    ]
-    taken = sum(cell_len(text) for text, _ in (*told, *answer))
-    page.line((page.glyphs.strong * page.width, "dim"))
-    if taken + 2 > page.width:
-        page.line(*told)
-        page.line(*answer)
-    else:
-        page.line(*told, (" " * (page.width - taken), ""), *answer)

@@ -1,0 +1,49 @@
+"""What a text report is printed with, and its last lines: the console for a stream, the gate's answer."""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Callable, Sequence
+from io import StringIO
+from typing import TextIO
+
+from rich.cells import cell_len
+from rich.console import Console
+
+from . import Gate, colour
+from .bar import Piece
+from .glyphs import ASCII, BOX, Glyphs
+from .page import Page
+
+
+def on_paper(stream: TextIO, draw: Callable[[Console, Glyphs], None]) -> None:
+    """Let `draw` print a report, and write it to `stream` in colours and characters that it can show."""
+    coloured = colour.wanted(stream, os.environ)
+    sheet = StringIO()
+    console = Console(
+        file=sheet,
+        width=colour.width(stream, os.environ),
+        height=1,  # of no meaning here, but asked of the terminal at every line where it is not given
+        color_system="standard" if coloured else None,
+        force_terminal=coloured,
+        force_jupyter=False,
+        no_color=not coloured,
+        legacy_windows=False,
+    )
+    draw(console, BOX if colour.shows_box_characters(stream) else ASCII)
+    stream.write(sheet.getvalue())
+
+
+def answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None:
+    """Print the count and the gate's answer, on one line where they fit."""
+    said: list[Piece] = [
+        (f"gate {gate}: ", "bold"),
+        ("passed", "bold green") if passed else ("not passed", "bold red"),
+    ]
+    taken = sum(cell_len(text) for text, _ in (*told, *said))
+    page.line((page.glyphs.strong * page.width, "dim"))
+    if taken + 2 > page.width:
+        page.line(*told)
+        page.line(*said)
+    else:
+        page.line(*told, (" " * (page.width - taken), ""), *said)
