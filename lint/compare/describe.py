@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections import Counter, deque
+from collections import Counter
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 
@@ -113,17 +113,7 @@ def _moved_by_nets(
 ) -> Iterator[tuple[int | None, int | None]]:
     """Pair pins that stayed on their nets, in whatever order, and yield the rest as they come."""
     here, there = old.nets_of(pair.old), new.nets_of(pair.new)
-    free: dict[str, deque[int]] = {}
-    for index, net in enumerate(there):
-        free.setdefault("" if new.is_open(net) else net, deque()).append(index)
-    left: list[int] = []
-    for index, net in enumerate(here):
-        partners = free.get("" if old.is_open(net) else nets.forward.get(net, ""))
-        if partners and (old.is_open(net) or net in nets.forward):
-            partners.popleft()
-        else:
-            left.append(index)
-    rest = sorted(index for indices in free.values() for index in indices)
+    left, rest = nets.apart(here, there)
     yield from zip(left, rest, strict=False)
     yield from ((index, None) for index in left[len(rest) :] if not old.is_open(here[index]))
     yield from ((None, index) for index in rest[len(left) :] if not new.is_open(there[index]))

@@ -8,7 +8,7 @@ sorting the pins.
 
 from __future__ import annotations
 
-from collections import defaultdict
+from collections import defaultdict, deque
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from heapq import heappop, heappush
@@ -53,6 +53,29 @@ class NetMatching:
         if old and self.forward.get(old) == new:
             return True
         return self._old.is_open(old) and self._new.is_open(new)
+
+    def apart(self, here: Sequence[str], there: Sequence[str]) -> tuple[list[int], list[int]]:
+        """Return which pins of a part are left when all that stayed on their nets are paired, in any order.
+
+        here, there: the nets of its pins in the old and the new revision
+        """
+        waiting: dict[str, deque[int]] = defaultdict(deque)
+        for index, net in enumerate(there):
+            waiting[net].append(index)
+        left: list[int] = []
+        for index, net in enumerate(here):
+            partners = waiting.get(self.forward[net]) if net in self.forward else None
+            if partners:
+                partners.popleft()
+            else:
+                left.append(index)
+        rest = sorted(index for indices in waiting.values() for index in indices)
+        # What hangs open in both revisions is on the same net, whatever that is called.
+        idle = [index for index in rest if self._new.is_open(there[index])]
+        still = [index for index in left if self._old.is_open(here[index])][: len(idle)]
+        idle = idle[: len(still)]
+        gone, come = set(still), set(idle)
+        return [one for one in left if one not in gone], [one for one in rest if one not in come]
 
     def _match(self, pairs: Sequence[PartPair]) -> None:
         self._match_exactly(pairs)

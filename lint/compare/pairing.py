@@ -216,6 +216,4 @@ def _moved(old: Side, new: Side, pair: PartPair, nets: NetMatching) -> int:
     here, there = old.nets_of(pair.old), new.nets_of(pair.new)
     if pair.pins.certain:
         return sum(not nets.same(here[one], there[other]) for one, other in pair.pins.certain)
-    now = Counter("" if new.is_open(net) else net for net in there)
-    was = Counter("" if old.is_open(net) else nets.forward.get(net, f"={net}") for net in here)
-    return max((was - now).total(), (now - was).total())
+    return max(map(len, nets.apart(here, there)))
