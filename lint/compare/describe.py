@@ -102,9 +102,9 @@ def _telling(side: Side, nets: Sequence[str], left: Iterable[int], across: bool)
 
     These are open or, between formats, beside another pin of the part: the bulk of a list's transistor.
     """
-    times = Counter(nets) if across else {}
+    times = Counter(nets if across else ())
     for index in left:
-        if not side.is_open(nets[index]) and times.get(nets[index], 1) == 1:
+        if not side.is_open(nets[index]) and times[nets[index]] <= 1:
             yield index
 
 

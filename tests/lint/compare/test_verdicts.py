@@ -160,7 +160,7 @@ class TestGate:
     def compared(old: list[Verdict], new: list[Verdict]) -> Comparison:
         reviews = [Review("fan.cir", "SPICE list", "", None, None, (), tuple(one)) for one in (old, new)]
         changes, unchanged = verdict_changes(old, new, SAME_NAMES)
-        return Comparison(*reviews, CircuitChanges(), changes, Unchanged(0, 0, unchanged))
+        return Comparison(reviews[0], reviews[1], CircuitChanges(), changes, Unchanged(0, 0, unchanged))
 
     @pytest.mark.parametrize("gate", [Level.ERROR, Level.WARNING, Level.NOTE])
     def test_what_failed_before_and_fails_the_same_stops_nothing(self, gate: Level) -> None:
