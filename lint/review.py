@@ -5,6 +5,7 @@ from __future__ import annotations
 import sys
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import replace
+from datetime import date
 from pathlib import Path
 
 from ..grammar import Netlist, Place, read, read_bytes
@@ -12,6 +13,7 @@ from .brief import Brief, read_brief
 from .circuit.controllers import Controller
 from .controllers import generic_number
 from .design import Design
+from .deviations import Applied, Deviations, apply, read_deviations
 from .estimate import Method
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
@@ -26,23 +28,32 @@ def review(
     *,
     brief: str | Path | None = None,
     parts_list: str | Path | None = None,
+    deviations: str | Path | None = None,
     allow_include: Sequence[Path] = (),
     method: Method = Method.EXTREME,
+    today: date | None = None,
 ) -> Review:
     """Review a netlist file and return everything that was found.
 
     netlist:    a path, or "-" for standard input
     brief:      the design intent (TOML); by default `board.brief.toml` beside `board.edf`, where it exists
     parts_list: the ratings (CSV); by default `board.parts.csv` beside `board.edf`, where it exists
+    deviations: the accepted verdicts (TOML); by default `board.deviations.toml` beside `board.edf`
     allow_include: folders besides the netlist's own from which a SPICE-style list may include
     method:     the worst-case analysis that decides
-    Raises NetlistError, or its kinds BriefError and PartsListError, for an input that cannot be read.
+    today:      the day on which a deviation may have expired, by default this one
+    Raises NetlistError, or its kinds BriefError, PartsListError and DeviationsError, for an input that cannot
+    be read.
     """
     brief_path = brief if brief is not None else _beside(netlist, ".brief.toml")
     parts_path = parts_list if parts_list is not None else _beside(netlist, ".parts.csv")
+    deviations_path = deviations if deviations is not None else _beside(netlist, ".deviations.toml")
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
-    return review_netlist(_read(netlist, allow_include), told, listed, method=method)
+    accepted = read_deviations(deviations_path) if deviations_path is not None else None
+    return review_netlist(
+        _read(netlist, allow_include), told, listed, method=method, deviations=accepted, today=today
+    )
 
 
 def review_netlist(
@@ -51,11 +62,16 @@ def review_netlist(
     parts_list: PartsList | None = None,
     rules: Iterable[Rule] | None = None,
     method: Method = Method.EXTREME,
+    deviations: Deviations | None = None,
+    today: date | None = None,
 ) -> Review:
     """Review a netlist that is already read; `rules` are all installed ones unless given."""
     design = Design(netlist, brief, parts_list, method)
     asked = load_rules() if rules is None else tuple(rules)
     verdicts = tuple(verdict for one in asked for verdict in _ask(one, design))
+    if deviations is not None:
+        verdicts, applied = apply(deviations, verdicts, today or date.today())
+        verdicts += tuple(verdict for one in asked for verdict in _ask_deviations(one, applied, design))
     return Review(
         netlist=netlist.file,
         format=netlist.format,
@@ -65,6 +81,7 @@ def review_netlist(
         controllers=tuple(controller_review(one, design, verdicts) for one in design.controllers),
         verdicts=verdicts,
         cautions=_cautions(verdicts),
+        deviations=deviations.file if deviations is not None else None,
     )
 
 
@@ -104,6 +121,12 @@ def _ask(one: Rule, design: Design) -> Iterator[Verdict]:
         for controller in design.controllers:
             for verdict in _ask_controller(one, controller, design):
                 yield _complete(verdict, one, design, controller)
+
+
+def _ask_deviations(one: Rule, applied: Applied, design: Design) -> Iterator[Verdict]:
+    if one.of_deviations is not None:
+        for verdict in one.of_deviations(applied):
+            yield _complete(verdict, one, design, None)
 
 
 def _ask_controller(one: Rule, controller: Controller, design: Design) -> Iterable[Verdict]:

@@ -6,9 +6,10 @@ import sys
 from collections.abc import Iterable
 from contextlib import suppress
 from difflib import get_close_matches
+from pathlib import Path
 
 from ...grammar.errors import printable
-from ..report.delivery import send
+from ..report.delivery import STANDARD_OUTPUT, send
 
 PASSED, NOT_PASSED, TROUBLE, INTERRUPTED = 0, 1, 2, 130
 
@@ -20,6 +21,20 @@ def tell(message: str) -> None:
     """Print a message on standard error; where nobody listens any more there is nobody to tell."""
     with suppress(BrokenPipeError):
         print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go
+
+
+def is_taken(output: str) -> bool:
+    """Tell whether there is a file already that must not be overwritten, and tell the user so.
+
+    A device or a named pipe holds nothing that could be lost.
+    """
+    taken = output != STANDARD_OUTPUT and Path(output).is_file()
+    if taken:
+        tell(
+            f"{printable(output)}: this file is there already, and is not overwritten\n"
+            "  remedy:   remove it first, or name another with --output"
+        )
+    return taken
 
 
 def show(text: str) -> int:

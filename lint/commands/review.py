@@ -24,8 +24,8 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     parser = commands.add_parser(
         "review",
         help="review netlists",
-        description="Reviews netlists. Beside board.edf, board.brief.toml and board.parts.csv are found by "
-        "themselves.",
+        description="Reviews netlists. Beside board.edf, board.brief.toml, board.parts.csv and "
+        "board.deviations.toml are found by themselves.",
         epilog=EXIT,
     )
     _add_options(parser)
@@ -53,6 +53,7 @@ def _add_options(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("netlists", nargs="+", metavar="NETLIST", help="a netlist, or - for standard input")
     parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML)")
     parser.add_argument("--parts-list", metavar="FILE", help="the ratings of the parts (CSV)")
+    parser.add_argument("--deviations", metavar="FILE", help="the verdicts that are accepted, and why (TOML)")
     parser.add_argument(
         "--allow-include",
         action="append",
@@ -114,7 +115,9 @@ def _targets(options: argparse.Namespace) -> list[Target]:
     pairs: list[dict[str, str]] = options.pairs or [{}]
     targets = [Target(**pair) for pair in pairs]
     outputs = [target.output for target in targets]
-    inputs = [path for path in (*options.netlists, options.brief, options.parts_list) if path]
+    inputs = [
+        path for path in (*options.netlists, options.brief, options.parts_list, options.deviations) if path
+    ]
     for output in outputs:
         where = "standard output" if output == STANDARD_OUTPUT else output
         if outputs.count(output) > 1:
@@ -141,6 +144,7 @@ def _review_each(netlists: Iterable[str], options: argparse.Namespace) -> list[R
                     netlist,
                     brief=options.brief,
                     parts_list=options.parts_list,
+                    deviations=options.deviations,
                     allow_include=options.allow_include,
                     method=Method(options.worst_case),
                 )

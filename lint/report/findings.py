@@ -11,7 +11,7 @@ from ..quantity import figure, percent
 from ..verdict import TOPICS, Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
 from .page import Page
-from .words import badness, counts, grouped, word
+from .words import badness, counts, grouped, word, word_of
 
 _INDENT = 11
 _LABEL = 9
@@ -29,10 +29,10 @@ _ELSEWHERE = (Outcome.OPEN, Outcome.NOT_APPLICABLE)
 
 
 def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
-    """Print the verdicts by topic, worst first; what is open or does not apply is printed elsewhere."""
+    """Print the verdicts by topic, worst first; those open, accepted or not applicable stand elsewhere."""
     for topic in sorted({verdict.topic for verdict in verdicts}, key=_walk):
         about = [verdict for verdict in verdicts if verdict.topic == topic]
-        shown = [verdict for verdict in about if verdict.outcome not in _ELSEWHERE]
+        shown = [one for one in about if one.outcome not in _ELSEWHERE and one.deviation is None]
         if not shown:
             continue
         page.heading(topic or "other", page.glyphs.light, counts(about))
@@ -49,7 +49,7 @@ def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
 
 def asks(verdict: Verdict) -> bool:
     """Tell whether a verdict asks something of the reader and is therefore printed in full."""
-    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW)
+    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW) and verdict.deviation is None
 
 
 def name(verdict: Verdict) -> str:
@@ -59,7 +59,7 @@ def name(verdict: Verdict) -> str:
 
 def lead(verdict: Verdict) -> Piece:
     """Return the word of a verdict as it stands in the margin."""
-    text, style = word(verdict.outcome, verdict.level)
+    text, style = word_of(verdict)
     return f"  {text}", style
 
 

@@ -14,7 +14,7 @@ from typing import Any, TextIO
 
 from ...grammar.netlist import Place
 from ..quantity import Spread
-from ..verdict import ControllerReview, Limit, Review, Verdict
+from ..verdict import ControllerReview, Deviation, Limit, Review, Verdict
 from . import Gate
 
 SCHEMA = 1
@@ -38,10 +38,12 @@ def _review(review: Review) -> dict[str, Any]:
         "name": review.name,
         "brief": review.brief,
         "parts_list": review.parts_list,
+        "deviations": review.deviations,
         "controllers": [_controller(controller) for controller in review.controllers],
         "verdicts": [_verdict(verdict) for verdict in review.verdicts],
         "cautions": list(review.cautions),
         "counts": review.counts,
+        "accepted": review.accepted,
     }
 
 
@@ -93,7 +95,23 @@ def _verdict(verdict: Verdict) -> dict[str, Any]:
         "needs": list(verdict.needs),
         "remedy": verdict.remedy,
         "fingerprint": verdict.fingerprint,
-        "deviation": None,
+        "deviation": _deviation(verdict.deviation),
+    }
+
+
+def _deviation(deviation: Deviation | None) -> dict[str, Any] | None:
+    if deviation is None:
+        return None
+    return {
+        "rule": deviation.rule,
+        "subject": deviation.subject,
+        "parts": None if deviation.parts is None else list(deviation.parts),
+        "nets": None if deviation.nets is None else list(deviation.nets),
+        "reason": deviation.reason,
+        "owner": deviation.owner,
+        "expires": deviation.expires.isoformat() if deviation.expires else None,
+        "accepted": _spread(deviation.accepted),
+        "place": _place(deviation.place),
     }
 
 

@@ -64,6 +64,7 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
                 page.blank()
             topics(page, verdicts)
         _not_checked(page, review.verdicts)
+        _accepted(page, review.verdicts)
         _taken_for_granted(page, review)
         _cautions(page, review.cautions)
         _not_applicable(page, review.verdicts)
@@ -81,6 +82,7 @@ def _title(page: Page, review: Review) -> None:
         ("title", review.name),
         ("brief", review.brief or "none"),
         ("parts list", review.parts_list or "none"),
+        ("deviations", review.deviations or ""),
     ]
     for label, text in rows:
         if text:
@@ -168,7 +170,7 @@ def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
     """Print the open verdicts, grouped by the input that would open them."""
     groups: dict[tuple[str, ...], list[Verdict]] = {}
     for verdict in verdicts:
-        if verdict.outcome is Outcome.OPEN:
+        if verdict.outcome is Outcome.OPEN and verdict.deviation is None:
             groups.setdefault(verdict.needs, []).append(verdict)
     if not groups:
         return
@@ -183,6 +185,22 @@ def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
         for verdict in group:
             page.paragraph(verdict.message, _INDENT)
             page.paragraph(name(verdict), _INDENT, style="dim")
+        page.blank()
+
+
+def _accepted(page: Page, verdicts: Sequence[Verdict]) -> None:
+    """Print what would stop a gate if somebody did not answer for it, and who does, why, and until when."""
+    accepted = [(verdict, verdict.deviation) for verdict in verdicts if verdict.deviation is not None]
+    if not accepted:
+        return
+    page.heading("accepted", page.glyphs.light, counts(verdict for verdict, _ in accepted))
+    page.blank()
+    for verdict, deviation in accepted:
+        page.paragraph(verdict.message, _INDENT, lead(verdict))
+        page.paragraph(name(verdict), _INDENT, style="dim")
+        until = f", until {deviation.expires}" if deviation.expires else ""
+        page.paragraph(f"{deviation.reason} ({deviation.owner}{until})", _INDENT)
+        page.paragraph(f"at {deviation.place}", _INDENT, style="dim")
         page.blank()
 
 

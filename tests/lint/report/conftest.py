@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import replace
+from datetime import date
 from io import StringIO
 
 import pytest
@@ -12,7 +13,7 @@ from pwmlint.lint.quantity import Spread
 from pwmlint.lint.report import Gate
 from pwmlint.lint.report.glyphs import BOX, Glyphs
 from pwmlint.lint.report.text import render
-from pwmlint.lint.verdict import ControllerReview, Level, Limit, Outcome, PinRow, Review, Verdict
+from pwmlint.lint.verdict import ControllerReview, Deviation, Level, Limit, Outcome, PinRow, Review, Verdict
 from rich.console import Console
 
 NETLIST = "orchard/frost-fan-b.cir"
@@ -71,6 +72,28 @@ def faulty() -> Review:
             "discharge before you touch it, follow the local codes, leave mains work to licensed practice.",
         ),
     )
+
+
+@pytest.fixture
+def accepted(faulty: Review) -> Review:
+    """The frost-fan drive after somebody has answered for two of its findings, one of them until a day."""
+    answered = {
+        FAIL: ("the first twenty drives run from a bench supply", "fan workshop", date(2027, 3, 31)),
+        OPEN: ("measured on the drive itself", "test field", None),
+    }
+    verdicts: list[Verdict] = []
+    for verdict in faulty.verdicts:
+        reason, owner, expires = answered.pop(verdict.outcome, ("", "", None))
+        deviation = Deviation(
+            rule=verdict.rule,
+            subject="*",
+            reason=reason,
+            owner=owner,
+            expires=expires,
+            place=Place("orchard/frost-fan-b.deviations.toml", 3, 3),
+        )
+        verdicts.append(replace(verdict, deviation=deviation) if reason else verdict)
+    return replace(faulty, verdicts=tuple(verdicts), deviations="orchard/frost-fan-b.deviations.toml")
 
 
 @pytest.fixture

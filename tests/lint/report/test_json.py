@@ -41,19 +41,30 @@ def written(*reviews: Review) -> dict[str, Any]:
 
 
 def test_reports_follow_the_schema(
-    faulty: Review, sound: Review, hostile: Review, schema: dict[str, Any]
+    faulty: Review, sound: Review, hostile: Review, accepted: Review, schema: dict[str, Any]
 ) -> None:
-    for reviews in ((faulty, sound, hostile), ()):
+    for reviews in ((faulty, sound, hostile, accepted), ()):
         check(schema, written(*reviews))
 
 
-def test_the_schema_describes_every_key_and_no_other(faulty: Review, schema: dict[str, Any]) -> None:
-    report = written(faulty)
+def test_a_deviation_is_told_with_who_answers_for_it(accepted: Review) -> None:
+    (review,) = written(accepted)["reviews"]
+    told = [verdict["deviation"] for verdict in review["verdicts"] if verdict["deviation"]]
+    assert review["accepted"] == len(told) == 2
+    assert review["deviations"] == told[0]["place"]["file"]
+    assert {one["expires"] for one in told} == {"2027-03-31", None}
+    assert "test field" in {one["owner"] for one in told}
+
+
+def test_the_schema_describes_every_key_and_no_other(accepted: Review, schema: dict[str, Any]) -> None:
+    report = written(accepted)
     review, verdict = report["reviews"][0], report["reviews"][0]["verdicts"][0]
+    (deviation, *_) = [one["deviation"] for one in review["verdicts"] if one["deviation"]]
     for found, described in (
         (report, schema),
         (review, schema["$defs"]["review"]),
         (verdict, schema["$defs"]["verdict"]),
+        (deviation, schema["$defs"]["deviation"]),
         (review["controllers"][0], schema["$defs"]["controller"]),
     ):
         assert list(found) == described["required"]
