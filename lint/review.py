@@ -38,11 +38,11 @@ def review(
     method:     the worst-case analysis that decides
     Raises NetlistError, or its kinds BriefError and PartsListError, for an input that cannot be read.
     """
-    brief_path = brief if brief is not None else _beside(netlist, ".brief.toml")
-    parts_path = parts_list if parts_list is not None else _beside(netlist, ".parts.csv")
+    brief_path = brief if brief is not None else beside(netlist, ".brief.toml")
+    parts_path = parts_list if parts_list is not None else beside(netlist, ".parts.csv")
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
-    return review_netlist(_read(netlist, allow_include), told, listed, method=method)
+    return review_netlist(read_netlist(netlist, allow_include), told, listed, method=method)
 
 
 def review_netlist(
@@ -77,7 +77,8 @@ def _cautions(verdicts: Iterable[Verdict]) -> tuple[str, ...]:
     return tuple(dict.fromkeys(v.message for v in verdicts if v.rule == _CAUTIONING))
 
 
-def _read(netlist: str | Path, allow_include: Sequence[Path]) -> Netlist:
+def read_netlist(netlist: str | Path, allow_include: Sequence[Path] = ()) -> Netlist:
+    """Read a netlist file, or standard input for "-", as a review does; raise NetlistError."""
     if str(netlist) == STANDARD_INPUT:
         return read_bytes(sys.stdin.buffer.read(), "<standard input>", keep=_is_controller)
     return read(netlist, keep=_is_controller, allow_include=allow_include)
@@ -87,13 +88,15 @@ def _is_controller(name: str) -> bool:
     return generic_number(name) is not None
 
 
-def _beside(netlist: str | Path, ending: str) -> Path | None:
+def beside(netlist: str | Path, ending: str) -> Path | None:
     """Return the file beside the netlist that has its name and another ending, where there is one."""
     if str(netlist) == STANDARD_INPUT:
         return None
     path = Path(netlist)
-    beside = path.with_name(path.stem + ending)
-    return beside if beside.is_file() else None
+    if not path.name:  # a folder such as "."
+        return None
+    neighbour = path.with_name(path.stem + ending)
+    return neighbour if neighbour.is_file() else None
 
 
 def _ask(one: Rule, design: Design) -> Iterator[Verdict]:
