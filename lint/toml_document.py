@@ -30,13 +30,14 @@ _Kind = TypeVar("_Kind")
 class TomlDocument:
     """The document of one file. Mistakes are collected, so that one run shows them all; see `finish`.
 
+    text: what the file holds, where that is known without opening it
     Raises `error` at once where the file cannot be read as TOML.
     """
 
-    def __init__(self, path: str | Path, error: type[NetlistError]) -> None:
+    def __init__(self, path: str | Path, error: type[NetlistError], text: str | None = None) -> None:
         self.file = str(path)
         self._error = error
-        text = read_text(path, error, limit=_LARGEST_FILE)
+        text = read_text(path, error, limit=_LARGEST_FILE) if text is None else text
         self._lines = text.split("\n")
         content = self._load(text)
         self._places = TomlPlaces(text, self.file)

@@ -9,6 +9,7 @@ from difflib import get_close_matches
 from pathlib import Path
 
 from ...grammar.errors import printable
+from ..report.colour import shows_box_characters
 from ..report.delivery import STANDARD_OUTPUT, send
 
 PASSED, NOT_PASSED, TROUBLE, INTERRUPTED = 0, 1, 2, 130
@@ -35,6 +36,14 @@ def is_taken(output: str) -> bool:
             "  remedy:   remove it first, or name another with --output"
         )
     return taken
+
+
+def write_toml(text: str, output: str) -> int:
+    """Write a TOML document in characters that the output can carry, and return the exit status."""
+    from ..toml_text import in_ascii
+
+    send(lambda stream: stream.write(text if shows_box_characters(stream) else in_ascii(text)), output)
+    return PASSED
 
 
 def show(text: str) -> int:

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any, TextIO
+from typing import Any
 
 from ...grammar.errors import NetlistError
-from ..report.colour import shows_box_characters
-from ..report.delivery import STANDARD_OUTPUT, send
-from .answer import PASSED, TROUBLE, is_taken, tell
+from ..report.delivery import STANDARD_OUTPUT
+from .answer import PASSED, TROUBLE, is_taken, tell, write_toml
+from .inputs import NETLIST, add_inputs
 
 
 def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
@@ -22,9 +22,9 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
         epilog="exit status: 0 they were written, or there is nothing to accept, 2 they were not, "
         "130 interrupted",
     )
-    parser.add_argument("netlist", metavar="NETLIST", help="a netlist, or - for standard input")
+    parser.add_argument("netlist", metavar="NETLIST", help=NETLIST)
     parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML)")
-    parser.add_argument("--parts-list", metavar="FILE", help="the ratings of the parts (CSV)")
+    add_inputs(parser)
     parser.add_argument("--deviations", metavar="FILE", help="the verdicts that are accepted already (TOML)")
     parser.add_argument("--strict", action="store_true", help="write one for every open verdict, too")
     parser.add_argument("--output", metavar="FILE", default=STANDARD_OUTPUT, help="where they go (-)")
@@ -34,7 +34,6 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
 def _run(options: argparse.Namespace) -> int:
     from ..permit import permit
     from ..review import review
-    from ..toml_text import in_ascii
 
     if is_taken(options.output):
         return TROUBLE
@@ -44,6 +43,7 @@ def _run(options: argparse.Namespace) -> int:
             brief=options.brief,
             parts_list=options.parts_list,
             deviations=options.deviations,
+            allow_include=options.allow_include,
         )
     except NetlistError as error:
         tell(str(error))
@@ -52,9 +52,4 @@ def _run(options: argparse.Namespace) -> int:
     if not text:
         tell("pwmlint: there is nothing to accept")
         return PASSED
-
-    def write(stream: TextIO) -> None:
-        stream.write(text if shows_box_characters(stream) else in_ascii(text))
-
-    send(write, options.output)
-    return PASSED
+    return write_toml(text, options.output)

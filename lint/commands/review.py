@@ -5,7 +5,6 @@ from __future__ import annotations
 import argparse
 import os
 from collections.abc import Iterable, Sequence
-from pathlib import Path
 from typing import Any
 
 from ...grammar.errors import NetlistError
@@ -14,6 +13,7 @@ from ..report import FORMATS, Gate
 from ..report.delivery import STANDARD_OUTPUT, DeliveryError, Target, deliver
 from ..verdict import Level, Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
+from .inputs import NETLIST, add_inputs
 
 STANDARD_INPUT = "-"
 NEVER = "never"
@@ -50,18 +50,10 @@ class _Pairs(argparse.Action):
 
 
 def _add_options(parser: argparse.ArgumentParser) -> None:
-    parser.add_argument("netlists", nargs="+", metavar="NETLIST", help="a netlist, or - for standard input")
+    parser.add_argument("netlists", nargs="+", metavar="NETLIST", help=NETLIST)
     parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML)")
-    parser.add_argument("--parts-list", metavar="FILE", help="the ratings of the parts (CSV)")
     parser.add_argument("--deviations", metavar="FILE", help="the verdicts that are accepted, and why (TOML)")
-    parser.add_argument(
-        "--allow-include",
-        action="append",
-        default=[],
-        type=Path,
-        metavar="DIR",
-        help="a folder besides the netlist's own from which it may include; may be repeated",
-    )
+    add_inputs(parser)
     parser.add_argument(
         "--format",
         action=_Pairs,
