@@ -37,8 +37,9 @@ def load_folder(folder: str | Path, known: Iterable[Rule]) -> tuple[Rule, ...]:
     """
     installed = {one.id: one for one in known}
     found: dict[str, Rule] = {}
+    files = _files(Path(folder))
     package = _package(Path(folder))
-    for path in _files(Path(folder)):
+    for path in files:
         rules = rules_in(_load(path, package))
         if not rules:
             raise _error(path, "there is no rule in this file", "begin the name of a file without rules by _")
