@@ -11,6 +11,7 @@ from __future__ import annotations
 from .brief import read_brief
 from .estimate import Method
 from .parts_list import read_parts_list
+from .policy import Policy
 from .review import review, review_netlist
 from .verdict import Level, Outcome, Review, Verdict
 
@@ -18,6 +19,7 @@ __all__ = [
     "Level",
     "Method",
     "Outcome",
+    "Policy",
     "Review",
     "Verdict",
     "read_brief",

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from difflib import get_close_matches
 from typing import TYPE_CHECKING
@@ -63,12 +63,12 @@ def policy_of(configuration: Configuration, rules: Sequence[Rule], *, complete: 
 
 
 def _know(
-    configuration: Configuration, kind: str, told: Mapping[str, Setting[str]], known: Iterable[str]
+    configuration: Configuration, kind: str, told: Mapping[str, Setting[str]], known: Sequence[str]
 ) -> None:
     """Note a mistake for each name that is none of `known`."""
     document = configuration.document
     for name, setting in told.items():
-        if name in (known := list(known)) or setting.place is None or document.has_enough:
+        if name in known or setting.place is None or document.has_enough:
             continue
         near = get_close_matches(name.casefold(), known, n=1)
         document.mistake(

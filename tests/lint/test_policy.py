@@ -6,7 +6,7 @@ from collections.abc import Callable, Iterable
 from pathlib import Path
 
 import pytest
-from pwmlint.grammar import read_bytes
+from pwmlint.grammar import Place, read_bytes
 from pwmlint.lint.configuration import ConfigurationError, read_configuration
 from pwmlint.lint.design import Design
 from pwmlint.lint.policy import Policy, policy_of
@@ -108,9 +108,9 @@ def test_what_is_off_is_not_asked_and_is_named_with_its_line(policy: PolicyOf, t
     review = reviewed(policy('[topics]\n"bee hive" = "off"\n[levels]\npaint.colour = "off"'))
     assert levels(review) == [("safety.scope", None)]
     assert review.switched_off == (
-        SwitchedOff("scale.zero", (file, 2, 14)),  # pyright: ignore[reportArgumentType]
-        SwitchedOff("scale.drift", (file, 2, 14)),  # pyright: ignore[reportArgumentType]
-        SwitchedOff("paint.colour", (file, 4, 16)),  # pyright: ignore[reportArgumentType]
+        SwitchedOff("scale.zero", Place(file, 2, 14)),
+        SwitchedOff("scale.drift", Place(file, 2, 14)),
+        SwitchedOff("paint.colour", Place(file, 4, 16)),
     )
 
 
