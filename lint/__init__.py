@@ -37,6 +37,7 @@ from .deviations import read_deviations
 from .estimate import Estimate, Method, Unsolved
 from .judge import judge, unsolved
 from .parts_list import read_parts_list
+from .policy import Policy
 from .quantity import Spread
 from .review import read_netlist, review, review_netlist
 from .rule import netlist_rule, rule
@@ -49,6 +50,7 @@ __all__ = [
     "Limit",
     "Method",
     "Outcome",
+    "Policy",
     "Review",
     "Spread",
     "Unsolved",

@@ -15,10 +15,12 @@ from .controllers import generic_number
 from .design import Design
 from .deviations import Applied, Deviations, apply, read_deviations
 from .estimate import Method
+from .house_rules import crash, is_of_house
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
+from .policy import CAUTIONING, Policy
 from .rule import Rule, load_rules
-from .verdict import Outcome, Review, Verdict
+from .verdict import Outcome, Review, SwitchedOff, Verdict
 
 STANDARD_INPUT = "-"
 
@@ -31,6 +33,8 @@ def review(
     deviations: str | Path | None = None,
     allow_include: Sequence[Path] = (),
     method: Method = Method.EXTREME,
+    rules: Iterable[Rule] | None = None,
+    policy: Policy | None = None,
     today: date | None = None,
 ) -> Review:
     """Review a netlist file and return everything that was found.
@@ -41,9 +45,11 @@ def review(
     deviations: the accepted verdicts (TOML); by default `board.deviations.toml` beside `board.edf`
     allow_include: folders besides the netlist's own from which a SPICE-style list may include
     method:     the worst-case analysis that decides
+    rules:      the rules that are asked; all installed ones unless given
+    policy:     which of them are switched off, and what a failed verdict of the others counts as
     today:      the day on which a deviation may have expired, by default this one
     Raises NetlistError, or its kinds BriefError, PartsListError and DeviationsError, for an input that cannot
-    be read.
+    be read, and HouseRuleError where a house's own rule crashes.
     """
     brief_path = brief if brief is not None else beside(netlist, ".brief.toml")
     parts_path = parts_list if parts_list is not None else beside(netlist, ".parts.csv")
@@ -51,9 +57,8 @@ def review(
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
     accepted = read_deviations(deviations_path) if deviations_path is not None else None
-    return review_netlist(
-        read_netlist(netlist, allow_include), told, listed, method=method, deviations=accepted, today=today
-    )
+    read = read_netlist(netlist, allow_include)
+    return review_netlist(read, told, listed, rules, method, policy, accepted, today)
 
 
 def review_netlist(
@@ -62,16 +67,20 @@ def review_netlist(
     parts_list: PartsList | None = None,
     rules: Iterable[Rule] | None = None,
     method: Method = Method.EXTREME,
+    policy: Policy | None = None,
     deviations: Deviations | None = None,
     today: date | None = None,
 ) -> Review:
     """Review a netlist that is already read; `rules` are all installed ones unless given."""
     design = Design(netlist, brief, parts_list, method)
-    asked = load_rules() if rules is None else tuple(rules)
-    verdicts = tuple(verdict for one in asked for verdict in _ask(one, design))
+    known = load_rules() if rules is None else tuple(rules)
+    policy = policy or Policy()
+    asked = [one for one in known if one.id not in policy.off]
+    verdicts = tuple(policy.judged(verdict) for one in asked for verdict in _answers(one, design))
     if deviations is not None:
         verdicts, applied = apply(deviations, verdicts, today or date.today())
-        verdicts += tuple(verdict for one in asked for verdict in _ask_deviations(one, applied, design))
+        about = (verdict for one in asked for verdict in _ask_deviations(one, applied, design))
+        verdicts += tuple(map(policy.judged, about))
     return Review(
         netlist=netlist.file,
         format=netlist.format,
@@ -82,16 +91,14 @@ def review_netlist(
         verdicts=verdicts,
         cautions=_cautions(verdicts),
         deviations=deviations.file if deviations is not None else None,
+        configuration=policy.file,
+        switched_off=tuple(SwitchedOff(one.id, policy.off[one.id]) for one in known if one.id in policy.off),
     )
-
-
-# The rule whose verdicts are no findings but what must be said once of the whole design.
-_CAUTIONING = "safety.scope"
 
 
 def _cautions(verdicts: Iterable[Verdict]) -> tuple[str, ...]:
     """Return what the report must caution of, each once."""
-    return tuple(dict.fromkeys(v.message for v in verdicts if v.rule == _CAUTIONING))
+    return tuple(dict.fromkeys(v.message for v in verdicts if v.rule == CAUTIONING))
 
 
 def read_netlist(netlist: str | Path, allow_include: Sequence[Path] = ()) -> Netlist:
@@ -107,13 +114,21 @@ def _is_controller(name: str) -> bool:
 
 def beside(netlist: str | Path, ending: str) -> Path | None:
     """Return the file beside the netlist that has its name and another ending, where there is one."""
-    if str(netlist) == STANDARD_INPUT:
-        return None
     path = Path(netlist)
-    if not path.name:  # a folder such as "."
+    if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
         return None
-    neighbour = path.with_name(path.stem + ending)
-    return neighbour if neighbour.is_file() else None
+    found = path.with_name(path.stem + ending)
+    return found if found.is_file() else None
+
+
+def _answers(one: Rule, design: Design) -> tuple[Verdict, ...]:
+    """Return the verdicts of a rule. A house's own rule that crashes is told as such, with its file."""
+    if not is_of_house(one):
+        return tuple(_ask(one, design))
+    try:
+        return tuple(_ask(one, design))
+    except (Exception, SystemExit) as problem:
+        raise crash(one, problem, design.netlist.file) from problem
 
 
 def _ask(one: Rule, design: Design) -> Iterator[Verdict]:

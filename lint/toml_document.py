@@ -133,6 +133,19 @@ class Table:
                 )
         return not unknown
 
+    @property
+    def keys(self) -> tuple[str, ...]:
+        """The keys, in the order of the file."""
+        return tuple(self._content)
+
+    def value_place(self, key: str) -> Place:
+        """Return where the value of `key` begins."""
+        return self._document.value_place((*self._path, key))
+
+    def is_table(self, key: str) -> bool:
+        """Tell whether a table stands under the key."""
+        return isinstance(self._content.get(key), dict)
+
     def has(self, key: str) -> bool:
         """Tell whether the key is there, right or wrong."""
         return key in self._content
@@ -198,9 +211,10 @@ class Table:
             return None
         return self._typed(key, date, expected)
 
-    def texts(self, key: str, example: str = '["1IN+", "1IN-"]') -> tuple[str, ...] | None:
-        """Return a list of texts that has at least one; `example` shows one."""
-        expected = f"a list of texts such as {example}"
+    def texts(
+        self, key: str, expected: str = 'a list of texts such as ["1IN+", "1IN-"]'
+    ) -> tuple[str, ...] | None:
+        """Return a list of texts that has at least one."""
         items = cast("list[Any] | None", self._typed(key, list, expected))
         if items is None:
             return None
@@ -239,7 +253,7 @@ class Table:
         self, key: str, message: str, *, expected: str = "", remedy: str = "", offset: int = 0
     ) -> None:
         """Note a mistake in the value of `key`; `offset` counts characters from the quote of a text."""
-        place = self._document.value_place((*self._path, key))
+        place = self.value_place(key)
         # Only a text in single quote marks can be counted into; of others, its beginning is shown.
         if offset and _QUOTED.match(self._document.excerpt(place), place.column - 1):
             place = place._replace(column=place.column + offset)

@@ -200,6 +200,14 @@ class ControllerReview:
 
 
 @dataclass(frozen=True, slots=True)
+class SwitchedOff:
+    """A rule that was not asked because a configuration says so, and where it says it."""
+
+    rule: str
+    place: Place
+
+
+@dataclass(frozen=True, slots=True)
 class Review:
     """Everything one review found. `verdicts` are in a fixed order: same input, same order."""
 
@@ -212,6 +220,8 @@ class Review:
     verdicts: tuple[Verdict, ...]
     cautions: tuple[str, ...] = ()
     deviations: str | None = None
+    configuration: str | None = None
+    switched_off: tuple[SwitchedOff, ...] = ()
 
     @property
     def counts(self) -> dict[str, int]:

@@ -7,5 +7,5 @@ function takes the parsed options and returns the exit status. A new command is 
 
 from __future__ import annotations
 
-COMMANDS = ("review", "brief", "permit", "rules", "controllers", "completion")
+COMMANDS = ("review", "brief", "permit", "settings", "rules", "controllers", "completion")
 """The modules of the commands, in the order in which `--help` lists them."""

@@ -5,10 +5,11 @@ from __future__ import annotations
 import argparse
 from typing import Any
 
-from ...grammar.errors import NetlistError
 from ..report.delivery import STANDARD_OUTPUT
 from .answer import PASSED, TROUBLE, is_taken, tell, write_toml
+from .given import add_configuration
 from .inputs import NETLIST, add_inputs
+from .review import review_each
 
 
 def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
@@ -24,31 +25,33 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     )
     parser.add_argument("netlist", metavar="NETLIST", help=NETLIST)
     parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML)")
-    add_inputs(parser)
     parser.add_argument("--deviations", metavar="FILE", help="the verdicts that are accepted already (TOML)")
-    parser.add_argument("--strict", action="store_true", help="write one for every open verdict, too")
-    parser.add_argument("--output", metavar="FILE", default=STANDARD_OUTPUT, help="where they go (-)")
-    parser.set_defaults(command=_run)
+    add_inputs(parser)
+    add_configuration(parser)
+    parser.add_argument(
+        "--strict", action=argparse.BooleanOptionalAction, help="write one for every open verdict, too"
+    )
+    parser.add_argument(
+        "--output",
+        metavar="FILE",
+        default=STANDARD_OUTPUT,
+        help="where they go (-); a file that is there already is not overwritten",
+    )
+    parser.set_defaults(command=_run, parser=parser)
 
 
 def _run(options: argparse.Namespace) -> int:
     from ..permit import permit
-    from ..review import review
+    from .settle import settle_each
 
     if is_taken(options.output):
         return TROUBLE
-    try:
-        found = review(
-            options.netlist,
-            brief=options.brief,
-            parts_list=options.parts_list,
-            deviations=options.deviations,
-            allow_include=options.allow_include,
-        )
-    except NetlistError as error:
-        tell(str(error))
+    settled = settle_each([options.netlist], options)
+    reviewed = review_each(settled)
+    if not reviewed:
         return TROUBLE
-    text = permit(found.verdicts, open_too=options.strict)
+    ((found, settings),) = reviewed
+    text = permit(found.verdicts, open_too=settings.strict.value)
     if not text:
         tell("pwmlint: there is nothing to accept")
         return PASSED

@@ -6,8 +6,8 @@ the review says.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
 from importlib import import_module
 from typing import Protocol, TextIO
 
@@ -23,17 +23,26 @@ class Gate:
 
     level:  the least level of a failed verdict that does; None: none does
     strict: whether `open` and `review` verdicts do as well
+    own:    by netlist the gates of those that have one of their own, where the netlists of a run differ
     """
 
     level: Level | None = Level.ERROR
     strict: bool = False
+    own: Mapping[str, Gate] = field(default_factory=dict[str, "Gate"], hash=False)
+
+    def of(self, review: Review) -> Gate:
+        """Return the gate that `review` is held to."""
+        return self.own.get(review.netlist, self)
 
     def passes(self, review: Review) -> bool:
         """Tell whether `review` passes."""
-        return review.passes(self.level, strict=self.strict)
+        gate = self.of(review)
+        return review.passes(gate.level, strict=gate.strict)
 
     def __str__(self) -> str:
         """Return the gate as asked for on the command line, such as "error, strict"."""
+        if self.own:
+            return "of each netlist"
         return (self.level.value if self.level else "never") + (", strict" if self.strict else "")
 
 

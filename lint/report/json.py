@@ -39,9 +39,11 @@ def _review(review: Review) -> dict[str, Any]:
         "brief": review.brief,
         "parts_list": review.parts_list,
         "deviations": review.deviations,
+        "configuration": review.configuration,
         "controllers": [_controller(controller) for controller in review.controllers],
         "verdicts": [_verdict(verdict) for verdict in review.verdicts],
         "cautions": list(review.cautions),
+        "switched_off": [{"rule": off.rule, "place": _place(off.place)} for off in review.switched_off],
         "counts": review.counts,
         "accepted": review.accepted,
     }

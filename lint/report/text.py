@@ -68,7 +68,8 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
         _taken_for_granted(page, review)
         _cautions(page, review.cautions)
         _not_applicable(page, review.verdicts)
-        _answer(page, counts(review.verdicts), gate, gate.passes(review))
+        _switched_off(page, review)
+        _answer(page, counts(review.verdicts), gate.of(review), gate.passes(review))
     if len(reviews) > 1:
         passed = sum(gate.passes(review) for review in reviews)
         told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
@@ -83,6 +84,7 @@ def _title(page: Page, review: Review) -> None:
         ("brief", review.brief or "none"),
         ("parts list", review.parts_list or "none"),
         ("deviations", review.deviations or ""),
+        ("settings", review.configuration or ""),
     ]
     for label, text in rows:
         if text:
@@ -234,6 +236,17 @@ def _not_applicable(page: Page, verdicts: Sequence[Verdict]) -> None:
     if rules:
         listed = ", ".join(dict.fromkeys(rules))
         page.paragraph(f"{len(rules)} not applicable: {listed}", 2, style="dim")
+        page.blank()
+
+
+def _switched_off(page: Page, review: Review) -> None:
+    """Print which rules were not asked, and where that is written."""
+    lines: dict[str, list[str]] = {}
+    for off in review.switched_off:
+        lines.setdefault(f"{off.place.file}:{off.place.line}", []).append(off.rule)
+    for where, rules in lines.items():
+        page.paragraph(f"{len(rules)} switched off by {where}: {', '.join(rules)}", 2, style="bold")
+    if lines:
         page.blank()
 
 

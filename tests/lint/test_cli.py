@@ -13,6 +13,8 @@ from pwmlint.grammar.errors import NetlistError
 from pwmlint.grammar.netlist import Place
 from pwmlint.lint import cli
 from pwmlint.lint.estimate import Method
+from pwmlint.lint.policy import Policy
+from pwmlint.lint.rule import Rule, load_rules
 from pwmlint.lint.verdict import Level, Outcome, Review, Verdict
 
 Asked = list[dict[str, object]]
@@ -54,7 +56,11 @@ def asked(monkeypatch: pytest.MonkeyPatch) -> Asked:
         deviations: str | None = None,
         allow_include: Sequence[Path] = (),
         method: Method = Method.EXTREME,
+        rules: Sequence[Rule] = (),
+        policy: Policy | None = None,
     ) -> Review:
+        assert rules == load_rules()
+        assert policy == Policy()
         calls.append(
             {
                 "netlist": netlist,
