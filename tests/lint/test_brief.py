@@ -327,6 +327,6 @@ def test_no_brief_does_harm(tmp_path_factory: pytest.TempPathFactory, text: str 
 def test_hostile_briefs_cost_little(write: Write, line: str) -> None:
     lines = (line.replace("#", str(number)) for number in range(300_000 // len(line)))
     path = write("\n".join(lines))
-    start = time.perf_counter()
+    start = time.process_time()
     assert refused(path).message
-    assert time.perf_counter() - start < 5.0
+    assert time.process_time() - start < 5.0
