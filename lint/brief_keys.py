@@ -49,8 +49,8 @@ DESIGN_KEYS = (
 RAIL_KEYS = (
     Key(
         "voltage",
-        "over ground, without the tolerance: of a supply what comes, of an output what is wanted; no rail "
-        "goes without",
+        "over ground, without the tolerance: of a supply what comes, of an output what is wanted; every "
+        "rail needs one",
         '"21 V .. 29 V"',
         rules=("feedback.output-voltage",),
     ),
