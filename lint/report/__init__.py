@@ -7,14 +7,22 @@ the review says.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from importlib import import_module
 from typing import Protocol, TextIO
 
-from ..verdict import Level, Review
+from ..verdict import Level, Review, Verdict
 
 # Name on the command line -> module; loaded only when asked for, so that a JSON report needs no rich.
-FORMATS = {"text": ".text", "json": ".json"}
+FORMATS = {
+    "text": ".text",
+    "json": ".json",
+    "sarif": ".sarif",
+    "sarif-alerts": ".sarif.alerts",
+    "junit": ".junit",
+    "markdown": ".markdown",
+    "annotations": ".annotations",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,6 +39,10 @@ class Gate:
     def passes(self, review: Review) -> bool:
         """Tell whether `review` passes."""
         return review.passes(self.level, strict=self.strict)
+
+    def stops(self, verdict: Verdict, review: Review) -> bool:
+        """Tell whether `verdict`, one of `review`, stops the gate by itself."""
+        return not self.passes(replace(review, verdicts=(verdict,)))
 
     def __str__(self) -> str:
         """Return the gate as asked for on the command line, such as "error, strict"."""
