@@ -6,6 +6,7 @@ from collections.abc import Sequence
 
 from rich.cells import cell_len
 
+from ...grammar.errors import no_command
 from ..quantity import figure
 from ..verdict import TOPICS, Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
@@ -108,7 +109,7 @@ def _brief(page: Page, verdicts: Sequence[Verdict]) -> None:
         if drawn is None or apart:
             page.paragraph(name(verdict), _INDENT, style="dim")
         if drawn is not None:
-            title = "" if apart else page.say(name(verdict))
+            title = "" if apart else no_command(page.say(name(verdict)))
             page.line(
                 (" " * _INDENT + _pad(title, names), "dim"),
                 (f"  {page.say(_low(verdict)):>{lows}} ", "dim"),
