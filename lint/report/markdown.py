@@ -44,10 +44,10 @@ def _review(review: Review, gate: Gate) -> Iterator[str]:
         yield from (f"Design: {inline(review.name)}", "")
     yield from (_answer(review, gate), "")
     yield from _table(asked, review)
-    yield from _folded("findings with their figures", [_finding(one) for one in asked])
-    yield from _folded("that could not be checked", [_open(one) for one in unanswered(review)])
-    yield from _folded("accepted", [_accepted(*pair) for pair in accepted(review)])
-    yield from _folded("cautions", [[f"- {inline(caution)}"] for caution in review.cautions])
+    yield from _folded("Findings with their figures", [_finding(one) for one in asked])
+    yield from _folded("Could not be checked", [_open(one) for one in unanswered(review)])
+    yield from _folded("Accepted", [_accepted(*pair) for pair in accepted(review)])
+    yield from _folded("Cautions", [[f"- {inline(caution)}"] for caution in review.cautions])
 
 
 def _answer(review: Review, gate: Gate) -> str:
@@ -111,7 +111,7 @@ def _folded(title: str, items: Sequence[Iterable[str]]) -> Iterator[str]:
     """Yield a list that is folded until somebody asks for it; the blank lines let it be Markdown inside."""
     if not items:
         return
-    yield from ("<details>", f"<summary>{len(items)} {title}</summary>", "")
+    yield from ("<details>", f"<summary>{title} ({len(items)})</summary>", "")
     for item in items[:MOST]:
         yield from item
     yield from ("", *_beyond(len(items)), "</details>", "")

@@ -275,7 +275,7 @@ MARKS = {
     *("bullet_list", "list_item"),
 }
 LEAVES = {"inline", "text", "code_inline", "html_block", "softbreak"}
-FOLD = re.compile(r"(?:<details>\n<summary>\d+ [a-z ]+</summary>|</details>)\n?")
+FOLD = re.compile(r"(?:<details>\n<summary>[A-Z][a-z ]+ \(\d+\)</summary>|</details>)\n?")
 
 
 def judge_markdown(report: Reported) -> None:

@@ -40,10 +40,10 @@ def test_the_rest_is_folded(written: Written, faulty: Review) -> None:
     text = written("markdown", faulty)
     assert text.count("<details>\n<summary>") == text.count("\n\n</details>\n") == 3
     figures, unchecked, cautions = text.split("</details>")[:3]
-    assert "<summary>4 findings with their figures</summary>\n\n" in figures
+    assert "<summary>Findings with their figures (4)</summary>\n\n" in figures
     assert "  - margin: -21 %" in figures
     assert "  - formula: `VOUT = 2.50 V (1 + R1 / R2) = 2.50 V (1 + 40.2 kΩ / 10.0 kΩ)`" in figures
-    assert "<summary>4 that could not be checked</summary>\n\n" in unchecked
+    assert "<summary>Could not be checked (4)</summary>\n\n" in unchecked
     assert '  - needs: `brief: [controllers.U1] dead_time = "..."`' in unchecked
     assert "A frost-fan drive can start without warning" in cautions
 
@@ -52,7 +52,7 @@ def test_what_is_accepted_stands_apart_with_its_reason(written: Written, accepte
     text = written("markdown", accepted)
     assert "3 info, 65 pass, 1 accepted" in text
     assert not any("feedback.output-voltage" in row for row in table(text))
-    folded = text.partition("<summary>1 accepted</summary>")[2]
+    folded = text.partition("<summary>Accepted (1)</summary>")[2]
     assert (
         "- **error** `feedback.output-voltage` U1: no voltage of VOUT is within reach of RV1 on every unit\n"
         "  - accepted by the pressing hall's electrician, until 2031-09-30: "
