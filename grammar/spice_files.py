@@ -136,14 +136,14 @@ class Files:
         ]:
             try:
                 real = candidate.resolve()
-                inside = any(real.is_relative_to(tree) for tree in self._trees)
+                inside = any(_is_open(real, tree) for tree in self._trees)
                 if inside and real.is_file():
                     return candidate, ""
             except (OSError, RuntimeError, ValueError) as error:  # too long, a loop of links, a NUL
                 return None, f"no usable file name ({type(error).__name__})"
             outside = outside or not inside
         if outside:
-            return None, "it lies outside the netlist's folder; allow its folder to be included"
+            return None, "it lies outside the netlist's folder, or is hidden; allow its folder to be included"
         return None, "there is no such file"
 
     def _load(self, path: Path, card: Card, index: int) -> list[Item] | None:
@@ -170,6 +170,16 @@ class Files:
             reason = error.message
         self._run.notes.add(_MISSING, f"{path} is not read: {reason}", card.line.place(index), str(path))
         return None
+
+
+def _is_open(real: Path, tree: Path) -> bool:
+    """Tell whether a file lies in a tree, and in nothing hidden there.
+
+    A repository keeps credentials in a hidden folder, and an error quotes the file that it is about.
+    """
+    return real.is_relative_to(tree) and not any(
+        word.startswith(".") for word in real.relative_to(tree).parts
+    )
 
 
 def _readings(card: Card) -> tuple[int, list[tuple[str, str]]]:

@@ -13,26 +13,17 @@ from types import MappingProxyType
 
 from ..grammar.errors import NetlistError
 from ..grammar.netlist import Place
+from .brief_keys import (
+    CIRCUITS,
+    CONTROLLER_KEYS,
+    DERATING_POLICIES,
+    DESIGN_KEYS,
+    RAIL_KEYS,
+    TOPOLOGIES,
+    names,
+)
 from .quantity import Spread
 from .toml_document import Table, TomlDocument
-
-TOPOLOGIES = ("single-ended", "push-pull", "half-bridge", "full-bridge")
-DERATING_POLICIES = ("nasa", "ecss", "commercial")
-CIRCUITS = ("mains", "primary", "secondary")
-
-_DESIGN_KEYS = ("name", "ambient", "derating")
-_RAIL_KEYS = ("voltage", "tolerance", "load", "circuit")
-_CONTROLLER_KEYS = (
-    "topology",
-    "switching_frequency",
-    "dead_time",
-    "maximum_duty",
-    "soft_start",
-    "current_limit",
-    "output",
-    "pins",
-    "shut_off_by_dead_time",
-)
 
 _ABSOLUTE_ZERO = -273.15
 
@@ -52,9 +43,7 @@ class Rail:
     voltage:   as given, in V, without the tolerance
     tolerance: as a fraction, 0.02 for 2 %; None where the brief has none
     load:      the current drawn from the net, in A
-    circuit:   one of CIRCUITS, None where the brief does not tell: "mains" for each net of the line, its
-               voltage then being the one between the mains nets (rms); "primary" for nets that are not
-               isolated from the mains; "secondary" for those that must be
+    circuit:   one of CIRCUITS, None where the brief does not tell
     """
 
     net: str
@@ -121,13 +110,16 @@ class Brief:
     controllers: Mapping[str, ControllerBrief]
 
 
-def read_brief(path: str | Path) -> Brief:
-    """Read a brief; raise BriefError, with every mistake in the file, where it cannot be used."""
-    document = TomlDocument(path, BriefError)
+def read_brief(path: str | Path, text: str | None = None) -> Brief:
+    """Read a brief; raise BriefError, with every mistake in the file, where it cannot be used.
+
+    text: what the file holds, where that is known without opening it
+    """
+    document = TomlDocument(path, BriefError, text)
     root = document.root
     root.know(("design", "rails", "controllers"))
     design = root.table("design")
-    design.know(_DESIGN_KEYS)
+    design.know(names(DESIGN_KEYS))
     rails = [_rail(net, table) for net, table in root.table("rails").tables()]
     controllers = {name: _controller(name, table) for name, table in root.table("controllers").tables()}
     brief = Brief(
@@ -144,7 +136,7 @@ def read_brief(path: str | Path) -> Brief:
 
 def _rail(net: str, table: Table) -> Rail | None:
     """Return a rail, or None where its voltage is missing or wrong: a mistake is then noted."""
-    table.know(_RAIL_KEYS)
+    table.know(names(RAIL_KEYS))
     voltage = table.spread("voltage", "V", least=-_HIGHEST_VOLTAGE, most=_HIGHEST_VOLTAGE)
     tolerance = table.quantity("tolerance", "", least=0.0, most=0.99)
     load = table.spread("load", "A", least=0.0, most=_LARGEST_CURRENT)
@@ -155,7 +147,7 @@ def _rail(net: str, table: Table) -> Rail | None:
 
 
 def _controller(reference: str, table: Table) -> ControllerBrief:
-    table.know(_CONTROLLER_KEYS)
+    table.know(names(CONTROLLER_KEYS))
     return ControllerBrief(
         reference=reference,
         place=table.place,

@@ -24,7 +24,7 @@ TRACEBACK = "PWMLINT_TRACEBACK"
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run the command line and return the exit status. Raises SystemExit(2) on wrong usage, as argparse."""
     try:
-        options = _parser().parse_args(arguments)
+        options = command_line().parse_args(arguments)
         return options.command(options)
     except KeyboardInterrupt:
         tell("interrupted")
@@ -37,7 +37,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return _internal(error)
 
 
-def _parser() -> argparse.ArgumentParser:
+def command_line() -> argparse.ArgumentParser:
+    """Return the parser of the whole command line."""
     parser = argparse.ArgumentParser(
         prog="pwmlint", description="Reviews the schematic netlist around a PWM controller.", epilog=EXIT
     )

@@ -2,6 +2,12 @@
 
 from __future__ import annotations
 
+import tomllib
+
+from .toml_text import toml_key
+
+_BRIEF = "brief: "
+
 
 def rail(net: str, *keys: str, declared: bool = False) -> str:
     """Return the line of the brief that tells keys of a rail.
@@ -10,17 +16,21 @@ def rail(net: str, *keys: str, declared: bool = False) -> str:
     """
     wanted = keys if declared else dict.fromkeys(("voltage", *keys))
     told = ", ".join(f'{key} = "..."' for key in wanted)
-    return f"brief: [rails.{toml_key(net)}] {told}"
+    return f"{_BRIEF}[rails.{toml_key(net)}] {told}"
 
 
 def controller(reference: str, key: str) -> str:
     """Return the line of the brief that tells one key of a controller."""
-    return f'brief: [controllers.{toml_key(reference)}] {key} = "..."'
+    return f'{_BRIEF}[controllers.{toml_key(reference)}] {key} = "..."'
 
 
-def toml_key(name: str) -> str:
-    """Return a net or a reference designator as a TOML key, quoted where a path or a mark demands it."""
-    if name.isascii() and name.replace("_", "").replace("-", "").isalnum():
-        return name
-    escaped = name.replace("\\", "\\\\").replace('"', '\\"')
-    return f'"{escaped}"'
+def rail_asked_for(need: str) -> str | None:
+    """Return the net that the line of a need would declare, None where it asks for something else."""
+    header, bracket, _ = need.removeprefix(_BRIEF).rpartition("] ")
+    if not need.startswith(f"{_BRIEF}[rails.") or not bracket:
+        return None
+    try:
+        asked = tomllib.loads(header + bracket)
+    except tomllib.TOMLDecodeError:  # a line with a gap to fill in, such as <the other mains net>
+        return None
+    return next(iter(asked["rails"]))

@@ -52,7 +52,7 @@ def _power_stage(controller: Controller, design: Design) -> tuple[str, tuple[str
 
 
 def _rows(controller: Controller, design: Design, verdicts: Sequence[Verdict]) -> Iterable[PinRow]:
-    about = [v for v in verdicts if v.controller == controller.reference]
+    about = [v for v in verdicts if v.controller == controller.reference and v.deviation is None]
     for description in controller.profile.pins:
         worst = _worst([v for v in about if description.role in v.pins])
         pin = controller.pin(description.role)

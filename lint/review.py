@@ -5,6 +5,7 @@ from __future__ import annotations
 import sys
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import replace
+from datetime import date
 from pathlib import Path
 from typing import NamedTuple
 
@@ -13,11 +14,14 @@ from .brief import Brief, read_brief
 from .circuit.controllers import Controller
 from .controllers import generic_number
 from .design import Design
+from .deviations import Applied, Deviations, apply, read_deviations
 from .estimate import Method
+from .house_rules import crash, is_of_house
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
+from .policy import CAUTIONING, Policy
 from .rule import Rule, load_rules
-from .verdict import Outcome, Review, Verdict
+from .verdict import Outcome, Review, SwitchedOff, Verdict
 
 STANDARD_INPUT = "-"
 
@@ -27,20 +31,31 @@ def review(
     *,
     brief: str | Path | None = None,
     parts_list: str | Path | None = None,
+    deviations: str | Path | None = None,
     allow_include: Sequence[Path] = (),
     method: Method = Method.EXTREME,
+    rules: Iterable[Rule] | None = None,
+    policy: Policy | None = None,
+    today: date | None = None,
 ) -> Review:
     """Review a netlist file and return everything that was found.
 
     netlist:    a path, or "-" for standard input
     brief:      the design intent (TOML); by default `board.brief.toml` beside `board.edf`, where it exists
     parts_list: the ratings (CSV); by default `board.parts.csv` beside `board.edf`, where it exists
+    deviations: the accepted verdicts (TOML); by default `board.deviations.toml` beside `board.edf`
     allow_include: folders besides the netlist's own from which a SPICE-style list may include
     method:     the worst-case analysis that decides
-    Raises NetlistError, or its kinds BriefError and PartsListError, for an input that cannot be read.
+    rules:      the rules that are asked; all installed ones unless given
+    policy:     which of them are switched off, and what a failed verdict of the others counts as
+    today:      the day on which a deviation may have expired, by default this one
+    Raises NetlistError, or its kinds BriefError, PartsListError and DeviationsError, for an input that cannot
+    be read, and HouseRuleError where a house's own rule crashes.
     """
-    inputs = read_inputs(netlist, brief=brief, parts_list=parts_list, allow_include=allow_include)
-    return review_netlist(inputs.netlist, inputs.brief, inputs.parts_list, method=method)
+    read, told, listed, accepted = read_inputs(
+        netlist, brief=brief, parts_list=parts_list, deviations=deviations, allow_include=allow_include
+    )
+    return review_netlist(read, told, listed, rules, method, policy, accepted, today)
 
 
 class Inputs(NamedTuple):
@@ -49,6 +64,7 @@ class Inputs(NamedTuple):
     netlist: Netlist
     brief: Brief | None
     parts_list: PartsList | None
+    deviations: Deviations | None
 
 
 def read_inputs(
@@ -56,14 +72,17 @@ def read_inputs(
     *,
     brief: str | Path | None = None,
     parts_list: str | Path | None = None,
+    deviations: str | Path | None = None,
     allow_include: Sequence[Path] = (),
 ) -> Inputs:
     """Read a netlist and what belongs to it; the arguments and errors are those of `review`."""
-    brief_path = brief if brief is not None else _beside(netlist, ".brief.toml")
-    parts_path = parts_list if parts_list is not None else _beside(netlist, ".parts.csv")
+    brief_path = brief if brief is not None else beside(netlist, ".brief.toml")
+    parts_path = parts_list if parts_list is not None else beside(netlist, ".parts.csv")
+    deviations_path = deviations if deviations is not None else beside(netlist, ".deviations.toml")
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
-    return Inputs(_read(netlist, allow_include), told, listed)
+    accepted = read_deviations(deviations_path) if deviations_path is not None else None
+    return Inputs(read_netlist(netlist, allow_include), told, listed, accepted)
 
 
 def review_netlist(
@@ -72,11 +91,20 @@ def review_netlist(
     parts_list: PartsList | None = None,
     rules: Iterable[Rule] | None = None,
     method: Method = Method.EXTREME,
+    policy: Policy | None = None,
+    deviations: Deviations | None = None,
+    today: date | None = None,
 ) -> Review:
     """Review a netlist that is already read; `rules` are all installed ones unless given."""
     design = Design(netlist, brief, parts_list, method)
-    asked = load_rules() if rules is None else tuple(rules)
-    verdicts = tuple(verdict for one in asked for verdict in _ask(one, design))
+    known = load_rules() if rules is None else tuple(rules)
+    policy = policy or Policy()
+    asked = [one for one in known if one.id not in policy.off]
+    verdicts = tuple(policy.judged(verdict) for one in asked for verdict in _answers(one, design))
+    if deviations is not None:
+        verdicts, applied = apply(deviations, verdicts, today or date.today())
+        about = (verdict for one in asked for verdict in _ask_deviations(one, applied, design))
+        verdicts += tuple(map(policy.judged, about))
     return Review(
         netlist=netlist.file,
         format=netlist.format,
@@ -86,19 +114,19 @@ def review_netlist(
         controllers=tuple(controller_review(one, design, verdicts) for one in design.controllers),
         verdicts=verdicts,
         cautions=_cautions(verdicts),
+        deviations=deviations.file if deviations is not None else None,
+        configuration=policy.file,
+        switched_off=tuple(SwitchedOff(one.id, policy.off[one.id]) for one in known if one.id in policy.off),
     )
-
-
-# The rule whose verdicts are no findings but what must be said once of the whole design.
-_CAUTIONING = "safety.scope"
 
 
 def _cautions(verdicts: Iterable[Verdict]) -> tuple[str, ...]:
     """Return what the report must caution of, each once."""
-    return tuple(dict.fromkeys(v.message for v in verdicts if v.rule == _CAUTIONING))
+    return tuple(dict.fromkeys(v.message for v in verdicts if v.rule == CAUTIONING))
 
 
-def _read(netlist: str | Path, allow_include: Sequence[Path]) -> Netlist:
+def read_netlist(netlist: str | Path, allow_include: Sequence[Path] = ()) -> Netlist:
+    """Read a netlist file, or standard input for "-", as a review does; raise NetlistError."""
     if str(netlist) == STANDARD_INPUT:
         return read_bytes(sys.stdin.buffer.read(), "<standard input>", keep=_is_controller)
     return read(netlist, keep=_is_controller, allow_include=allow_include)
@@ -108,13 +136,23 @@ def _is_controller(name: str) -> bool:
     return generic_number(name) is not None
 
 
-def _beside(netlist: str | Path, ending: str) -> Path | None:
+def beside(netlist: str | Path, ending: str) -> Path | None:
     """Return the file beside the netlist that has its name and another ending, where there is one."""
-    if str(netlist) == STANDARD_INPUT:
-        return None
     path = Path(netlist)
-    beside = path.with_name(path.stem + ending)
-    return beside if beside.is_file() else None
+    if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
+        return None
+    found = path.with_name(path.stem + ending)
+    return found if found.is_file() else None
+
+
+def _answers(one: Rule, design: Design) -> tuple[Verdict, ...]:
+    """Return the verdicts of a rule. A house's own rule that crashes is told as such, with its file."""
+    if not is_of_house(one):
+        return tuple(_ask(one, design))
+    try:
+        return tuple(_ask(one, design))
+    except (Exception, SystemExit) as problem:
+        raise crash(one, problem, design.netlist.file) from problem
 
 
 def _ask(one: Rule, design: Design) -> Iterator[Verdict]:
@@ -125,6 +163,12 @@ def _ask(one: Rule, design: Design) -> Iterator[Verdict]:
         for controller in design.controllers:
             for verdict in _ask_controller(one, controller, design):
                 yield _complete(verdict, one, design, controller)
+
+
+def _ask_deviations(one: Rule, applied: Applied, design: Design) -> Iterator[Verdict]:
+    if one.of_deviations is not None:
+        for verdict in one.of_deviations(applied):
+            yield _complete(verdict, one, design, None)
 
 
 def _ask_controller(one: Rule, controller: Controller, design: Design) -> Iterable[Verdict]:

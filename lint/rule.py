@@ -12,6 +12,7 @@ from typing import TypeAlias
 
 from .circuit.controllers import Controller
 from .design import Design
+from .deviations import Applied
 from .verdict import Level, Verdict
 
 ENTRY_POINT_GROUP = "pwmlint.rules"
@@ -25,6 +26,7 @@ _HEADING = re.compile(rf"^({'|'.join((*SECTIONS, *EXAMPLES))}):", re.MULTILINE)
 
 ControllerQuestion: TypeAlias = Callable[[Controller, Design], Iterable[Verdict]]
 NetlistQuestion: TypeAlias = Callable[[Design], Iterable[Verdict]]
+DeviationQuestion: TypeAlias = Callable[[Applied], Iterable[Verdict]]
 
 _ID = re.compile(r"[a-z0-9]+(?:-[a-z0-9]+)*\.[a-z0-9]+(?:-[a-z0-9]+)*")
 
@@ -37,7 +39,8 @@ class Rule:
     level: what a failed verdict counts as, unless the verdict itself says otherwise
     topic: the heading it stands under in a report
     needs: inputs without which the question cannot be asked, in the words of `Design.missing`
-    ask:   the question as a function: of every controller, or once of the whole netlist
+    of_controller, of_netlist, of_deviations: the question as a function, one of the three: of every
+           controller, once of the whole netlist, or of a file of deviations when all else is asked
     """
 
     id: str
@@ -46,11 +49,12 @@ class Rule:
     needs: tuple[str, ...]
     of_controller: ControllerQuestion | None
     of_netlist: NetlistQuestion | None
+    of_deviations: DeviationQuestion | None = None
 
     @property
-    def function(self) -> ControllerQuestion | NetlistQuestion:
+    def function(self) -> ControllerQuestion | NetlistQuestion | DeviationQuestion:
         """Return the rule's function."""
-        function = self.of_controller or self.of_netlist
+        function = self.of_controller or self.of_netlist or self.of_deviations
         assert function is not None
         return function
 
@@ -91,6 +95,19 @@ def netlist_rule(
 
     def make(function: NetlistQuestion) -> Rule:
         return Rule(_checked(id), Level(level), topic, (), None, function)
+
+    return make
+
+
+def deviation_rule(
+    id: str,  # noqa: A002 - as above
+    *,
+    level: str,
+) -> Callable[[DeviationQuestion], Rule]:
+    """Make a rule of a function of what became of the deviations: it is asked last, where there are any."""
+
+    def make(function: DeviationQuestion) -> Rule:
+        return Rule(_checked(id), Level(level), "deviations", (), None, None, function)
 
     return make
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 import tomllib
 from collections.abc import Iterator, Sequence
+from datetime import date, datetime
 from difflib import get_close_matches
 from math import inf
 from pathlib import Path
@@ -15,7 +16,7 @@ from ..grammar.netlist import Place
 from .quantity import Spread
 from .text_file import read_text
 from .toml_places import KeyPath, TomlPlaces
-from .units import QuantityTextError, read_range
+from .units import QuantityTextError, read_any_range, read_range
 
 _LARGEST_FILE = 1_000_000
 _LONGEST_LINE = 2_000
@@ -29,13 +30,14 @@ _Kind = TypeVar("_Kind")
 class TomlDocument:
     """The document of one file. Mistakes are collected, so that one run shows them all; see `finish`.
 
+    text: what the file holds, where that is known without opening it
     Raises `error` at once where the file cannot be read as TOML.
     """
 
-    def __init__(self, path: str | Path, error: type[NetlistError]) -> None:
+    def __init__(self, path: str | Path, error: type[NetlistError], text: str | None = None) -> None:
         self.file = str(path)
         self._error = error
-        text = read_text(path, error, limit=_LARGEST_FILE)
+        text = read_text(path, error, limit=_LARGEST_FILE) if text is None else text
         self._lines = text.split("\n")
         content = self._load(text)
         self._places = TomlPlaces(text, self.file)
@@ -48,6 +50,11 @@ class TomlDocument:
             first, *others = sorted(self._mistakes, key=lambda mistake: mistake.place)
             first.also = tuple(others[: _MOST_ERRORS - 1])
             raise first
+
+    @property
+    def mistakes(self) -> tuple[NetlistError, ...]:
+        """The mistakes that are known, in the order in which they were found."""
+        return tuple(self._mistakes)
 
     @property
     def has_enough(self) -> bool:
@@ -99,27 +106,45 @@ class TomlDocument:
 class Table:
     """One table: its keys are asked by name and come back checked, or None where they are absent or wrong."""
 
-    def __init__(self, document: TomlDocument, path: KeyPath, content: dict[str, Any]) -> None:
+    def __init__(
+        self, document: TomlDocument, path: KeyPath, content: dict[str, Any], name: str = ""
+    ) -> None:
         self._document = document
         self._path = path
         self._content = content
+        self._name = name or f"[{'.'.join(path)}]"
 
     @property
     def place(self) -> Place:
         """Where the table begins."""
         return self._document.place(self._path)
 
-    def know(self, keys: Sequence[str]) -> None:
-        """Note a mistake for each key that is not among `keys`."""
-        for key in self._content:
-            if key not in keys and not self._document.has_enough:
+    def know(self, keys: Sequence[str]) -> bool:
+        """Note a mistake for each key that is not among `keys`, and tell whether there is none."""
+        unknown = [key for key in self._content if key not in keys]
+        for key in unknown:
+            if not self._document.has_enough:
                 near = get_close_matches(key.casefold(), keys, n=1)
                 self._document.mistake(
-                    f'unknown key "{key}"' + (f" in [{'.'.join(self._path)}]" if self._path else ""),
+                    f'unknown key "{key}"' + (f" in {self._name}" if self._path else ""),
                     self._document.place((*self._path, key)),
                     expected=_one_of(keys),
                     remedy=f'did you mean "{near[0]}"?' if near else "remove it",
                 )
+        return not unknown
+
+    @property
+    def keys(self) -> tuple[str, ...]:
+        """The keys, in the order of the file."""
+        return tuple(self._content)
+
+    def value_place(self, key: str) -> Place:
+        """Return where the value of `key` begins."""
+        return self._document.value_place((*self._path, key))
+
+    def is_table(self, key: str) -> bool:
+        """Tell whether a table stands under the key."""
+        return isinstance(self._content.get(key), dict)
 
     def has(self, key: str) -> bool:
         """Tell whether the key is there, right or wrong."""
@@ -137,6 +162,17 @@ class Table:
             table = self.table(key)
             if isinstance(content, dict):
                 yield key, table
+
+    def array(self, key: str) -> Iterator[Table]:
+        """Yield each table of the array `key`, written `[[key]]`."""
+        expected = f"tables, each under [[{key}]]"
+        items = cast("list[Any]", self._typed(key, list, expected) or [])
+        for number, content in enumerate(items):
+            if isinstance(content, dict):
+                path = (*self._path, key, str(number))
+                yield Table(self._document, path, cast("dict[str, Any]", content), f"[[{key}]]")
+            else:
+                self.mistake(key, f'"{key}" is not what belongs there', expected=expected)
 
     def text(self, key: str, expected: str = "a text in quotes") -> str | None:
         """Return a text that says something."""
@@ -160,9 +196,25 @@ class Table:
         """Return true or false."""
         return self._typed(key, bool, "true or false, without quotes")
 
-    def texts(self, key: str) -> tuple[str, ...] | None:
+    def day(self, key: str) -> date | None:
+        """Return a day as ISO 8601 writes it, with or without quotes."""
+        expected = "a day such as 2027-03-31"
+        value = self._content.get(key)
+        if isinstance(value, str):
+            try:
+                return date.fromisoformat(value)
+            except ValueError:
+                self.mistake(key, f'"{key}" is no day', expected=expected)
+                return None
+        if isinstance(value, datetime):  # which is a date as well, for Python
+            self.mistake(key, f'"{key}" has a time of day', expected=expected)
+            return None
+        return self._typed(key, date, expected)
+
+    def texts(
+        self, key: str, expected: str = 'a list of texts such as ["1IN+", "1IN-"]'
+    ) -> tuple[str, ...] | None:
         """Return a list of texts that has at least one."""
-        expected = 'a list of texts such as ["1IN+", "1IN-"]'
         items = cast("list[Any] | None", self._typed(key, list, expected))
         if items is None:
             return None
@@ -171,13 +223,13 @@ class Table:
             return None
         return tuple(items)
 
-    def spread(self, key: str, unit: str, *, least: float = -inf, most: float = inf) -> Spread | None:
-        """Return a quantity or a range of one in `unit`, inside `least` and `most`."""
+    def spread(self, key: str, unit: str | None, *, least: float = -inf, most: float = inf) -> Spread | None:
+        """Return a quantity or a range of one in `unit`, inside `least` and `most`; None: in any unit."""
         text = self._typed(key, str, 'a text with a unit such as "12 V"')
         if text is None:
             return None
         try:
-            found = read_range(text, unit)
+            found = read_any_range(text) if unit is None else read_range(text, unit)
         except QuantityTextError as problem:
             remedy = 'correct the number or its unit; a range reads "10 V .. 15 V"'
             self.mistake(key, str(problem), expected=problem.expected, remedy=remedy, offset=problem.column)
@@ -201,7 +253,7 @@ class Table:
         self, key: str, message: str, *, expected: str = "", remedy: str = "", offset: int = 0
     ) -> None:
         """Note a mistake in the value of `key`; `offset` counts characters from the quote of a text."""
-        place = self._document.value_place((*self._path, key))
+        place = self.value_place(key)
         # Only a text in single quote marks can be counted into; of others, its beginning is shown.
         if offset and _QUOTED.match(self._document.excerpt(place), place.column - 1):
             place = place._replace(column=place.column + offset)

@@ -13,7 +13,7 @@ KeyPath = tuple[str, ...]
 
 _KEY = r"(?:[A-Za-z0-9_-]+|\"(?:[^\"\\\n]|\\.)*\"|'[^'\n]*')"
 _KEYS = rf"{_KEY}(?:[ \t]*\.[ \t]*{_KEY})*"
-_HEADER = re.compile(rf"[ \t]*\[{{1,2}}[ \t]*(?P<keys>{_KEYS})[ \t]*\]")
+_HEADER = re.compile(rf"[ \t]*\[(?P<array>\[)?[ \t]*(?P<keys>{_KEYS})[ \t]*\]")
 _ASSIGNMENT = re.compile(rf"[ \t]*(?P<keys>{_KEYS})[ \t]*=[ \t]*")
 
 # Places are kept to this depth; what lies deeper has the place of what encloses it.
@@ -29,7 +29,10 @@ _PIECE = re.compile(
 
 
 class TomlPlaces:
-    """Line and column of every key and value of a TOML text that tomllib has accepted."""
+    """Line and column of every key and value of a TOML text that tomllib has accepted.
+
+    The tables of an array have their number, from "0", as a key after that of the array.
+    """
 
     def __init__(self, text: str, file: str) -> None:
         self._file = file
@@ -54,16 +57,20 @@ class TomlPlaces:
 
     def _scan(self, text: str) -> None:
         table: KeyPath = ()
+        length: dict[KeyPath, int] = {}
         position = 0
         while position < len(text):
             header = _HEADER.match(text, position)
             assignment = None if header else _ASSIGNMENT.match(text, position)
             if header:
-                table = _path(f"[{header['keys']}]")[:_DEEPEST]
+                table = _path(header["keys"])[:_DEEPEST]
+                if header["array"]:
+                    length[table] = length.get(table, -1) + 1
+                    table = (*table, str(length[table]))
                 self._note(table, header.start("keys"))
                 position = header.end()
             elif assignment:
-                path = table + _path(f"{assignment['keys']} = 0")
+                path = table + _path(assignment["keys"])
                 self._note(path, assignment.start("keys"))
                 self._values.setdefault(path[:_DEEPEST], assignment.end())
                 position = assignment.end()
@@ -75,11 +82,13 @@ class TomlPlaces:
             self._keys.setdefault(path[:length], offset)
 
 
-def _path(line: str) -> KeyPath:
+def _path(keys: str) -> KeyPath:
     """Return the keys of one header or assignment, as tomllib understands its quotes and dots."""
-    inner: Any = tomllib.loads(line)
+    if '"' not in keys and "'" not in keys:
+        return tuple(key.strip(" \t") for key in keys.split("."))
+    inner: Any = tomllib.loads(f"{keys} = 0")
     path: list[str] = []
-    while inner:  # a table of one key each, down to an empty table or a zero
+    while inner:  # a table of one key each, down to the zero
         key = next(iter(cast("dict[str, Any]", inner)))
         path.append(key)
         inner = inner[key]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from contextlib import suppress
 from functools import cache
 from math import isfinite
 from pathlib import Path
@@ -81,6 +82,21 @@ def read_range(text: str, unit: str) -> Spread:
     if low > high:
         raise QuantityTextError("the range runs backwards", expected="the lower end first")
     return Spread(low, (low + high) / 2, high, unit)
+
+
+def read_any_range(text: str) -> Spread:
+    """Return a quantity or a range of whichever dimension, as `read_range` does for one that is known."""
+    first, *others = _EXPECTED
+    try:
+        return read_range(text, first)
+    except QuantityTextError as problem:
+        for unit in others:
+            with suppress(QuantityTextError):
+                return read_range(text, unit)
+        # A wrong dimension is no mistake here, so what is left is one of writing, or an unknown unit.
+        raise QuantityTextError(
+            str(problem), column=problem.column, expected="a quantity such as 12 V or 1.5 A"
+        ) from None
 
 
 def read_quantity(text: str, unit: str) -> float:

@@ -32,6 +32,7 @@ TOPICS = (
     "current limit",
     "ratings",
     "safety",
+    "deviations",
 )
 
 
@@ -98,10 +99,11 @@ class Limit:
 class Deviation:
     """An accepted verdict: somebody answers for it with a reason (term: deviation permit, ISO 9000).
 
-    rule, subject: patterns as written, "*" stands for any text
+    rule, subject: patterns as written, "*" stands for any text and "?" for a character
     reason, owner: why it is accepted, and who answers for it
+    parts, nets:   the parts or nets of the verdict, all of them; None: whichever
     expires:       the last day on which it counts; None: until it is taken back
-    accepted:      the value that was accepted, in the base unit of `unit`; a worse one is not; None: any
+    accepted:      the value that was accepted, or the range of it; a worse one is not; None: any
     place:         where it stands in the file of deviations
     """
 
@@ -109,9 +111,10 @@ class Deviation:
     subject: str
     reason: str
     owner: str
+    parts: tuple[str, ...] | None = None
+    nets: tuple[str, ...] | None = None
     expires: date | None = None
-    accepted: float | None = None
-    unit: str = ""
+    accepted: Spread | None = None
     place: Place
 
 
@@ -197,6 +200,14 @@ class ControllerReview:
 
 
 @dataclass(frozen=True, slots=True)
+class SwitchedOff:
+    """A rule that was not asked because a configuration says so, and where it says it."""
+
+    rule: str
+    place: Place
+
+
+@dataclass(frozen=True, slots=True)
 class Review:
     """Everything one review found. `verdicts` are in a fixed order: same input, same order."""
 
@@ -209,6 +220,8 @@ class Review:
     verdicts: tuple[Verdict, ...]
     cautions: tuple[str, ...] = ()
     deviations: str | None = None
+    configuration: str | None = None
+    switched_off: tuple[SwitchedOff, ...] = ()
 
     @property
     def counts(self) -> dict[str, int]:

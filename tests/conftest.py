@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from math import isclose
 from pathlib import Path
 
 import pytest
@@ -10,6 +11,7 @@ from pwmlint.lint import Review, Verdict, review
 
 Ask = Callable[..., list[Verdict]]
 ReviewText = Callable[..., Review]
+SameVerdicts = Callable[[Review, Review], bool]
 
 
 def pytest_configure(config: pytest.Config) -> None:
@@ -44,3 +46,31 @@ def ask(review_text: ReviewText) -> Ask:
         return [verdict for verdict in found.verdicts if verdict.rule == rule]
 
     return run
+
+
+@pytest.fixture(scope="session")
+def same_verdicts() -> SameVerdicts:
+    """Return a function that tells whether two reviews find the same, whatever words they find for it."""
+
+    def words(verdict: Verdict) -> tuple[str, ...]:
+        return (verdict.rule, verdict.subject, verdict.outcome, verdict.level or "")
+
+    def figures(verdict: Verdict) -> list[float]:
+        measured, limit = verdict.measured, verdict.limit
+        found = [measured.minimum, measured.nominal, measured.maximum] if measured is not None else []
+        found += [end for end in (limit.minimum, limit.maximum) if end is not None] if limit else []
+        return found
+
+    def alike(one: Verdict, other: Verdict) -> bool:
+        ours, theirs = figures(one), figures(other)
+        return (
+            words(one) == words(other)
+            and len(ours) == len(theirs)
+            and all(isclose(a, b, rel_tol=1e-6, abs_tol=1e-12) for a, b in zip(ours, theirs, strict=True))
+        )
+
+    def same(one: Review, other: Review) -> bool:
+        ours, theirs = (sorted(review.verdicts, key=words) for review in (one, other))
+        return len(ours) == len(theirs) and all(map(alike, ours, theirs))
+
+    return same

@@ -13,7 +13,7 @@ from types import MappingProxyType
 
 from ...grammar.netlist import Netlist, Part, Place
 from ..controllers import Profile, generic_number, load, plain_name
-from ..needs import toml_key
+from ..toml_text import toml_key
 
 # A part with fewer pins (a resistor of value 494) is no controller, whatever its name.
 _LEAST_PINS = 8

@@ -7,5 +7,5 @@ function takes the parsed options and returns the exit status. A new command is 
 
 from __future__ import annotations
 
-COMMANDS = ("review", "compare", "rules", "controllers")
+COMMANDS = ("review", "compare", "brief", "permit", "settings", "rules", "controllers", "completion")
 """The modules of the commands, in the order in which `--help` lists them."""

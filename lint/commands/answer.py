@@ -6,9 +6,11 @@ import sys
 from collections.abc import Iterable
 from contextlib import suppress
 from difflib import get_close_matches
+from pathlib import Path
 
 from ...grammar.errors import printable
-from ..report.delivery import send
+from ..report.colour import shows_box_characters
+from ..report.delivery import STANDARD_OUTPUT, send
 
 PASSED, NOT_PASSED, TROUBLE, INTERRUPTED = 0, 1, 2, 130
 
@@ -20,6 +22,28 @@ def tell(message: str) -> None:
     """Print a message on standard error; where nobody listens any more there is nobody to tell."""
     with suppress(BrokenPipeError):
         print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go
+
+
+def is_taken(output: str) -> bool:
+    """Tell whether there is a file already that must not be overwritten, and tell the user so.
+
+    A device or a named pipe holds nothing that could be lost.
+    """
+    taken = output != STANDARD_OUTPUT and Path(output).is_file()
+    if taken:
+        tell(
+            f"{printable(output)}: this file is there already, and is not overwritten\n"
+            "  remedy:   remove it first, or name another with --output"
+        )
+    return taken
+
+
+def write_toml(text: str, output: str) -> int:
+    """Write a TOML document in characters that the output can carry, and return the exit status."""
+    from ..toml_text import in_ascii
+
+    send(lambda stream: stream.write(text if shows_box_characters(stream) else in_ascii(text)), output)
+    return PASSED
 
 
 def show(text: str) -> int:

@@ -3,22 +3,21 @@
 from __future__ import annotations
 
 import argparse
-from pathlib import Path
+from collections.abc import Iterable
 from typing import TYPE_CHECKING, Any
 
 from ...grammar.errors import NetlistError
-from ..estimate import Method
-from ..report import COMPARISON_FORMATS, Gate
+from ..report import COMPARISON_FORMATS
 from ..report.delivery import DeliveryError, Target, deliver_comparison
-from ..verdict import Level
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
-from .targets import add_targets, targets
+from .given import given
+from .review import STANDARD_INPUT, add_options
 
 if TYPE_CHECKING:
-    from ..compare.comparison import Comparison
-
-_STANDARD_INPUT = "-"
-_NEVER = "never"
+    from ..compare import Asked, Comparison
+    from ..compare.source import Source
+    from ..report import Gate
+    from ..settings import Settings, Settler
 
 
 def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
@@ -27,72 +26,79 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
         "compare",
         help="tell what changed between two revisions of a netlist",
         description="Tells what changed between two revisions of a netlist, of one format or of two: in "
-        "parts, nets and verdicts. The gate stops at what is new or worse. A revision is a file, - for "
-        "standard input, or REV:path, a file as a git revision had it, such as HEAD~1:boards/fan.cir; brief, "
-        "parts list and included files are then those of that revision.",
+        "parts, nets and verdicts. The gate, that of the new revision, stops at what is new or worse. A "
+        "revision is a file, - for standard input, or REV:path, a file as a git revision had it, such as "
+        "HEAD~1:boards/fan.cir; what is found beside it, and what it includes, is then of that revision.",
         epilog=EXIT,
     )
     parser.add_argument("old", metavar="OLD", help="the netlist as it was")
     parser.add_argument("new", metavar="NEW", help="the netlist as it is now")
-    parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML), for both revisions")
-    parser.add_argument("--parts-list", metavar="FILE", help="ratings of the parts (CSV), for both revisions")
-    parser.add_argument(
-        "--allow-include",
-        action="append",
-        default=[],
-        type=Path,
-        metavar="DIR",
-        help="a folder besides the netlist's own from which it may include; may be repeated",
-    )
-    add_targets(parser, COMPARISON_FORMATS)
-    parser.add_argument(
-        "--gate",
-        choices=[*(level.value for level in Level), _NEVER],
-        default=Level.ERROR.value,
-        help="the least level of a new or worse verdict that gives exit status 1 (error)",
-    )
-    parser.add_argument(
-        "--worst-case",
-        choices=[method.value for method in Method],
-        default=Method.EXTREME.value,
-        help="the analysis that decides: all parameters at their ends, root-sum-square, or draws (extreme)",
-    )
-    parser.add_argument(
-        "--strict",
-        action="store_true",
-        help="let open verdicts, and those for a person to judge, do so too where they are new or worse",
-    )
+    add_options(parser, COMPARISON_FORMATS)
     parser.set_defaults(command=_run, parser=parser)
 
 
+class _Settled:
+    """What holds for each of the two revisions, settled when it can be read."""
+
+    def __init__(self, settler: Settler) -> None:
+        self._settler = settler
+        self._told: list[NetlistError] = []
+        self.each: list[Settings] = []
+
+    def asked(self, source: Source) -> Asked:
+        """Return how a revision is reviewed; tell once where house rules that it names are not loaded."""
+        from ..compare import Asked
+
+        settings = self._settler.settle(source.path)
+        self.each.append(settings)
+        remark = settings.untrusted
+        if remark is not None and not any(remark is one for one in self._told):
+            self._told.append(remark)
+            source.rename(remark)
+            tell(str(remark))
+        return Asked(
+            brief=settings.brief.value,
+            parts_list=settings.parts_list.value,
+            deviations=settings.deviations.value,
+            allow_include=settings.allow_include.value,
+            method=settings.method,
+            rules=settings.asked,
+            policy=settings.policy,
+        )
+
+
 def _run(options: argparse.Namespace) -> int:
-    parser: argparse.ArgumentParser = options.parser
-    if options.old == options.new == _STANDARD_INPUT:
-        parser.error("standard input can be read once only: give - once")
-    wanted = targets(options, (options.old, options.new, options.brief, options.parts_list))
-    gate = Gate(None if options.gate == _NEVER else Level(options.gate), options.strict)
+    if options.old == options.new == STANDARD_INPUT:
+        options.parser.error("standard input can be read once only: give - once")
+    from ..compare import compare_each
+    from ..settings import Settler
+    from .settle import check_outputs
+
+    said = given(options)
+    targets = said.reports or (Target(),)  # those that a configuration names are reports of reviews
+    check_outputs(targets, options)
+    _spare(targets, (options.old, options.new), options)
+    settled = _Settled(Settler(said))
     try:
-        comparison = _compare(options)
+        comparison = compare_each(options.old, options.new, settled.asked)
     except NetlistError as error:
         tell(str(error))
         return TROUBLE
-    written = [_deliver(target, comparison, gate) for target in wanted]
+    _spare(targets, [path for settings in settled.each for path in settings.inputs], options)
+    gate = settled.each[-1].own_gate
+    written = [_deliver(target, comparison, gate) for target in targets]
     if not all(written):
         return TROUBLE
     return PASSED if comparison.passes(gate.level, strict=gate.strict) else NOT_PASSED
 
 
-def _compare(options: argparse.Namespace) -> Comparison:
-    from ..compare import compare
+def _spare(targets: Iterable[Target], inputs: Iterable[str], options: argparse.Namespace) -> None:
+    """End where a report would overwrite one of `inputs`: that is wrong usage."""
+    from ..settings import overwritten
 
-    return compare(
-        options.old,
-        options.new,
-        brief=options.brief,
-        parts_list=options.parts_list,
-        allow_include=options.allow_include,
-        method=Method(options.worst_case),
-    )
+    output = overwritten(targets, inputs)
+    if output is not None:
+        options.parser.error(f"the report would overwrite what is compared: {output}")
 
 
 def _deliver(target: Target, comparison: Comparison, gate: Gate) -> bool:

@@ -4,8 +4,7 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Iterable, Sequence
-from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from ...grammar.errors import NetlistError
 from ..estimate import Method
@@ -13,7 +12,12 @@ from ..report import FORMATS, Gate
 from ..report.delivery import DeliveryError, Target, deliver
 from ..verdict import Level, Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
-from .targets import add_targets, targets
+from .given import add_configuration
+from .inputs import NETLISTS, add_inputs, all_netlists
+from .targets import add_targets
+
+if TYPE_CHECKING:
+    from ..settings import Settings
 
 STANDARD_INPUT = "-"
 NEVER = "never"
@@ -24,83 +28,83 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     parser = commands.add_parser(
         "review",
         help="review netlists",
-        description="Reviews netlists. Beside board.edf, board.brief.toml and board.parts.csv are found by "
-        "themselves.",
+        description="Reviews netlists. Beside board.edf, board.brief.toml, board.parts.csv and "
+        "board.deviations.toml are found by themselves; beside it or above it, up to the repository's root, "
+        "pwmlint.toml is.",
         epilog=EXIT,
     )
-    _add_options(parser)
+    parser.add_argument("netlists", nargs="+", metavar="NETLIST", help=NETLISTS)
+    add_options(parser)
     parser.set_defaults(command=_run, parser=parser)
 
 
-def _add_options(parser: argparse.ArgumentParser) -> None:
-    parser.add_argument("netlists", nargs="+", metavar="NETLIST", help="a netlist, or - for standard input")
+def add_options(parser: argparse.ArgumentParser, formats: Iterable[str] = FORMATS) -> None:
+    """Add what can be set. No option has a default here: what is not given may be configured."""
     parser.add_argument("--brief", metavar="FILE", help="what the supply must do (TOML)")
-    parser.add_argument("--parts-list", metavar="FILE", help="the ratings of the parts (CSV)")
-    parser.add_argument(
-        "--allow-include",
-        action="append",
-        default=[],
-        type=Path,
-        metavar="DIR",
-        help="a folder besides the netlist's own from which it may include; may be repeated",
-    )
-    add_targets(parser, FORMATS)
+    parser.add_argument("--deviations", metavar="FILE", help="the verdicts that are accepted, and why (TOML)")
+    add_inputs(parser)
+    add_targets(parser, formats)
     parser.add_argument(
         "--gate",
         choices=[*(level.value for level in Level), NEVER],
-        default=Level.ERROR.value,
         help="the least level of a failed verdict that gives exit status 1 (error)",
     )
     parser.add_argument(
         "--worst-case",
         choices=[method.value for method in Method],
-        default=Method.EXTREME.value,
         help="the analysis that decides: all parameters at their ends, root-sum-square, or draws (extreme)",
     )
     parser.add_argument(
-        "--strict", action="store_true", help="let open verdicts, and those for a person to judge, do so too"
+        "--strict",
+        action=argparse.BooleanOptionalAction,
+        help="let open verdicts, and those for a person to judge, do so too",
     )
+    add_configuration(parser)
 
 
 def _run(options: argparse.Namespace) -> int:
-    netlists: list[str] = options.netlists
-    wanted = _targets(options)
-    gate = Gate(None if options.gate == NEVER else Level(options.gate), options.strict)
+    if options.netlists.count(STANDARD_INPUT) > 1:
+        options.parser.error("standard input can be read once only: give - once")
+    from ..settings import gate_of
+    from .settle import settle_each, targets_of
 
-    reviews = _review_each(netlists, options)
-    written = [_deliver(target, reviews, gate) for target in wanted] if reviews else []
-    if len(reviews) < len(netlists) or not all(written):
+    netlists, complete = all_netlists(options.netlists)
+    settled = settle_each(netlists, options)
+    try:
+        targets = targets_of(settled, options)
+    except NetlistError as error:
+        tell(str(error))
+        return TROUBLE
+    reviewed = review_each(settled)
+    reviews, gate = [review for review, _ in reviewed], gate_of(reviewed)
+    written = [_deliver(target, reviews, gate) for target in targets] if reviews else []
+    if not complete or len(reviews) < len(netlists) or not all(written):
         return TROUBLE
     return PASSED if all(gate.passes(review) for review in reviews) else NOT_PASSED
 
 
-def _targets(options: argparse.Namespace) -> list[Target]:
-    """Return the reports that are asked for; wrong usage ends here."""
-    parser: argparse.ArgumentParser = options.parser
-    if options.netlists.count(STANDARD_INPUT) > 1:
-        parser.error("standard input can be read once only: give - once")
-    return targets(options, (*options.netlists, options.brief, options.parts_list))
-
-
-def _review_each(netlists: Iterable[str], options: argparse.Namespace) -> list[Review]:
+def review_each(settled: Iterable[tuple[str, Settings]]) -> list[tuple[Review, Settings]]:
     """Return the reviews of the netlists that can be reviewed; tell of each that cannot."""
     from ..review import review
 
-    reviews: list[Review] = []
-    for netlist in netlists:
+    reviewed: list[tuple[Review, Settings]] = []
+    for netlist, settings in settled:
         try:
-            reviews.append(
-                review(
-                    netlist,
-                    brief=options.brief,
-                    parts_list=options.parts_list,
-                    allow_include=options.allow_include,
-                    method=Method(options.worst_case),
-                )
+            found = review(
+                netlist,
+                brief=settings.brief.value,
+                parts_list=settings.parts_list.value,
+                deviations=settings.deviations.value,
+                allow_include=settings.allow_include.value,
+                method=settings.method,
+                rules=settings.asked,
+                policy=settings.policy,
             )
         except NetlistError as error:
             tell(str(error))
-    return reviews
+        else:
+            reviewed.append((found, settings))
+    return reviewed
 
 
 def _deliver(target: Target, reviews: Sequence[Review], gate: Gate) -> bool:

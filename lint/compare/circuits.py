@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from ..verdict import Review
 from .comparison import CircuitChanges
 from .describe import net_change, net_seen, numbers_fit, part_change, part_seen, traffic
 from .pairing import Matching
@@ -57,4 +58,15 @@ def assumptions(old: Side, new: Side, matching: Matching) -> tuple[str, ...]:
         for pair in matching.pairs
         if pair.pins.likely and not numbers_fit(old, new, pair, matching.nets)
     ]
+    return tuple(found)
+
+
+def switched_off(old: Review, new: Review) -> tuple[str, ...]:
+    """Return which rules one revision's configuration switches off, and the other's does not."""
+    found: list[str] = []
+    rules = [{off.rule: None for off in review.switched_off} for review in (old, new)]
+    for which, here, there in (("old", rules[0], rules[1]), ("new", rules[1], rules[0])):
+        alone = [rule for rule in here if rule not in there]
+        if alone:
+            found.append(f"switched off in the {which} revision only: {', '.join(alone)}")
     return tuple(found)

@@ -86,10 +86,10 @@ class Repository:
             "name a commit, branch or tag, such as HEAD~1:board.edf",
         )
 
-    def entries(self, tree: str, folder: str) -> list[Entry]:
-        """Return the files of a folder of a tree and of all below it, in git's order."""
+    def entries(self, tree: str, paths: Sequence[str]) -> list[Entry]:
+        """Return those of `paths` that a tree has, in git's order; of a folder all below it; "" is all."""
         arguments = ["ls-tree", "-r", "-z", "-l", "--full-tree", tree]
-        listed = _run(self.folder, [*arguments, "--", f"{folder}/"] if folder else arguments, literal=True)
+        listed = _run(self.folder, arguments if "" in paths else [*arguments, "--", *paths], literal=True)
         entries: list[Entry] = []
         for line in filter(None, listed.split(b"\0")):
             head, _, path = line.partition(b"\t")

@@ -1,19 +1,31 @@
-"""The folder of a netlist as a git revision had it, written out: netlist, brief, parts list, includes."""
+"""The folder of a netlist as a git revision had it, written out: netlist, brief, parts list, includes.
+
+With it comes the configuration that holds for it, and what that names.
+"""
 
 from __future__ import annotations
 
 import os
 import posixpath
+import tomllib
 from collections.abc import Iterable, Mapping
 from pathlib import Path
+from typing import cast
 
 from .git import Entry, GitError, Repository
+
+CONFIGURATION = "pwmlint.toml"
+"""What is looked for above the netlist, up to the top of the repository."""
+
+_REPOSITORY = ".git"  # ends that search
 
 MOST_FILES = 5_000
 MOST_BYTES = 200_000_000
 
 LARGEST_BESIDE = 64_000_000
 """Bytes of a file beside the netlist: a larger one is nothing that a netlist includes, and left out."""
+
+_LARGEST_CONFIGURATION = 1_000_000
 
 _LINK = "120000"
 _LONGEST_LINK = 4096
@@ -33,10 +45,11 @@ def write_folder(revision: str, path: str, target: Path) -> Path:
     tree = repository.tree(revision)
     inside = _inside(path, repository.prefix)
     folder = posixpath.dirname(inside)
-    entries = {entry.path: entry for entry in repository.entries(tree, folder)}
+    entries = {entry.path: entry for entry in repository.entries(tree, [folder])}
+    entries |= _configured(repository, tree, folder, entries)
     if inside not in entries:
         raise _missing(revision, inside, entries, repository)
-    wanted = _wanted(repository, entries, folder, inside)
+    wanted = _wanted(repository, entries, inside)
     if inside not in wanted:
         raise GitError(f"{inside} is a link that leads out of its folder", "name the file that it leads to")
     objects = {entry.object: entry for entry in wanted.values()}
@@ -48,6 +61,51 @@ def write_folder(revision: str, path: str, target: Path) -> Path:
         )
     _write(((path, contents[entry.object]) for path, entry in wanted.items()), target)
     return target / inside
+
+
+def _configured(
+    repository: Repository, tree: str, folder: str, beside: Mapping[str, Entry]
+) -> dict[str, Entry]:
+    """Return the configuration above the netlist's folder, where that holds, and what it names."""
+    above = _above(folder)
+    if not above or posixpath.join(folder, CONFIGURATION) in beside:
+        return {}
+    names = [posixpath.join(one, CONFIGURATION) for one in above]
+    found = {entry.path: entry for entry in repository.entries(tree, names)}
+    nearest = next((name for name in names if name in found), None)
+    if nearest is None or found[nearest].mode == _LINK or found[nearest].size > _LARGEST_CONFIGURATION:
+        return {}
+    (text,) = repository.contents([found[nearest]])
+    named = [posixpath.normpath(posixpath.join(posixpath.dirname(nearest), one)) for one in _texts(text)]
+    entries = repository.entries(tree, [nearest, *filter(_is_plain, named)])
+    return {entry.path: entry for entry in entries}
+
+
+def _above(folder: str) -> list[str]:
+    """Return the folders above a folder, the nearest first and the repository's top, "", last."""
+    found: list[str] = []
+    while folder:
+        folder = posixpath.dirname(folder)
+        found.append(folder)
+    return found
+
+
+def _texts(toml: bytes) -> list[str]:
+    """Return every text in a file of TOML, any of which may be a path; none where it cannot be read."""
+    try:
+        pending: list[object] = [tomllib.loads(toml.decode())]
+    except ValueError:  # its reader tells what is wrong
+        return []
+    found: list[str] = []
+    while pending:
+        one = pending.pop()
+        if isinstance(one, dict):
+            pending += cast("dict[str, object]", one).values()
+        elif isinstance(one, list):
+            pending += cast("list[object]", one)
+        elif isinstance(one, str) and "\0" not in one:
+            found.append(one)
+    return found
 
 
 def _inside(path: str, prefix: str) -> str:
@@ -74,9 +132,7 @@ def _missing(revision: str, inside: str, entries: Mapping[str, Entry], repositor
     )
 
 
-def _wanted(
-    repository: Repository, entries: Mapping[str, Entry], folder: str, inside: str
-) -> dict[str, Entry]:
+def _wanted(repository: Repository, entries: Mapping[str, Entry], inside: str) -> dict[str, Entry]:
     """Return what to write, links replaced by what they lead to; those that lead out are left out."""
     links = [one for one in entries.values() if one.mode == _LINK and one.size <= _LONGEST_LINK]
     _bound(len(entries), sum(one.size for one in links))
@@ -87,9 +143,7 @@ def _wanted(
     wanted: dict[str, Entry] = {}
     for path in entries:
         entry = _followed(path, entries, leads)
-        if entry is None or not _is_plain(path) or not path.startswith(f"{folder}/" if folder else ""):
-            continue
-        if path == inside or entry.size <= LARGEST_BESIDE:
+        if entry is not None and _is_plain(path) and (path == inside or entry.size <= LARGEST_BESIDE):
             wanted[path] = entry
     _bound(len(wanted), sum(entry.size for entry in wanted.values()))
     return wanted
@@ -109,7 +163,8 @@ def _is_plain(path: str) -> bool:
     """Tell whether each step of a path is a name: a tree made by hand may hold anything."""
     steps = path.split("/")
     foreign = ("\\", ":") if os.name == "nt" else ()
-    return not any(step in ("", ".", "..") or any(sign in step for sign in foreign) for step in steps)
+    refused = ("", ".", "..", _REPOSITORY)
+    return not any(step.casefold() in refused or any(sign in step for sign in foreign) for step in steps)
 
 
 def _bound(files: int, size: int) -> None:
@@ -122,6 +177,7 @@ def _bound(files: int, size: int) -> None:
 
 def _write(files: Iterable[tuple[str, bytes]], target: Path) -> None:
     try:
+        (target / _REPOSITORY).touch()
         for path, content in files:
             place = target / path
             place.parent.mkdir(parents=True, exist_ok=True)

@@ -37,12 +37,12 @@ class Source:
     hidden: str = ""
     shown: str = ""
 
-    def read(self, reader: Callable[[str], _Thing]) -> _Thing:
-        """Return what `reader` makes of the file; an error of its comes under the name that is shown."""
+    def read(self, reader: Callable[[Source], _Thing]) -> _Thing:
+        """Return what `reader` makes of it; an error comes under the name that is shown."""
         try:
-            return reader(self.path)
+            return reader(self)
         except NetlistError as error:
-            self._rename(error)
+            self.rename(error)
             raise
 
     def named(self, thing: _Thing) -> _Thing:
@@ -61,7 +61,8 @@ class Source:
             )
         return thing
 
-    def _rename(self, error: NetlistError) -> None:
+    def rename(self, error: NetlistError) -> None:
+        """Put an error under the name that is shown."""
         for one in (error, *error.also):
             one.message, one.place = self.named(one.message), self.named(one.place)
             one.expected, one.remedy = self.named(one.expected), self.named(one.remedy)

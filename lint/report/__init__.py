@@ -6,18 +6,26 @@ the review says. The formats of a comparison have a table of their own, and `wri
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field, replace
 from importlib import import_module
 from typing import TYPE_CHECKING, Protocol, TextIO
 
-from ..verdict import Level, Review
+from ..verdict import Level, Review, Verdict
 
 if TYPE_CHECKING:
     from ..compare.comparison import Comparison
 
 # Name on the command line -> module; loaded only when asked for, so that a JSON report needs no rich.
-FORMATS = {"text": ".text", "json": ".json"}
+FORMATS = {
+    "text": ".text",
+    "json": ".json",
+    "sarif": ".sarif",
+    "sarif-alerts": ".sarif.alerts",
+    "junit": ".junit",
+    "markdown": ".markdown",
+    "annotations": ".annotations",
+}
 
 # The same for what changed between two revisions.
 COMPARISON_FORMATS = {"text": ".compare_text", "markdown": ".compare_markdown", "json": ".compare_json"}
@@ -29,17 +37,30 @@ class Gate:
 
     level:  the least level of a failed verdict that does; None: none does
     strict: whether `open` and `review` verdicts do as well
+    own:    by netlist the gates of those that have one of their own, where the netlists of a run differ
     """
 
     level: Level | None = Level.ERROR
     strict: bool = False
+    own: Mapping[str, Gate] = field(default_factory=dict[str, "Gate"], hash=False)
+
+    def of(self, review: Review) -> Gate:
+        """Return the gate that `review` is held to."""
+        return self.own.get(review.netlist, self)
 
     def passes(self, review: Review) -> bool:
         """Tell whether `review` passes."""
-        return review.passes(self.level, strict=self.strict)
+        gate = self.of(review)
+        return review.passes(gate.level, strict=gate.strict)
+
+    def stops(self, verdict: Verdict, review: Review) -> bool:
+        """Tell whether `verdict`, one of `review`, stops the gate by itself."""
+        return not self.passes(replace(review, verdicts=(verdict,)))
 
     def __str__(self) -> str:
         """Return the gate as asked for on the command line, such as "error, strict"."""
+        if self.own:
+            return "of each netlist"
         return (self.level.value if self.level else "never") + (", strict" if self.strict else "")
 
 

@@ -15,15 +15,22 @@ NARROWEST, WIDEST = 80, 120
 
 
 def wanted(stream: TextIO, environment: Mapping[str, str]) -> bool:
-    """Tell whether `stream` is to be coloured under the variables of `environment`.
+    """Tell whether `stream` is to be coloured under the variables of `environment`."""
+    return decision(stream, environment)[0]
+
+
+def decision(stream: TextIO, environment: Mapping[str, str]) -> tuple[bool, str]:
+    """Tell whether `stream` is to be coloured, and which variable decides; empty where none does.
 
     FORCE_COLOR speaks of what the run prints: a report kept in a file stays free of escapes.
     """
     if environment.get("NO_COLOR"):
-        return False
+        return False, "NO_COLOR"
     if environment.get("FORCE_COLOR") and stream is sys.stdout:
-        return True
-    return environment.get("TERM") != "dumb" and stream.isatty()
+        return True, "FORCE_COLOR"
+    if environment.get("TERM") == "dumb":
+        return False, "TERM"
+    return stream.isatty(), ""
 
 
 def width(stream: TextIO, environment: Mapping[str, str]) -> int:

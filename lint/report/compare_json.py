@@ -50,6 +50,9 @@ def _revision(review: Review) -> dict[str, Any]:
         "name": review.name,
         "brief": review.brief,
         "parts_list": review.parts_list,
+        "deviations": review.deviations,
+        "configuration": review.configuration,
+        "cautions": list(review.cautions),
         "counts": review.counts,
     }
 

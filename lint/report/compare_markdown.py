@@ -39,8 +39,9 @@ def _report(comparison: Comparison, gate: Gate) -> Iterator[str]:
     yield from _lines("parts", part_lines(comparison.circuit), unchanged.parts)
     yield from _lines("nets", net_lines(comparison.circuit), unchanged.nets)
     rest = [one for one in comparison.verdicts if one not in urgent and not tells_nothing(one)]
-    yield from _folded(f"{len(rest)} more verdicts that changed", [_item(one) for one in rest])
-    yield from _folded("taken for granted", [inline(sentence) for sentence in comparison.assumptions])
+    yield from _folded(f"More verdicts that changed: {len(rest)}", [_item(one) for one in rest])
+    yield from _folded("Taken for granted", [inline(sentence) for sentence in comparison.assumptions])
+    yield from _folded("Cautions", [inline(sentence) for sentence in comparison.new.cautions])
 
 
 def _table(changes: Sequence[VerdictChange]) -> Iterator[str]:
@@ -61,7 +62,7 @@ def _lines(title: str, lines: Sequence[Line], unchanged: int) -> Iterator[str]:
     if not lines:
         yield from (f"{title.capitalize()}: {told}", "")
         return
-    yield from _folded(f"{title}: {told}", [_line(line) for line in lines])
+    yield from _folded(f"{title.capitalize()}: {told}", [_line(line) for line in lines])
 
 
 def _line(line: Line) -> str:

@@ -20,7 +20,7 @@ from .details import places
 from .findings import lead, name
 from .glyphs import BOX, Glyphs
 from .page import Page, wrap
-from .paper import answer, on_paper
+from .paper import answer, cautions, on_paper
 from .words import counts, word
 
 # Lines of one section; beyond, a list is no longer read, and JSON has them all.
@@ -51,6 +51,7 @@ def render(comparison: Comparison, console: Console, gate: Gate, glyphs: Glyphs 
         page.paragraph(sentence, _INDENT, ("  assumed", "dim"))
     if comparison.assumptions:
         page.blank()
+    cautions(page, comparison.new.cautions)
     told: list[Piece] = [(summary(comparison), "")]
     answer(page, told, gate, comparison.passes(gate.level, strict=gate.strict))
 
@@ -65,10 +66,10 @@ def _title(page: Page, comparison: Comparison) -> None:
 
 def _beside(review: Review) -> list[str]:
     """Return the title of a revision and what was read beside its netlist."""
-    return [
-        *filter(None, [review.name]),
-        f"brief: {review.brief or 'none'}, parts list: {review.parts_list or 'none'}",
-    ]
+    beside = [f"brief: {review.brief or 'none'}", f"parts list: {review.parts_list or 'none'}"]
+    beside += [f"deviations: {review.deviations}"] if review.deviations else []
+    beside += [f"settings: {review.configuration}"] if review.configuration else []
+    return [*filter(None, [review.name]), ", ".join(beside)]
 
 
 def _lines(page: Page, title: str, lines: Sequence[Line], unchanged: int) -> None:

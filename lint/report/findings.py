@@ -6,12 +6,13 @@ from collections.abc import Sequence
 
 from rich.cells import cell_len
 
+from ...grammar.errors import no_command
 from ..quantity import figure
 from ..verdict import TOPICS, Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
 from .details import details, margin
 from .page import Page
-from .words import badness, counts, word
+from .words import badness, counts, word, word_of
 
 _INDENT = 11
 _LABEL = 9
@@ -24,10 +25,10 @@ _ELSEWHERE = (Outcome.OPEN, Outcome.NOT_APPLICABLE)
 
 
 def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
-    """Print the verdicts by topic, worst first; what is open or does not apply is printed elsewhere."""
+    """Print the verdicts by topic, worst first; those open, accepted or not applicable stand elsewhere."""
     for topic in sorted({verdict.topic for verdict in verdicts}, key=_walk):
         about = [verdict for verdict in verdicts if verdict.topic == topic]
-        shown = [verdict for verdict in about if verdict.outcome not in _ELSEWHERE]
+        shown = [one for one in about if one.outcome not in _ELSEWHERE and one.deviation is None]
         if not shown:
             continue
         page.heading(topic or "other", page.glyphs.light, counts(about))
@@ -44,7 +45,7 @@ def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
 
 def asks(verdict: Verdict) -> bool:
     """Tell whether a verdict asks something of the reader and is therefore printed in full."""
-    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW)
+    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW) and verdict.deviation is None
 
 
 def name(verdict: Verdict) -> str:
@@ -54,7 +55,7 @@ def name(verdict: Verdict) -> str:
 
 def lead(verdict: Verdict) -> Piece:
     """Return the word of a verdict as it stands in the margin."""
-    text, style = word(verdict.outcome, verdict.level)
+    text, style = word_of(verdict)
     return f"  {text}", style
 
 
@@ -108,7 +109,7 @@ def _brief(page: Page, verdicts: Sequence[Verdict]) -> None:
         if drawn is None or apart:
             page.paragraph(name(verdict), _INDENT, style="dim")
         if drawn is not None:
-            title = "" if apart else page.say(name(verdict))
+            title = "" if apart else no_command(page.say(name(verdict)))
             page.line(
                 (" " * _INDENT + _pad(title, names), "dim"),
                 (f"  {page.say(_low(verdict)):>{lows}} ", "dim"),

@@ -14,8 +14,9 @@ from ...grammar.errors import printable
 _LONGEST = 600
 _ELLIPSIS = "..."
 
-# A word or figure with the punctuation of a sentence round it.
-_PLAIN = re.compile(r"""[("']*[\w+\-±./%×·=°Ωµ≥≤∞–,;()']*["'):.,;?]*""")
+# A word or figure, without the punctuation of a sentence round it.
+_PLAIN = re.compile(r"[\w+\-±./%×·=°Ωµ≥≤∞–,;()']*")
+_BEFORE, _AFTER = "(\"'", "\"'):.,;?"
 
 # What hosts and renderers make links of all the same (sites, numbers of tickets and of changes), or marks.
 _LINKED = re.compile(r"\w\.[^\W\d]|\w//|%\w|[A-Z]-\d|[0-9a-f]{7}|==|\+\+", re.IGNORECASE)
@@ -46,4 +47,5 @@ def cut(text: str) -> str:
 
 
 def _is_plain(word: str) -> bool:
-    return _PLAIN.fullmatch(word) is not None and _LINKED.search(word) is None
+    bare = word.lstrip(_BEFORE).rstrip(_AFTER)
+    return _PLAIN.fullmatch(bare) is not None and _LINKED.search(word) is None

@@ -1,4 +1,4 @@
-"""What a text report is printed with, and its last lines: the console for a stream, the gate's answer."""
+"""What a text report is printed with, and how it ends: a stream's console, cautions, the gate's answer."""
 
 from __future__ import annotations
 
@@ -14,6 +14,8 @@ from . import Gate, colour
 from .bar import Piece
 from .glyphs import ASCII, BOX, Glyphs
 from .page import Page
+
+_INDENT = 11
 
 
 def on_paper(stream: TextIO, draw: Callable[[Console, Glyphs], None]) -> None:
@@ -32,6 +34,17 @@ def on_paper(stream: TextIO, draw: Callable[[Console, Glyphs], None]) -> None:
     )
     draw(console, BOX if colour.shows_box_characters(stream) else ASCII)
     stream.write(sheet.getvalue())
+
+
+def cautions(page: Page, sentences: Sequence[str]) -> None:
+    """Print what the reader must be cautioned of."""
+    if not sentences:
+        return
+    page.heading("cautions", page.glyphs.light)
+    page.blank()
+    for sentence in sentences:
+        page.paragraph(sentence, _INDENT, ("  caution", "bold yellow"))
+    page.blank()
 
 
 def answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None:

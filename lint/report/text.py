@@ -18,7 +18,8 @@ from .bar import Piece
 from .findings import asks, lead, name, topics
 from .glyphs import BOX, Glyphs
 from .page import Page
-from .paper import answer, on_paper
+from .paper import answer, cautions, on_paper
+from .ranking import acceptance, accepted
 from .words import counts, grouped, word
 
 _LABEL = 12
@@ -50,10 +51,12 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
                 page.blank()
             topics(page, verdicts)
         _not_checked(page, review.verdicts)
+        _accepted(page, review)
         _taken_for_granted(page, review)
-        _cautions(page, review.cautions)
+        cautions(page, review.cautions)
         _not_applicable(page, review.verdicts)
-        answer(page, counts(review.verdicts), gate, gate.passes(review))
+        _switched_off(page, review)
+        answer(page, counts(review.verdicts), gate.of(review), gate.passes(review))
     if len(reviews) > 1:
         passed = sum(gate.passes(review) for review in reviews)
         told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
@@ -67,6 +70,8 @@ def _title(page: Page, review: Review) -> None:
         ("title", review.name),
         ("brief", review.brief or "none"),
         ("parts list", review.parts_list or "none"),
+        ("deviations", review.deviations or ""),
+        ("settings", review.configuration or ""),
     ]
     for label, text in rows:
         if text:
@@ -154,7 +159,7 @@ def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
     """Print the open verdicts, grouped by the input that would open them."""
     groups: dict[tuple[str, ...], list[Verdict]] = {}
     for verdict in verdicts:
-        if verdict.outcome is Outcome.OPEN:
+        if verdict.outcome is Outcome.OPEN and verdict.deviation is None:
             groups.setdefault(verdict.needs, []).append(verdict)
     if not groups:
         return
@@ -169,6 +174,21 @@ def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
         for verdict in group:
             page.paragraph(verdict.message, _INDENT)
             page.paragraph(name(verdict), _INDENT, style="dim")
+        page.blank()
+
+
+def _accepted(page: Page, review: Review) -> None:
+    """Print what would stop a gate if somebody did not answer for it, and who does, why, and until when."""
+    found = accepted(review)
+    if not found:
+        return
+    page.heading("accepted", page.glyphs.light, counts(verdict for verdict, _ in found))
+    page.blank()
+    for verdict, deviation in found:
+        page.paragraph(verdict.message, _INDENT, lead(verdict))
+        page.paragraph(name(verdict), _INDENT, style="dim")
+        page.paragraph(acceptance(deviation), _INDENT)
+        page.paragraph(f"at {deviation.place}", _INDENT, style="dim")
         page.blank()
 
 
@@ -187,19 +207,20 @@ def _taken_for_granted(page: Page, review: Review) -> None:
     page.blank()
 
 
-def _cautions(page: Page, cautions: Sequence[str]) -> None:
-    if not cautions:
-        return
-    page.heading("cautions", page.glyphs.light)
-    page.blank()
-    for caution in cautions:
-        page.paragraph(caution, _INDENT, ("  caution", "bold yellow"))
-    page.blank()
-
-
 def _not_applicable(page: Page, verdicts: Sequence[Verdict]) -> None:
     rules = [verdict.rule for verdict in verdicts if verdict.outcome is Outcome.NOT_APPLICABLE]
     if rules:
         listed = ", ".join(dict.fromkeys(rules))
         page.paragraph(f"{len(rules)} not applicable: {listed}", 2, style="dim")
+        page.blank()
+
+
+def _switched_off(page: Page, review: Review) -> None:
+    """Print which rules were not asked, and where that is written."""
+    lines: dict[str, list[str]] = {}
+    for off in review.switched_off:
+        lines.setdefault(f"{off.place.file}:{off.place.line}", []).append(off.rule)
+    for where, rules in lines.items():
+        page.paragraph(f"{len(rules)} switched off by {where}: {', '.join(rules)}", 2, style="bold")
+    if lines:
         page.blank()

@@ -30,10 +30,18 @@ _WORDS: dict[tuple[Outcome, Level | None], Piece] = {
 
 _ORDER = tuple(_WORDS)
 
+# What somebody answers for neither asks to act nor is normal: no colour.
+_ACCEPTED: Piece = ("accepted", "")
+
 
 def word(outcome: Outcome, level: Level | None) -> Piece:
     """Return the word of a verdict in its colour."""
     return _WORDS[_key(outcome, level)]
+
+
+def word_of(verdict: Verdict) -> Piece:
+    """Return the word of a verdict in its colour; an accepted one is called so, whatever its outcome."""
+    return _ACCEPTED if verdict.deviation is not None else word(verdict.outcome, verdict.level)
 
 
 def badness(verdict: Verdict) -> int:
@@ -43,11 +51,11 @@ def badness(verdict: Verdict) -> int:
 
 def counts(verdicts: Iterable[Verdict]) -> list[Piece]:
     """Return how many verdicts go by each word, `1 error, 2 pass`; those that do not apply are left out."""
-    found = Counter(_key(verdict.outcome, verdict.level) for verdict in verdicts)
+    found = Counter(word_of(verdict) for verdict in verdicts)
     pieces: list[Piece] = []
-    for key, (text, style) in _WORDS.items():
-        if found[key] and key[0] is not Outcome.NOT_APPLICABLE:
-            pieces += [(", " if pieces else "", ""), (f"{found[key]} {text}", style)]
+    for text, style in (*_WORDS.values(), _ACCEPTED):
+        if found[text, style] and (text, style) != _WORDS[Outcome.NOT_APPLICABLE, None]:
+            pieces += [(", " if pieces else "", ""), (f"{found[text, style]} {text}", style)]
     return pieces
 
 

@@ -108,6 +108,9 @@ def test_nested_inclusions(orchard: Orchard) -> None:
         ("gone.lib", "there is no such file"),
         ("/etc/passwd", "outside"),
         ("../../../../../../etc/passwd", "outside"),
+        (".vault/key.lib", "hidden"),
+        ("lib/.key.lib", "hidden"),
+        ("key.lib", "hidden"),
         ("../outside.lib", "outside"),
         ("link.lib", "outside"),
         ("loop.lib", "is not read"),
@@ -120,6 +123,9 @@ def test_what_is_not_at_hand_or_refused_is_noted(orchard: Orchard, name: str, re
     (orchard.root.parent / "outside.lib").write_text(SHEET)
     (orchard.root / "link.lib").symlink_to(orchard.root.parent / "outside.lib")
     (orchard.root / "loop.lib").symlink_to(orchard.root / "loop.lib")
+    orchard.write(".vault/key.lib", SHEET)
+    orchard.write("lib/.key.lib", SHEET)
+    (orchard.root / "key.lib").symlink_to(orchard.root / ".vault" / "key.lib")
     (orchard.root / "folder").mkdir()
     (orchard.root / "binary.lib").write_bytes(b"\x00\x01R1 a b 1\xff")
     note = missing(orchard.read(f'.include "{name}"', "R1 a 0 1k"))
@@ -142,6 +148,12 @@ def test_an_allowed_tree_may_be_included(orchard: Orchard) -> None:
     assert list(orchard.read(".lib sheet.lib", "X1 a sheet", allow=(tree,)).parts) == ["X1/R1"]
     assert list(orchard.read(f".lib {tree}/sheet.lib", "X1 a sheet", allow=(tree,)).parts) == ["X1/R1"]
     assert missing(orchard.read(f".lib {tree}/sheet.lib", "X1 a sheet"))
+
+
+def test_a_hidden_tree_may_be_allowed_by_name(orchard: Orchard) -> None:
+    orchard.write(".models/sheet.lib", SHEET)
+    card = ".lib .models/sheet.lib"
+    assert list(orchard.read(card, "X1 a sheet", allow=(orchard.root / ".models",)).parts) == ["X1/R1"]
 
 
 def test_standard_input_includes_nothing() -> None:

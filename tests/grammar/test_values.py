@@ -382,14 +382,14 @@ def test_no_text_does_harm(text: str, quantity: str, spice: bool) -> None:
 )
 def test_hostile_texts_cost_little(filler: str) -> None:
     text = ("1" + filler * 400)[:400]
-    start = time.perf_counter()
+    start = time.process_time()
     for quantity in QUANTITIES:
         for spice in (False, True):
             try:
                 read_value(text, quantity, spice=spice)
             except ValueTextError:
                 continue
-    assert time.perf_counter() - start < 2.0
+    assert time.process_time() - start < 2.0
 
 
 def _parsed_again(word: str, kind: str) -> None:

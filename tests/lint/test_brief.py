@@ -249,6 +249,9 @@ list = [
 after = 1
 [[many]]
 x = 2
+[[ many ]]
+y = 1
+x = 2
 '''
     places = TomlPlaces(text, "f")
     found = {
@@ -263,7 +266,10 @@ x = 2
             ("spaced", "quoted.name", "list"),
             ("spaced", "quoted.name", "a"),
             ("spaced", "quoted.name", "after"),
-            ("many", "x"),
+            ("many", "0", "x"),
+            ("many", "1"),
+            ("many", "1", "x"),
+            ("many", "2", "x"),
         ]
     }
     assert list(found.values()) == [
@@ -277,6 +283,9 @@ x = 2
         (8, 5, 5),  # no such key: its table
         (14, 1, 9),
         (16, 1, 5),
+        (17, 4, 4),
+        (19, 1, 5),
+        (15, 3, 3),  # no such table: the first of its kind
     ]
 
 
@@ -327,6 +336,6 @@ def test_no_brief_does_harm(tmp_path_factory: pytest.TempPathFactory, text: str 
 def test_hostile_briefs_cost_little(write: Write, line: str) -> None:
     lines = (line.replace("#", str(number)) for number in range(300_000 // len(line)))
     path = write("\n".join(lines))
-    start = time.perf_counter()
+    start = time.process_time()
     assert refused(path).message
-    assert time.perf_counter() - start < 5.0
+    assert time.process_time() - start < 5.0

@@ -13,6 +13,8 @@ from pwmlint.grammar.errors import NetlistError
 from pwmlint.grammar.netlist import Place
 from pwmlint.lint import cli
 from pwmlint.lint.estimate import Method
+from pwmlint.lint.policy import Policy
+from pwmlint.lint.rule import Rule, load_rules
 from pwmlint.lint.verdict import Level, Outcome, Review, Verdict
 
 Asked = list[dict[str, object]]
@@ -51,14 +53,20 @@ def asked(monkeypatch: pytest.MonkeyPatch) -> Asked:
         *,
         brief: str | None = None,
         parts_list: str | None = None,
+        deviations: str | None = None,
         allow_include: Sequence[Path] = (),
         method: Method = Method.EXTREME,
+        rules: Sequence[Rule] = (),
+        policy: Policy | None = None,
     ) -> Review:
+        assert rules == load_rules()
+        assert policy == Policy()
         calls.append(
             {
                 "netlist": netlist,
                 "brief": brief,
                 "parts_list": parts_list,
+                "deviations": deviations,
                 "allow_include": list(allow_include),
                 "method": method,
             }
@@ -111,12 +119,14 @@ def test_one_of_several_that_stops_is_enough() -> None:
 
 def test_what_is_passed_on(asked: Asked) -> None:
     arguments = ["review", "sound.cir", "--brief", "b.toml", "--parts-list", "p.csv"]
+    arguments += ["--deviations", "d.toml"]
     cli.main([*arguments, "--allow-include", "models", "--allow-include", "more", "--worst-case", "rss"])
     assert asked == [
         {
             "netlist": "sound.cir",
             "brief": "b.toml",
             "parts_list": "p.csv",
+            "deviations": "d.toml",
             "allow_include": [Path("models"), Path("more")],
             "method": Method.RSS,
         }

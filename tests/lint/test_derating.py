@@ -10,7 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from pwmlint.lint import derating
-from pwmlint.lint.brief import DERATING_POLICIES
+from pwmlint.lint.brief_keys import DERATING_POLICIES
 from pwmlint.lint.derating import (
     UNMARKED,
     ageing_of,

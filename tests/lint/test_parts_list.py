@@ -264,10 +264,10 @@ def test_no_list_does_harm(tmp_path_factory: pytest.TempPathFactory, text: str |
 def test_hostile_lists_cost_little(write: Write, row: str) -> None:
     rows = "\n".join(row.replace("#", str(number)) for number in range(300_000 // len(row)))
     path = write("Ref,Value,Tolerance\n" + rows)
-    start = time.perf_counter()
+    start = time.process_time()
     try:
         read_parts_list(path)
     except PartsListError as error:
         refusal = error
         assert refusal.place.line > 1
-    assert time.perf_counter() - start < 5.0
+    assert time.process_time() - start < 5.0

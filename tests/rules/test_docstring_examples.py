@@ -3,7 +3,8 @@
 An example is a SPICE-style list without its title line; one that ends in `.end` is a whole file. Unless it
 has a U1 of its own, U1 is a 494 with each pin on a net of the pin's name (ground on 0), and whatever an
 example leaves out stays open. A line such as `[rails.VOUT] voltage = "12 V"; tolerance = "2 %"` belongs to
-the brief, one such as `parts: R13, power 1 W, tolerance 1 %` to the parts list.
+the brief, one such as `parts: R13, power 1 W, tolerance 1 %` to the parts list, and one that begins with
+`[[deviation]]` is an entry of the file of deviations: then all rules are asked.
 """
 
 from __future__ import annotations
@@ -16,11 +17,13 @@ import pytest
 from pwmlint.grammar import Netlist, read_bytes
 from pwmlint.lint import Outcome, Verdict, read_brief, read_parts_list, review_netlist
 from pwmlint.lint.controllers import generic_number
+from pwmlint.lint.deviations import read_deviations
 from pwmlint.lint.rule import EXAMPLES, Rule, load_rules
 
 CONTROLLER = "U1 1IN+ 1IN- FEEDBACK DTC CT RT 0 C1 E1 E2 C2 VCC OUTCTRL REF 2IN- 2IN+ 494"
 END = ".end"
 BRIEF = "["
+DEVIATIONS = "[["
 PARTS_LIST = "parts: "
 
 RULES = load_rules()
@@ -37,10 +40,11 @@ CAUTIONS = ("safety.scope",)
 
 def verdicts(rule: Rule, example: str, folder: Path) -> list[Verdict]:
     lines = example.splitlines()
-    told = [line for line in lines if line.startswith(BRIEF)]
+    accepted = [line for line in lines if line.startswith(DEVIATIONS)]
+    told = [line for line in lines if line.startswith(BRIEF) and line not in accepted]
     listed = [line.removeprefix(PARTS_LIST) for line in lines if line.startswith(PARTS_LIST)]
     drawn = [line for line in lines if not line.startswith((BRIEF, PARTS_LIST))]
-    brief = parts_list = None
+    brief = parts_list = deviations = None
     if told:
         path = folder / "example.brief.toml"
         path.write_text("\n".join(map(as_toml, told)), encoding="utf-8")
@@ -49,7 +53,13 @@ def verdicts(rule: Rule, example: str, folder: Path) -> list[Verdict]:
         path = folder / "example.parts.csv"
         path.write_text(as_csv(listed), encoding="utf-8")
         parts_list = read_parts_list(path)
-    return list(review_netlist(as_netlist(drawn), brief, parts_list, rules=[rule]).verdicts)
+    if accepted:
+        path = folder / "example.deviations.toml"
+        path.write_text("\n".join(map(as_toml, accepted)), encoding="utf-8")
+        deviations = read_deviations(path)
+    asked = RULES if accepted else [rule]
+    found = review_netlist(as_netlist(drawn), brief, parts_list, asked, deviations=deviations)
+    return [verdict for verdict in found.verdicts if verdict.rule == rule.id]
 
 
 def as_netlist(lines: list[str]) -> Netlist:

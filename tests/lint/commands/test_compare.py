@@ -5,6 +5,7 @@ from __future__ import annotations
 import io
 import json
 import os
+import shutil
 import subprocess
 import sys
 from collections.abc import Sequence
@@ -48,6 +49,37 @@ def test_one_brief_for_both(capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["compare", str(SOUND), str(FAULTY), "--brief", str(BRIEF), "--format", "json"]) == 1
     report = json.loads(capsys.readouterr().out)
     assert report["old"]["brief"] == report["new"]["brief"] == str(BRIEF)
+
+
+def test_a_deviation_beside_the_new_revision_lets_it_pass(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    for source, name in ((SOUND, "old"), (FAULTY, "new")):
+        for ending in (".cir", ".brief.toml", ".parts.csv"):
+            shutil.copy(source.with_suffix(ending), tmp_path / f"{name}{ending}")
+    old, new = tmp_path / "old.cir", tmp_path / "new.cir"
+    assert main(["compare", str(old), str(new)]) == 1
+    Path(tmp_path / "new.deviations.toml").write_text(
+        '[[deviation]]\nrule = "*"\nsubject = "*"\nreason = "a bench model"\nowner = "the orchard"\n'
+    )
+    capsys.readouterr()
+    assert main(["compare", str(old), str(new), "--format", "json"]) == 0
+    report = json.loads(capsys.readouterr().out)
+    assert report["new"]["deviations"] == str(tmp_path / "new.deviations.toml")
+    failed = [one["new"] for one in report["verdicts"] if one["new"] and one["new"]["outcome"] == "fail"]
+    assert failed
+    assert all(one["accepted"] for one in failed)
+    assert main(["compare", str(new), str(old)]) == 0
+
+
+def test_a_rule_that_one_revision_switches_off_is_told(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (tmp_path / "a").mkdir()
+    shutil.copy(SOUND, tmp_path / "a" / "fan.cir")
+    (tmp_path / "a" / "pwmlint.toml").write_text('[levels]\n"supply.range" = "off"\n')
+    assert main(["compare", str(SOUND), str(tmp_path / "a" / "fan.cir")]) == 0
+    assert "switched off in the new revision only: supply.range" in capsys.readouterr().out
 
 
 def test_several_reports_of_one_run(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 import os
 import shutil
 import subprocess
@@ -11,6 +12,7 @@ from pathlib import Path
 
 import pytest
 from pwmlint.grammar.errors import NetlistError
+from pwmlint.lint.cli import main
 from pwmlint.lint.compare import compare, revision_files
 from pwmlint.lint.compare.source import Source, opened
 
@@ -73,6 +75,11 @@ def refused(text: str) -> NetlistError:
 def text_of(text: str) -> str:
     with opened(text) as source:
         return Path(source.path).read_text(encoding="utf-8")
+
+
+def written(source: Source) -> list[str]:
+    """Return the names of the files that were written beside a netlist at the top of its repository."""
+    return sorted(one.name for one in Path(source.path).parent.iterdir() if one.name != ".git")
 
 
 @pytest.mark.parametrize(
@@ -157,6 +164,61 @@ def test_what_cannot_be_had_is_told_in_words(boards: Git, text: str, message: st
     assert message in refused(text).message
 
 
+class TestConfiguration:
+    """What holds for a netlist is what held for it: the configuration above it, and what that names."""
+
+    @pytest.fixture(autouse=True)
+    def _configured(self, boards: Git) -> None:
+        Path("common").mkdir()
+        Path("common/fan.toml").write_text(BRIEF.format("24"))
+        Path("pwmlint.toml").write_text('brief = "common/fan.toml"\ngate = "warning"\n')
+        Path("boards/fan.brief.toml").unlink()
+        boards("add", "-A")
+        boards("commit", "-qm", "configured")
+
+    def test_of_the_revision(self, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+        Path("pwmlint.toml").write_text("gate = 3\n")
+        assert main(["compare", "HEAD:boards/fan.cir", "HEAD:boards/fan.cir", "--format", "json"]) == 0
+        report = json.loads(capsys.readouterr().out)
+        assert report["new"]["configuration"] == "HEAD:pwmlint.toml"
+        assert report["new"]["brief"] == "HEAD:common/fan.toml"
+        assert report["new"]["netlist"] == "HEAD:boards/fan.cir"
+        assert str(tmp_path) not in json.dumps(report)
+
+    def test_the_gate_is_that_of_the_new_revision(self, capsys: pytest.CaptureFixture[str]) -> None:
+        main(["compare", "HEAD~1:boards/fan.cir", "HEAD:boards/fan.cir"])
+        assert "gate warning" in capsys.readouterr().out
+        main(["compare", "HEAD:boards/fan.cir", "HEAD~1:boards/fan.cir"])
+        assert "gate error" in capsys.readouterr().out
+
+    def test_none_where_none_is_to_be(self, capsys: pytest.CaptureFixture[str]) -> None:
+        arguments = ["HEAD:boards/fan.cir", "boards/fan.cir", "--no-config", "--format", "json"]
+        assert main(["compare", *arguments]) == 0
+        assert json.loads(capsys.readouterr().out)["old"]["configuration"] is None
+
+    @pytest.mark.parametrize("named", ["../secret.toml", "/etc/hostname", ".git/config", "boards/../../x"])
+    def test_it_leads_nowhere_else(
+        self, boards: Git, named: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]
+    ) -> None:
+        Path("pwmlint.toml").write_text(f'brief = "{named}"\n')
+        boards("commit", "-qam", "a configuration that climbs")
+        assert main(["compare", "HEAD:boards/fan.cir", "HEAD~1:boards/fan.cir"]) == 2
+        message = capsys.readouterr().err
+        assert message.startswith("HEAD:pwmlint.toml:1:")
+        assert str(tmp_path) not in message
+
+    def test_house_rules_need_trust(self, boards: Git, capsys: pytest.CaptureFixture[str]) -> None:
+        Path("house").mkdir()
+        Path("house/rules.py").write_text("raise SystemExit(7)\n")
+        Path("pwmlint.toml").write_text('rules = "house"\n')
+        boards("add", "-A")
+        boards("commit", "-qm", "house rules")
+        assert main(["compare", "HEAD:boards/fan.cir", "HEAD:boards/fan.cir"]) == 0
+        assert capsys.readouterr().err.count("HEAD:pwmlint.toml:1:") == 2  # the revisions are read apart
+        assert main(["compare", "HEAD:boards/fan.cir", "HEAD:boards/fan.cir", "--trust-config"]) == 2
+        assert "HEAD:house/rules.py" in capsys.readouterr().err
+
+
 def test_outside_a_repository(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.chdir(tmp_path)
     monkeypatch.setenv("GIT_CEILING_DIRECTORIES", str(tmp_path.parent))
@@ -226,16 +288,17 @@ class TestHostileRepositories:
             ("120000", "loop.toml", "fan.brief.toml"),
         )
         with opened("main:fan.cir") as source:
-            assert [one.name for one in Path(source.path).parent.iterdir()] == ["fan.cir"]
+            assert written(source) == ["fan.cir"]
 
     def test_a_netlist_that_is_a_link_out(self, tree: Callable[..., None]) -> None:
         tree(("120000", "fan.cir", "/etc/hostname"))
         assert "leads out of its folder" in refused("main:fan.cir").message
 
     def test_names_that_would_leave_the_folder(self, tree: Callable[..., None], tmp_path: Path) -> None:
-        tree(("100644", "..", "outside"), ("100644", "fan.cir", FIRST), ("100644", ".", "here"))
+        odd = ("..", ".", ".git", ".GIT")
+        tree(("100644", "fan.cir", FIRST), *(("100644", name, "outside") for name in odd))
         with opened("main:fan.cir") as source:
-            assert [one.name for one in Path(source.path).parent.iterdir()] == ["fan.cir"]
+            assert written(source) == ["fan.cir"]
         assert not (tmp_path / "outside").exists()
 
     def test_a_module_of_another_repository_is_left_out(self, tree: Callable[..., None]) -> None:
@@ -258,7 +321,7 @@ class TestHostileRepositories:
         monkeypatch.setattr(revision_files, "LARGEST_BESIDE", 500)
         tree(("100644", "fan.cir", FIRST), ("100644", "film", "x" * 501))
         with opened("main:fan.cir") as source:
-            assert [one.name for one in Path(source.path).parent.iterdir()] == ["fan.cir"]
+            assert written(source) == ["fan.cir"]
 
     def test_a_pointer_to_a_large_file(self, tree: Callable[..., None]) -> None:
         tree(("100644", "fan.cir", "version https://git-lfs.example/spec/v1\noid sha256:0\n"))

@@ -275,7 +275,7 @@ class TestMarkdown:
         assert "- **renamed** `FB` -> `SENSE`: gained R7\n" in report
         assert "- **better** `reference.load` U1: The reference pin delivers 0.011 A." in report
         assert "connections.title-line" not in report
-        assert report.count("<details>") == report.count("</details>") == 4
+        assert report.count("<details>") == report.count("</details>") == 5
 
     def test_renders_as_meant(self, comparison: Comparison) -> None:
         shown = MarkdownIt("commonmark").enable("table").render(written(comparison, "markdown"))

@@ -41,19 +41,31 @@ def written(*reviews: Review) -> dict[str, Any]:
 
 
 def test_reports_follow_the_schema(
-    faulty: Review, sound: Review, hostile: Review, schema: dict[str, Any]
+    faulty: Review, sound: Review, hostile: Review, accepted: Review, schema: dict[str, Any]
 ) -> None:
-    for reviews in ((faulty, sound, hostile), ()):
+    for reviews in ((faulty, sound, hostile, accepted), ()):
         check(schema, written(*reviews))
 
 
-def test_the_schema_describes_every_key_and_no_other(faulty: Review, schema: dict[str, Any]) -> None:
-    report = written(faulty)
+def test_a_deviation_is_told_with_who_answers_for_it(accepted: Review) -> None:
+    (review,) = written(accepted)["reviews"]
+    told = [verdict["deviation"] for verdict in review["verdicts"] if verdict["deviation"]]
+    assert review["accepted"] == len(told) == 1
+    assert review["deviations"] == told[0]["place"]["file"]
+    assert told[0]["expires"] == "2031-09-30"
+    assert told[0]["owner"] == "the pressing hall's electrician"
+    assert told[0]["accepted"] == {"minimum": 30.5, "nominal": 30.5, "maximum": 30.5, "unit": "V"}
+
+
+def test_the_schema_describes_every_key_and_no_other(accepted: Review, schema: dict[str, Any]) -> None:
+    report = written(accepted)
     review, verdict = report["reviews"][0], report["reviews"][0]["verdicts"][0]
+    (deviation, *_) = [one["deviation"] for one in review["verdicts"] if one["deviation"]]
     for found, described in (
         (report, schema),
         (review, schema["$defs"]["review"]),
         (verdict, schema["$defs"]["verdict"]),
+        (deviation, schema["$defs"]["deviation"]),
         (review["controllers"][0], schema["$defs"]["controller"]),
     ):
         assert list(found) == described["required"]

@@ -1,0 +1,58 @@
+"""What holds for each netlist of a run, and where its reports go; what is wrong is told, or ends the run."""
+
+from __future__ import annotations
+
+import argparse
+from collections.abc import Iterable, Sequence
+
+from ...grammar.errors import NetlistError
+from ..configuration import ConfigurationError
+from ..report.delivery import STANDARD_OUTPUT, Target
+from ..settings import Settings, Settler, overwritten, shared_reports
+from .answer import tell
+from .given import given
+
+
+def settle_each(netlists: Iterable[str], options: argparse.Namespace) -> list[tuple[str, Settings]]:
+    """Return what holds for each netlist whose configuration can be used; tell once of each that cannot."""
+    said = given(options)
+    check_outputs(said.reports or (), options)
+    settler = Settler(said)
+    settled: list[tuple[str, Settings]] = []
+    told: list[NetlistError] = []
+    for netlist in netlists:
+        try:
+            settings = settler.settle(netlist)
+            settled.append((netlist, settings))
+            remark = settings.untrusted
+        except NetlistError as error:
+            remark = error
+        if remark is not None and not any(remark is one for one in told):
+            told.append(remark)
+            tell(str(remark))
+    return settled
+
+
+def targets_of(settled: Sequence[tuple[str, Settings]], options: argparse.Namespace) -> Sequence[Target]:
+    """Return the reports of a run. Raises ConfigurationError; wrong usage ends here."""
+    if not settled:
+        return ()
+    reports = shared_reports([settings for _, settings in settled])
+    inputs = [path for netlist, settings in settled for path in (netlist, *settings.inputs)]
+    output = overwritten(reports.value, inputs)
+    if output is not None:
+        message = f"the report would overwrite what is reviewed: {output}"
+        if reports.place is None:
+            options.parser.error(message)
+        else:
+            raise ConfigurationError(message, reports.place, remedy="name another file")
+    return reports.value
+
+
+def check_outputs(targets: Sequence[Target], options: argparse.Namespace) -> None:
+    """End where two reports would go to one place: that is wrong usage."""
+    outputs = [target.output for target in targets]
+    for output in outputs:
+        if outputs.count(output) > 1:
+            where = "standard output" if output == STANDARD_OUTPUT else output
+            options.parser.error(f"two reports would go to {where}: give each --format its own --output")
