@@ -98,17 +98,23 @@ def _title(page: Page, review: Review) -> None:
 def _legend(page: Page) -> None:
     """Say once how a bar is read."""
     glyphs = page.glyphs
-    page.line(
+    limits: list[Piece] = [
         ("bars".ljust(_LABEL), "dim"),
         (f"{glyphs.low}{glyphs.inside * 2}{glyphs.high}", ""),
         (" limits   ", "dim"),
         (glyphs.spread * 2, "green"),
         (" minimum to maximum   ", "dim"),
+    ]
+    rest: list[Piece] = [
         (glyphs.nominal, "green"),
         (" nominal   ", "dim"),
         ("%", ""),
         (" margin", "dim"),
-    )
+    ]
+    if sum(cell_len(text) for text, _ in (*limits, *rest)) > page.width:
+        page.line(*limits)
+        limits = [(" " * _LABEL, "")]
+    page.line(*limits, *rest)
 
 
 def _sections(review: Review) -> Iterator[tuple[ControllerReview | None, list[Verdict]]]:
@@ -259,7 +265,10 @@ def _answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None
     taken = sum(cell_len(text) for text, _ in (*told, *answer))
     page.line((page.glyphs.strong * page.width, "dim"))
     if taken + 2 > page.width:
-        page.line(*told)
+        if sum(cell_len(text) for text, _ in told) > page.width:
+            page.paragraph("".join(text for text, _ in told), 0)
+        else:
+            page.line(*told)
         page.line(*answer)
     else:
         page.line(*told, (" " * (page.width - taken), ""), *answer)
