@@ -7,14 +7,22 @@ the review says.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from importlib import import_module
 from typing import Protocol, TextIO
 
-from ..verdict import Level, Review
+from ..verdict import Level, Review, Verdict
 
 # Name on the command line -> module; loaded only when asked for, so that a JSON report needs no rich.
-FORMATS = {"text": ".text", "json": ".json"}
+FORMATS = {
+    "text": ".text",
+    "json": ".json",
+    "sarif": ".sarif",
+    "sarif-alerts": ".sarif.alerts",
+    "junit": ".junit",
+    "markdown": ".markdown",
+    "annotations": ".annotations",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,6 +46,10 @@ class Gate:
         """Tell whether `review` passes."""
         gate = self.of(review)
         return review.passes(gate.level, strict=gate.strict)
+
+    def stops(self, verdict: Verdict, review: Review) -> bool:
+        """Tell whether `verdict`, one of `review`, stops the gate by itself."""
+        return not self.passes(replace(review, verdicts=(verdict,)))
 
     def __str__(self) -> str:
         """Return the gate as asked for on the command line, such as "error, strict"."""

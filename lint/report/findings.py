@@ -6,21 +6,17 @@ from collections.abc import Sequence
 
 from rich.cells import cell_len
 
-from ...grammar.netlist import Place
-from ..quantity import figure, percent
+from ...grammar.errors import no_command
+from ..quantity import figure
 from ..verdict import TOPICS, Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
+from .details import details, margin
 from .page import Page
-from .words import badness, counts, grouped, word, word_of
+from .words import badness, counts, word, word_of
 
 _INDENT = 11
 _LABEL = 9
 _SHORTEST_BAR, _LONGEST_BAR = 14, 60
-_PLACES, _SHARES = 4, 5
-_LEAST_SHARE = 0.01
-
-# A margin beyond this many times its limit has no more to say.
-_GREATEST_MARGIN = 9.99
 
 # Between the columns of a small bar: rule, low limit, bar, high limit, margin.
 _GAPS = 2 + 1 + 1 + 2
@@ -73,48 +69,10 @@ def _full(page: Page, verdict: Verdict) -> None:
     drawn = _bar(verdict, min(_LONGEST_BAR, page.width - _INDENT))
     if drawn is not None:
         _gauge(page, drawn, word(verdict.outcome, verdict.level)[1])
-    for label, text in _details(verdict):
+    for label, text in details(verdict):
         if text:
             label_style = "bold" if label == "remedy" else "dim"
             page.paragraph(text, _INDENT + _LABEL, (" " * _INDENT + label, label_style))
-
-
-def _details(verdict: Verdict) -> list[tuple[str, str]]:
-    """Return what stands below the message, each with its label; an empty text is not to be printed."""
-    parts, nets = ", ".join(verdict.parts), ", ".join(verdict.nets)
-    return [
-        ("measured", str(verdict.measured) if verdict.measured and not verdict.limit else ""),
-        ("margin", _margin(verdict)),
-        ("formula", verdict.formula),
-        ("spread", _shares(verdict.contributions)),
-        ("parts", f"{parts} on {nets}" if parts and nets else parts),
-        ("nets", "" if parts else nets),
-        ("at", _places(verdict.places)),
-        *(("needs", need) for need in verdict.needs),
-        *(("assumed", sentence) for sentence in grouped(verdict.assumptions)),
-        ("source", verdict.source),
-        ("remedy", verdict.remedy),
-    ]
-
-
-def _shares(contributions: Sequence[tuple[str, float]]) -> str:
-    """Return what the spread comes from, without the crumbs."""
-    named = [(source, share) for source, share in contributions if share >= _LEAST_SHARE][:_SHARES]
-    texts = [f"{percent(share, 2)} from {source}" for source, share in named]
-    rest = len(contributions) - len(named)
-    return ", ".join(texts) + (f", less from {rest} more" if texts and rest else "")
-
-
-def _places(places: Sequence[Place]) -> str:
-    """Return the first places as `file:line:column, line:column`: a file is named where it changes."""
-    texts: list[str] = []
-    file = None
-    for place in places[:_PLACES]:
-        where = f"{place.line}:{place.column}" if place.line else ""
-        texts.append(where if place.file == file else f"{place.file}:{where}".rstrip(":"))
-        file = place.file
-    more = f" and {len(places) - _PLACES} more" if len(places) > _PLACES else ""
-    return ", ".join(texts) + more
 
 
 def _gauge(page: Page, drawn: Bar, outside: str) -> None:
@@ -139,7 +97,7 @@ def _brief(page: Page, verdicts: Sequence[Verdict]) -> None:
     barred = [verdict for verdict in verdicts if _bar(verdict, _SHORTEST_BAR) is not None]
     names, lows, highs, margins = (
         max((cell_len(page.say(text(verdict))) for verdict in barred), default=0)
-        for text in (name, _low, _high, _margin)
+        for text in (name, _low, _high, margin)
     )
     cells = page.width - _INDENT - names - lows - highs - margins - _GAPS
     apart = cells < _SHORTEST_BAR
@@ -151,13 +109,13 @@ def _brief(page: Page, verdicts: Sequence[Verdict]) -> None:
         if drawn is None or apart:
             page.paragraph(name(verdict), _INDENT, style="dim")
         if drawn is not None:
-            title = "" if apart else page.say(name(verdict))
+            title = "" if apart else no_command(page.say(name(verdict)))
             page.line(
                 (" " * _INDENT + _pad(title, names), "dim"),
                 (f"  {page.say(_low(verdict)):>{lows}} ", "dim"),
                 *drawn.draw(page.glyphs, "red"),
                 (f" {page.say(_high(verdict)):<{highs}}", "dim"),
-                (f"  {page.say(_margin(verdict)):>{margins}}", ""),
+                (f"  {page.say(margin(verdict)):>{margins}}", ""),
             )
 
 
@@ -169,15 +127,6 @@ def _low(verdict: Verdict) -> str:
 def _high(verdict: Verdict) -> str:
     limit = verdict.limit
     return "" if limit is None or limit.maximum is None else figure(limit.maximum, limit.unit)
-
-
-def _margin(verdict: Verdict) -> str:
-    margin = verdict.margin
-    if margin is None:
-        return ""
-    if abs(margin) > _GREATEST_MARGIN:
-        return f"{'>' if margin > 0 else '< -'}{percent(_GREATEST_MARGIN)}"
-    return percent(margin, 2)
 
 
 def _pad(text: str, width: int) -> str:

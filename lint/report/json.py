@@ -9,13 +9,12 @@ from __future__ import annotations
 import json
 from collections.abc import Sequence
 from importlib.metadata import version
-from math import isfinite
 from typing import Any, TextIO
 
 from ...grammar.netlist import Place
-from ..quantity import Spread
-from ..verdict import ControllerReview, Deviation, Limit, Review, Verdict
+from ..verdict import ControllerReview, Deviation, Review, Verdict
 from . import Gate
+from .values import limit_values, number, spread_values
 
 SCHEMA = 1
 
@@ -81,16 +80,16 @@ def _verdict(verdict: Verdict) -> dict[str, Any]:
         "subject": verdict.subject,
         "controller": verdict.controller,
         "message": verdict.message,
-        "measured": _spread(verdict.measured),
-        "limit": _limit(verdict.limit),
-        "margin": _number(verdict.margin),
+        "measured": spread_values(verdict.measured) if verdict.measured else None,
+        "limit": limit_values(verdict.limit) if verdict.limit else None,
+        "margin": number(verdict.margin),
         "parts": list(verdict.parts),
         "nets": list(verdict.nets),
         "pins": list(verdict.pins),
         "places": [_place(place) for place in verdict.places],
         "formula": verdict.formula,
         "contributions": [
-            {"parameter": parameter, "share": _number(share)} for parameter, share in verdict.contributions
+            {"parameter": parameter, "share": number(share)} for parameter, share in verdict.contributions
         ],
         "assumptions": list(verdict.assumptions),
         "source": verdict.source,
@@ -112,32 +111,10 @@ def _deviation(deviation: Deviation | None) -> dict[str, Any] | None:
         "reason": deviation.reason,
         "owner": deviation.owner,
         "expires": deviation.expires.isoformat() if deviation.expires else None,
-        "accepted": _spread(deviation.accepted),
+        "accepted": spread_values(deviation.accepted) if deviation.accepted else None,
         "place": _place(deviation.place),
     }
 
 
-def _spread(spread: Spread | None) -> dict[str, Any] | None:
-    if spread is None:
-        return None
-    return {
-        "minimum": _number(spread.minimum),
-        "nominal": _number(spread.nominal),
-        "maximum": _number(spread.maximum),
-        "unit": spread.unit,
-    }
-
-
-def _limit(limit: Limit | None) -> dict[str, Any] | None:
-    if limit is None:
-        return None
-    return {"minimum": _number(limit.minimum), "maximum": _number(limit.maximum), "unit": limit.unit}
-
-
 def _place(place: Place) -> dict[str, Any]:
     return {"file": place.file, "line": place.line, "column": place.column}
-
-
-def _number(value: float | None) -> float | None:
-    """Return a number as JSON can hold it: there is no infinity in JSON, null stands for it."""
-    return value if value is not None and isfinite(value) else None

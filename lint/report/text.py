@@ -20,6 +20,7 @@ from .bar import Piece
 from .findings import asks, lead, name, topics
 from .glyphs import ASCII, BOX, Glyphs
 from .page import Page
+from .ranking import acceptance, accepted
 from .words import counts, grouped, word
 
 _LABEL = 12
@@ -64,7 +65,7 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
                 page.blank()
             topics(page, verdicts)
         _not_checked(page, review.verdicts)
-        _accepted(page, review.verdicts)
+        _accepted(page, review)
         _taken_for_granted(page, review)
         _cautions(page, review.cautions)
         _not_applicable(page, review.verdicts)
@@ -190,18 +191,17 @@ def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
         page.blank()
 
 
-def _accepted(page: Page, verdicts: Sequence[Verdict]) -> None:
+def _accepted(page: Page, review: Review) -> None:
     """Print what would stop a gate if somebody did not answer for it, and who does, why, and until when."""
-    accepted = [(verdict, verdict.deviation) for verdict in verdicts if verdict.deviation is not None]
-    if not accepted:
+    found = accepted(review)
+    if not found:
         return
-    page.heading("accepted", page.glyphs.light, counts(verdict for verdict, _ in accepted))
+    page.heading("accepted", page.glyphs.light, counts(verdict for verdict, _ in found))
     page.blank()
-    for verdict, deviation in accepted:
+    for verdict, deviation in found:
         page.paragraph(verdict.message, _INDENT, lead(verdict))
         page.paragraph(name(verdict), _INDENT, style="dim")
-        until = f", until {deviation.expires}" if deviation.expires else ""
-        page.paragraph(f"{deviation.reason} ({deviation.owner}{until})", _INDENT)
+        page.paragraph(acceptance(deviation), _INDENT)
         page.paragraph(f"at {deviation.place}", _INDENT, style="dim")
         page.blank()
 

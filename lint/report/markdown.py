@@ -1,0 +1,123 @@
+"""The report for the discussion of a change: Markdown, short, what is asked of the reader first.
+
+The worst findings stand in a table; their figures, what could not be checked, what is accepted and the
+cautions are folded. No line begins with a text from a file.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator, Sequence
+from typing import TextIO
+
+from ..verdict import Deviation, Review, Verdict
+from . import Gate
+from .colour import shows_box_characters
+from .details import details
+from .glyphs import spelt_out
+from .markdown_text import code, inline
+from .ranking import acceptance, accepted, findings, unanswered
+from .words import counts, word
+
+# Hosts bound the length of a comment.
+MOST = 25
+
+# Details whose text is no prose.
+_CODE = ("formula", "at", "needs")
+
+
+def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
+    """Write one section a review, and above several the answer to all."""
+    lines: list[str] = []
+    if len(reviews) != 1:
+        passed = sum(gate.passes(review) for review in reviews)
+        lines += [f"**pwmlint: {len(reviews)} netlists, {passed} passed the gate ({gate})**", ""]
+    for review in reviews:
+        lines += _review(review, gate)
+    text = "\n".join(lines).rstrip("\n") + "\n"
+    stream.write(text if shows_box_characters(stream) else spelt_out(text))
+
+
+def _review(review: Review, gate: Gate) -> Iterator[str]:
+    asked = findings(review)
+    yield from (f"### pwmlint: {code(review.netlist)}", "")
+    if review.name:
+        yield from (f"Design: {inline(review.name)}", "")
+    yield from (_answer(review, gate), "")
+    yield from _table(asked, review)
+    yield from _folded("Findings with their figures", [_finding(one) for one in asked])
+    yield from _folded("Could not be checked", [_open(one) for one in unanswered(review)])
+    yield from _folded("Accepted", [_accepted(*pair) for pair in accepted(review)])
+    yield from _folded("Cautions", [[f"- {inline(caution)}"] for caution in review.cautions])
+
+
+def _answer(review: Review, gate: Gate) -> str:
+    """Return the gate's answer and the counts, those of what is accepted apart."""
+    left = "".join(text for text, _ in counts(one for one in review.verdicts if one.deviation is None))
+    told = [left or "no verdict", f"{review.accepted} accepted" if review.accepted else ""]
+    answer = "passed" if gate.passes(review) else "not passed"
+    return f"**Gate {gate}: {answer}**; {', '.join(filter(None, told))}"
+
+
+def _table(asked: Sequence[Verdict], review: Review) -> Iterator[str]:
+    if not asked:
+        return
+    yield "| verdict | finding | rule | at |"
+    yield "| --- | --- | --- | --- |"
+    for verdict in asked[:MOST]:
+        cells = (_called(verdict), inline(verdict.message), _named(verdict), _where(verdict, review))
+        yield f"| {' | '.join(cells)} |"
+    yield from ("", *_beyond(len(asked)))
+
+
+def _called(verdict: Verdict) -> str:
+    return word(verdict.outcome, verdict.level)[0]
+
+
+def _where(verdict: Verdict, review: Review) -> str:
+    """Return line and column of a finding; the file as well where it is not the netlist itself."""
+    place = verdict.places[0] if verdict.places else None
+    if place is None or place.line < 1:
+        return ""
+    return f"{place.line}:{place.column}" if place.file == review.netlist else code(str(place))
+
+
+def _named(verdict: Verdict) -> str:
+    return f"{code(verdict.rule)} {inline(verdict.subject)}".rstrip()
+
+
+def _headline(verdict: Verdict) -> str:
+    return f"- **{_called(verdict)}** {_named(verdict)}: {inline(verdict.message)}"
+
+
+def _finding(verdict: Verdict) -> Iterator[str]:
+    yield _headline(verdict)
+    for label, text in details(verdict):
+        if text:
+            yield f"  - {label}: {code(text) if label in _CODE else inline(text)}"
+
+
+def _open(verdict: Verdict) -> Iterator[str]:
+    yield _headline(verdict)
+    for need in verdict.needs:
+        yield f"  - needs: {code(need)}"
+
+
+def _accepted(verdict: Verdict, deviation: Deviation) -> Iterator[str]:
+    yield _headline(verdict)
+    yield f"  - {inline(acceptance(deviation))}"
+
+
+def _folded(title: str, items: Sequence[Iterable[str]]) -> Iterator[str]:
+    """Yield a list that is folded until somebody asks for it; the blank lines let it be Markdown inside."""
+    if not items:
+        return
+    yield from ("<details>", f"<summary>{title} ({len(items)})</summary>", "")
+    for item in items[:MOST]:
+        yield from item
+    yield from ("", *_beyond(len(items)), "</details>", "")
+
+
+def _beyond(found: int) -> Iterator[str]:
+    """Yield how many are not shown."""
+    if found > MOST:
+        yield from (f"{found - MOST} more are in the complete report.", "")

@@ -1,0 +1,77 @@
+"""The log for result viewers and code hosts: SARIF 2.1.0.
+
+One run holds the results of every netlist. The same reviews give the same bytes: no times, no machine, no
+identifiers drawn at random, ASCII throughout.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterable, Sequence
+from importlib.metadata import version
+from typing import Any, TextIO
+
+from ...rule import Rule, load_rules
+from ...verdict import Review
+from .. import Gate
+from .places import BASE, artifact
+from .results import Tables, results
+from .rules import descriptor
+from .sources import NAME, indexes, taxonomy
+
+SCHEMA = "https://json.schemastore.org/sarif-2.1.0.json"
+
+
+def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
+    """Write the complete log: a result for every verdict, what is accepted with its suppression."""
+    stream.write(serialised(log(reviews, gate, load_rules())))
+
+
+def log(reviews: Sequence[Review], gate: Gate, rules: Sequence[Rule]) -> dict[str, Any]:
+    """Return the complete log as data; `rules` are those that it describes."""
+    documents = indexes(verdict for review in reviews for verdict in review.verdicts)
+    tables = Tables({one.id: index for index, one in enumerate(rules)}, documents)
+    run: dict[str, Any] = {
+        "tool": {
+            "driver": {
+                "name": "pwmlint",
+                "version": version("pwmlint"),
+                "rules": [descriptor(one) for one in rules],
+                "supportedTaxonomies": [{"name": NAME, "index": 0}],
+            }
+        },
+        "invocations": [_invocation(reviews, gate)],
+        "originalUriBaseIds": {BASE: {"description": {"text": "The folder in which the review was run."}}},
+        "artifacts": _artifacts(reviews),
+        "columnKind": "unicodeCodePoints",
+        "taxonomies": [taxonomy(documents)],
+        "results": [result for review in reviews for result in results(review, tables)],
+    }
+    return {"$schema": SCHEMA, "version": "2.1.0", "runs": [run]}
+
+
+def serialised(data: dict[str, Any]) -> str:
+    """Return a log as the text of a file."""
+    return json.dumps(data, indent=2, allow_nan=False) + "\n"
+
+
+def _invocation(reviews: Iterable[Review], gate: Gate) -> dict[str, Any]:
+    """Return how the run ended: it was a success whatever it found, and the gate gives the exit status."""
+    passed = all(gate.passes(review) for review in reviews)
+    return {
+        "executionSuccessful": True,
+        "exitCode": 0 if passed else 1,
+        "exitCodeDescription": f"gate {gate}: {'passed' if passed else 'not passed'}",
+    }
+
+
+def _artifacts(reviews: Iterable[Review]) -> list[dict[str, Any]]:
+    """Return the files that were read, netlists first; each once."""
+    netlists: dict[str, None] = {}
+    told: dict[str, None] = {}
+    for review in reviews:
+        netlists[review.netlist] = None
+        told.update(dict.fromkeys(filter(None, (review.brief, review.parts_list, review.deviations))))
+    roles = [(file, "analysisTarget") for file in netlists]
+    roles += [(file, "userSpecifiedConfiguration") for file in told if file not in netlists]
+    return [{"location": artifact(file), "roles": [role]} for file, role in roles]
