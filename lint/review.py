@@ -79,7 +79,7 @@ def review_netlist(
     verdicts = tuple(policy.judged(verdict) for one in asked for verdict in _answers(one, design))
     if deviations is not None:
         verdicts, applied = apply(deviations, verdicts, today or date.today())
-        about = (verdict for one in asked for verdict in _ask_deviations(one, applied, design))
+        about = (verdict for one in asked for verdict in _answers(one, design, applied))
         verdicts += tuple(map(policy.judged, about))
     return Review(
         netlist=netlist.file,
@@ -121,14 +121,17 @@ def beside(netlist: str | Path, ending: str) -> Path | None:
     return found if found.is_file() else None
 
 
-def _answers(one: Rule, design: Design) -> tuple[Verdict, ...]:
-    """Return the verdicts of a rule. A house's own rule that crashes is told as such, with its file."""
-    if not is_of_house(one):
-        return tuple(_ask(one, design))
+def _answers(one: Rule, design: Design, applied: Applied | None = None) -> tuple[Verdict, ...]:
+    """Return the verdicts of a rule: on the design, or else on the deviations that were applied to it.
+
+    A house's own rule that crashes is told as such, with its file.
+    """
     try:
-        return tuple(_ask(one, design))
+        return tuple(_ask(one, design) if applied is None else _ask_deviations(one, applied, design))
     except (Exception, SystemExit) as problem:
-        raise crash(one, problem, design.netlist.file) from problem
+        if is_of_house(one):
+            raise crash(one, problem, design.netlist.file) from problem
+        raise
 
 
 def _ask(one: Rule, design: Design) -> Iterator[Verdict]:

@@ -249,7 +249,7 @@ def _switched_off(page: Page, review: Review) -> None:
     """Print which rules were not asked, and where that is written."""
     lines: dict[str, list[str]] = {}
     for off in review.switched_off:
-        lines.setdefault(f"{off.place.file}:{off.place.line}", []).append(off.rule)
+        lines.setdefault(off.where, []).append(off.rule)
     for where, rules in lines.items():
         page.paragraph(f"{len(rules)} switched off by {where}: {', '.join(rules)}", 2, style="bold")
     if lines:
