@@ -15,6 +15,7 @@ from .controllers import generic_number
 from .design import Design
 from .deviations import Applied, Deviations, apply, read_deviations
 from .estimate import Method
+from .found_files import refuse_link_out, root_of
 from .house_rules import crash, is_of_house
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
@@ -113,12 +114,19 @@ def _is_controller(name: str) -> bool:
 
 
 def beside(netlist: str | Path, ending: str) -> Path | None:
-    """Return the file beside the netlist that has its name and another ending, where there is one."""
+    """Return the file beside the netlist that has its name and another ending, where there is one.
+
+    Raises NetlistError for a link that leads out of the repository, or of the folder where there is none.
+    """
     path = Path(netlist)
     if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
         return None
     found = path.with_name(path.stem + ending)
-    return found if found.is_file() else None
+    if not found.is_file():
+        return None
+    remedy = "put the file there itself, or name it on the command line"
+    refuse_link_out(found, root_of(found.parent.resolve()), remedy=remedy)
+    return found
 
 
 def _answers(one: Rule, design: Design, applied: Applied | None = None) -> tuple[Verdict, ...]:
