@@ -15,6 +15,6 @@ from pathlib import Path
 
 def compiled(grammar: Path) -> str | bool:
     """Return the file for the compiled form of `grammar` as lark's option `cache` takes it; False: none."""
-    if sys.dont_write_bytecode or sys.implementation.cache_tag is None:
+    if sys.dont_write_bytecode or not sys.implementation.cache_tag:
         return False
     return str(Path(cache_from_source(str(grammar))).with_suffix(".lark"))

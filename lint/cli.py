@@ -16,6 +16,7 @@ from importlib.metadata import version
 from ..grammar.errors import printable
 from .commands import COMMANDS
 from .commands.answer import EXIT, INTERRUPTED, TROUBLE, tell
+from .commands.parser import Parser
 from .report.delivery import DeliveryError
 
 TRACEBACK = "PWMLINT_TRACEBACK"
@@ -39,8 +40,15 @@ def main(arguments: Sequence[str] | None = None) -> int:
 
 def command_line() -> argparse.ArgumentParser:
     """Return the parser of the whole command line."""
-    parser = argparse.ArgumentParser(
-        prog="pwmlint", description="Reviews the schematic netlist around a PWM controller.", epilog=EXIT
+    parser = Parser(
+        prog="pwmlint",
+        description="Reviews the schematic netlist around a PWM controller.",
+        epilog=EXIT,
+        examples=(
+            ("pwmlint review board.edf", "is the schematic right?"),
+            ("pwmlint brief board.edf --output board.brief.toml", "begin to tell what the supply must do"),
+            ("pwmlint rules dead-time.range", "what a rule asks, why, and from which source"),
+        ),
     )
     parser.add_argument("--version", action="version", version=f"pwmlint {version('pwmlint')}")
     commands = parser.add_subparsers(title="commands", required=True, metavar="COMMAND")

@@ -7,10 +7,10 @@ from pathlib import Path
 
 from ..grammar.netlist import Place
 from .configuration import ConfigurationError
+from .found_files import refuse_link_out, root_of
 from .review import STANDARD_INPUT
 
 NAME = "pwmlint.toml"
-_REPOSITORY = ".git"
 
 
 def find_configuration(netlist: str | Path) -> Path | None:
@@ -27,8 +27,7 @@ def find_configuration(netlist: str | Path) -> Path | None:
         folder = (given if given.is_dir() else given.parent).resolve()
     except (OSError, RuntimeError, ValueError):  # no such path can be: reading the netlist tells so
         return None
-    above = (folder, *folder.parents)
-    root = next((one for one in above if os.path.lexists(one / _REPOSITORY)), folder)
+    above, root = (folder, *folder.parents), root_of(folder)
     for one in above[: above.index(root) + 1]:
         found = one / NAME
         if os.path.lexists(found):
@@ -38,16 +37,11 @@ def find_configuration(netlist: str | Path) -> Path | None:
 
 def _checked(found: Path, root: Path, shown: Path) -> Path:
     """Return the path to show, unless what stands there must not be read."""
-    whole = Place(str(shown), 0, 0)
     if not found.is_file():
+        whole = Place(str(shown), 0, 0)
         raise ConfigurationError("this is no file", whole, remedy="make it a file, or give --no-config")
-    # What a message quotes of the file must not be a stranger's choice among all files of the system.
-    if not found.resolve().is_relative_to(root):
-        raise ConfigurationError(
-            f"this link leads out of {root}",
-            whole,
-            remedy="put the file there itself, or name it by --config",
-        )
+    remedy = "put the file there itself, or name it by --config"
+    refuse_link_out(found, root, remedy=remedy, shown=shown, error=ConfigurationError)
     return shown
 
 

@@ -13,6 +13,7 @@ from pathlib import Path
 
 from ..grammar.errors import NetlistError
 from ..grammar.netlist import Place
+from .found_files import refuse_link_out, root_of
 
 # The endings of netlists that are looked for in a folder; a file that is named may have any.
 ENDINGS = (".edf", ".edif", ".edn", ".cir", ".ckt", ".sp", ".spi", ".spice")
@@ -54,6 +55,7 @@ def _in_folder(folder: Path) -> list[str]:
 
 def _files(folder: Path) -> Iterator[Path]:
     """Yield the netlists of a folder tree, those of each folder by name before those of its folders."""
+    root = root_of(folder.resolve())
 
     def refuse(error: OSError) -> None:
         reason = error.strerror or str(error)
@@ -63,7 +65,9 @@ def _files(folder: Path) -> Iterator[Path]:
         folders[:] = sorted(name for name in folders if not name.startswith("."))
         for name in sorted(names):
             if Path(name).suffix.casefold() in ENDINGS and not name.startswith("."):
-                yield Path(where, name)
+                found = Path(where, name)
+                refuse_link_out(found, root, remedy="take the link out, or name the netlist itself")
+                yield found
 
 
 def _beside(path: Path, stem: str) -> list[str]:

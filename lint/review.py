@@ -16,6 +16,7 @@ from .controllers import generic_number
 from .design import Design
 from .deviations import Applied, Deviations, apply, read_deviations
 from .estimate import Method
+from .found_files import refuse_link_out, root_of
 from .house_rules import crash, is_of_house
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
@@ -103,7 +104,7 @@ def review_netlist(
     verdicts = tuple(policy.judged(verdict) for one in asked for verdict in _answers(one, design))
     if deviations is not None:
         verdicts, applied = apply(deviations, verdicts, today or date.today())
-        about = (verdict for one in asked for verdict in _ask_deviations(one, applied, design))
+        about = (verdict for one in asked for verdict in _answers(one, design, applied))
         verdicts += tuple(map(policy.judged, about))
     return Review(
         netlist=netlist.file,
@@ -137,22 +138,32 @@ def _is_controller(name: str) -> bool:
 
 
 def beside(netlist: str | Path, ending: str) -> Path | None:
-    """Return the file beside the netlist that has its name and another ending, where there is one."""
+    """Return the file beside the netlist that has its name and another ending, where there is one.
+
+    Raises NetlistError for a link that leads out of the repository, or of the folder where there is none.
+    """
     path = Path(netlist)
     if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
         return None
     found = path.with_name(path.stem + ending)
-    return found if found.is_file() else None
+    if not found.is_file():
+        return None
+    remedy = "put the file there itself, or name it on the command line"
+    refuse_link_out(found, root_of(found.parent.resolve()), remedy=remedy)
+    return found
 
 
-def _answers(one: Rule, design: Design) -> tuple[Verdict, ...]:
-    """Return the verdicts of a rule. A house's own rule that crashes is told as such, with its file."""
-    if not is_of_house(one):
-        return tuple(_ask(one, design))
+def _answers(one: Rule, design: Design, applied: Applied | None = None) -> tuple[Verdict, ...]:
+    """Return the verdicts of a rule: on the design, or else on the deviations that were applied to it.
+
+    A house's own rule that crashes is told as such, with its file.
+    """
     try:
-        return tuple(_ask(one, design))
+        return tuple(_ask(one, design) if applied is None else _ask_deviations(one, applied, design))
     except (Exception, SystemExit) as problem:
-        raise crash(one, problem, design.netlist.file) from problem
+        if is_of_house(one):
+            raise crash(one, problem, design.netlist.file) from problem
+        raise
 
 
 def _ask(one: Rule, design: Design) -> Iterator[Verdict]:

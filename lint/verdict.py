@@ -206,6 +206,11 @@ class SwitchedOff:
     rule: str
     place: Place
 
+    @property
+    def where(self) -> str:
+        """Return file and line of where it is written."""
+        return f"{self.place.file}:{self.place.line}"
+
 
 @dataclass(frozen=True, slots=True)
 class Review:

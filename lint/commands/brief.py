@@ -15,6 +15,7 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     """Add the command to the command line."""
     parser = commands.add_parser(
         "brief",
+        examples=(("pwmlint brief board.edf --output board.brief.toml", "begin, then fill in"),),
         help="begin a brief for a netlist",
         description="Writes a brief (TOML) with what the netlist already tells, and every key explained. "
         "What it states changes no verdict; the rest is for you to fill in.",

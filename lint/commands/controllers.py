@@ -10,7 +10,11 @@ from .answer import show, unknown
 
 def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
     """Add the command to the command line."""
-    parser = commands.add_parser("controllers", help="list the controller families, or tell all about one")
+    parser = commands.add_parser(
+        "controllers",
+        examples=(("pwmlint controllers 494", "its pins and figures with their sources"),),
+        help="list the controller families, or tell all about one",
+    )
     parser.add_argument("family", nargs="?", metavar="FAMILY", help="a family, such as 494")
     parser.set_defaults(command=_run)
 

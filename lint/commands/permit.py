@@ -16,6 +16,7 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     """Add the command to the command line."""
     parser = commands.add_parser(
         "permit",
+        examples=(("pwmlint permit board.edf >> board.deviations.toml", "then fill in reason and owner"),),
         help="write the deviations that would accept what a review finds",
         description="Writes a deviation (TOML) for every verdict that fails or is for a person to judge and "
         "is not accepted yet. Complete reason and owner and add the entries that you answer for to "

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import argparse
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from ...grammar.errors import NetlistError
@@ -14,6 +14,7 @@ from ..verdict import Level, Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
 from .given import add_configuration
 from .inputs import NETLISTS, add_inputs, all_netlists
+from .progress import with_progress
 from .targets import add_targets
 
 if TYPE_CHECKING:
@@ -27,6 +28,11 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     """Add the command to the command line."""
     parser = commands.add_parser(
         "review",
+        examples=(
+            ("pwmlint review board.edf", "a report in colour; exit status 1 after an error"),
+            ("pwmlint review boards --gate warning --strict", "every netlist in a folder, severely"),
+            ("pwmlint review board.cir --format sarif --output board.sarif", "for a code host"),
+        ),
         help="review netlists",
         description="Reviews netlists. Beside board.edf, board.brief.toml, board.parts.csv and "
         "board.deviations.toml are found by themselves; beside it or above it, up to the repository's root, "
@@ -83,12 +89,12 @@ def _run(options: argparse.Namespace) -> int:
     return PASSED if all(gate.passes(review) for review in reviews) else NOT_PASSED
 
 
-def review_each(settled: Iterable[tuple[str, Settings]]) -> list[tuple[Review, Settings]]:
+def review_each(settled: Sequence[tuple[str, Settings]]) -> list[tuple[Review, Settings]]:
     """Return the reviews of the netlists that can be reviewed; tell of each that cannot."""
     from ..review import review
 
     reviewed: list[tuple[Review, Settings]] = []
-    for netlist, settings in settled:
+    for netlist, settings in with_progress(settled):
         try:
             found = review(
                 netlist,

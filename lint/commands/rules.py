@@ -12,7 +12,14 @@ from .given import add_rules
 
 def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
     """Add the command to the command line."""
-    parser = commands.add_parser("rules", help="list the rules, or tell all about one")
+    parser = commands.add_parser(
+        "rules",
+        examples=(
+            ("pwmlint rules", "every question, by topic"),
+            ("pwmlint rules dead-time.range", "all about one"),
+        ),
+        help="list the rules, or tell all about one",
+    )
     parser.add_argument("id", nargs="?", metavar="ID", help="a rule, such as dead-time.range")
     add_rules(parser)
     parser.set_defaults(command=_run)

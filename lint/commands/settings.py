@@ -27,6 +27,7 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
     """Add the command to the command line."""
     parser = commands.add_parser(
         "settings",
+        examples=(("pwmlint settings board.edf", "what holds for this netlist, and who set it"),),
         help="list what is set for a netlist, and where",
         description="Lists what would hold for a review with the same options, and who set each value.",
     )

@@ -79,11 +79,13 @@ def _summary(reviews: Sequence[Review], gate: Gate, left_out: int) -> str:
     """Return the line that a reader of the log meets last."""
     told = "".join(text for text, _ in counts(one for review in reviews for one in review.verdicts))
     accepted = sum(review.accepted for review in reviews)
+    off = len({one for review in reviews for one in review.switched_off})
     passed = all(gate.passes(review) for review in reviews)
     sentences = [
         f"pwmlint: {told or 'no verdict'}",
         f"{accepted} of them accepted" if accepted else "",
         f"{left_out} not shown above" if left_out else "",
+        f"{off} rule{'s' * (off > 1)} switched off" if off else "",
         f"gate {gate}: {'passed' if passed else 'not passed'}",
     ]
     return "; ".join(filter(None, sentences))

@@ -1,7 +1,8 @@
 """Whether a stream gets colours, and how wide its lines are.
 
-The order is the one that satisfies the published conventions together (no-color.org, force-color.org):
-NO_COLOR, then FORCE_COLOR, then TERM=dumb, then whether the stream is a terminal.
+The order is the one that satisfies the published conventions together (no-color.org, force-color.org, the
+variables CLICOLOR and CLICOLOR_FORCE): NO_COLOR, then FORCE_COLOR and CLICOLOR_FORCE, then TERM=dumb and
+CLICOLOR=0, then whether the stream is a terminal.
 """
 
 from __future__ import annotations
@@ -11,7 +12,8 @@ import sys
 from collections.abc import Mapping
 from typing import TextIO
 
-NARROWEST, WIDEST = 80, 120
+# A width where none is known, and its bounds: a report needs the narrowest, and nobody reads wider lines.
+USUAL, NARROWEST, WIDEST = 80, 50, 120
 
 
 def wanted(stream: TextIO, environment: Mapping[str, str]) -> bool:
@@ -22,19 +24,24 @@ def wanted(stream: TextIO, environment: Mapping[str, str]) -> bool:
 def decision(stream: TextIO, environment: Mapping[str, str]) -> tuple[bool, str]:
     """Tell whether `stream` is to be coloured, and which variable decides; empty where none does.
 
-    FORCE_COLOR speaks of what the run prints: a report kept in a file stays free of escapes.
+    FORCE_COLOR and CLICOLOR_FORCE speak of what the run prints: a report in a file stays free of escapes.
     """
     if environment.get("NO_COLOR"):
         return False, "NO_COLOR"
-    if environment.get("FORCE_COLOR") and stream is sys.stdout:
-        return True, "FORCE_COLOR"
+    if stream is sys.stdout:
+        if environment.get("FORCE_COLOR"):
+            return True, "FORCE_COLOR"
+        if environment.get("CLICOLOR_FORCE", "0") not in ("", "0"):
+            return True, "CLICOLOR_FORCE"
     if environment.get("TERM") == "dumb":
         return False, "TERM"
+    if environment.get("CLICOLOR") == "0":
+        return False, "CLICOLOR"
     return stream.isatty(), ""
 
 
 def width(stream: TextIO, environment: Mapping[str, str]) -> int:
-    """Return the width of a line in cells: that of the terminal within 80 .. 120, 80 elsewhere.
+    """Return the width of a line in cells: that of the terminal within 50 .. 120, 80 elsewhere.
 
     COLUMNS overrules the terminal, as it does for other programs.
     """
@@ -44,7 +51,7 @@ def width(stream: TextIO, environment: Mapping[str, str]) -> int:
     elif stream.isatty():
         found = os.get_terminal_size(stream.fileno()).columns
     else:
-        found = NARROWEST
+        found = USUAL
     return max(NARROWEST, min(WIDEST, found))
 
 

@@ -54,7 +54,9 @@ def _properties(review: Review, gate: Gate) -> ElementTree.Element:
         "brief": review.brief,
         "parts list": review.parts_list,
         "deviations": review.deviations,
-        "gate": str(gate),
+        "configuration": review.configuration,
+        "switched off": ", ".join(f"{one.rule} by {one.where}" for one in review.switched_off),
+        "gate": str(gate.of(review)),
         "answer": "passed" if gate.passes(review) else "not passed",
     }
     properties = ElementTree.Element("properties")

@@ -47,6 +47,8 @@ def _review(review: Review, gate: Gate) -> Iterator[str]:
     yield from _folded("Findings with their figures", [_finding(one) for one in asked])
     yield from _folded("Could not be checked", [_open(one) for one in unanswered(review)])
     yield from _folded("Accepted", [_accepted(*pair) for pair in accepted(review)])
+    off = [[f"- {code(one.rule)} by {code(one.where)}"] for one in review.switched_off]
+    yield from _folded("Switched off", off)
     yield from _folded("Cautions", [[f"- {inline(caution)}"] for caution in review.cautions])
 
 
@@ -55,7 +57,7 @@ def _answer(review: Review, gate: Gate) -> str:
     left = "".join(text for text, _ in counts(one for one in review.verdicts if one.deviation is None))
     told = [left or "no verdict", f"{review.accepted} accepted" if review.accepted else ""]
     answer = "passed" if gate.passes(review) else "not passed"
-    return f"**Gate {gate}: {answer}**; {', '.join(filter(None, told))}"
+    return f"**Gate {gate.of(review)}: {answer}**; {', '.join(filter(None, told))}"
 
 
 def _table(asked: Sequence[Verdict], review: Review) -> Iterator[str]:

@@ -21,6 +21,9 @@ from .glyphs import ASCII, Glyphs, spelt_out
 # Stands for a space at which no line may break. `printable` never leaves one in a text from a file.
 _GLUE = "\u00a0"
 
+# Longer, a text from a file floods the terminal; the reports for programs have all of it.
+_LONGEST_TEXT = 4_000
+
 # A number stays on the line of its unit, and a range on one line.
 _UNIT = re.compile(r"(?<=\d) (?=(?:[pnuµmkMG]?(?:V|A|ohm|Ω|F|H|s|Hz|W|J)|%|°C|degC|deg|K|ppm/K)(?!\w))")
 _RANGE = re.compile(r" (?=\.\. )|(?<= \.\.) ")
@@ -39,7 +42,9 @@ class Page:
         self.width = console.width
 
     def say(self, text: str) -> str:
-        """Return a text from outside as it may be printed."""
+        """Return a text from outside as it may be printed, at a length that may be read."""
+        if len(text) > _LONGEST_TEXT:
+            text = f"{text[:_LONGEST_TEXT]} ... and {len(text) - _LONGEST_TEXT:,} characters more"
         text = printable(text)
         return spelt_out(text) if self.glyphs is ASCII else text
 

@@ -56,7 +56,10 @@ def answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None:
     taken = sum(cell_len(text) for text, _ in (*told, *said))
     page.line((page.glyphs.strong * page.width, "dim"))
     if taken + 2 > page.width:
-        page.line(*told)
+        if sum(cell_len(text) for text, _ in told) > page.width:
+            page.paragraph("".join(text for text, _ in told), 0)
+        else:
+            page.line(*told)
         page.line(*said)
     else:
         page.line(*told, (" " * (page.width - taken), ""), *said)

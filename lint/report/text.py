@@ -84,17 +84,23 @@ def _title(page: Page, review: Review) -> None:
 def _legend(page: Page) -> None:
     """Say once how a bar is read."""
     glyphs = page.glyphs
-    page.line(
+    limits: list[Piece] = [
         ("bars".ljust(_LABEL), "dim"),
         (f"{glyphs.low}{glyphs.inside * 2}{glyphs.high}", ""),
         (" limits   ", "dim"),
         (glyphs.spread * 2, "green"),
         (" minimum to maximum   ", "dim"),
+    ]
+    rest: list[Piece] = [
         (glyphs.nominal, "green"),
         (" nominal   ", "dim"),
         ("%", ""),
         (" margin", "dim"),
-    )
+    ]
+    if sum(cell_len(text) for text, _ in (*limits, *rest)) > page.width:
+        page.line(*limits)
+        limits = [(" " * _LABEL, "")]
+    page.line(*limits, *rest)
 
 
 def _sections(review: Review) -> Iterator[tuple[ControllerReview | None, list[Verdict]]]:
@@ -219,7 +225,7 @@ def _switched_off(page: Page, review: Review) -> None:
     """Print which rules were not asked, and where that is written."""
     lines: dict[str, list[str]] = {}
     for off in review.switched_off:
-        lines.setdefault(f"{off.place.file}:{off.place.line}", []).append(off.rule)
+        lines.setdefault(off.where, []).append(off.rule)
     for where, rules in lines.items():
         page.paragraph(f"{len(rules)} switched off by {where}: {', '.join(rules)}", 2, style="bold")
     if lines:

@@ -95,7 +95,7 @@ class TestReading:
     def test_an_entry_without_a_reason_does_not_count(
         self, write: Write, line: str, message: str, where: tuple[int, int]
     ) -> None:
-        lines = ENTRY.splitlines()
+        lines: list[str] = [*ENTRY.splitlines()]
         lines[3] = line
         found = read_deviations(write("\n".join(lines)))
         assert not found.entries

@@ -71,6 +71,20 @@ def test_nothing_to_review_is_an_error(argument: str, message: str) -> None:
     assert ".spi or .spice" in caught.value.remedy
 
 
+def test_a_netlist_that_leads_out_is_refused(orchard: Path, tmp_path_factory: pytest.TempPathFactory) -> None:
+    secret = tmp_path_factory.mktemp("elsewhere") / "secret.cir"
+    secret.write_text("R1 a b", encoding="utf-8")
+    (orchard / "press" / "deep" / "z.cir").symlink_to(secret)
+    with pytest.raises(NetlistError, match="leads out of"):
+        netlists("press")
+    (orchard / "press" / "deep" / "z.cir").unlink()
+    (orchard / "press" / "deep" / "z.cir").symlink_to(orchard / "fan.cir")
+    with pytest.raises(NetlistError, match="leads out of"):
+        netlists("press")
+    (orchard / ".git").mkdir()
+    assert len(netlists(".")) == 7, "inside a repository links are its own business"
+
+
 def test_a_folder_that_cannot_be_looked_into_is_not_passed_over(monkeypatch: pytest.MonkeyPatch) -> None:
     look = os.scandir
 

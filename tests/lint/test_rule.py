@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
+import sys
 from collections.abc import Iterable
 from importlib.metadata import EntryPoint
 from types import ModuleType
 
 import pytest
-from pwmlint.lint import rule as rule_module
 from pwmlint.lint.circuit.controllers import Controller
 from pwmlint.lint.design import Design
-from pwmlint.lint.rule import SECTIONS, Rule, load_rules, netlist_rule, rule, rules_in
+from pwmlint.lint.rule import ENTRY_POINT_GROUP, SECTIONS, Rule, load_rules, netlist_rule, rule, rules_in
 from pwmlint.lint.verdict import Level, Outcome, Verdict
 
 
@@ -115,7 +115,8 @@ def _install(monkeypatch: pytest.MonkeyPatch, **modules: ModuleType) -> None:
             return modules[self.name]
 
     def points(group: str) -> list[EntryPoint] | list[Point]:
-        assert group == rule_module.ENTRY_POINT_GROUP
+        assert group == ENTRY_POINT_GROUP
         return [Point(name) for name in modules]
 
-    monkeypatch.setattr(rule_module, "entry_points", points)
+    # The package offers a function by the name of its module, so the module is reached by its full name.
+    monkeypatch.setattr(sys.modules["pwmlint.lint.rule"], "entry_points", points)

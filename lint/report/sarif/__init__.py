@@ -11,10 +11,11 @@ from collections.abc import Iterable, Sequence
 from importlib.metadata import version
 from typing import Any, TextIO
 
+from ....grammar.errors import printable
 from ...rule import Rule, load_rules
-from ...verdict import Review
+from ...verdict import Review, SwitchedOff
 from .. import Gate
-from .places import BASE, artifact
+from .places import BASE, artifact, physical
 from .results import Tables, results
 from .rules import descriptor
 from .sources import NAME, indexes, taxonomy
@@ -58,10 +59,23 @@ def serialised(data: dict[str, Any]) -> str:
 def _invocation(reviews: Iterable[Review], gate: Gate) -> dict[str, Any]:
     """Return how the run ended: it was a success whatever it found, and the gate gives the exit status."""
     passed = all(gate.passes(review) for review in reviews)
-    return {
+    told: dict[str, Any] = {
         "executionSuccessful": True,
         "exitCode": 0 if passed else 1,
         "exitCodeDescription": f"gate {gate}: {'passed' if passed else 'not passed'}",
+    }
+    if off := [_not_asked(one, review) for review in reviews for one in review.switched_off]:
+        told["toolConfigurationNotifications"] = off
+    return told
+
+
+def _not_asked(off: SwitchedOff, review: Review) -> dict[str, Any]:
+    """Return the notification that a rule was not asked of a netlist."""
+    return {
+        "level": "note",
+        "message": {"text": printable(f"{off.rule} is switched off for {review.netlist}")},
+        "associatedRule": {"id": printable(off.rule)},
+        "locations": [{"physicalLocation": physical(off.place)}],
     }
 
 
@@ -71,7 +85,8 @@ def _artifacts(reviews: Iterable[Review]) -> list[dict[str, Any]]:
     told: dict[str, None] = {}
     for review in reviews:
         netlists[review.netlist] = None
-        told.update(dict.fromkeys(filter(None, (review.brief, review.parts_list, review.deviations))))
+        files = (review.brief, review.parts_list, review.deviations, review.configuration)
+        told.update(dict.fromkeys(filter(None, files)))
     roles = [(file, "analysisTarget") for file in netlists]
     roles += [(file, "userSpecifiedConfiguration") for file in told if file not in netlists]
     return [{"location": artifact(file), "roles": [role]} for file, role in roles]

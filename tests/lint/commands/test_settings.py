@@ -303,3 +303,31 @@ class TestRules:
         status, out, err = run(capsys, "rules", "--rules", "house")
         assert (status, out) == (2, "")
         assert err.startswith("house/label.py:1:11: not Python: ")
+
+
+class TestDeviations:
+    DEVIATION = '[[deviation]]\nrule = "label.present"\nreason = "it is painted on"\nowner = "mast team"\n'
+
+    def test_the_file_names_them(self, capsys: pytest.CaptureFixture[str]) -> None:
+        Path("accepted.toml").write_text(self.DEVIATION + 'subject = "*"\n')
+        configure('gate = "warning"\ndeviations = "accepted.toml"\n')
+        arguments = ["review", "beacon.cir", "--rules", "house", "--format", "json"]
+        (found,) = json.loads(run(capsys, *arguments)[1])["reviews"]
+        assert (found["deviations"], found["accepted"]) == ("accepted.toml", 1)
+
+    def test_a_permit_is_for_what_a_review_would_find(self, capsys: pytest.CaptureFixture[str]) -> None:
+        assert 'rule = "label.present"' in run(capsys, "permit", "beacon.cir", "--rules", "house")[1]
+        configure('[topics]\nlabels = "off"\n')
+        assert "label.present" not in run(capsys, "permit", "beacon.cir", "--rules", "house")[1]
+        configure("strict = 1\n")
+        assert run(capsys, "permit", "beacon.cir")[:2] == (2, "")
+
+    def test_a_house_rule_about_them_that_crashes(self, capsys: pytest.CaptureFixture[str]) -> None:
+        Path("beacon.deviations.toml").write_text(self.DEVIATION)
+        head = "from pwmlint.lint.rule import deviation_rule\n"
+        Path("house/owner.py").write_text(
+            f'{head}@deviation_rule("house.owner", level="note")\ndef owner(applied):\n    yield 1 / 0\n'
+        )
+        status, out, err = run(capsys, "review", "beacon.cir", "--rules", "house")
+        assert (status, out) == (2, "")
+        assert err.startswith("house/owner.py:4:1: the house rule house.owner crashed on beacon.cir: ")

@@ -20,7 +20,17 @@ from pwmlint.lint.quantity import Spread
 from pwmlint.lint.report import Gate, writer
 from pwmlint.lint.report.glyphs import BOX, Glyphs
 from pwmlint.lint.report.text import render
-from pwmlint.lint.verdict import ControllerReview, Deviation, Level, Limit, Outcome, PinRow, Review, Verdict
+from pwmlint.lint.verdict import (
+    ControllerReview,
+    Deviation,
+    Level,
+    Limit,
+    Outcome,
+    PinRow,
+    Review,
+    SwitchedOff,
+    Verdict,
+)
 from rich.console import Console
 from xmlschema import XMLSchema
 
@@ -190,6 +200,8 @@ def hostile() -> Review:
             replace(_said(Outcome.NOT_APPLICABLE, bad, bad)),
         ),
         cautions=(bad,),
+        configuration=bad,
+        switched_off=(SwitchedOff(bad, place),),
     )
 
 

@@ -35,6 +35,13 @@ def pseudo_terminal() -> Iterator[TextIO]:
         ({"FORCE_COLOR": ""}, True, False),
         ({"FORCE_COLOR": "1", "TERM": "dumb"}, True, True),
         ({"FORCE_COLOR": "1", "NO_COLOR": "1"}, False, False),
+        ({"CLICOLOR_FORCE": "1"}, True, True),
+        ({"CLICOLOR_FORCE": "0"}, True, False),
+        ({"CLICOLOR_FORCE": ""}, True, False),
+        ({"CLICOLOR_FORCE": "1", "NO_COLOR": "1"}, False, False),
+        ({"CLICOLOR_FORCE": "1", "CLICOLOR": "0", "TERM": "dumb"}, True, True),
+        ({"CLICOLOR": "0"}, False, False),
+        ({"CLICOLOR": "1"}, True, False),
     ],
 )
 def test_the_published_order_of_the_variables(
@@ -51,13 +58,22 @@ def test_a_file_is_never_coloured() -> None:
 
 @pytest.mark.parametrize(
     ("columns", "width"),
-    [("", 80), ("40", 80), ("100", 100), ("240", 120), ("9" * 5000, 80), ("-3", 80), ("wide", 80)],
+    [
+        ("", 80),
+        ("40", 50),
+        ("64", 64),
+        ("100", 100),
+        ("240", 120),
+        ("9" * 5000, 80),
+        ("-3", 80),
+        ("wide", 80),
+    ],
 )
 def test_width_without_a_terminal(columns: str, width: int) -> None:
     assert colour.width(StringIO(), {"COLUMNS": columns}) == width
 
 
-@pytest.mark.parametrize(("size", "width"), [(30, 80), (99, 99), (200, 120)])
+@pytest.mark.parametrize(("size", "width"), [(30, 50), (66, 66), (99, 99), (200, 120)])
 def test_width_of_a_terminal(pseudo_terminal: TextIO, size: int, width: int) -> None:
     import fcntl
     import struct

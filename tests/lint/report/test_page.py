@@ -55,3 +55,9 @@ def test_a_row_wraps_every_cell_in_its_column() -> None:
     page = Page(Console(file=sheet, width=80), BOX)
     page.row([("7", ""), ("ground", ""), ("a long state", "")], [3, 6, 6], indent=2)
     assert sheet.getvalue() == "    7  ground  a long\n               state\n"
+
+
+def test_a_text_that_floods_the_terminal_is_cut_and_the_rest_counted() -> None:
+    page = Page(Console(file=StringIO(), width=80), BOX)
+    assert page.say("a" * 4_000) == "a" * 4_000
+    assert page.say("a" * 1_004_000) == f"{'a' * 4_000} ... and 1,000,000 characters more"

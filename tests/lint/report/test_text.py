@@ -53,7 +53,7 @@ def test_what_is_accepted_stands_apart_with_who_answers_for_it(accepted: Review,
 def test_no_line_is_wider_than_the_page_or_ends_in_blanks(
     faulty: Review, sound: Review, printed: Printed
 ) -> None:
-    for width in (80, 93, 120):
+    for width in (50, 60, 80, 93, 120):
         for line in printed(faulty, sound, width=width).splitlines():
             assert len(line) <= width
             assert line == line.rstrip()

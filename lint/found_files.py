@@ -1,0 +1,34 @@
+"""Files that are found, not named: what a message quotes of them must not be a stranger's choice.
+
+A netlist may come with a change that nobody has read, and a link beside it may lead to any file there is.
+A file that the user names is read wherever it lies.
+"""
+
+from __future__ import annotations
+
+import os
+from pathlib import Path
+
+from ..grammar.errors import NetlistError
+from ..grammar.netlist import Place
+
+_REPOSITORY = ".git"
+
+
+def root_of(folder: Path) -> Path:
+    """Return the root of the repository that a folder, resolved, lies in; the folder itself where in none."""
+    above = (folder, *folder.parents)
+    return next((one for one in above if os.path.lexists(one / _REPOSITORY)), folder)
+
+
+def refuse_link_out(
+    found: Path,
+    root: Path,
+    *,
+    remedy: str,
+    shown: Path | None = None,
+    error: type[NetlistError] = NetlistError,
+) -> None:
+    """Raise `error` for a file that a link leads out of `root` to; `shown` is the path to tell of."""
+    if not found.resolve().is_relative_to(root):
+        raise error(f"this link leads out of {root}", Place(str(shown or found), 0, 0), remedy=remedy)
