@@ -27,6 +27,9 @@ _ROUNDING = 1e-13
 _MOST_GROWTH = 1e10
 _LEAST_REST = 1e-5
 
+# A thousand samples of all changes are kept for a look at them: a few megabytes.
+_MOST_CHANGES = 300
+
 
 class _Below(NamedTuple):
     """An equation that loses the pivot's unknown, whose coefficient there is at `factor`.
@@ -61,7 +64,8 @@ class Elimination:
     first:    how many of both come before the others
     tail:     the step from which on the determinant's sign is told
 
-    Raises ValueError where the places leave no pivot for an unknown.
+    Raises ValueError where the places leave no pivot for an unknown, and where the equations fill up so much
+    that full matrices are less work.
     """
 
     def __init__(
@@ -108,8 +112,8 @@ class Elimination:
         """Tell in which samples the equations are fulfilled, without vast terms that cancel out."""
         terms = entries * answers.take(self._columns, axis=0)
         sizes, amiss = self._row_sums @ np.abs(terms), self._row_sums @ terms - right
-        most = _MOST_GROWTH * np.abs(right).max(axis=0, initial=0.0)
-        return (np.abs(amiss) <= _ROUNDING * sizes).all(axis=0) & (sizes.max(axis=0, initial=0.0) <= most)
+        vast = sizes.sum(axis=0) > _MOST_GROWTH * np.abs(right).sum(axis=0)
+        return (np.abs(amiss) <= _ROUNDING * sizes).all(axis=0) & ~vast
 
     def _run(self, cells: list[Array], right: list[Array]) -> tuple[list[Array], list[Array]]:
         """Eliminate, and leave each unknown on the right, in the place of the equation that tells it.
@@ -151,6 +155,7 @@ class _Plan:
         self.steps: list[_Step] = []
         self.slots = len(places)
         self._fixed = set(fixed)
+        self._changes = 0
         self._rows: list[dict[int, int]] = [{} for _ in range(unknowns)]
         self._columns: list[set[int]] = [set() for _ in range(unknowns)]
         for slot, (row, column) in enumerate(places):
@@ -197,6 +202,9 @@ class _Plan:
                 self._columns[unknown].add(other)
             self._fixed.discard(terms[unknown])
             pairs.append((terms[unknown], due_to))
+        self._changes += len(pairs)
+        if self._changes > _MOST_CHANGES:
+            raise ValueError("the equations fill up")
         return pairs
 
 

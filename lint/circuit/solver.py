@@ -21,9 +21,9 @@ from .network import ControlledSource, CurrentSource, Element, Form, Network, Re
 # More full matrices are solved piece by piece: as many coefficients as a processor's fast memory holds.
 _MOST_AT_ONCE = 60_000
 
-# What is ready of the forms met before, by form; more than any review has of them.
+# What is ready of the forms met before, by form; a review has some thirty of them.
 _PREPARED: dict[Form, tuple[Equations, Elimination | None]] = {}
-_MOST_PREPARED = 500
+_MOST_PREPARED = 100
 
 
 @dataclass(slots=True)
@@ -179,5 +179,5 @@ def _prepare(network: Network) -> tuple[Equations, Elimination | None]:
     tail = 0 if equations.active else first
     try:
         return equations, Elimination(equations.places, equations.fixed, equations.unknowns, first, tail)
-    except ValueError:  # singular whatever the values are
+    except ValueError:  # singular whatever the values are, or too much of a mesh
         return equations, None

@@ -242,9 +242,9 @@ class _OuterLoops:
     def __init__(self, samples: Samples) -> None:
         self.samples = samples
         self.centres = samples.outer_corners()
-        self.rows = samples.star_about(
-            self.centres if samples.outer else self.centres[:0], samples.tolerances
-        )
+        self.rows = self.centres[:0]
+        if samples.outer:
+            self.rows = samples.star_about(self.centres, samples.tolerances)
         self._tolerances = [samples.parameters[index] for index in samples.tolerances]
 
     def table(self, about_nominal: Array, values: Array) -> Array:

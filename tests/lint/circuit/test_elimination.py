@@ -104,3 +104,11 @@ class TestPlan:
         # Unknown 0 stands in equation 1 alone, which must wait.
         with pytest.raises(ValueError, match="no equation is left for unknown 0"):
             Elimination([(1, 0), (0, 1)], (), 2, 1, 0)
+
+    def test_equations_that_fill_up_are_left_to_full_matrices(self):
+        # A chain of thirty is little work, thirty that all hang together are a third of 30 cubed changes.
+        chain = [(i, j) for i in range(30) for j in range(30) if abs(i - j) <= 1]
+        Elimination(chain, (), 30, 30, 0)
+        mesh = [(i, j) for i in range(30) for j in range(30)]
+        with pytest.raises(ValueError, match="the equations fill up"):
+            Elimination(mesh, (), 30, 30, 0)
