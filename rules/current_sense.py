@@ -141,7 +141,8 @@ def sense_voltage(controller: Controller, design: Design) -> Iterable[Verdict]:
     offset = controller.profile.figure("amplifier.offset").maximum or 0.0
     threshold = found.threshold.spread
     least = offset / (practice.maximum or 1.0)
-    share = percent(offset / threshold.nominal) if threshold.nominal > 0 else "more than all"
+    some = threshold.nominal > 0 and threshold.nominal >= offset
+    share = percent(offset / threshold.nominal) if some else "more than all"
     message = (
         f"offset of {engineering(offset, 'V')} is {share} of the threshold "
         f"{engineering(threshold.nominal, 'V')}{_drop(controller, design)}"

@@ -51,7 +51,8 @@ def bleeder(circuit: Circuit, first: Sequence[str], second: Sequence[str]) -> Bl
     solution = solve(network, {}, 3)
     across = {r.name: abs(float(solution.voltage(r.a, r.b)[1])) for r in resistors if r.a != r.b}
     shares = {name: share for name, share in across.items() if share > _NOTHING}
-    least, nominal, most = (float(ohms) for ohms in 1.0 / solution.current_out_of(_FIRST))
+    with np.errstate(divide="ignore"):  # no current at all: no path either
+        least, nominal, most = (float(ohms) for ohms in 1.0 / solution.current_out_of(_FIRST))
     if not 0 < least <= nominal <= most <= _INSULATION:
         return None  # what is left of a current below rounding tells of no path
     return Bleeder(Spread(least, nominal, most, "ohm"), shares)

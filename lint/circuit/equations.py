@@ -1,4 +1,4 @@
-"""The equations of a network, written down once and filled in for as many samples as are asked.
+"""The equations of a network: their form, written down once, and filled in for as many samples as are asked.
 
 Published method: C.-W. Ho, A. Ruehli, P. Brennan, "The modified nodal approach to network analysis",
 IEEE Transactions on Circuits and Systems, CAS-22, no. 6, June 1975, pp. 504-509.
@@ -15,12 +15,14 @@ linear solve for any network, not for a recognised shape of two resistors.
 
 from __future__ import annotations
 
-from collections.abc import Container, Sequence
+from collections import defaultdict
+from collections.abc import Container
+from itertools import count
+from typing import TypeAlias
 
 import numpy as np
-from numpy.typing import NDArray
 
-from .linear import Array
+from .linear import Array, Place, grouping
 from .network import (
     ControlledSource,
     CurrentSource,
@@ -30,17 +32,21 @@ from .network import (
     Network,
     Resistor,
     Sample,
-    Value,
     VoltageSource,
 )
 
+# What sums up in one place: the numbers of coefficients, and their signs.
+Terms: TypeAlias = list[tuple[int, float]]
+
 
 class Equations:
-    """The equations of one network.
+    """The equations of all networks of one form, which differ in their values alone.
 
     unknowns:   how many there are; `free_from` is the first that is a free quantity
     potentials: net to the column of its potential
     currents:   element or free current to the column of its current, where that is an unknown
+    places:     row and column of each coefficient that may differ from zero
+    fixed:      the numbers of those that are 1 or -1 in every sample
     active:     a controlled source may feed back on itself
     settled:    for each unknown, whether a solution must settle it: only how a current divides between
                 shorts in parallel may stay open
@@ -64,80 +70,96 @@ class Equations:
                 self.potentials[free.net] = column
             else:
                 self.currents[free.name] = column
-        self._values: list[Value] = [lambda _: np.ones(1)]
-        self._drives: list[Value] = []
-        self._terms: dict[tuple[int, int], list[tuple[int, float]]] = {}
-        for net, value in known.items():
-            self.potentials[net] = self._drive(value)
-        for element in network.elements:
+        # By their numbers in `Network.values`: which are coefficients (by the inverse), which are drives.
+        self._coefficients: list[int] = []
+        self._inverted: list[int] = []
+        self._drives: list[int] = []
+        self._terms: defaultdict[Place, Terms] = defaultdict(list)
+        for number, net in enumerate(network.known):
+            if net in known:
+                self.potentials[net] = self._drive(number)
+        for number, element in enumerate(network.elements, len(network.known)):
             if not _settles_nothing(element, known):
-                self._add(element)
+                self._add(element, number)
         for free in network.free:
             if isinstance(free, FreeCurrent):
                 self._flow(free.a, free.b, self.currents[free.name])
-        for row, condition in enumerate(network.conditions, self.free_from):
+        numbers = count(len(network.known) + len(network.elements))
+        for row, condition, number in zip(count(self.free_from), network.conditions, numbers, strict=False):
             self._difference(row, condition.a, condition.b)
-            self._term(row, self._drive(condition.difference), -1.0)
-        self._cells, self._pattern = self._laid_out()
+            self._term(row, self._drive(number), -1.0)
+        self._lay_out()
 
-    def values(self, sample: Sample, size: int) -> Array:
-        """Return the coefficients in each sample, shape (coefficients, size)."""
-        return _read(self._values, sample, size)
+    def _lay_out(self) -> None:
+        """Number the places, those that the drives stand at last, and say what sums up in each."""
+        places = sorted(self._terms, key=lambda place: place[1] >= self.unknowns)
+        self._pattern = np.zeros((len(places), 1 + len(self._coefficients)))
+        for position, place in enumerate(places):
+            for coefficient, sign in self._terms[place]:
+                self._pattern[position, coefficient] += sign
+        self.places = [place for place in places if place[1] < self.unknowns]
+        self.fixed = [i for i, place in enumerate(self.places) if _is_fixed(self._terms[place])]
+        driven = places[len(self.places) :]
+        self._inverse = np.array(self._inverted, dtype=np.intp)
+        self._driven_by = np.array([column - self.unknowns for _, column in driven], dtype=np.intp)
+        # What the drives make is brought over to the right, hence the sign.
+        self._on_the_right = -grouping([row for row, _ in driven], self.unknowns)
 
-    def drives(self, sample: Sample, size: int) -> Array:
-        """Return the drives in each sample, shape (drives, size)."""
-        return _read(self._drives, sample, size)
+    def filled(self, network: Network, sample: Sample, size: int) -> tuple[Array, Array, Array]:
+        """Return the coefficients at `places`, the right side, and the drives that it is made of.
 
-    def filled(self, values: Array) -> tuple[Array, Array]:
-        """Return what the coefficients `values` make of the equations: matrix * unknowns = right * drives.
-
-        Shapes (unknowns, unknowns, size) and (unknowns, drives, size): the samples are the last axis, so
-        that filling is one run through memory.
+        network: one of this form
+        Shapes (places, size), (unknowns, size), (drives, size): the samples are the last axis, so that each
+        operation on them is one run through memory.
         """
-        columns = self.unknowns + len(self._drives)
-        filled = np.zeros((self.unknowns * columns, values.shape[1]))
-        filled[self._cells] = self._pattern @ values
-        filled = filled.reshape(self.unknowns, columns, values.shape[1])
-        return filled[:, : self.unknowns], -filled[:, self.unknowns :]
+        values = network.values()
+        coefficients = np.ones((1 + len(self._coefficients), size))
+        for row, number in enumerate(self._coefficients, 1):
+            coefficients[row] = values[number](sample)
+        coefficients[self._inverse] = 1.0 / coefficients.take(self._inverse, axis=0)
+        drives = np.empty((len(self._drives), size))
+        for row, number in enumerate(self._drives):
+            drives[row] = values[number](sample)
+        terms = self._pattern @ coefficients
+        entries, driven = terms[: len(self.places)], terms[len(self.places) :]
+        return entries, self._on_the_right @ (driven * drives.take(self._driven_by, axis=0)), drives
 
-    def _laid_out(self) -> tuple[NDArray[np.intp], Array]:
-        """Return the places of all terms, and which coefficients with which sign sum up in each."""
-        columns = self.unknowns + len(self._drives)
-        cells = np.array([row * columns + column for row, column in self._terms], dtype=np.intp)
-        pattern = np.zeros((len(cells), len(self._values)))
-        for position, terms in enumerate(self._terms.values()):
-            for value, sign in terms:
-                pattern[position, value] += sign
-        return cells, pattern
+    def matrix(self, entries: Array) -> Array:
+        """Return the coefficients at `places` as full matrices, shape (unknowns, unknowns, size)."""
+        matrix = np.zeros((self.unknowns, self.unknowns, entries.shape[1]))
+        rows, columns = zip(*self.places, strict=True) if self.places else ((), ())
+        matrix[list(rows), list(columns)] = entries
+        return matrix
 
-    def _add(self, element: Element) -> None:
+    def _add(self, element: Element, number: int) -> None:
         a, b = element.a, element.b
         if element.name in self.currents:
-            self._branch(element, self.currents[element.name])
+            self._branch(element, number, self.currents[element.name])
         elif isinstance(element, CurrentSource):
-            self._flow(a, b, self._drive(element.current))
+            self._flow(a, b, self._drive(number))
         elif isinstance(element, ControlledSource):
-            self._conductance(a, b, element.control_a, element.control_b, element.gain)
+            self._conductance(a, b, element.control_a, element.control_b, self._value(number))
         elif isinstance(element, Resistor):
-            self._conductance(a, b, a, b, _conductance_of(element))
+            siemens = self._value(number)
+            self._inverted.append(siemens)
+            self._conductance(a, b, a, b, siemens)
 
-    def _branch(self, element: Element, column: int) -> None:
+    def _branch(self, element: Element, number: int, column: int) -> None:
         """Let an unknown current flow through the element; the law of the branch has the same number."""
         self._flow(element.a, element.b, column)
         self._difference(column, element.a, element.b)
         if isinstance(element, Resistor):
-            self._term(column, column, -1.0, self._value(element.resistance))
+            self._term(column, column, -1.0, self._value(number))
         elif isinstance(element, VoltageSource):
-            self._term(column, self._drive(element.voltage), -1.0)
+            self._term(column, self._drive(number), -1.0)
         elif isinstance(element, ControlledSource):
-            gain = self._value(element.gain)
+            gain = self._value(number)
             self._difference(column, element.control_b, element.control_a, gain)
 
-    def _conductance(self, a: str, b: str, control_a: str, control_b: str, siemens: Value) -> None:
+    def _conductance(self, a: str, b: str, control_a: str, control_b: str, siemens: int) -> None:
         """Let the voltage between two nets drive a current out of `a` into `b`."""
-        value = self._value(siemens)
-        self._flow(a, b, self.potentials[control_a], value)
-        self._flow(b, a, self.potentials[control_b], value)
+        self._flow(a, b, self.potentials[control_a], siemens)
+        self._flow(b, a, self.potentials[control_b], siemens)
 
     def _flow(self, a: str, b: str, column: int, value: int = 0) -> None:
         """Let `value` times what `column` stands for flow out of net `a` into net `b`."""
@@ -153,14 +175,14 @@ class Equations:
 
     def _term(self, row: int, column: int, sign: float, value: int = 0) -> None:
         """Add a term to an equation; the coefficient 0 is the number one."""
-        self._terms.setdefault((row, column), []).append((value, sign))
+        self._terms[row, column].append((value, sign))
 
-    def _value(self, value: Value) -> int:
-        self._values.append(value)
-        return len(self._values) - 1
+    def _value(self, number: int) -> int:
+        self._coefficients.append(number)
+        return len(self._coefficients)
 
-    def _drive(self, value: Value) -> int:
-        self._drives.append(value)
+    def _drive(self, number: int) -> int:
+        self._drives.append(number)
         return self.unknowns + len(self._drives) - 1
 
 
@@ -179,15 +201,6 @@ def _settles_nothing(element: Element, known: Container[str]) -> bool:
     return isinstance(element, Resistor) and (element.a == element.b or ends_known)
 
 
-def _conductance_of(resistor: Resistor) -> Value:
-    def conductance(sample: Sample) -> Array:
-        return 1.0 / resistor.resistance(sample)
-
-    return conductance
-
-
-def _read(values: Sequence[Value], sample: Sample, size: int) -> Array:
-    read = np.empty((len(values), size))
-    for row, value in zip(read, values, strict=True):
-        row[:] = value(sample)
-    return read
+def _is_fixed(terms: Terms) -> bool:
+    """Tell whether a coefficient is 1 or -1 in every sample."""
+    return len(terms) == 1 and terms[0][0] == 0

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import TypeAlias
 
 import numpy as np
@@ -9,6 +10,9 @@ from numpy.typing import NDArray
 
 Array: TypeAlias = NDArray[np.float64]
 Flags: TypeAlias = NDArray[np.bool_]
+
+# Row and column of a coefficient.
+Place: TypeAlias = tuple[int, int]
 
 # From this growth of a right-hand side on a matrix counts as singular: hardly four digits would be left.
 _MOST_GROWTH = 1e12
@@ -52,10 +56,10 @@ class Stack:
         doubtful = ~(growth <= _MOST_GROWTH**2)
         return np.moveaxis(answers[:, :, :-1], 0, -1) / self._columns[:, None], doubtful
 
-    def solve_singular(self, systems: NDArray[np.intp], questions: Array, settled: Flags) -> Array:
+    def solve_singular(self, systems: Flags, questions: Array, settled: Flags) -> Array:
         """Return the answers of systems that may be singular, by singular value decomposition.
 
-        systems: which one each of the last axis of `questions` asks
+        systems: which ones are asked; the last axis of `questions` has as many
         settled: shape (unknowns,): False for an unknown that a solution may leave open
         Shorts in parallel, or equal sources, leave open how a current divides between them: then the
         division of least squares is taken, equal shares. NaN where the equations contradict each other
@@ -78,6 +82,13 @@ class Stack:
         answers[stays_open] = np.nan
         np.moveaxis(answers, 1, 2)[contradicts] = np.nan
         return np.moveaxis(answers, 0, -1) / self._columns[:, None, systems]
+
+
+def grouping(groups: Sequence[int], count: int) -> Array:
+    """Return the matrix that sums up what is of one group, a row for each group."""
+    matrix = np.zeros((count, len(groups)))
+    matrix[groups, np.arange(len(groups))] = 1.0
+    return matrix
 
 
 def orientation(matrix: Array) -> Array:

@@ -22,6 +22,7 @@ DEFAULT_SEED = 1
 CONFIDENCE = 0.95
 
 
+@np.errstate(over="ignore", invalid="ignore")  # as in `analyse`
 def monte_carlo(
     parameters: Sequence[Parameter],
     evaluate: Evaluate,

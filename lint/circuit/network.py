@@ -17,6 +17,9 @@ from .linear import Array
 Sample: TypeAlias = Mapping[str, Array]
 Value: TypeAlias = Callable[[Sample], Array]
 
+# What the form of the equations depends on, to be compared and looked up.
+Form: TypeAlias = tuple[object, ...]
+
 
 @dataclass(frozen=True, slots=True)
 class Resistor:
@@ -28,6 +31,16 @@ class Resistor:
     resistance: Value
     may_be_zero: bool = False
 
+    @property
+    def value(self) -> Value:
+        """Return what it is worth."""
+        return self.resistance
+
+    @property
+    def form(self) -> Form:
+        """Return all but what it is worth."""
+        return Resistor, self.name, self.a, self.b, self.may_be_zero
+
 
 @dataclass(frozen=True, slots=True)
 class VoltageSource:
@@ -38,6 +51,16 @@ class VoltageSource:
     b: str
     voltage: Value
 
+    @property
+    def value(self) -> Value:
+        """Return what it is worth."""
+        return self.voltage
+
+    @property
+    def form(self) -> Form:
+        """Return all but what it is worth."""
+        return VoltageSource, self.name, self.a, self.b
+
 
 @dataclass(frozen=True, slots=True)
 class CurrentSource:
@@ -47,6 +70,16 @@ class CurrentSource:
     a: str
     b: str
     current: Value
+
+    @property
+    def value(self) -> Value:
+        """Return what it is worth."""
+        return self.current
+
+    @property
+    def form(self) -> Form:
+        """Return all but what it is worth."""
+        return CurrentSource, self.name, self.a, self.b
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,6 +97,16 @@ class ControlledSource:
     control_b: str
     gain: Value
     kind: str
+
+    @property
+    def value(self) -> Value:
+        """Return what it is worth."""
+        return self.gain
+
+    @property
+    def form(self) -> Form:
+        """Return all but what it is worth."""
+        return ControlledSource, self.name, self.a, self.b, self.control_a, self.control_b, self.kind
 
 
 Element: TypeAlias = Resistor | VoltageSource | CurrentSource | ControlledSource
@@ -108,6 +151,16 @@ class Network:
     known: Mapping[str, Value]
     free: tuple[Free, ...] = ()
     conditions: tuple[Condition, ...] = ()
+
+    def values(self) -> list[Value]:
+        """Return every value of the network: of known potentials, of elements, of conditions."""
+        elements = [element.value for element in self.elements]
+        return [*self.known.values(), *elements, *(condition.difference for condition in self.conditions)]
+
+    def form(self) -> Form:
+        """Return the network without its values: what stands where, and which potentials are known."""
+        conditions = [(condition.a, condition.b) for condition in self.conditions]
+        return (*self.known, *[element.form for element in self.elements], *self.free, *conditions)
 
     def nets(self) -> list[str]:
         """Return every net of the network, in order of appearance."""

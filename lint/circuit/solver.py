@@ -1,24 +1,29 @@
 """Solves a network by modified nodal analysis, many samples at once.
 
-Most samples of a worst case differ in nothing but what drives the network: a reference, an offset, a supply.
-So each matrix that occurs is solved once, for every drive by itself, and superposition makes the samples of
-these answers.
+All samples go through one elimination, planned for the form of the network. The few that it does not suit
+(shorts in parallel, rails shorted, a loop that nothing settles, values many decades apart) go through a
+general solver.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from .elimination import Elimination
 from .equations import Equations
 from .linear import Array, Stack, orientation
-from .network import ControlledSource, CurrentSource, Element, Network, Resistor, Sample
+from .network import ControlledSource, CurrentSource, Element, Form, Network, Resistor, Sample
 
-# Larger stacks are solved piece by piece: as many coefficients as the fast memory of a processor holds.
+# More full matrices are solved piece by piece: as many coefficients as a processor's fast memory holds.
 _MOST_AT_ONCE = 60_000
+
+# What is ready of the forms met before, by form; a review has some thirty of them.
+_PREPARED: dict[Form, tuple[Equations, Elimination | None]] = {}
+_MOST_PREPARED = 100
 
 
 @dataclass(slots=True)
@@ -85,12 +90,8 @@ class Solver:
     """
 
     def __init__(self, network: Network) -> None:
-        if len(network.free) != len(network.conditions):
-            raise ValueError("a closed loop needs one condition for each free quantity")
-        if floating := network.floating():
-            raise ValueError(f"floating nets: {', '.join(sorted(floating))}")
         self.network = network
-        self._equations = Equations(network)
+        self._equations, self._elimination = _prepared(network)
 
     def solve(self, sample: Sample, size: int) -> Solution:
         """Return the solution for every sample.
@@ -100,12 +101,15 @@ class Solver:
         answer of that sample.
         """
         equations = self._equations
-        values, drives = equations.values(sample, size), equations.drives(sample, size)
-        step = max(1, _MOST_AT_ONCE // max(1, equations.unknowns * (equations.unknowns + len(drives))))
-        pieces = [
-            self._solved(values[:, i : i + step], drives[:, i : i + step]) for i in range(0, size, step)
-        ]
-        answers, directions = (np.concatenate(arrays, axis=-1) for arrays in zip(*pieces, strict=True))
+        entries, right, drives = equations.filled(self.network, sample, size)
+        if self._elimination is None:
+            answers, directions = np.empty_like(right), np.empty(size)
+            sound = np.zeros(size, dtype=np.bool_)
+        else:
+            answers, directions, sound = self._elimination.solve(entries, right)
+        if not sound.all():
+            for piece in self._pieces(np.flatnonzero(~sound)):
+                answers[:, piece], directions[piece] = self._carefully(entries[:, piece], right[:, piece])
         columns = [*answers, *drives]
         return Solution(
             self.network,
@@ -116,8 +120,13 @@ class Solver:
             {name: columns[column] for name, column in equations.currents.items()},
         )
 
-    def _solved(self, values: Array, drives: Array) -> tuple[Array, Array]:
-        """Return the unknowns and the direction, in each sample.
+    def _pieces(self, samples: NDArray[np.intp]) -> Iterator[NDArray[np.intp]]:
+        step = max(1, _MOST_AT_ONCE // max(1, self._equations.unknowns**2))
+        for start in range(0, len(samples), step):
+            yield samples[start : start + step]
+
+    def _carefully(self, entries: Array, right: Array) -> tuple[Array, Array]:
+        """Return the unknowns and the direction, in each sample, whatever the matrices are like.
 
         The determinant of all equations is linear in every single resistance or gain. So where it has one
         sign in all corners, it vanishes nowhere between them, and no answer runs away there. That of the
@@ -125,24 +134,19 @@ class Solver:
         of resistances; and it can be told where shorts in parallel leave the whole one at zero.
         """
         equations = self._equations
-        systems, system = _distinct(values)
-        matrix, right = equations.filled(values[:, systems])
-        if len(systems) == len(system):  # no two alike: superposition would only ask more
-            right, drives = _summed(right, drives), np.ones_like(drives[:1])
+        matrix = equations.matrix(entries)
         stack = Stack(matrix)
         # Besides: by how much does everything move with the difference that each condition asks for?
         nudges = np.eye(equations.unknowns)[:, equations.free_from :, None]
-        answers, doubtful = stack.solve(_beside(right, nudges))
-        each, moves = answers[:, : len(drives)], answers[equations.free_from :, len(drives) :]
-        unknowns = _summed(each.take(system, axis=2), drives)[:, 0]
+        nudges = np.broadcast_to(nudges, (*nudges.shape[:2], right.shape[1]))
+        questions = np.concatenate([right[:, None], nudges], axis=1)
+        answers, doubtful = stack.solve(questions)
         if doubtful.any():
-            samples = np.flatnonzero(doubtful[system])
-            asked = _beside(_summed(right.take(system[samples], axis=2), drives[:, samples]), nudges)
-            found = stack.solve_singular(system[samples], asked, equations.settled)
-            unknowns[:, samples] = found[:, 0]
-            moves[:, :, system[samples]] = found[equations.free_from :, 1:]
+            found = stack.solve_singular(doubtful, questions[:, :, doubtful], equations.settled)
+            answers[:, :, doubtful] = found
+        moves = answers[equations.free_from :, 1:]
         turns = np.where(doubtful, 0.0, orientation(matrix)) if equations.active else orientation(moves)
-        return unknowns, turns[system]
+        return answers[:, 0], turns
 
 
 def solve(network: Network, sample: Sample, size: int) -> Solution:
@@ -150,20 +154,30 @@ def solve(network: Network, sample: Sample, size: int) -> Solution:
     return Solver(network).solve(sample, size)
 
 
-def _distinct(values: Array) -> tuple[NDArray[np.intp], NDArray[np.intp]]:
-    """Return one sample of each kind, and of which kind each sample is; all, where hardly two are alike."""
-    rows = np.ascontiguousarray(values.T)
-    as_bytes = rows.view(np.dtype((np.void, rows.itemsize * rows.shape[1])))[:, 0]
-    _, first, kinds = np.unique(as_bytes, return_index=True, return_inverse=True)
-    if 2 * len(first) > len(rows):
-        first = kinds = np.arange(len(rows))
-    return first, kinds
+def _prepared(network: Network) -> tuple[Equations, Elimination | None]:
+    """Return the equations of the network and their elimination, None where that is not to be had.
+
+    More than half of the networks of a review are of a form that was met before: the same corner of the
+    circuit is asked for another quantity, in another regime, or with a trimmer held fast.
+    """
+    form = network.form()
+    if form not in _PREPARED:
+        if len(_PREPARED) >= _MOST_PREPARED:
+            _PREPARED.clear()
+        _PREPARED[form] = _prepare(network)
+    return _PREPARED[form]
 
 
-def _summed(each: Array, drives: Array) -> Array:
-    """Return the sum over the drives, shape (unknowns, 1, samples)."""
-    return np.einsum("ids,ds->is", each, drives)[:, None]
-
-
-def _beside(right: Array, nudges: Array) -> Array:
-    return np.concatenate([right, np.broadcast_to(nudges, (*nudges.shape[:2], right.shape[2]))], axis=1)
+def _prepare(network: Network) -> tuple[Equations, Elimination | None]:
+    if len(network.free) != len(network.conditions):
+        raise ValueError("a closed loop needs one condition for each free quantity")
+    if floating := network.floating():
+        raise ValueError(f"floating nets: {', '.join(sorted(floating))}")
+    equations = Equations(network)
+    # The free quantities come last. What is left for them is the inverse of the moves, of the same sign.
+    first = equations.free_from
+    tail = 0 if equations.active else first
+    try:
+        return equations, Elimination(equations.places, equations.fixed, equations.unknowns, first, tail)
+    except ValueError:  # singular whatever the values are, or too much of a mesh
+        return equations, None

@@ -92,6 +92,8 @@ class Analysis:
     monotonic: bool
 
 
+# A value that no part has (1e308 ohm) may overflow to infinity, and counts as that.
+@np.errstate(over="ignore", invalid="ignore")
 def analyse(
     parameters: Sequence[Parameter], evaluate: Evaluate, units: Mapping[str, str]
 ) -> dict[str, Analysis]:
@@ -104,37 +106,33 @@ def analyse(
     samples = Samples(parameters)
     evaluate = in_slices(evaluate)
     loops = _OuterLoops(samples)
-    corner_rows = samples.corners()
-    rows = np.vstack([samples.nominal(), samples.star(), samples.halfway(), loops.rows, corner_rows])
-    ends, inside, around = 1 + samples.star_rows, 1 + 2 * samples.star_rows, len(rows) - len(corner_rows)
+    star, corner_rows = samples.star(), samples.corners()
+    rows = np.concatenate([star, samples.halfway(star), loops.rows, corner_rows])
+    ends, inside, around = len(star), 2 * len(star) - 1, len(rows) - len(corner_rows)
     found: dict[str, Analysis] = {}
     for name, column in evaluate(samples.as_sample(rows), len(rows)).items():
-        star, table, corners = column[1:ends], loops.table(column[inside:around]), column[around:]
+        table, corners = loops.table(column[:ends], column[inside:around]), column[around:]
         settled = True
         if not samples.has_all_corners:
             searched, settled = _Search(samples, evaluate, name).both_ends(*loops.directed(table))
             corners = np.concatenate([corners, searched])
         analysis = _analysis(column[:inside], corners, loops.statistical(table), units[name])
-        contributions = _contributions(samples, star)
+        contributions = _contributions(samples, column[1:ends])
         found[name] = Analysis(*analysis[:2], contributions, monotonic=settled and analysis[2])
     return found
 
 
 def in_slices(evaluate: Evaluate) -> Evaluate:
-    """Return `evaluate` with its memory bounded, a slice of the samples at a time, and quiet on overflow.
-
-    A value that no part has (1e308 ohm) may overflow to infinity, and counts as that.
-    """
+    """Return `evaluate` with its memory bounded: a slice of the samples at a time."""
 
     def sliced(sample: Sample, size: int) -> Mapping[str, Array]:
-        with np.errstate(over="ignore", invalid="ignore"):
-            if size <= _MOST_ROWS_AT_ONCE:
-                return evaluate(sample, size)
-            parts: list[Mapping[str, Array]] = []
-            for start in range(0, size, _MOST_ROWS_AT_ONCE):
-                piece = slice(start, min(start + _MOST_ROWS_AT_ONCE, size))
-                columns = {name: column[piece] for name, column in sample.items()}
-                parts.append(evaluate(columns, piece.stop - piece.start))
+        if size <= _MOST_ROWS_AT_ONCE:
+            return evaluate(sample, size)
+        parts: list[Mapping[str, Array]] = []
+        for start in range(0, size, _MOST_ROWS_AT_ONCE):
+            piece = slice(start, min(start + _MOST_ROWS_AT_ONCE, size))
+            columns = {name: column[piece] for name, column in sample.items()}
+            parts.append(evaluate(columns, piece.stop - piece.start))
         return {name: np.concatenate([part[name] for part in parts]) for name in parts[0]}
 
     return sliced
@@ -149,11 +147,12 @@ class Samples:
         self.tolerances = [i for i in self.varying if self.parameters[i].variation is Variation.TOLERANCE]
         self.outer = [i for i in self.varying if self.parameters[i].variation is not Variation.TOLERANCE]
         self._nominal = np.array([p.nominal for p in self.parameters], dtype=np.float64)
-        self.star_rows = 2 * len(self.varying)
+        self._choices = {i: _stations(self.parameters[i]) for i in self.varying}
 
     def as_sample(self, rows: Array) -> Sample:
         """Return rows of parameter values as the sample that an evaluation takes."""
-        return {p.name: rows[:, i] for i, p in enumerate(self.parameters)}
+        columns = np.ascontiguousarray(rows.T)  # each column is run through more than once
+        return {p.name: column for p, column in zip(self.parameters, columns, strict=True)}
 
     def nominal(self) -> Array:
         """Return one row: every parameter at its nominal value."""
@@ -162,8 +161,7 @@ class Samples:
     @property
     def has_all_corners(self) -> bool:
         """Tell whether `corners` are all there are."""
-        few = len(self.varying) <= MOST_CORNER_PARAMETERS
-        return few and _grid_size(self._choices(self.varying)) <= _MOST_CORNERS
+        return len(self.varying) <= MOST_CORNER_PARAMETERS and _grid_size(self._choices) <= _MOST_CORNERS
 
     @property
     def has_all_outer_corners(self) -> bool:
@@ -172,16 +170,16 @@ class Samples:
 
     def corners(self) -> Array:
         """Return all corners, or only the outer ones where there are too many parameters for all."""
-        return (
-            self.combinations(self._choices(self.varying)) if self.has_all_corners else self.outer_corners()
-        )
+        return self.combinations(self._choices) if self.has_all_corners else self.outer_corners()
 
     def outer_corners(self) -> Array:
         """Return the corners of the outer loops, trimmers in between as well while that is not too much.
 
         Where even the ends are too many to combine: nominal, all low, all high, and each alone at its ends.
         """
-        choices = self._choices(self.outer)
+        if not self.outer:
+            return self.nominal()
+        choices = {index: self._choices[index] for index in self.outer}
         if _grid_size(choices) <= _MOST_OUTER_CORNERS:
             return self.combinations(choices)
         ends = {i: (self.parameters[i].low, self.parameters[i].high) for i in self.outer}
@@ -189,25 +187,26 @@ class Samples:
             return self.combinations(ends)
         together = np.repeat(self.nominal(), 2, axis=0)
         together[:, self.outer] = np.array(list(ends.values())).T
-        return np.vstack([self.nominal(), together, self.star_about(self._nominal, self.outer)])
+        return np.vstack([together, self.star_about(self.nominal(), self.outer)])
 
     def star(self) -> Array:
-        """Return two rows a varying parameter: it alone at its low end, then at its high end."""
-        return self.star_about(self._nominal, self.varying)
+        """Return the nominal row, then two a varying parameter: it alone at its low and its high end."""
+        return self.star_about(self.nominal(), self.varying)
 
-    def halfway(self) -> Array:
-        """Return two rows a varying parameter: it alone half the way to its low end, then to its high end.
+    def halfway(self, star: Array) -> Array:
+        """Return the rows half the way from nominal to each end of the star.
 
         Between the corners a quantity may turn round and come back: here it is caught on the way.
         """
-        return self.star() / 2 + self._nominal / 2  # halved first: the sum of two vast values overflows
+        return star[1:] / 2 + self._nominal / 2  # halved first: the sum of two vast values overflows
 
-    def star_about(self, centre: Array, indices: Sequence[int]) -> Array:
-        """Return two rows a parameter about any centre: it alone at its low end, then at its high end."""
-        rows = np.repeat(centre[None, :], 2 * len(indices), axis=0)
+    def star_about(self, centres: Array, indices: Sequence[int]) -> Array:
+        """Return each centre, and after it two rows a parameter: it alone at its low and its high end."""
+        each = 1 + 2 * len(indices)
+        rows = np.repeat(centres, each, axis=0)
         for position, index in enumerate(indices):
-            rows[2 * position, index] = self.parameters[index].low
-            rows[2 * position + 1, index] = self.parameters[index].high
+            rows[2 * position + 1 :: each, index] = self.parameters[index].low
+            rows[2 * position + 2 :: each, index] = self.parameters[index].high
         return rows
 
     def combinations(self, choices: Mapping[int, Sequence[float]]) -> Array:
@@ -216,16 +215,15 @@ class Samples:
         rounds = 1
         for index, values in choices.items():
             # The first parameter goes through its values once, each further one within each value before.
-            columns[index].reshape(rounds, len(values), -1)[:] = np.array(values)[:, None]
+            periods = columns[index].reshape(rounds, len(values), -1)
+            for position, value in enumerate(values):
+                periods[:, position] = value
             rounds *= len(values)
         return columns.T
 
-    def _choices(self, indices: Sequence[int]) -> dict[int, Sequence[float]]:
-        return {index: _stations(self.parameters[index]) for index in indices}
-
 
 def _grid_size(choices: Mapping[int, Sequence[float]]) -> int:
-    return prod(len(values) for values in choices.values())
+    return prod(map(len, choices.values()))
 
 
 def _stations(parameter: Parameter) -> tuple[float, ...]:
@@ -237,39 +235,42 @@ def _stations(parameter: Parameter) -> tuple[float, ...]:
 class _OuterLoops:
     """The outer corners, each with its tolerances one at a time at their ends.
 
-    rows: for each outer corner, tolerances all at nominal, then low, high, low, high ...
+    rows: for each outer corner, tolerances all at nominal, then low, high, low, high ...; none where nothing
+          but tolerances varies, for then the star about nominal is all that
     """
 
     def __init__(self, samples: Samples) -> None:
         self.samples = samples
         self.centres = samples.outer_corners()
-        blocks = [np.vstack([c[None, :], samples.star_about(c, samples.tolerances)]) for c in self.centres]
-        self.rows = np.vstack(blocks)
-        parameters = [samples.parameters[index] for index in samples.tolerances]
-        self._low = np.array([parameter.low for parameter in parameters], dtype=np.float64)
-        self._high = np.array([parameter.high for parameter in parameters], dtype=np.float64)
-        self._random = np.array([parameter.random for parameter in parameters], dtype=np.float64)
+        self.rows = self.centres[:0]
+        if samples.outer:
+            self.rows = samples.star_about(self.centres, samples.tolerances)
+        self._tolerances = [samples.parameters[index] for index in samples.tolerances]
 
-    def table(self, values: Array) -> Array:
-        """Return the values at `rows`, a row for each outer corner."""
-        return values.reshape(len(self.centres), -1)
+    def table(self, about_nominal: Array, values: Array) -> Array:
+        """Return the values about each outer corner, a row for each.
+
+        about_nominal: the values at nominal and at the star about it
+        values:        those at `rows`
+        """
+        return (values if self.samples.outer else about_nominal).reshape(len(self.centres), -1)
 
     def statistical(self, table: Array) -> tuple[float, float]:
         """Return the least and the greatest value by root-sum-square, NaN where they are not to be had."""
         if not self.samples.has_all_outer_corners:
             return np.nan, np.nan
-        with np.errstate(over="ignore", invalid="ignore"):
-            half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
-            root_sum = np.sqrt((half_widths**2) @ self._random**2)
-            half_width = root_sum + half_widths @ (1 - self._random)
-            return float((table[:, 0] - half_width).min()), float((table[:, 0] + half_width).max())
+        random = np.array([parameter.random for parameter in self._tolerances], dtype=np.float64)
+        half_widths = np.abs(table[:, 2::2] - table[:, 1::2]) / 2
+        half_width = np.sqrt(half_widths**2 @ random**2) + half_widths @ (1 - random)
+        return float((table[:, 0] - half_width).min()), float((table[:, 0] + half_width).max())
 
     def directed(self, table: Array) -> tuple[Array, Array]:
         """Return, for each outer corner, where its sensitivities put the least value, and the greatest."""
         rises = table[:, 2::2] >= table[:, 1::2]
         least, most = self.centres.copy(), self.centres.copy()
-        least[:, self.samples.tolerances] = np.where(rises, self._low, self._high)
-        most[:, self.samples.tolerances] = np.where(rises, self._high, self._low)
+        low, high = ([getattr(p, end) for p in self._tolerances] for end in ("low", "high"))
+        least[:, self.samples.tolerances] = np.where(rises, low, high)
+        most[:, self.samples.tolerances] = np.where(rises, high, low)
         return least, most
 
 
@@ -300,7 +301,7 @@ class _Search:
         """Move a corner on, each parameter to the other end that makes `sign` times the quantity greater."""
         varying = self.samples.varying
         for _ in range(_MOST_STEPS):
-            star = self.samples.star_about(row, varying)
+            star = self.samples.star_about(row[None, :], varying)[1:]
             around = sign * self._values(star)
             better = np.flatnonzero(around > value + _ROUNDING * abs(value))
             if not len(better):
@@ -338,18 +339,15 @@ def _finite_or(value: float, fallback: float) -> float:
 
 
 def _contributions(samples: Samples, star: Array) -> tuple[tuple[str, float], ...]:
-    with np.errstate(invalid="ignore"):
-        differences: list[float] = (star[1::2] - star[0::2]).tolist()
+    differences: list[float] = (star[1::2] - star[0::2]).tolist()
     widths = [abs(width) if isfinite(width) else 0.0 for width in differences]
     total = sum(widths)
     if total == 0:
         return ()
-    labels = [samples.parameters[i].label or samples.parameters[i].name for i in samples.varying]
-    ranked = sorted(zip(labels, (width / total for width in widths), strict=True), key=_ranking)
-    return tuple((label, share) for label, share in ranked if share > _LEAST_SHARE)
-
-
-def _ranking(contribution: tuple[str, float]) -> tuple[float, str]:
-    """Return what contributions are sorted by: equal ones by name, whatever rounding makes of them."""
-    label, share = contribution
-    return -round(share / _LEAST_SHARE), label
+    parameters = [samples.parameters[index] for index in samples.varying]
+    # Equal shares are ranked by name, whatever rounding makes of them.
+    ranked = sorted(
+        (-round(width / total / _LEAST_SHARE), parameter.label or parameter.name, width / total)
+        for parameter, width in zip(parameters, widths, strict=True)
+    )
+    return tuple((label, share) for _, label, share in ranked if share > _LEAST_SHARE)

@@ -24,11 +24,13 @@ def test_a_divider_in_two_samples():
     assert equations.unknowns == 1
     assert not equations.active
     sample = {"R1": np.array([4.0, 8.0])}
-    matrix, right = equations.filled(equations.values(sample, 2))
+    entries, right, drives = equations.filled(divider, sample, 2)
     # (1/R1 + 1/R2) SET = 1/R2 * 0 V + 1/R1 * VREF
-    assert matrix == pytest.approx(np.array([[[0.75, 0.625]]]))
-    assert right == pytest.approx(np.array([[[0.5, 0.5], [0.25, 0.125]]]))
-    assert equations.drives(sample, 2) == pytest.approx(np.array([[0.0, 0.0], [5.0, 5.0]]))
+    assert equations.places == [(0, 0)]
+    assert equations.fixed == []
+    assert entries == pytest.approx(np.array([[0.75, 0.625]]))
+    assert right == pytest.approx(np.array([[1.25, 0.625]]))
+    assert drives == pytest.approx(np.array([[0.0, 0.0], [5.0, 5.0]]))
 
 
 def test_a_branch_and_a_loop_are_unknowns_with_an_equation_each():
@@ -42,10 +44,15 @@ def test_a_branch_and_a_loop_are_unknowns_with_an_equation_each():
     assert (equations.potentials["A"], equations.currents["V1"], equations.potentials["OUT"]) == (0, 1, 2)
     assert equations.free_from == 2
     assert equations.settled.tolist() == [True, False, True]
-    matrix, right = equations.filled(equations.values({}, 1))
+    entries, right, _ = equations.filled(loop, {}, 1)
     # Kirchhoff at A, OUT - A = V1, A - 0 = the condition's difference
-    assert matrix[:, :, 0].tolist() == [[0.5, -1.0, 0.0], [-1.0, 0.0, 1.0], [1.0, 0.0, 0.0]]
-    assert right[:, :, 0].tolist() == [[0.5, 0.0, 0.0], [0.0, 1.0, 0.0], [1.0, 0.0, 1.0]]
+    assert equations.matrix(entries)[:, :, 0].tolist() == [
+        [0.5, -1.0, 0.0],
+        [-1.0, 0.0, 1.0],
+        [1.0, 0.0, 0.0],
+    ]
+    assert right[:, 0].tolist() == [0.0, 1.0, 3.0]
+    assert [equations.places[number] for number in equations.fixed] == [(0, 1), (1, 2), (1, 0), (2, 0)]
 
 
 def test_terms_that_fall_together_add_up():
@@ -53,5 +60,16 @@ def test_terms_that_fall_together_add_up():
         (Resistor("R1", "A", "0", constant(2.0)), Resistor("R2", "0", "A", constant(4.0))),
         {"0": constant(0.0)},
     )
-    matrix, _ = Equations(parallel).filled(np.array([[1.0], [0.5], [0.25]]))
-    assert matrix == pytest.approx(np.array([[[0.75]]]))
+    entries, _, _ = Equations(parallel).filled(parallel, {}, 1)
+    assert entries.tolist() == [[0.75]]
+
+
+def test_networks_of_one_form_share_their_equations():
+    def divider(ohms: float, volts: float) -> Network:
+        elements = (Resistor("R1", "VREF", "A", constant(ohms)), Resistor("R2", "A", "0", constant(1.0)))
+        return Network(elements, {"0": constant(0.0), "VREF": constant(volts)})
+
+    one, other = divider(1.0, 5.0), divider(4.0, 10.0)
+    assert one.form() == other.form()
+    entries, right, _ = Equations(one).filled(other, {}, 1)
+    assert (entries.tolist(), right.tolist()) == ([[1.25]], [[2.5]])
