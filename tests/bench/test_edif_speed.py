@@ -12,6 +12,7 @@ import os
 import subprocess
 import sys
 from collections.abc import Callable
+from functools import partial
 from importlib import import_module
 from importlib.util import find_spec
 from pathlib import Path
@@ -21,6 +22,8 @@ from typing import Any
 import pytest
 from pwmlint.grammar import edif_builder
 from pwmlint.grammar.edif import read_edif
+
+from .turns import best_attempt, least_times
 
 SIZES = [int(size) for size in os.environ.get("PWMLINT_BENCH_PARTS", "1000,10000").split(",")]
 PINS_OF = {
@@ -197,16 +200,6 @@ def schematic_view(parts: int) -> str:
 """
 
 
-def fastest(read: Callable[[], object]) -> float:
-    """Return the least processor time of some runs, in seconds."""
-    times: list[float] = []
-    for _ in range(RUNS):
-        start = process_time()
-        read()
-        times.append(process_time() - start)
-    return min(times)
-
-
 def with_plugins(monkeypatch: pytest.MonkeyPatch, plugins: dict[str, Any]) -> None:
     """Have `read_edif` use a parser with these plugins of lark."""
     parser = edif_builder.build_parser(plugins)
@@ -252,7 +245,9 @@ def test_netlist_view_against_a_general_netlist_library(
     path.write_text(text, encoding="utf-8")
     done = subprocess.run([sys.executable, "-c", YARDSTICK, path], capture_output=True, text=True, check=True)
     yardstick = float(done.stdout)
-    ours = fastest(lambda: read_edif(path.read_text(encoding="utf-8"), "board.edf"))
+    (ours,) = least_times(
+        [lambda: read_edif(path.read_text(encoding="utf-8"), "board.edf")], RUNS, process_time
+    )
     ratio = ours / yardstick
     say(
         f"netlist view, {YARDSTICK_PARTS} parts, {lexer}: {len(text) / ours / 1e6:.1f} MB/s, spydrnet"
@@ -262,10 +257,9 @@ def test_netlist_view_against_a_general_netlist_library(
 
 
 def test_schematic_view_against_netlist_view(say: Callable[[str], None]) -> None:
-    rates: list[float] = []
-    for write in (netlist_view, schematic_view):
-        text = write(YARDSTICK_PARTS)
-        rates.append(len(text) / fastest(lambda text=text: read_edif(text, "board.edf")) / 1e6)
+    texts = [write(YARDSTICK_PARTS) for write in (netlist_view, schematic_view)]
+    times = least_times([partial(read_edif, text, "board.edf") for text in texts], RUNS, process_time)
+    rates = [len(text) / taken / 1e6 for text, taken in zip(texts, times, strict=True)]
     gain = rates[1] / rates[0]
     say(
         f"netlist view {rates[0]:.1f} MB/s, schematic view {rates[1]:.1f} MB/s: {gain:.1f} x"
@@ -276,13 +270,18 @@ def test_schematic_view_against_netlist_view(say: Callable[[str], None]) -> None
 
 @pytest.mark.parametrize("write", [netlist_view, schematic_view])
 def test_growth(write: Callable[[int], str], say: Callable[[str], None]) -> None:
-    times: list[float] = []
-    for parts in SIZES:
-        text = write(parts)
-        times.append(fastest(lambda text=text: read_edif(text, "board.edf")))
-        rate = len(text) / times[-1] / 1e6
-        say(f"{write.__name__}: {parts} parts, {len(text) / 1e6:.1f} MB, {times[-1]:.2f} s, {rate:.1f} MB/s")
-    exponent = math.log(times[-1] / times[0]) / math.log(SIZES[-1] / SIZES[0])
+    texts = [write(parts) for parts in SIZES]
+    works = [partial(read_edif, text, "board.edf") for text in texts]
+
+    def measure() -> float:
+        times = least_times(works, RUNS, process_time)
+        for parts, text, taken in zip(SIZES, texts, times, strict=True):
+            size = len(text) / 1e6
+            rate = size / taken
+            say(f"{write.__name__}: {parts} parts, {size:.1f} MB, {taken:.2f} s, {rate:.1f} MB/s")
+        return math.log(times[-1] / times[0]) / math.log(SIZES[-1] / SIZES[0])
+
+    exponent = best_attempt(measure, MOST_GROWTH, name=f"{write.__name__}, power of the parts")
     say(f"{write.__name__}: time grows with the power {exponent:.3f} of the parts (at most {MOST_GROWTH})")
     assert exponent <= MOST_GROWTH
 

@@ -15,6 +15,8 @@ from functools import partial
 from pwmlint.grammar.netlist import Netlist
 from pwmlint.grammar.spice import read_spice
 
+from .turns import best_attempt, least_times
+
 SIZES = (1_000, 10_000, 100_000)
 LIMIT = 25
 """Times the yardstick; the record to chase is 10."""
@@ -38,17 +40,6 @@ def plain(count: int) -> str:
     return "\n".join(lines) + "\n"
 
 
-def seconds(work: Callable[[], object], repeats: int) -> float:
-    """Return the least processor time of several runs."""
-    best = math.inf
-    for _ in range(repeats):
-        start = time.process_time()
-        result = work()
-        best = min(best, time.process_time() - start)
-        del result
-    return best
-
-
 def exponent(small: float, large: float) -> float:
     """Return the power of the size with which a cost grows from 1k to 100k parts."""
     return math.log(large / small) / math.log(SIZES[-1] / SIZES[0])
@@ -66,25 +57,35 @@ def shown(costs: list[float], unit: str, scale: float) -> str:
 
 def test_reading_takes_at_most_25_times_splitting() -> None:
     text = plain(SIZES[-1])
-    yardstick = seconds(lambda: [line.split() for line in text.splitlines()], 3)
-    reading = seconds(lambda: read_spice(text, "bench.cir"), 2)
     netlist = read_spice(text, "bench.cir")
-    pins = seconds(lambda: [list(part.pins) for part in netlist.parts.values()], 1)
-    print(f"\nreading / splitting, {SIZES[-1]} parts: {reading / yardstick:.1f}")
-    print(f"seeking the place of every pin afterwards: {pins / yardstick:.1f}")
-    assert reading <= LIMIT * yardstick
+    works: list[Callable[[], object]] = [
+        lambda: [line.split() for line in text.splitlines()],
+        lambda: read_spice(text, "bench.cir"),
+        lambda: [list(part.pins) for part in netlist.parts.values()],
+    ]
+
+    def measure() -> float:
+        yardstick, reading, pins = least_times(works, 3, time.process_time)
+        print(f"\nseeking the place of every pin afterwards, over splitting: {pins / yardstick:.1f}")
+        return reading / yardstick
+
+    name = f"reading over splitting, {SIZES[-1]} parts"
+    assert best_attempt(measure, LIMIT, name=name) <= LIMIT
 
 
 def test_time_grows_with_the_list_alone() -> None:
     # As many parts are read and kept for each size: a small list read over and over again would find its
     # memory allotted and in the processor's cache, and show the machine's growth instead of the reader's.
-    # The sizes take turns, and the best of several turns counts, so that a busy moment strikes no size alone.
     counts = [SIZES[-1] // size for size in SIZES]
     works = [partial(read_often, plain(size), count) for size, count in zip(SIZES, counts, strict=True)]
-    rounds = [[seconds(work, 1) for work in works] for _ in range(6)]
-    taken = [min(turns) / count for turns, count in zip(zip(*rounds, strict=True), counts, strict=True)]
-    print("\n" + shown(taken, "microseconds", 1e6))
-    assert exponent(taken[0], taken[-1]) <= EXPONENT
+
+    def measure() -> float:
+        least = least_times(works, 4, time.process_time)
+        taken = [cost / count for cost, count in zip(least, counts, strict=True)]
+        print("\n" + shown(taken, "microseconds", 1e6))
+        return exponent(taken[0], taken[-1])
+
+    assert best_attempt(measure, EXPONENT, name="power of the parts") <= EXPONENT
 
 
 def test_memory_grows_with_the_list_alone() -> None:
