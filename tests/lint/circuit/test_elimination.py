@@ -16,7 +16,7 @@ def places_of(pattern: Array) -> list[Place]:
 
 def whole(matrices: Array, right: Array) -> tuple[Array, Array, list[bool]]:
     """Eliminate matrices (unknowns, unknowns, samples) in one stage, and ask for the sign of all."""
-    places = places_of(matrices.any(axis=2))
+    places = places_of(np.abs(matrices).max(axis=2))
     elimination = Elimination(places, (), len(matrices), len(matrices), 0)
     rows, columns = zip(*places, strict=True)
     answers, sign, sound = elimination.solve(matrices[list(rows), list(columns)], right)
@@ -34,13 +34,9 @@ class TestAnswers:
         random = np.random.default_rng(seed)
         pattern = random.random((unknowns, unknowns)) < 0.4
         pattern[random.permutation(unknowns), np.arange(unknowns)] = True
-        try:
-            matrices = pattern[:, :, None] * random.uniform(0.5, 2.0, (unknowns, unknowns, 5))
-            right = random.uniform(0.5, 2.0, (unknowns, 5))
-            answers, sign, sound = whole(matrices, right)
-        except ValueError:
-            assert np.linalg.matrix_rank(np.moveaxis(matrices, -1, 0)).max() < unknowns
-            return
+        matrices = pattern[:, :, None] * random.uniform(0.5, 2.0, (unknowns, unknowns, 5))
+        right = random.uniform(0.5, 2.0, (unknowns, 5))
+        answers, sign, sound = whole(matrices, right)
         for sample in np.flatnonzero(sound):
             matrix = matrices[:, :, sample]
             slack = 1e-13 * np.linalg.cond(matrix)
