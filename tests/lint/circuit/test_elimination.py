@@ -80,6 +80,20 @@ class TestUnsoundSamples:
         right = np.array([1.0, 2.0])[:, None] * np.ones(3)
         assert whole(matrices, right)[2] == [True, False, False]
 
+    @settings(max_examples=100, deadline=None)
+    @given(st.integers(2, 7), st.integers(0, 2**32 - 1))
+    def test_nets_without_a_path_to_ground(self, nets: int, seed: int):
+        # Every equation of such a network follows from the others, but in rounded numbers.
+        random = np.random.default_rng(seed)
+        ends = [(int(random.integers(0, net)), net) for net in range(1, nets)]
+        ends += [tuple(sorted(random.choice(nets, 2, replace=False).tolist())) for _ in range(nets)]
+        matrices = np.zeros((nets, nets, 5))
+        for a, b in ends:
+            siemens = 10 ** random.uniform(-6, 3, 5)
+            matrices[[a, b], [a, b]] += siemens
+            matrices[[a, b], [b, a]] -= siemens
+        assert whole(matrices, random.uniform(-1, 1, (nets, 5)))[2] == [False] * 5
+
     def test_an_answer_that_is_vast(self):
         assert whole(stacked([[1e-12, 1.0], [0.0, 1e-12]]), np.ones((2, 1)))[2] == [False]
 
