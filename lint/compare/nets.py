@@ -1,9 +1,9 @@
 """Which net of the old revision is which of the new one: told by their pins, and by names where pins fail.
 
-Three steps, each deterministic: nets with exactly the same pins; then, best first, nets that kept their name
-and a third of their pins, and nets that kept more than half of their pins under another name; at last nets
-that kept the name alone. A step that settles one end of a resistor settles the other. The time is that of
-sorting the pins.
+Step by step, each deterministic: nets with exactly the same pins; then, best first, nets that kept their name
+and a third of their pins, and nets that kept more than half of their pins, two at least, under another name;
+then nets that kept the name alone; at last what a single pin tells. A step that settles one end of a resistor
+settles the other. The time is that of sorting the pins.
 """
 
 from __future__ import annotations
@@ -45,6 +45,7 @@ class NetMatching:
         self._votes: dict[tuple[str, str], int] = defaultdict(int)
         self._kept: tuple[dict[str, int], dict[str, int]] = (defaultdict(int), defaultdict(int))
         self._ends: dict[str, list[tuple[Sequence[str], Sequence[str]]]] = defaultdict(list)
+        self._least = _LEAST_SHARED
         self._heap: list[tuple[int, float, int, int, str, str]] = []
         self._match(pairs)
 
@@ -85,6 +86,8 @@ class NetMatching:
             namesake = self._new.by_key.get(self._old.key(net))
             if namesake is not None and net not in self.forward and namesake not in self.backward:
                 self._take(net, namesake)
+        # What is left on both sides would be told as gone and come: a single pin in common says more.
+        self._least = 1
         self._settle()
 
     def _match_exactly(self, pairs: Sequence[PartPair]) -> None:
@@ -161,7 +164,7 @@ class NetMatching:
         namesakes = self._old.key(old) == self._new.key(new)
         if namesakes and share >= _KEEPS_ITS_NAME:
             rank = 0
-        elif share > _RENAMED and shared >= _LEAST_SHARED:
+        elif share > _RENAMED and shared >= self._least:
             rank = 1
         else:
             return

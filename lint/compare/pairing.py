@@ -8,7 +8,7 @@ there is only one such in both revisions and this reading leaves fewer changes t
 from __future__ import annotations
 
 from collections import Counter, defaultdict
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from ...grammar.netlist import Part
@@ -41,6 +41,9 @@ def match(old: Side, new: Side) -> Matching:
         references = _renumbered(old, new, by_reference, identities)
         if references != by_reference:
             readings.append(_matching(old, new, references))
+            # A part that was numbered anew on a net that was renamed: only now is that net known.
+            if more := _lone_twins(old, new, references, _by_pins(readings[-1].nets)):
+                readings.append(_matching(old, new, references | more))
     return min(readings, key=lambda reading: _changes(old, new, reading))
 
 
@@ -137,20 +140,42 @@ def _renumbered(
 
 def _twins(old: Side, new: Side, identities: tuple[_Identity, _Identity]) -> dict[str, str]:
     """Return the parts of which both revisions have one and only one alike, under different references."""
-    groups: dict[object, tuple[list[str], list[str]]] = defaultdict(lambda: ([], []))
-    for index, side in enumerate((old, new)):
-        for part in side.netlist.parts.values():
-            look = _look(side, part, identities[index])
-            if look is not None:
-                groups[look][index].append(part.reference)
+    sides = (old, old.netlist.parts.values()), (new, new.netlist.parts.values())
+    groups = _alike(sides, identities)
     found: dict[str, str] = {}
-    for one, other in groups.values():
+    for one, other in groups:
         both = set(one) & set(other)
         gone = [reference for reference in one if reference not in both]
         come = [reference for reference in other if reference not in both]
         if len(gone) == len(come) == 1:
             found[gone[0]] = come[0]
     return found
+
+
+def _lone_twins(
+    old: Side, new: Side, references: Mapping[str, str], identities: tuple[_Identity, _Identity]
+) -> dict[str, str]:
+    """Return those parts without a partner of which both revisions have one and only one alike."""
+    taken = set(references.values())
+    lone = (
+        [part for name, part in old.netlist.parts.items() if name not in references],
+        [part for name, part in new.netlist.parts.items() if name not in taken],
+    )
+    groups = _alike(((old, lone[0]), (new, lone[1])), identities)
+    return {one[0]: other[0] for one, other in groups if len(one) == len(other) == 1}
+
+
+def _alike(
+    sides: Sequence[tuple[Side, Iterable[Part]]], identities: tuple[_Identity, _Identity]
+) -> Iterable[tuple[list[str], list[str]]]:
+    """Return groups of parts that look alike, by their references in the old and the new revision."""
+    groups: dict[object, tuple[list[str], list[str]]] = defaultdict(lambda: ([], []))
+    for index, (side, parts) in enumerate(sides):
+        for part in parts:
+            look = _look(side, part, identities[index])
+            if look is not None:
+                groups[look][index].append(part.reference)
+    return groups.values()
 
 
 def _look(side: Side, part: Part, identity: _Identity) -> object | None:

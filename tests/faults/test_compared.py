@@ -109,6 +109,34 @@ def test_pins_that_changed_places_are_told_across_formats(across: Compare, edit:
     assert {move.old for move in change.pins} != {None}
 
 
+def numbered_anew(board: Board) -> Board:
+    """Return a board with all resistors one number up, and two nets under other names."""
+    nets = {"FB": "SENSE", "LZ": "N17"}
+
+    def up(reference: str) -> str:
+        return f"R{int(reference[1:]) + 1}" if reference.startswith("R") else reference
+
+    parts = tuple(
+        replace(part, reference=up(part.reference), nets=tuple(nets.get(net, net) for net in part.nets))
+        for part in board.parts
+    )
+    return replace(board, parts=parts, ratings={up(name): row for name, row in board.ratings.items()})
+
+
+@pytest.mark.parametrize("forms", [("SPICE", "SPICE"), ("EDIF", "EDIF"), ("SPICE", "EDIF")], ids="->".join)
+def test_a_drawing_numbered_anew_is_no_new_drawing(across: Compare, forms: tuple[str, str]) -> None:
+    found = across(FROST_FAN, numbered_anew(FROST_FAN), *forms)
+    changed = found.circuit.parts_changed
+    assert {one.old.reference: one.new.reference for one in changed} == {
+        f"R{number}": f"R{number + 1}" for number in range(1, 17)
+    }
+    assert not any(one.differences or one.pins for one in changed)
+    renamed = {one.old.name: one.new.name for one in found.circuit.nets_changed}
+    assert renamed == {"FB": "SENSE", "LZ": "N17"}
+    assert (found.circuit.parts_added, found.circuit.parts_removed) == ((), ())
+    assert {one.verdict.rule for one in found.verdicts} <= FORMAT_ALONE
+
+
 def test_parts_that_came_and_went_are_told_across_formats(across: Compare) -> None:
     new = added("R90", "resistor", "VOUT GND", "1k")(without("C15")(FROST_FAN))
     found = across(FROST_FAN, new).circuit
