@@ -3,15 +3,15 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
 
 from ...grammar.errors import NetlistError
 from ..report.delivery import STANDARD_OUTPUT
 from .answer import TROUBLE, is_taken, tell, write_toml
 from .inputs import NETLIST, add_inputs
+from .parser import Commands
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "brief",

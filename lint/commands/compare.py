@@ -4,13 +4,14 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Iterable
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 from ...grammar.errors import NetlistError
 from ..report import COMPARISON_FORMATS
 from ..report.delivery import DeliveryError, Target, deliver_comparison
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
 from .given import given
+from .parser import Commands
 from .review import STANDARD_INPUT, add_options
 
 if TYPE_CHECKING:
@@ -20,7 +21,7 @@ if TYPE_CHECKING:
     from ..settings import Settings, Settler
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "compare",

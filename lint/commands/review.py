@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Iterable, Sequence
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 from ...grammar.errors import NetlistError
 from ..estimate import Method
@@ -14,6 +14,7 @@ from ..verdict import Level, Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
 from .given import add_configuration
 from .inputs import NETLISTS, add_inputs, all_netlists
+from .parser import Commands
 from .progress import with_progress
 from .targets import add_targets
 
@@ -24,7 +25,7 @@ STANDARD_INPUT = "-"
 NEVER = "never"
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "review",

@@ -6,12 +6,13 @@ import argparse
 import os
 import sys
 from collections.abc import Iterable, Iterator
-from typing import TYPE_CHECKING, Any, TypeAlias
+from typing import TYPE_CHECKING, TypeAlias
 
 from ...grammar.errors import NetlistError, printable
 from ..report import colour
 from ..report.delivery import STANDARD_OUTPUT, Target
 from .answer import TROUBLE, show, tell
+from .parser import Commands
 from .review import add_options
 
 if TYPE_CHECKING:
@@ -23,7 +24,7 @@ _HEADINGS: Row = ("setting", "value", "set by")
 _TRACEBACK = "PWMLINT_TRACEBACK"
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "settings",
