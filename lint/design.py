@@ -51,7 +51,10 @@ class Design:
         brief: Brief | None = None,
         parts_list: PartsList | None = None,
         method: Method = Method.EXTREME,
+        *,
+        close: bool = False,
     ) -> None:
+        """Put the inputs together; with `close`, parts of untold tolerance are taken for close ones."""
         self.netlist = netlist
         self.brief = brief
         self.parts_list = parts_list
@@ -59,6 +62,7 @@ class Design:
             method,
             brief.ambient if brief is not None else None,
             brief.derating if brief is not None and brief.derating else DEFAULT_POLICY,
+            close,
         )
         self.circuit = Circuit(netlist, parts_list, conditions)
         told: Mapping[str, ControllerBrief] = brief.controllers if brief is not None else {}

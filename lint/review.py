@@ -22,6 +22,7 @@ from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
 from .policy import CAUTIONING, Policy
 from .rule import Rule, load_rules
+from .untold import left_to_judge, on_untold_tolerances
 from .verdict import Outcome, Review, SwitchedOff, Verdict
 
 STANDARD_INPUT = "-"
@@ -101,7 +102,13 @@ def review_netlist(
     known = load_rules() if rules is None else tuple(rules)
     policy = policy or Policy()
     asked = [one for one in known if one.id not in policy.off]
-    verdicts = tuple(policy.judged(verdict) for one in asked for verdict in _answers(one, design))
+    verdicts = tuple(verdict for one in asked for verdict in _answers(one, design))
+    if hinging := on_untold_tolerances(verdicts, design):
+        close = Design(netlist, brief, parts_list, method, close=True)
+        again = (one for one in asked if one.id in {verdict.rule for verdict in hinging})
+        passing = (verdict for one in again for verdict in _answers(one, close))
+        verdicts = left_to_judge(verdicts, hinging, passing)
+    verdicts = tuple(map(policy.judged, verdicts))
     if deviations is not None:
         verdicts, applied = apply(deviations, verdicts, today or date.today())
         about = (verdict for one in asked for verdict in _answers(one, design, applied))

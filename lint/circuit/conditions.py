@@ -19,11 +19,13 @@ class Conditions:
     method:  the worst-case analysis that decides
     ambient: ambient temperature in degC, None where nobody told it: then no drift with temperature is added
     policy:  the policy for derating and ageing, one of `derating.policies()`
+    close:   whether parts whose tolerance nobody told are taken for close ones, instead of for common ones
     """
 
     method: Method = Method.EXTREME
     ambient: Spread | None = None
     policy: str = DEFAULT_POLICY
+    close: bool = False
 
     @property
     def excursion(self) -> float:

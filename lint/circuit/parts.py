@@ -213,8 +213,7 @@ class PartReader:
         ratio = self._default_tolerance(self.kind(part), value.number)
         return Tolerance(-ratio, ratio, told=False)
 
-    @staticmethod
-    def _default_tolerance(kind: str, number: float) -> float:
+    def _default_tolerance(self, kind: str, number: float) -> float:
         if kind in ("voltage source", "current source", "battery"):
             return 0.0  # a source in the list states the value it is simulated with
         if kind == "resistor" and number <= defaults()["limits"]["link_up_to"]:
@@ -228,7 +227,8 @@ class PartReader:
             row = "resistor-fine"
         if kind == "capacitor" and number >= defaults()["limits"]["electrolytic_from"]:
             row = "electrolytic"
-        return float(defaults()["tolerance"][row]["ratio"])
+        told = defaults()["tolerance"][row]
+        return float(told.get("close", told["ratio"]) if self._conditions.close else told["ratio"])
 
 
 def part_kind(part: Part, models: Mapping[str, str]) -> str:
