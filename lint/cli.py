@@ -14,11 +14,9 @@ from importlib.metadata import version
 
 from ..grammar.errors import printable
 from .commands import COMMANDS
-from .commands.answer import EXIT, INTERRUPTED, TROUBLE, tell
+from .commands.answer import EXIT, INTERRUPTED, TRACEBACK, TROUBLE, tell
 from .commands.parser import Commands, Parser
 from .report.delivery import DeliveryError
-
-TRACEBACK = "PWMLINT_TRACEBACK"
 
 
 def main(arguments: Sequence[str] | None = None) -> int:

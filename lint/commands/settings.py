@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, TypeAlias
 from ...grammar.errors import NetlistError, printable
 from ..report import colour
 from ..report.delivery import STANDARD_OUTPUT, Target
-from .answer import TROUBLE, show, tell
+from .answer import TRACEBACK, TROUBLE, show, tell
 from .parser import Commands
 from .review import add_options
 
@@ -21,7 +21,6 @@ if TYPE_CHECKING:
 Row: TypeAlias = tuple[str, str, str]
 
 _HEADINGS: Row = ("setting", "value", "set by")
-_TRACEBACK = "PWMLINT_TRACEBACK"
 
 
 def add(commands: Commands) -> None:
@@ -85,8 +84,8 @@ def _environment() -> Iterator[Row]:
     yield "colour", _words(coloured), f"environment {variable}" if variable else terminal
     columns = "environment COLUMNS" if os.environ.get("COLUMNS", "").isdecimal() else terminal
     yield "width", str(colour.width(sys.stdout, os.environ)), columns
-    traced = bool(os.environ.get(_TRACEBACK))
-    yield "traceback", _words(traced), f"environment {_TRACEBACK}" if traced else "default"
+    traced = bool(os.environ.get(TRACEBACK))
+    yield "traceback", _words(traced), f"environment {TRACEBACK}" if traced else "default"
 
 
 def _output(target: Target) -> str:
