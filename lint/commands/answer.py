@@ -68,7 +68,7 @@ def write_toml(text: str, output: str) -> int:
 
 def show(text: str) -> int:
     """Print a text on standard output, in characters that it can carry, and return the exit status."""
-    from ..report.reference import shown
+    from ..report.glyphs import shown
 
     send(lambda stream: stream.write(shown(text, stream)))
     return PASSED
