@@ -5,6 +5,8 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass
 
+from .wording import one_of
+
 TOPOLOGIES = ("single-ended", "push-pull", "half-bridge", "full-bridge")
 DERATING_POLICIES = ("nasa", "ecss", "commercial")
 CIRCUITS = ("mains", "primary", "secondary")
@@ -32,10 +34,6 @@ def names(keys: Iterable[Key]) -> tuple[str, ...]:
     return tuple(key.name for key in keys)
 
 
-def _choice(words: tuple[str, ...]) -> str:
-    return f"{', '.join(words[:-1])} or {words[-1]}"
-
-
 DESIGN_KEYS = (
     Key("name", "what the report calls the design", '"orchard frost-fan drive"'),
     Key(
@@ -43,7 +41,7 @@ DESIGN_KEYS = (
         "the temperature round the board, from coldest to hottest; ratings are derated at its upper end",
         '"-10 degC .. 50 degC"',
     ),
-    Key("derating", f"the policy that derates ratings: {_choice(DERATING_POLICIES)}", '"commercial"'),
+    Key("derating", f"the policy that derates ratings: {one_of(DERATING_POLICIES)}", '"commercial"'),
 )
 
 RAIL_KEYS = (
@@ -58,14 +56,14 @@ RAIL_KEYS = (
     Key("load", "the current drawn from the net, from no load to full load", '"0 A .. 6 A"'),
     Key(
         "circuit",
-        f"{_choice(CIRCUITS)}: mains for each net of the line, its voltage being the rms one between them; "
+        f"{one_of(CIRCUITS)}: mains for each net of the line, its voltage being the rms one between them; "
         "primary for nets that are not isolated from the mains, secondary for those that must be",
         '"secondary"',
     ),
 )
 
 CONTROLLER_KEYS = (
-    Key("topology", f"{_choice(TOPOLOGIES)}; single-ended for every stage of one switch", '"single-ended"'),
+    Key("topology", f"{one_of(TOPOLOGIES)}; single-ended for every stage of one switch", '"single-ended"'),
     Key("output", "the net that is regulated", '"VOUT"'),
     Key(
         "switching_frequency",

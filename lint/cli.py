@@ -6,7 +6,6 @@
 
 from __future__ import annotations
 
-import argparse
 import os
 import traceback
 from collections.abc import Sequence
@@ -15,11 +14,9 @@ from importlib.metadata import version
 
 from ..grammar.errors import printable
 from .commands import COMMANDS
-from .commands.answer import EXIT, INTERRUPTED, TROUBLE, tell
-from .commands.parser import Parser
+from .commands.answer import EXIT, INTERRUPTED, TRACEBACK, TROUBLE, tell
+from .commands.parser import Commands, Parser
 from .report.delivery import DeliveryError
-
-TRACEBACK = "PWMLINT_TRACEBACK"
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -38,7 +35,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return _internal(error)
 
 
-def command_line() -> argparse.ArgumentParser:
+def command_line() -> Parser:
     """Return the parser of the whole command line."""
     parser = Parser(
         prog="pwmlint",
@@ -51,7 +48,7 @@ def command_line() -> argparse.ArgumentParser:
         ),
     )
     parser.add_argument("--version", action="version", version=f"pwmlint {version('pwmlint')}")
-    commands = parser.add_subparsers(title="commands", required=True, metavar="COMMAND")
+    commands = Commands(parser)
     for name in COMMANDS:
         import_module(f".commands.{name}", __package__).add(commands)
     return parser

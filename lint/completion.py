@@ -7,9 +7,9 @@ command or option is completed without a line here.
 from __future__ import annotations
 
 import argparse
-from collections.abc import Iterator, Mapping, Sequence
-from typing import Any, cast
+from collections.abc import Mapping, Sequence
 
+from .commands.parser import Parser
 from .shells import SHELLS, Argument, Command
 
 Words = Mapping[str, Sequence[str]]
@@ -19,7 +19,7 @@ _FILES = frozenset({"FILE", "NETLIST", "OLD", "NEW"})
 _FOLDERS = frozenset({"DIR"})
 
 
-def script(shell: str, parser: argparse.ArgumentParser, words: Words) -> str:
+def script(shell: str, parser: Parser, words: Words) -> str:
     """Return the completion script of a shell, one of SHELLS.
 
     words: what an argument may be by the name that help gives it, such as ID
@@ -27,32 +27,17 @@ def script(shell: str, parser: argparse.ArgumentParser, words: Words) -> str:
     return "\n".join([*SHELLS[shell](parser.prog, commands_of(parser, words)), ""])
 
 
-# What there is to complete
-
-
-def commands_of(parser: argparse.ArgumentParser, words: Words) -> tuple[Command, ...]:
+def commands_of(parser: Parser, words: Words) -> tuple[Command, ...]:
     """Return the program itself, then its commands, as the parser has them."""
-    # argparse keeps its actions to itself, but nothing else tells them, and their names have never changed.
-    actions = parser._actions  # pyright: ignore[reportPrivateUsage]
-    found = [Command("", "", tuple(_argument(one, parser, words) for one in actions if one.option_strings))]
-    for action in actions:
-        if isinstance(action, argparse._SubParsersAction):  # pyright: ignore[reportPrivateUsage]
-            found += _below(cast("argparse._SubParsersAction[Any]", action), words)  # pyright: ignore[reportPrivateUsage]
-    return tuple(found)
+    options = tuple(_argument(one, parser, words) for one in parser.arguments if one.option_strings)
+    below = (
+        Command(name, one.summary, tuple(_argument(action, one, words) for action in one.arguments))
+        for name, one in parser.commands.items()
+    )
+    return (Command("", "", options), *below)
 
 
-def _below(
-    commands: argparse._SubParsersAction[Any],  # pyright: ignore[reportPrivateUsage]
-    words: Words,
-) -> Iterator[Command]:
-    parsers = cast("dict[str, argparse.ArgumentParser]", commands.choices)
-    says = {one.dest: one.help or "" for one in commands._choices_actions}  # pyright: ignore[reportPrivateUsage]
-    for name, parser in parsers.items():
-        actions = parser._actions  # pyright: ignore[reportPrivateUsage]
-        yield Command(name, says.get(name, ""), tuple(_argument(one, parser, words) for one in actions))
-
-
-def _argument(action: argparse.Action, parser: argparse.ArgumentParser, words: Words) -> Argument:
+def _argument(action: argparse.Action, parser: Parser, words: Words) -> Argument:
     name = action.metavar if isinstance(action.metavar, str) else action.dest.upper()
     choices = tuple(map(str, action.choices)) if action.choices is not None else tuple(words.get(name, ()))
     named = {**vars(action), "choices": ", ".join(choices), "prog": parser.prog}

@@ -15,13 +15,13 @@ from ..grammar.errors import NetlistError
 from ..grammar.netlist import Place
 from .confined_path import EXPECTED, PathRefusedError, confined
 from .estimate import Method
-from .report import FORMATS
+from .report import FORMATS, GATES
 from .report.delivery import STANDARD_OUTPUT, Target
 from .toml_document import Table, TomlDocument
 from .verdict import Level
+from .wording import one_of
 
-NEVER, OFF = "never", "off"
-GATES = (*(level.value for level in Level), NEVER)
+OFF = "off"
 LEVELS = (*(level.value for level in Level), OFF)
 
 _KEYS = (
@@ -39,9 +39,7 @@ _KEYS = (
 )
 
 _ENDINGS = (".txt", ".log", ".json", ".sarif", ".xml", ".md", ".html")
-_EXPECTED_OUTPUT = (
-    f'"-", or a file with "report" in its name that ends in {", ".join(_ENDINGS[:-1])} or {_ENDINGS[-1]}'
-)
+_EXPECTED_OUTPUT = f'"-", or a file with "report" in its name that ends in {one_of(_ENDINGS)}'
 
 _Value = TypeVar("_Value")
 _Value_co = TypeVar("_Value_co", covariant=True)

@@ -7,10 +7,7 @@ from pathlib import Path
 
 from ..grammar.netlist import Place
 from .configuration import ConfigurationError
-from .found_files import refuse_link_out, root_of
-from .review import STANDARD_INPUT
-
-NAME = "pwmlint.toml"
+from .found_files import CONFIGURATION, STANDARD_INPUT, refuse_link_out, root_of
 
 
 def find_configuration(netlist: str | Path) -> Path | None:
@@ -29,7 +26,7 @@ def find_configuration(netlist: str | Path) -> Path | None:
         return None
     above, root = (folder, *folder.parents), root_of(folder)
     for one in above[: above.index(root) + 1]:
-        found = one / NAME
+        found = one / CONFIGURATION
         if os.path.lexists(found):
             return _checked(found, root, _shown(found, given))
     return None

@@ -12,13 +12,37 @@ from pathlib import Path
 from ..grammar.errors import NetlistError
 from ..grammar.netlist import Place
 
-_REPOSITORY = ".git"
+STANDARD_INPUT = "-"
+
+BRIEF, PARTS_LIST, DEVIATIONS = BESIDE = (".brief.toml", ".parts.csv", ".deviations.toml")
+"""The endings of what is found beside a netlist of the same name."""
+
+CONFIGURATION = "pwmlint.toml"
+"""The name of what is found beside it or above it, up to the folder that holds REPOSITORY."""
+
+REPOSITORY = ".git"
+
+
+def beside(netlist: str | Path, ending: str) -> Path | None:
+    """Return the file beside the netlist that has its name and another ending, where there is one.
+
+    Raises NetlistError for a link that leads out of the repository, or of the folder where there is none.
+    """
+    path = Path(netlist)
+    if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
+        return None
+    found = path.with_name(path.stem + ending)
+    if not found.is_file():
+        return None
+    remedy = "put the file there itself, or name it on the command line"
+    refuse_link_out(found, root_of(found.parent.resolve()), remedy=remedy)
+    return found
 
 
 def root_of(folder: Path) -> Path:
     """Return the root of the repository that a folder, resolved, lies in; the folder itself where in none."""
     above = (folder, *folder.parents)
-    return next((one for one in above if os.path.lexists(one / _REPOSITORY)), folder)
+    return next((one for one in above if os.path.lexists(one / REPOSITORY)), folder)
 
 
 def refuse_link_out(

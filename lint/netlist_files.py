@@ -13,13 +13,11 @@ from pathlib import Path
 
 from ..grammar.errors import NetlistError
 from ..grammar.netlist import Place
-from .found_files import refuse_link_out, root_of
+from .found_files import BESIDE, refuse_link_out, root_of
+from .wording import one_of
 
 # The endings of netlists that are looked for in a folder; a file that is named may have any.
 ENDINGS = (".edf", ".edif", ".edn", ".cir", ".ckt", ".sp", ".spi", ".spice")
-
-# The endings of what belongs to a netlist of the same name.
-BESIDE = (".brief.toml", ".parts.csv", ".deviations.toml")
 
 _MOST = 10_000
 _EXPECTED = "a netlist, a folder of netlists, or a file beside one, such as board.brief.toml"
@@ -48,7 +46,7 @@ def _in_folder(folder: Path) -> list[str]:
             raise _error(folder, f"more than {_MOST:,} netlists in this folder", "name a folder further down")
     if not found:
         raise _error(
-            folder, "no netlist in this folder", f"name the file, or let it end in {_listed(ENDINGS)}"
+            folder, "no netlist in this folder", f"name the file, or let it end in {one_of(ENDINGS)}"
         )
     return found
 
@@ -74,14 +72,10 @@ def _beside(path: Path, stem: str) -> list[str]:
     files = (path.with_name(stem + ending) for ending in ENDINGS)
     found = [str(file) for file in files if file.is_file()]
     if not found:
-        remedy = f"name the netlist itself, or let it be called {stem} with {_listed(ENDINGS)}"
+        remedy = f"name the netlist itself, or let it be called {stem} with {one_of(ENDINGS)}"
         raise _error(path, "there is no netlist beside this file", remedy)
     return found
 
 
 def _error(path: Path, message: str, remedy: str) -> NetlistError:
     return NetlistError(message, Place(str(path), 0, 0), expected=_EXPECTED, remedy=remedy)
-
-
-def _listed(endings: tuple[str, ...]) -> str:
-    return f"{', '.join(endings[:-1])} or {endings[-1]}"

@@ -16,7 +16,7 @@ from .controllers import generic_number
 from .design import Design
 from .deviations import Applied, Deviations, apply, read_deviations
 from .estimate import Method
-from .found_files import refuse_link_out, root_of
+from .found_files import BRIEF, DEVIATIONS, PARTS_LIST, STANDARD_INPUT, beside
 from .house_rules import crash, is_of_house
 from .parts_list import PartsList, read_parts_list
 from .pin_table import controller_review
@@ -24,8 +24,6 @@ from .policy import CAUTIONING, Policy
 from .rule import Rule, load_rules
 from .untold import left_to_judge, on_untold_tolerances
 from .verdict import Outcome, Review, SwitchedOff, Verdict
-
-STANDARD_INPUT = "-"
 
 
 def review(
@@ -78,9 +76,9 @@ def read_inputs(
     allow_include: Sequence[Path] = (),
 ) -> Inputs:
     """Read a netlist and what belongs to it; the arguments and errors are those of `review`."""
-    brief_path = brief if brief is not None else beside(netlist, ".brief.toml")
-    parts_path = parts_list if parts_list is not None else beside(netlist, ".parts.csv")
-    deviations_path = deviations if deviations is not None else beside(netlist, ".deviations.toml")
+    brief_path = brief if brief is not None else beside(netlist, BRIEF)
+    parts_path = parts_list if parts_list is not None else beside(netlist, PARTS_LIST)
+    deviations_path = deviations if deviations is not None else beside(netlist, DEVIATIONS)
     told = read_brief(brief_path) if brief_path is not None else None
     listed = read_parts_list(parts_path) if parts_path is not None else None
     accepted = read_deviations(deviations_path) if deviations_path is not None else None
@@ -142,22 +140,6 @@ def read_netlist(netlist: str | Path, allow_include: Sequence[Path] = ()) -> Net
 
 def _is_controller(name: str) -> bool:
     return generic_number(name) is not None
-
-
-def beside(netlist: str | Path, ending: str) -> Path | None:
-    """Return the file beside the netlist that has its name and another ending, where there is one.
-
-    Raises NetlistError for a link that leads out of the repository, or of the folder where there is none.
-    """
-    path = Path(netlist)
-    if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
-        return None
-    found = path.with_name(path.stem + ending)
-    if not found.is_file():
-        return None
-    remedy = "put the file there itself, or name it on the command line"
-    refuse_link_out(found, root_of(found.parent.resolve()), remedy=remedy)
-    return found
 
 
 def _answers(one: Rule, design: Design, applied: Applied | None = None) -> tuple[Verdict, ...]:

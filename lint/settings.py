@@ -13,14 +13,14 @@ from pathlib import Path
 from typing import TypeVar
 
 from ..grammar.errors import NetlistError
-from .configuration import NEVER, Configuration, ConfigurationError, Setting, read_configuration
+from .configuration import Configuration, ConfigurationError, Setting, read_configuration
 from .configuration_search import find_configuration
 from .estimate import Method
+from .found_files import BRIEF, DEVIATIONS, PARTS_LIST, beside
 from .house_rules import load_folder
 from .policy import Policy, policy_of
-from .report import Gate
+from .report import NEVER, Gate
 from .report.delivery import STANDARD_OUTPUT, Target
-from .review import beside
 from .rule import Rule, load_rules
 from .verdict import Level, Review
 
@@ -130,9 +130,9 @@ class Settler:
             gate=_chosen(given.gate, file and file.gate, Level.ERROR.value),
             strict=_chosen(given.strict, file and file.strict, default=False),
             worst_case=_chosen(given.worst_case, file and file.worst_case, Method.EXTREME.value),
-            brief=_input(given.brief, file and file.brief, netlist, ".brief.toml"),
-            parts_list=_input(given.parts_list, file and file.parts_list, netlist, ".parts.csv"),
-            deviations=_input(given.deviations, file and file.deviations, netlist, ".deviations.toml"),
+            brief=_input(given.brief, file and file.brief, netlist, BRIEF),
+            parts_list=_input(given.parts_list, file and file.parts_list, netlist, PARTS_LIST),
+            deviations=_input(given.deviations, file and file.deviations, netlist, DEVIATIONS),
             allow_include=_chosen(given.allow_include, file and file.allow_include, ()),
             rules=told.folder,
             reports=_chosen(given.reports, file and file.reports, (Target(),)),

@@ -17,6 +17,7 @@ from .quantity import Spread
 from .text_file import read_text
 from .toml_places import KeyPath, TomlPlaces
 from .units import QuantityTextError, read_any_range, read_range
+from .wording import one_of
 
 _LARGEST_FILE = 1_000_000
 _LONGEST_LINE = 2_000
@@ -128,7 +129,7 @@ class Table:
                 self._document.mistake(
                     f'unknown key "{key}"' + (f" in {self._name}" if self._path else ""),
                     self._document.place((*self._path, key)),
-                    expected=_one_of(keys),
+                    expected=one_of(keys),
                     remedy=f'did you mean "{near[0]}"?' if near else "remove it",
                 )
         return not unknown
@@ -184,12 +185,12 @@ class Table:
 
     def choice(self, key: str, choices: Sequence[str]) -> str | None:
         """Return a text that is one of `choices`."""
-        text = self.text(key, _one_of(choices))
+        text = self.text(key, one_of(choices))
         if text is None or text in choices:
             return text
         near = get_close_matches(text.casefold(), choices, n=1)
         remedy = f'did you mean "{near[0]}"?' if near else ""
-        self.mistake(key, f'unknown {key} "{text}"', expected=_one_of(choices), remedy=remedy)
+        self.mistake(key, f'unknown {key} "{text}"', expected=one_of(choices), remedy=remedy)
         return None
 
     def flag(self, key: str) -> bool | None:
@@ -265,7 +266,3 @@ class Table:
             return value
         self.mistake(key, f'"{key}" is not what belongs there', expected=expected)
         return None
-
-
-def _one_of(words: Sequence[str]) -> str:
-    return ", ".join(words[:-1]) + f" or {words[-1]}" if len(words) > 1 else words[0]

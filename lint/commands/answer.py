@@ -3,16 +3,19 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from contextlib import suppress
 from difflib import get_close_matches
 from pathlib import Path
 
-from ...grammar.errors import printable
+from ...grammar.errors import NetlistError, printable
 from ..report.colour import shows_box_characters
-from ..report.delivery import STANDARD_OUTPUT, send
+from ..report.delivery import STANDARD_OUTPUT, DeliveryError, send
 
 PASSED, NOT_PASSED, TROUBLE, INTERRUPTED = 0, 1, 2, 130
+
+TRACEBACK = "PWMLINT_TRACEBACK"
+"""The variable of the environment that asks where an error of ours came from."""
 
 EXIT = """exit status: 0 the gate passed, 1 it did not, 2 something could not be reviewed or written,
 130 interrupted"""
@@ -22,6 +25,23 @@ def tell(message: str) -> None:
     """Print a message on standard error; where nobody listens any more there is nobody to tell."""
     with suppress(BrokenPipeError):
         print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go
+
+
+def tell_once(trouble: NetlistError, told: list[NetlistError]) -> None:
+    """Tell of what several netlists may share, a mistake in their configuration, but not for each of them."""
+    if not any(trouble is one for one in told):
+        told.append(trouble)
+        tell(str(trouble))
+
+
+def is_delivered(deliver: Callable[[], None]) -> bool:
+    """Let one report be written and tell whether it could be; the others are wanted all the same."""
+    try:
+        deliver()
+    except DeliveryError as error:
+        tell(str(error))
+        return False
+    return True
 
 
 def is_taken(output: str) -> bool:
@@ -48,7 +68,7 @@ def write_toml(text: str, output: str) -> int:
 
 def show(text: str) -> int:
     """Print a text on standard output, in characters that it can carry, and return the exit status."""
-    from ..report.reference import shown
+    from ..report.glyphs import shown
 
     send(lambda stream: stream.write(shown(text, stream)))
     return PASSED

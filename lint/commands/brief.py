@@ -3,15 +3,15 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
 
 from ...grammar.errors import NetlistError
 from ..report.delivery import STANDARD_OUTPUT
 from .answer import TROUBLE, is_taken, tell, write_toml
 from .inputs import NETLIST, add_inputs
+from .parser import Commands
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "brief",
@@ -34,13 +34,14 @@ def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[r
 
 def _run(options: argparse.Namespace) -> int:
     from ..brief_writer import brief_text
+    from ..found_files import PARTS_LIST, beside
     from ..parts_list import read_parts_list
-    from ..review import beside, read_netlist
+    from ..review import read_netlist
 
     if is_taken(options.output):
         return TROUBLE
     try:
-        parts_path = options.parts_list or beside(options.netlist, ".parts.csv")
+        parts_path = options.parts_list or beside(options.netlist, PARTS_LIST)
         listed = read_parts_list(parts_path) if parts_path is not None else None
         text = brief_text(read_netlist(options.netlist, options.allow_include), listed)
     except NetlistError as error:

@@ -4,23 +4,25 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Iterable
-from typing import TYPE_CHECKING, Any
+from functools import partial
+from typing import TYPE_CHECKING
 
 from ...grammar.errors import NetlistError
+from ..found_files import STANDARD_INPUT
 from ..report import COMPARISON_FORMATS
-from ..report.delivery import DeliveryError, Target, deliver_comparison
-from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
+from ..report.delivery import Target, deliver_comparison
+from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, is_delivered, tell, tell_once
 from .given import given
-from .review import STANDARD_INPUT, add_options
+from .parser import Commands
+from .review import add_options
 
 if TYPE_CHECKING:
-    from ..compare import Asked, Comparison
+    from ..compare import Asked
     from ..compare.source import Source
-    from ..report import Gate
     from ..settings import Settings, Settler
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "compare",
@@ -51,11 +53,9 @@ class _Settled:
 
         settings = self._settler.settle(source.path)
         self.each.append(settings)
-        remark = settings.untrusted
-        if remark is not None and not any(remark is one for one in self._told):
-            self._told.append(remark)
-            source.rename(remark)
-            tell(str(remark))
+        if settings.untrusted is not None:
+            source.rename(settings.untrusted)
+            tell_once(settings.untrusted, self._told)
         return Asked(
             brief=settings.brief.value,
             parts_list=settings.parts_list.value,
@@ -86,7 +86,7 @@ def _run(options: argparse.Namespace) -> int:
         return TROUBLE
     _spare(targets, [path for settings in settled.each for path in settings.inputs], options)
     gate = settled.each[-1].own_gate
-    written = [_deliver(target, comparison, gate) for target in targets]
+    written = [is_delivered(partial(deliver_comparison, target, comparison, gate)) for target in targets]
     if not all(written):
         return TROUBLE
     return PASSED if comparison.passes(gate.level, strict=gate.strict) else NOT_PASSED
@@ -99,13 +99,3 @@ def _spare(targets: Iterable[Target], inputs: Iterable[str], options: argparse.N
     output = overwritten(targets, inputs)
     if output is not None:
         options.parser.error(f"the report would overwrite what is compared: {output}")
-
-
-def _deliver(target: Target, comparison: Comparison, gate: Gate) -> bool:
-    """Write one report and tell whether it could be written; the others are wanted all the same."""
-    try:
-        deliver_comparison(target, comparison, gate)
-    except DeliveryError as error:
-        tell(str(error))
-        return False
-    return True

@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
 
 from ..shells import SHELLS
 from .answer import show
+from .parser import Commands
 
 _HOW = {
     "bash": "source <(pwmlint completion bash)          # in ~/.bashrc",
@@ -15,7 +15,7 @@ _HOW = {
 }
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "completion",

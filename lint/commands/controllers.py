@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
 
 from .answer import show, unknown
+from .parser import Commands
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "controllers",

@@ -3,16 +3,16 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
 
 from ..report.delivery import STANDARD_OUTPUT
 from .answer import PASSED, TROUBLE, is_taken, tell, write_toml
 from .given import add_configuration
 from .inputs import NETLIST, add_inputs
+from .parser import Commands
 from .review import review_each
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "permit",

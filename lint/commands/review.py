@@ -4,27 +4,27 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Iterable, Sequence
-from typing import TYPE_CHECKING, Any
+from functools import partial
+from typing import TYPE_CHECKING
 
 from ...grammar.errors import NetlistError
 from ..estimate import Method
-from ..report import FORMATS, Gate
-from ..report.delivery import DeliveryError, Target, deliver
-from ..verdict import Level, Review
-from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
+from ..found_files import STANDARD_INPUT
+from ..report import FORMATS, GATES
+from ..report.delivery import deliver
+from ..verdict import Review
+from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, is_delivered, tell
 from .given import add_configuration
 from .inputs import NETLISTS, add_inputs, all_netlists
+from .parser import Commands
 from .progress import with_progress
 from .targets import add_targets
 
 if TYPE_CHECKING:
     from ..settings import Settings
 
-STANDARD_INPUT = "-"
-NEVER = "never"
 
-
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "review",
@@ -52,7 +52,7 @@ def add_options(parser: argparse.ArgumentParser, formats: Iterable[str] = FORMAT
     add_targets(parser, formats)
     parser.add_argument(
         "--gate",
-        choices=[*(level.value for level in Level), NEVER],
+        choices=GATES,
         help="the least level of a failed verdict that gives exit status 1 (error)",
     )
     parser.add_argument(
@@ -83,7 +83,7 @@ def _run(options: argparse.Namespace) -> int:
         return TROUBLE
     reviewed = review_each(settled)
     reviews, gate = [review for review, _ in reviewed], gate_of(reviewed)
-    written = [_deliver(target, reviews, gate) for target in targets] if reviews else []
+    written = [is_delivered(partial(deliver, target, reviews, gate)) for target in targets] if reviews else []
     if not complete or len(reviews) < len(netlists) or not all(written):
         return TROUBLE
     return PASSED if all(gate.passes(review) for review in reviews) else NOT_PASSED
@@ -111,13 +111,3 @@ def review_each(settled: Sequence[tuple[str, Settings]]) -> list[tuple[Review, S
         else:
             reviewed.append((found, settings))
     return reviewed
-
-
-def _deliver(target: Target, reviews: Sequence[Review], gate: Gate) -> bool:
-    """Write one report and tell whether it could be written; the others are wanted all the same."""
-    try:
-        deliver(target, reviews, gate)
-    except DeliveryError as error:
-        tell(str(error))
-        return False
-    return True

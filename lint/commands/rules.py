@@ -3,14 +3,14 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
 
 from ...grammar.errors import NetlistError
 from .answer import TROUBLE, show, tell, unknown
 from .given import add_rules
+from .parser import Commands
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "rules",

@@ -6,12 +6,13 @@ import argparse
 import os
 import sys
 from collections.abc import Iterable, Iterator
-from typing import TYPE_CHECKING, Any, TypeAlias
+from typing import TYPE_CHECKING, TypeAlias
 
 from ...grammar.errors import NetlistError, printable
 from ..report import colour
 from ..report.delivery import STANDARD_OUTPUT, Target
-from .answer import TROUBLE, show, tell
+from .answer import TRACEBACK, TROUBLE, show, tell
+from .parser import Commands
 from .review import add_options
 
 if TYPE_CHECKING:
@@ -20,10 +21,9 @@ if TYPE_CHECKING:
 Row: TypeAlias = tuple[str, str, str]
 
 _HEADINGS: Row = ("setting", "value", "set by")
-_TRACEBACK = "PWMLINT_TRACEBACK"
 
 
-def add(commands: argparse._SubParsersAction[Any]) -> None:  # pyright: ignore[reportPrivateUsage]
+def add(commands: Commands) -> None:
     """Add the command to the command line."""
     parser = commands.add_parser(
         "settings",
@@ -84,8 +84,8 @@ def _environment() -> Iterator[Row]:
     yield "colour", _words(coloured), f"environment {variable}" if variable else terminal
     columns = "environment COLUMNS" if os.environ.get("COLUMNS", "").isdecimal() else terminal
     yield "width", str(colour.width(sys.stdout, os.environ)), columns
-    traced = bool(os.environ.get(_TRACEBACK))
-    yield "traceback", _words(traced), f"environment {_TRACEBACK}" if traced else "default"
+    traced = bool(os.environ.get(TRACEBACK))
+    yield "traceback", _words(traced), f"environment {TRACEBACK}" if traced else "default"
 
 
 def _output(target: Target) -> str:

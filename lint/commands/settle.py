@@ -9,7 +9,7 @@ from ...grammar.errors import NetlistError
 from ..configuration import ConfigurationError
 from ..report.delivery import STANDARD_OUTPUT, Target
 from ..settings import Settings, Settler, overwritten, shared_reports
-from .answer import tell
+from .answer import tell_once
 from .given import given
 
 
@@ -23,13 +23,12 @@ def settle_each(netlists: Iterable[str], options: argparse.Namespace) -> list[tu
     for netlist in netlists:
         try:
             settings = settler.settle(netlist)
-            settled.append((netlist, settings))
-            remark = settings.untrusted
         except NetlistError as error:
-            remark = error
-        if remark is not None and not any(remark is one for one in told):
-            told.append(remark)
-            tell(str(remark))
+            tell_once(error, told)
+        else:
+            settled.append((netlist, settings))
+            if settings.untrusted is not None:
+                tell_once(settings.untrusted, told)
     return settled
 
 

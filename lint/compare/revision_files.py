@@ -12,12 +12,8 @@ from collections.abc import Iterable, Mapping
 from pathlib import Path
 from typing import cast
 
+from ..found_files import CONFIGURATION, REPOSITORY
 from .git import Entry, GitError, Repository
-
-CONFIGURATION = "pwmlint.toml"
-"""What is looked for above the netlist, up to the top of the repository."""
-
-_REPOSITORY = ".git"  # ends that search
 
 MOST_FILES = 5_000
 MOST_BYTES = 200_000_000
@@ -163,7 +159,7 @@ def _is_plain(path: str) -> bool:
     """Tell whether each step of a path is a name: a tree made by hand may hold anything."""
     steps = path.split("/")
     foreign = ("\\", ":") if os.name == "nt" else ()
-    refused = ("", ".", "..", _REPOSITORY)
+    refused = ("", ".", "..", REPOSITORY)
     return not any(step.casefold() in refused or any(sign in step for sign in foreign) for step in steps)
 
 
@@ -177,7 +173,7 @@ def _bound(files: int, size: int) -> None:
 
 def _write(files: Iterable[tuple[str, bytes]], target: Path) -> None:
     try:
-        (target / _REPOSITORY).touch()
+        (target / REPOSITORY).touch()
         for path, content in files:
             place = target / path
             place.parent.mkdir(parents=True, exist_ok=True)

@@ -14,7 +14,7 @@ from typing import Any, TypeVar, cast
 
 from ...grammar.errors import NetlistError
 from ...grammar.netlist import Place
-from ..review import STANDARD_INPUT
+from ..found_files import STANDARD_INPUT
 from .git import GitError
 from .revision_files import write_folder
 

@@ -30,6 +30,10 @@ FORMATS = {
 # The same for what changed between two revisions.
 COMPARISON_FORMATS = {"text": ".compare_text", "markdown": ".compare_markdown", "json": ".compare_json"}
 
+NEVER = "never"
+GATES = (*(level.value for level in Level), NEVER)
+"""The words for the level of a gate, in a configuration and on the command line."""
+
 
 @dataclass(frozen=True, slots=True)
 class Gate:
@@ -61,7 +65,7 @@ class Gate:
         """Return the gate as asked for on the command line, such as "error, strict"."""
         if self.own:
             return "of each netlist"
-        return (self.level.value if self.level else "never") + (", strict" if self.strict else "")
+        return (self.level.value if self.level else NEVER) + (", strict" if self.strict else "")
 
 
 class Writer(Protocol):

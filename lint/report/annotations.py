@@ -16,10 +16,9 @@ from ...grammar.errors import printable
 from ...grammar.netlist import Place
 from ..verdict import Level, Outcome, Review, Verdict
 from . import Gate
-from .colour import shows_box_characters
-from .glyphs import spelt_out
+from .glyphs import shown
 from .ranking import findings, unanswered
-from .words import badness, counts, word
+from .words import badness, counts, gate_answer, word
 
 # So many of each kind does a host show for one step of a run.
 MOST = 10
@@ -40,9 +39,9 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
         beyond = len(messages) - MOST
         for number, message in enumerate(messages[:MOST], 1):
             more = f"%0A(and {beyond} more)" if number == MOST and beyond > 0 else ""
-            stream.write(_shown(f"::{kind} {message}{more}", stream))
+            stream.write(shown(f"::{kind} {message}{more}", stream))
     left_out = sum(max(0, len(messages) - MOST) for messages in lines.values())
-    stream.write(_shown(_summary(reviews, gate, left_out), stream))
+    stream.write(shown(_summary(reviews, gate, left_out), stream))
 
 
 def _ranked(reviews: Sequence[Review]) -> Iterator[tuple[Review, Verdict]]:
@@ -86,10 +85,6 @@ def _summary(reviews: Sequence[Review], gate: Gate, left_out: int) -> str:
         f"{accepted} of them accepted" if accepted else "",
         f"{left_out} not shown above" if left_out else "",
         f"{off} rule{'s' * (off > 1)} switched off" if off else "",
-        f"gate {gate}: {'passed' if passed else 'not passed'}",
+        f"gate {gate}: {gate_answer(passed)}",
     ]
     return "; ".join(filter(None, sentences))
-
-
-def _shown(line: str, stream: TextIO) -> str:
-    return (line if shows_box_characters(stream) else spelt_out(line)) + "\n"

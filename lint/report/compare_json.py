@@ -5,9 +5,7 @@ As in the JSON report of a review, the same comparison gives the same bytes, and
 
 from __future__ import annotations
 
-import json
 from dataclasses import asdict
-from importlib.metadata import version
 from typing import Any, TextIO
 
 from ..compare.comparison import (
@@ -22,7 +20,7 @@ from ..compare.comparison import (
 )
 from ..verdict import Review, Verdict
 from . import Gate
-from .values import limit_values, number, spread_values
+from .values import limit_values, number, serialised, spread_values, tool
 
 SCHEMA = 1
 
@@ -32,7 +30,7 @@ def write(comparison: Comparison, stream: TextIO, gate: Gate) -> None:
     del gate
     report = {
         "schema": SCHEMA,
-        "tool": {"name": "pwmlint", "version": version("pwmlint")},
+        "tool": tool(),
         "old": _revision(comparison.old),
         "new": _revision(comparison.new),
         **_circuit(comparison.circuit),
@@ -40,7 +38,7 @@ def write(comparison: Comparison, stream: TextIO, gate: Gate) -> None:
         "unchanged": asdict(comparison.unchanged),
         "assumptions": list(comparison.assumptions),
     }
-    stream.write(json.dumps(report, indent=2, allow_nan=False) + "\n")
+    stream.write(serialised(report))
 
 
 def _revision(review: Review) -> dict[str, Any]:
@@ -137,8 +135,8 @@ def _verdict(verdict: Verdict | None) -> dict[str, Any] | None:
         "level": verdict.level,
         "accepted": verdict.deviation is not None,
         "message": verdict.message,
-        "measured": spread_values(verdict.measured) if verdict.measured is not None else None,
-        "limit": limit_values(verdict.limit) if verdict.limit is not None else None,
+        "measured": spread_values(verdict.measured),
+        "limit": limit_values(verdict.limit),
         "margin": number(verdict.margin),
         "parts": list(verdict.parts),
         "nets": list(verdict.nets),

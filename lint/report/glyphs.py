@@ -3,6 +3,9 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TextIO
+
+from .colour import shows_box_characters
 
 
 @dataclass(frozen=True, slots=True)
@@ -38,6 +41,11 @@ ASCII = Glyphs("=", "-", "-", ".", "=", "o", "|", "|", "|", "<", ">", ">=", "<="
 
 # What the figures of a verdict are written with, spelt for a stream that has only ASCII.
 _SPELT_OUT = str.maketrans({"Ω": "ohm", "µ": "u", "°": "deg", "∞": "inf", "≥": ">=", "≤": "<=", "·": "*"})
+
+
+def shown(text: str, stream: TextIO) -> str:
+    """Return `text` with the end of a line, in characters that `stream` can carry."""
+    return (text if shows_box_characters(stream) else spelt_out(text)) + "\n"
 
 
 def spelt_out(text: str) -> str:

@@ -6,15 +6,12 @@ throughout, so that neither the locale nor a terminal has a say. Values are in S
 
 from __future__ import annotations
 
-import json
 from collections.abc import Sequence
-from importlib.metadata import version
 from typing import Any, TextIO
 
-from ...grammar.netlist import Place
 from ..verdict import ControllerReview, Deviation, Review, Verdict
 from . import Gate
-from .values import limit_values, number, spread_values
+from .values import limit_values, number, serialised, spread_values, tool
 
 SCHEMA = 1
 
@@ -24,10 +21,10 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     del gate
     report = {
         "schema": SCHEMA,
-        "tool": {"name": "pwmlint", "version": version("pwmlint")},
+        "tool": tool(),
         "reviews": [_review(review) for review in reviews],
     }
-    stream.write(json.dumps(report, indent=2, allow_nan=False) + "\n")
+    stream.write(serialised(report))
 
 
 def _review(review: Review) -> dict[str, Any]:
@@ -42,7 +39,7 @@ def _review(review: Review) -> dict[str, Any]:
         "controllers": [_controller(controller) for controller in review.controllers],
         "verdicts": [_verdict(verdict) for verdict in review.verdicts],
         "cautions": list(review.cautions),
-        "switched_off": [{"rule": off.rule, "place": _place(off.place)} for off in review.switched_off],
+        "switched_off": [{"rule": off.rule, "place": off.place._asdict()} for off in review.switched_off],
         "counts": review.counts,
         "accepted": review.accepted,
     }
@@ -53,7 +50,7 @@ def _controller(controller: ControllerReview) -> dict[str, Any]:
         "part": controller.part,
         "family": controller.family,
         "model": controller.model,
-        "place": _place(controller.place),
+        "place": controller.place._asdict(),
         "pins": [
             {
                 "number": pin.number,
@@ -80,13 +77,13 @@ def _verdict(verdict: Verdict) -> dict[str, Any]:
         "subject": verdict.subject,
         "controller": verdict.controller,
         "message": verdict.message,
-        "measured": spread_values(verdict.measured) if verdict.measured else None,
-        "limit": limit_values(verdict.limit) if verdict.limit else None,
+        "measured": spread_values(verdict.measured),
+        "limit": limit_values(verdict.limit),
         "margin": number(verdict.margin),
         "parts": list(verdict.parts),
         "nets": list(verdict.nets),
         "pins": list(verdict.pins),
-        "places": [_place(place) for place in verdict.places],
+        "places": [place._asdict() for place in verdict.places],
         "formula": verdict.formula,
         "contributions": [
             {"parameter": parameter, "share": number(share)} for parameter, share in verdict.contributions
@@ -111,10 +108,6 @@ def _deviation(deviation: Deviation | None) -> dict[str, Any] | None:
         "reason": deviation.reason,
         "owner": deviation.owner,
         "expires": deviation.expires.isoformat() if deviation.expires else None,
-        "accepted": spread_values(deviation.accepted) if deviation.accepted else None,
-        "place": _place(deviation.place),
+        "accepted": spread_values(deviation.accepted),
+        "place": deviation.place._asdict(),
     }
-
-
-def _place(place: Place) -> dict[str, Any]:
-    return {"file": place.file, "line": place.line, "column": place.column}

@@ -17,7 +17,7 @@ from . import Gate
 from .case_names import case_names
 from .details import details
 from .ranking import acceptance
-from .words import word
+from .words import gate_answer, word
 
 _QUIET = (Outcome.PASS, Outcome.INFORMATIONAL)
 
@@ -57,7 +57,7 @@ def _properties(review: Review, gate: Gate) -> ElementTree.Element:
         "configuration": review.configuration,
         "switched off": ", ".join(f"{one.rule} by {one.where}" for one in review.switched_off),
         "gate": str(gate.of(review)),
-        "answer": "passed" if gate.passes(review) else "not passed",
+        "answer": gate_answer(gate.passes(review)),
     }
     properties = ElementTree.Element("properties")
     for name, value in told.items():

@@ -11,15 +11,11 @@ from typing import TextIO
 
 from ..verdict import Deviation, Review, Verdict
 from . import Gate
-from .colour import shows_box_characters
 from .details import details
-from .glyphs import spelt_out
+from .markdown_parts import folded, named, table, write_lines
 from .markdown_text import code, inline
 from .ranking import acceptance, accepted, findings, unanswered
-from .words import counts, word
-
-# Hosts bound the length of a comment.
-MOST = 25
+from .words import counts, gate_answer, word
 
 # Details whose text is no prose.
 _CODE = ("formula", "at", "needs")
@@ -33,8 +29,7 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
         lines += [f"**pwmlint: {len(reviews)} netlists, {passed} passed the gate ({gate})**", ""]
     for review in reviews:
         lines += _review(review, gate)
-    text = "\n".join(lines).rstrip("\n") + "\n"
-    stream.write(text if shows_box_characters(stream) else spelt_out(text))
+    write_lines(lines, stream)
 
 
 def _review(review: Review, gate: Gate) -> Iterator[str]:
@@ -43,7 +38,8 @@ def _review(review: Review, gate: Gate) -> Iterator[str]:
     if review.name:
         yield from (f"Design: {inline(review.name)}", "")
     yield from (_answer(review, gate), "")
-    yield from _table(asked, review)
+    rows = [(_called(one), inline(one.message), named(one), _where(one, review)) for one in asked]
+    yield from table(("verdict", "finding", "rule", "at"), rows)
     yield from _folded("Findings with their figures", [_finding(one) for one in asked])
     yield from _folded("Could not be checked", [_open(one) for one in unanswered(review)])
     yield from _folded("Accepted", [_accepted(*pair) for pair in accepted(review)])
@@ -56,19 +52,7 @@ def _answer(review: Review, gate: Gate) -> str:
     """Return the gate's answer and the counts, those of what is accepted apart."""
     left = "".join(text for text, _ in counts(one for one in review.verdicts if one.deviation is None))
     told = [left or "no verdict", f"{review.accepted} accepted" if review.accepted else ""]
-    answer = "passed" if gate.passes(review) else "not passed"
-    return f"**Gate {gate.of(review)}: {answer}**; {', '.join(filter(None, told))}"
-
-
-def _table(asked: Sequence[Verdict], review: Review) -> Iterator[str]:
-    if not asked:
-        return
-    yield "| verdict | finding | rule | at |"
-    yield "| --- | --- | --- | --- |"
-    for verdict in asked[:MOST]:
-        cells = (_called(verdict), inline(verdict.message), _named(verdict), _where(verdict, review))
-        yield f"| {' | '.join(cells)} |"
-    yield from ("", *_beyond(len(asked)))
+    return f"**Gate {gate.of(review)}: {gate_answer(gate.passes(review))}**; {', '.join(filter(None, told))}"
 
 
 def _called(verdict: Verdict) -> str:
@@ -83,12 +67,8 @@ def _where(verdict: Verdict, review: Review) -> str:
     return f"{place.line}:{place.column}" if place.file == review.netlist else code(str(place))
 
 
-def _named(verdict: Verdict) -> str:
-    return f"{code(verdict.rule)} {inline(verdict.subject)}".rstrip()
-
-
 def _headline(verdict: Verdict) -> str:
-    return f"- **{_called(verdict)}** {_named(verdict)}: {inline(verdict.message)}"
+    return f"- **{_called(verdict)}** {named(verdict)}: {inline(verdict.message)}"
 
 
 def _finding(verdict: Verdict) -> Iterator[str]:
@@ -110,16 +90,4 @@ def _accepted(verdict: Verdict, deviation: Deviation) -> Iterator[str]:
 
 
 def _folded(title: str, items: Sequence[Iterable[str]]) -> Iterator[str]:
-    """Yield a list that is folded until somebody asks for it; the blank lines let it be Markdown inside."""
-    if not items:
-        return
-    yield from ("<details>", f"<summary>{title} ({len(items)})</summary>", "")
-    for item in items[:MOST]:
-        yield from item
-    yield from ("", *_beyond(len(items)), "</details>", "")
-
-
-def _beyond(found: int) -> Iterator[str]:
-    """Yield how many are not shown."""
-    if found > MOST:
-        yield from (f"{found - MOST} more are in the complete report.", "")
+    return folded(f"{title} ({len(items)})", items)

@@ -10,7 +10,7 @@ from typing import TextIO
 from rich.cells import cell_len
 from rich.console import Console
 
-from . import Gate, colour
+from . import Gate, colour, words
 from .bar import Piece
 from .glyphs import ASCII, BOX, Glyphs
 from .page import Page
@@ -51,7 +51,7 @@ def answer(page: Page, told: Sequence[Piece], gate: Gate, passed: bool) -> None:
     """Print the count and the gate's answer, on one line where they fit."""
     said: list[Piece] = [
         (f"gate {gate}: ", "bold"),
-        ("passed", "bold green") if passed else ("not passed", "bold red"),
+        (words.gate_answer(passed), "bold green" if passed else "bold red"),
     ]
     taken = sum(cell_len(text) for text, _ in (*told, *said))
     page.line((page.glyphs.strong * page.width, "dim"))

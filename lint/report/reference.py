@@ -5,13 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from itertools import groupby
 from textwrap import fill, indent
-from typing import TextIO
 
 from ..controllers import Figure, Profile
 from ..quantity import engineering
 from ..rule import EXAMPLES, Rule
-from .colour import shows_box_characters
-from .glyphs import spelt_out
 
 _WIDTH = 80
 
@@ -71,11 +68,6 @@ def describe_family(profile: Profile) -> str:
     for name, figure in profile.practices.items():
         lines += _figure(name, figure)
     return "\n".join(lines)
-
-
-def shown(text: str, stream: TextIO) -> str:
-    """Return `text` with the end of a line, in characters that `stream` can carry."""
-    return (text if shows_box_characters(stream) else spelt_out(text)) + "\n"
 
 
 def _figure(name: str, figure: Figure) -> list[str]:

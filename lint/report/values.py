@@ -1,8 +1,11 @@
-"""Quantities as data for programs: plain objects of numbers in SI base units."""
+"""What reports for programs are made of: quantities as numbers in SI base units, and the text of a report."""
 
 from __future__ import annotations
 
+import json
+from importlib.metadata import version
 from math import isfinite
+from typing import Any
 
 from ..quantity import Spread
 from ..verdict import Limit
@@ -13,8 +16,10 @@ _DIGITS, _LEAST = 9, 1e-15
 Values = dict[str, float | str | None]
 
 
-def spread_values(spread: Spread) -> Values:
-    """Return the three values of a spread and its unit."""
+def spread_values(spread: Spread | None) -> Values | None:
+    """Return the three values of a spread and its unit, None where there is none."""
+    if spread is None:
+        return None
     return {
         "minimum": number(spread.minimum),
         "nominal": number(spread.nominal),
@@ -23,8 +28,10 @@ def spread_values(spread: Spread) -> Values:
     }
 
 
-def limit_values(limit: Limit) -> Values:
-    """Return the two sides of a limit and its unit."""
+def limit_values(limit: Limit | None) -> Values | None:
+    """Return the two sides of a limit and its unit, None where there is none."""
+    if limit is None:
+        return None
     return {"minimum": number(limit.minimum), "maximum": number(limit.maximum), "unit": limit.unit}
 
 
@@ -37,3 +44,13 @@ def number(value: float | None) -> float | None:
     if value is None or not isfinite(value):
         return None
     return float(f"{value:.{_DIGITS}g}") if abs(value) >= _LEAST else 0.0
+
+
+def tool() -> dict[str, str]:
+    """Return what wrote the report."""
+    return {"name": "pwmlint", "version": version("pwmlint")}
+
+
+def serialised(report: dict[str, Any]) -> str:
+    """Return a report as the text of a file: ASCII throughout, no number that JSON has not."""
+    return json.dumps(report, indent=2, allow_nan=False) + "\n"

@@ -44,6 +44,11 @@ def word_of(verdict: Verdict) -> Piece:
     return _ACCEPTED if verdict.deviation is not None else word(verdict.outcome, verdict.level)
 
 
+def gate_answer(passed: bool) -> str:
+    """Return the answer of a gate."""
+    return "passed" if passed else "not passed"
+
+
 def badness(verdict: Verdict) -> int:
     """Return a key that sorts the worst verdict first."""
     return _ORDER.index(_key(verdict.outcome, verdict.level))

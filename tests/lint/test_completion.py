@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import argparse
 import shutil
 import subprocess
 from collections.abc import Callable, Sequence
@@ -11,6 +10,7 @@ from pathlib import Path
 import pytest
 from pwmlint.lint.cli import command_line
 from pwmlint.lint.commands import COMMANDS
+from pwmlint.lint.commands.parser import Commands, Parser
 from pwmlint.lint.completion import commands_of, script
 from pwmlint.lint.shells import SHELLS
 
@@ -38,11 +38,11 @@ def run(shell: str, program: str, folder: Path) -> str:
     return done.stdout
 
 
-def house() -> argparse.ArgumentParser:
+def house() -> Parser:
     """Return a command line whose words and help are as awkward as can be."""
-    parser = argparse.ArgumentParser(prog="hen-house")
+    parser = Parser(prog="hen-house")
     parser.add_argument("--100%", action="store_true", help="it's 100 %% [of: all]\n$(touch ruined) `x` \\")
-    commands = parser.add_subparsers()
+    commands = Commands(parser)
     hatch = commands.add_parser("hatch", help="eggs: 'brown' $(touch ruined)")
     hatch.add_argument("-e", "--egg", choices=HOSTILE, help="one of %(choices)s")
     hatch.add_argument("hen", choices=HOSTILE)
@@ -62,7 +62,7 @@ def folder(tmp_path: Path) -> Path:
 def bash(folder: Path) -> Complete:
     """Return a function that gives what bash is offered for the last of some words."""
 
-    def complete(*words: str, parser: argparse.ArgumentParser | None = None) -> list[str]:
+    def complete(*words: str, parser: Parser | None = None) -> list[str]:
         parser = parser or command_line()
         (folder / ".script").write_text(script("bash", parser, WORDS))
         function = "_" + parser.prog.replace("-", "_")
@@ -166,7 +166,7 @@ class TestZsh:
     # The completion system runs in an editor only, so its functions are stood in for by ones that print.
     STUBS = "compdef() { :; }; _arguments() { print -rl -- $@; }; _describe() { print -rl -- $commands; };"
 
-    def offers(self, words: Sequence[str], folder: Path, parser: argparse.ArgumentParser) -> list[str]:
+    def offers(self, words: Sequence[str], folder: Path, parser: Parser) -> list[str]:
         (folder / ".script").write_text(script("zsh", parser, WORDS))
         function = "_" + parser.prog.replace("-", "_")
         asked = " ".join(words)
@@ -198,7 +198,7 @@ class TestZsh:
 
 
 class TestFish:
-    def offers(self, line: str, folder: Path, parser: argparse.ArgumentParser | None = None) -> list[str]:
+    def offers(self, line: str, folder: Path, parser: Parser | None = None) -> list[str]:
         (folder / "script.fish").write_text(script("fish", parser or command_line(), WORDS))
         found = run("fish", f"source ./script.fish; complete -C '{line}'", folder)
         return [one.partition("\t")[0] for one in found.splitlines()]
@@ -224,6 +224,6 @@ class TestFish:
 
 @pytest.mark.parametrize("shell", SHELLS)
 @pytest.mark.parametrize("parser", [command_line, house], ids=["ours", "awkward"])
-def test_the_syntax(shell: str, parser: Callable[[], argparse.ArgumentParser], folder: Path) -> None:
+def test_the_syntax(shell: str, parser: Callable[[], Parser], folder: Path) -> None:
     (folder / "script").write_text(script(shell, parser(), WORDS))
     assert run(shell, f"{shell} -n ./script", folder) == ""

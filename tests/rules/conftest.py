@@ -62,3 +62,15 @@ def without_pins() -> Callable[..., str]:
         return f"\n[controllers.U1]\npins = {pins}\n"
 
     return write
+
+
+@pytest.fixture
+def over_voltage() -> dict[str, str]:
+    """What makes the second amplifier of the pump take over at 2.5 V x 5.7 = 14.25 V of the same output."""
+    return {
+        "R9": "REF LIM 5.1k 1%",
+        "R10": "LIM 0 5.1k 1%",
+        "R11": "VOUT SNS 4.7k 1%",
+        "R12": "SNS 0 1k 1%",
+        "J2": "VOUT 0 PUMP",
+    }

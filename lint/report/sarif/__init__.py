@@ -6,15 +6,15 @@ identifiers drawn at random, ASCII throughout.
 
 from __future__ import annotations
 
-import json
 from collections.abc import Iterable, Sequence
-from importlib.metadata import version
 from typing import Any, TextIO
 
 from ....grammar.errors import printable
 from ...rule import Rule, load_rules
 from ...verdict import Review, SwitchedOff
 from .. import Gate
+from ..values import serialised, tool
+from ..words import gate_answer
 from .places import BASE, artifact, physical
 from .results import Tables, results
 from .rules import descriptor
@@ -35,8 +35,7 @@ def log(reviews: Sequence[Review], gate: Gate, rules: Sequence[Rule]) -> dict[st
     run: dict[str, Any] = {
         "tool": {
             "driver": {
-                "name": "pwmlint",
-                "version": version("pwmlint"),
+                **tool(),
                 "rules": [descriptor(one) for one in rules],
                 "supportedTaxonomies": [{"name": NAME, "index": 0}],
             }
@@ -51,18 +50,13 @@ def log(reviews: Sequence[Review], gate: Gate, rules: Sequence[Rule]) -> dict[st
     return {"$schema": SCHEMA, "version": "2.1.0", "runs": [run]}
 
 
-def serialised(data: dict[str, Any]) -> str:
-    """Return a log as the text of a file."""
-    return json.dumps(data, indent=2, allow_nan=False) + "\n"
-
-
 def _invocation(reviews: Iterable[Review], gate: Gate) -> dict[str, Any]:
     """Return how the run ended: it was a success whatever it found, and the gate gives the exit status."""
     passed = all(gate.passes(review) for review in reviews)
     told: dict[str, Any] = {
         "executionSuccessful": True,
         "exitCode": 0 if passed else 1,
-        "exitCodeDescription": f"gate {gate}: {'passed' if passed else 'not passed'}",
+        "exitCodeDescription": f"gate {gate}: {gate_answer(passed)}",
     }
     if off := [_not_asked(one, review) for review in reviews for one in review.switched_off]:
         told["toolConfigurationNotifications"] = off

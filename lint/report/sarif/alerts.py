@@ -11,7 +11,8 @@ from typing import Any, TextIO, cast
 from ...rule import load_rules
 from ...verdict import Level, Outcome, Review
 from .. import Gate
-from . import log, serialised
+from ..values import serialised
+from . import log
 from .identity import INSTANCE
 
 # What the hosts document of themselves.

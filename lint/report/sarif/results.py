@@ -113,8 +113,8 @@ def _properties(verdict: Verdict) -> dict[str, Any]:
         "topic": printable(verdict.topic),
         "subject": printable(verdict.subject),
         "controller": printable(verdict.controller),
-        "measured": spread_values(verdict.measured) if verdict.measured is not None else None,
-        "limit": limit_values(verdict.limit) if verdict.limit is not None else None,
+        "measured": spread_values(verdict.measured),
+        "limit": limit_values(verdict.limit),
         "margin": number(verdict.margin),
         "formula": printable(verdict.formula),
         "contributions": [

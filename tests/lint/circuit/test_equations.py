@@ -5,11 +5,9 @@ from __future__ import annotations
 import numpy as np
 import pytest
 from pwmlint.lint.circuit.equations import Equations
-from pwmlint.lint.circuit.network import Condition, FreePotential, Network, Resistor, Value, VoltageSource
+from pwmlint.lint.circuit.network import Condition, FreePotential, Network, Resistor, VoltageSource
 
-
-def constant(number: float) -> Value:
-    return lambda _: np.full(1, number)
+from .elements import constant
 
 
 def test_a_divider_in_two_samples():

@@ -25,13 +25,11 @@ from pwmlint.lint.circuit.solver import Solution, solve
 from scipy.sparse import coo_matrix
 from scipy.sparse.linalg import spsolve  # pyright: ignore[reportUnknownVariableType] - scipy is untyped
 
+from .elements import constant
+
 GROUND = "0"
 
 quick = settings(max_examples=40, deadline=None, suppress_health_check=[HealthCheck.too_slow])
-
-
-def constant(number: float) -> Value:
-    return lambda _: np.full(1, number)
 
 
 def ohms(low: float = 1.0, high: float = 1e6) -> st.SearchStrategy[float]:

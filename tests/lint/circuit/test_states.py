@@ -11,11 +11,9 @@ from hypothesis import strategies as st
 from pwmlint.lint.circuit.network import Network, Resistor, Sample, Value
 from pwmlint.lint.circuit.states import Junction, PiecewiseLinear, Probe, State
 
+from .elements import constant
+
 DROP, ZENER = 0.6, 5.1
-
-
-def constant(number: float) -> Value:
-    return lambda _: np.full(1, number)
 
 
 def reading(name: str) -> Value:

@@ -12,11 +12,8 @@ from pwmlint.lint.commands.parser import Parser
 def parsers() -> Iterator[Parser]:
     """Yield the parser of the command line and that of each command."""
     whole = command_line()
-    assert isinstance(whole, Parser)
     yield whole
-    for action in whole._actions:  # pyright: ignore[reportPrivateUsage]  # argparse offers no other way
-        if isinstance(action, argparse._SubParsersAction):  # pyright: ignore[reportPrivateUsage]
-            yield from action.choices.values()  # pyright: ignore[reportUnknownMemberType, reportUnknownVariableType]
+    yield from whole.commands.values()
 
 
 EXAMPLES = [line for parser in parsers() for line, _ in parser.examples]

@@ -7,7 +7,7 @@ from io import BytesIO, TextIOWrapper
 import pytest
 from pwmlint.grammar.netlist import Place
 from pwmlint.lint.report import Gate, writer
-from pwmlint.lint.report.markdown import MOST
+from pwmlint.lint.report.markdown_parts import MOST
 from pwmlint.lint.report.markdown_text import code, inline
 from pwmlint.lint.verdict import Level, Outcome, Review, Verdict
 
@@ -76,7 +76,7 @@ def test_a_comment_stays_short(written: Written, sound: Review) -> None:
     failed = Verdict(outcome=Outcome.FAIL, level=Level.ERROR, message="leaks " * 1000, rule="press.oil")
     text = written("markdown", replace(sound, verdicts=(failed,) * (MOST + 7)))
     assert len(table(text)) == MOST
-    assert text.count("7 more are in the complete report.") == 2
+    assert text.count("and 7 more; `--format json` tells all") == 2
     assert len(text) < 65_536
 
 

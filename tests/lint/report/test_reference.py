@@ -6,7 +6,8 @@ from io import BytesIO, TextIOWrapper
 from pwmlint.lint.circuit.controllers import Controller
 from pwmlint.lint.controllers import families, load
 from pwmlint.lint.design import Design
-from pwmlint.lint.report.reference import describe_family, describe_rule, list_families, list_rules, shown
+from pwmlint.lint.report.glyphs import shown
+from pwmlint.lint.report.reference import describe_family, describe_rule, list_families, list_rules
 from pwmlint.lint.rule import rule
 from pwmlint.lint.verdict import Verdict
 

@@ -1,0 +1,1 @@
+"""Readers of netlists, of values and of texts."""

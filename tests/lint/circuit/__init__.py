@@ -1,0 +1,1 @@
+"""What a netlist means: kinds, controllers, potentials, and the networks that are solved."""

@@ -1,0 +1,1 @@
+"""Figures and answers from elsewhere, each beside its source."""
