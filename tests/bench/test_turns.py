@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+import sys
+from types import FrameType
+
 import pytest
 
 from .turns import best_attempt, least_times
@@ -29,3 +32,19 @@ def test_a_miss_is_measured_again(
     measured = iter(values)
     assert best_attempt(lambda: next(measured), 3, name="spread") == best
     assert capsys.readouterr().out.strip() == printed
+
+
+def test_nothing_is_traced_while_it_is_measured() -> None:
+    seen: list[object] = []
+    before = sys.gettrace()
+
+    def trace(frame: FrameType, event: str, argument: object) -> None:
+        del frame, event, argument
+
+    sys.settrace(trace)
+    try:
+        least_times([lambda: seen.append(sys.gettrace())], 2)
+        assert sys.gettrace() is trace
+    finally:
+        sys.settrace(before)
+    assert seen == [None, None]
