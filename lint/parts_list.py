@@ -16,6 +16,7 @@ from types import MappingProxyType
 
 from ..grammar.errors import NetlistError
 from ..grammar.netlist import Place
+from ..grammar.property_names import is_fitted
 from ..grammar.values import ValueTextError, read_tolerance, read_value
 from .csv_table import Cell, CsvTable
 from .references import expand
@@ -61,6 +62,7 @@ class PartData:
     tolerance_range:  (low, high) as fractions, such as (-0.2, 0.8)
     power, voltage, current: ratings in W, V and A
     temperature_coefficient: in ppm/K
+    fitted:           False where the list says that the part is left out
     """
 
     value: str
@@ -71,6 +73,7 @@ class PartData:
     package: str
     dielectric: str
     temperature_coefficient: float | None
+    fitted: bool
     place: Place = field(compare=False)
 
     @property
@@ -163,6 +166,7 @@ class _Reader:
             package=_text(row, "package"),
             dielectric=_text(row, "dielectric"),
             temperature_coefficient=self._quantity(row, "temperature coefficient"),
+            fitted=_is_fitted(row),
             place=listed.place,
         )
         for reference in references:
@@ -233,6 +237,12 @@ class _Reader:
         self._mistakes.append(
             PartsListError(message, place, excerpt=excerpt, expected=expected, remedy=remedy)
         )
+
+
+def _is_fitted(row: Mapping[str, Cell]) -> bool:
+    """Tell whether a part is fitted, by the columns that say so, or by what stands in that of its value."""
+    said = {kind: _text(row, kind) for kind in ("fit", "not fit")}
+    return is_fitted(_text(row, "value") or _text(row, "comment"), said)
 
 
 def _text(row: Mapping[str, Cell], kind: str) -> str:

@@ -298,7 +298,7 @@ def _conflict(part: Part, design: Design, listed: PartsList) -> Verdict | None:
     drawn = design.circuit.reader.written(part)
     if row is None:
         return None
-    if leaves_out(row.value):
+    if not row.fitted:
         return _left_out(part, row)
     if not row.value or not part.value or drawn is None:
         return None
@@ -322,9 +322,10 @@ def _conflict(part: Part, design: Design, listed: PartsList) -> Verdict | None:
 
 
 def _left_out(part: Part, row: PartData) -> Verdict:
+    said = f': "{row.value}"' if leaves_out(row.value) else ""
     return Verdict(
         outcome=Outcome.FAIL,
-        message=f'{part.reference} is in the netlist, and the parts list leaves it out: "{row.value}"',
+        message=f"{part.reference} is in the netlist, and the parts list leaves it out{said}",
         subject=part.reference,
         parts=(part.reference,),
         places=(part.place, row.place),

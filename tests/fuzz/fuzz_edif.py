@@ -1,6 +1,6 @@
 """Reads a great many damaged EDIF files and counts what comes of it.
 
-    python tests/fuzz/fuzz_edif.py 100000 [seed]
+    python tests/fuzz/fuzz_edif.py 100000 --seed 7
 
 Every file is one of the fixtures, changed in up to eight places: half of them have whole forms left out,
 doubled, moved or given another keyword, the others any text, and scraps that hurt. A file is read or
@@ -10,6 +10,7 @@ over two seconds. The seed and the number of a failure make it again.
 
 from __future__ import annotations
 
+import argparse
 import random
 import re
 import sys
@@ -138,4 +139,8 @@ def main(count: int, seed: int) -> int:
 
 
 if __name__ == "__main__":
-    sys.exit(main(int(sys.argv[1]), int(sys.argv[2]) if len(sys.argv) > 2 else 1))
+    parser = argparse.ArgumentParser(description="Read damaged EDIF files.")
+    parser.add_argument("count", type=int)
+    parser.add_argument("--seed", type=int, default=1)
+    given = parser.parse_args()
+    sys.exit(main(given.count, given.seed))

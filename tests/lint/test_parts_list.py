@@ -271,3 +271,26 @@ def test_hostile_lists_cost_little(write: Write, row: str) -> None:
         refusal = error
         assert refusal.place.line > 1
     assert time.process_time() - start < 5.0
+
+
+@pytest.mark.parametrize(
+    ("heading", "cell", "fitted"),
+    [
+        ("Fitted", "yes", True),
+        ("Fitted", "No", False),
+        ("Populate", "0", False),
+        ("Mounted", "", True),
+        ("Fit", "DNP", False),
+        ("DNP", "x", False),
+        ("DNP", "DNP", False),
+        ("DNP", "no", True),
+        ("Do Not Populate", "1", False),
+        ("Not fitted", "", True),
+        ("Value", "10k DNI", False),
+        ("Value", "10k", True),
+    ],
+)
+def test_whether_a_part_is_fitted(tmp_path: Path, heading: str, cell: str, fitted: bool) -> None:
+    path = tmp_path / "fan.parts.csv"
+    path.write_text(f"Reference,{heading}\nR7,{cell}\n", encoding="utf-8")
+    assert read_parts_list(path).rows["R7"].fitted is fitted

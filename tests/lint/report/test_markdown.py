@@ -50,7 +50,7 @@ def test_the_rest_is_folded(written: Written, faulty: Review) -> None:
 
 def test_what_is_accepted_stands_apart_with_its_reason(written: Written, accepted: Review) -> None:
     text = written("markdown", accepted)
-    assert "3 info, 65 pass, 1 accepted" in text
+    assert "3 info, 66 pass, 1 accepted" in text
     assert not any("feedback.output-voltage" in row for row in table(text))
     folded = text.partition("<summary>Accepted (1)</summary>")[2]
     assert (
