@@ -1,4 +1,4 @@
-"""The bytes of a brief or a parts list from disk, with an error of its own kind for all that can be wrong."""
+"""The text of a file that a person wrote, with an error of its own kind for all that can be wrong."""
 
 from __future__ import annotations
 

@@ -99,14 +99,6 @@ def read_any_range(text: str) -> Spread:
         ) from None
 
 
-def read_quantity(text: str, unit: str) -> float:
-    """Return a single quantity such as "2 %" in `unit`; raise QuantityTextError as `read_range` does."""
-    spread = read_range(text, unit)
-    if spread.minimum != spread.maximum:
-        raise QuantityTextError("a range where one value is wanted", expected=_EXPECTED[unit])
-    return spread.nominal
-
-
 def _shared_unit(text: str) -> str:
     """Return the unit of the right end of a range, which a bare left end shares."""
     match = _NUMBER_AND_UNIT.fullmatch(text.strip())

@@ -15,7 +15,7 @@ from ...grammar.netlist import Part
 from .correspondence import correspondence
 from .nets import NetMatching, PartPair
 from .side import Side
-from .worth import kind_of, worth
+from .worth import worth
 
 # What a net is for the comparison: a text that is the same in both revisions, None where it has no partner.
 _Identity = Callable[[str], str | None]
@@ -184,7 +184,7 @@ def _look(side: Side, part: Part, identity: _Identity) -> object | None:
     told = [net for net in nets if net is not None]
     if not told or len(told) < len(nets):
         return None
-    return kind_of(side, part), worth(side, part), tuple(sorted(told))
+    return side.kind(part), worth(side, part), tuple(sorted(told))
 
 
 def _is_shorter(
@@ -212,7 +212,7 @@ def _apart(old: Side, one: Part, new: Side, other: Part) -> int:
     keys = Counter(old.key(net) for net in old.nets_of(one) if net)
     there = Counter(new.key(net) for net in new.nets_of(other) if net)
     pins = max((keys - there).total(), (there - keys).total())
-    return pins + (kind_of(old, one) != kind_of(new, other)) + (worth(old, one) != worth(new, other))
+    return pins + (old.kind(one) != new.kind(other)) + (worth(old, one) != worth(new, other))
 
 
 # ----------------------------------------------------------------------------------- fewest changes
@@ -228,7 +228,7 @@ def _changes(old: Side, new: Side, reading: Matching) -> int:
     told = sum(1 + len(part.pins) for part in lone)
     for pair in reading.pairs:
         told += pair.old.reference.casefold() != pair.new.reference.casefold()
-        told += kind_of(old, pair.old) != kind_of(new, pair.new)
+        told += old.kind(pair.old) != new.kind(pair.new)
         told += worth(old, pair.old) != worth(new, pair.new)
         told += _moved(old, new, pair, reading.nets)
     nets = reading.nets

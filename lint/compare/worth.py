@@ -1,4 +1,4 @@
-"""What a part is and what it is worth, so far as both revisions can tell it alike."""
+"""What a part is worth, so far as both revisions can tell it alike."""
 
 from __future__ import annotations
 
@@ -9,11 +9,6 @@ from .side import Side
 
 _DIGITS = 9  # two spellings of one value differ in the rounding of doubles
 _NEITHER = re.compile(r"[\W_]+")
-
-
-def kind_of(side: Side, part: Part) -> str:
-    """Return the kind of a part."""
-    return side.kind(part)
 
 
 def worth(side: Side, part: Part) -> str:

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from ..compare.comparison import Change, Comparison, VerdictChange
+from ..deviations import ACCEPTABLE
 from ..quantity import figure
-from ..verdict import Limit, Outcome, Verdict
+from ..verdict import Limit, Verdict
 from .change_words import ARROW
 from .details import margin
 from .words import word
@@ -18,12 +19,10 @@ HEADINGS = {
     Change.CHANGED: "other figures",
 }
 
-_ASKS = (Outcome.FAIL, Outcome.REVIEW, Outcome.OPEN)
-
 
 def asks(verdict: Verdict) -> bool:
     """Tell whether a verdict asks something of the reader that nobody has accepted."""
-    return verdict.outcome in _ASKS and verdict.deviation is None
+    return verdict.outcome in ACCEPTABLE and verdict.deviation is None
 
 
 def tells_nothing(change: VerdictChange) -> bool:

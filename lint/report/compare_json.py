@@ -20,6 +20,7 @@ from ..compare.comparison import (
 )
 from ..verdict import Review, Verdict
 from . import Gate
+from .json import read_of
 from .values import limit_values, number, serialised, spread_values, tool
 
 SCHEMA = 1
@@ -43,13 +44,7 @@ def write(comparison: Comparison, stream: TextIO, gate: Gate) -> None:
 
 def _revision(review: Review) -> dict[str, Any]:
     return {
-        "netlist": review.netlist,
-        "format": review.format,
-        "name": review.name,
-        "brief": review.brief,
-        "parts_list": review.parts_list,
-        "deviations": review.deviations,
-        "configuration": review.configuration,
+        **read_of(review),
         "cautions": list(review.cautions),
         "counts": review.counts,
     }

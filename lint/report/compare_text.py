@@ -13,11 +13,11 @@ from ..compare.comparison import Change, Comparison, VerdictChange
 from ..quantity import Spread
 from ..verdict import Review, Verdict
 from . import Gate
-from .bar import Bar, Piece, bar, label_line
+from .bar import Piece, bar
 from .change_details import HEADINGS, asks, rows, summary, tells_nothing
 from .change_words import ADDED, REMOVED, Line, counted, net_lines, part_lines
 from .details import places
-from .findings import lead, name
+from .findings import gauge, lead, name
 from .glyphs import BOX, Glyphs
 from .page import Page, wrap
 from .paper import answer, cautions, on_paper
@@ -152,20 +152,9 @@ def _gauge(page: Page, change: VerdictChange) -> None:
     drawn = bar(_both(old, new.measured), new.limit, cells)
     if drawn is None:
         return
-    outside = word(new.outcome, new.level)[1]
     now = replace(drawn, spread=new.measured)
-    margin, room = " " * _INDENT, page.width - _INDENT
-    page.blank()
-    page.line((margin + page.say(label_line(now.limits(page.glyphs), room)), "dim"))
-    if old is not None:
-        _bar(page, "was", replace(drawn, spread=old), outside)
-    _bar(page, "now" if old is not None else "", now, outside)
-    page.line((margin + page.say(label_line(now.values(), room)), ""))
-    page.blank()
-
-
-def _bar(page: Page, label: str, drawn: Bar, outside: str) -> None:
-    page.line((f"{label:>{_INDENT - 1}} ", "dim"), *drawn.draw(page.glyphs, outside))
+    bars = [("", now)] if old is None else [("was", replace(drawn, spread=old)), ("now", now)]
+    gauge(page, bars, word(new.outcome, new.level)[1], _INDENT)
 
 
 def _both(old: Spread | None, new: Spread) -> Spread:

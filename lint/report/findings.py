@@ -12,6 +12,7 @@ from ..verdict import TOPICS, Outcome, Verdict
 from .bar import Bar, Piece, bar, label_line
 from .details import details, margin
 from .page import Page
+from .ranking import asks
 from .words import badness, counts, word, word_of
 
 _INDENT = 11
@@ -43,11 +44,6 @@ def topics(page: Page, verdicts: Sequence[Verdict]) -> None:
             page.blank()
 
 
-def asks(verdict: Verdict) -> bool:
-    """Tell whether a verdict asks something of the reader and is therefore printed in full."""
-    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW) and verdict.deviation is None
-
-
 def name(verdict: Verdict) -> str:
     """Return the rule and its subject in one text."""
     return f"{verdict.rule}  {verdict.subject}".rstrip()
@@ -68,21 +64,23 @@ def _full(page: Page, verdict: Verdict) -> None:
     page.paragraph(name(verdict), _INDENT, style="dim")
     drawn = _bar(verdict, min(_LONGEST_BAR, page.width - _INDENT))
     if drawn is not None:
-        _gauge(page, drawn, word(verdict.outcome, verdict.level)[1])
+        gauge(page, [("", drawn)], word(verdict.outcome, verdict.level)[1], _INDENT)
     for label, text in details(verdict):
         if text:
             label_style = "bold" if label == "remedy" else "dim"
             page.paragraph(text, _INDENT + _LABEL, (" " * _INDENT + label, label_style))
 
 
-def _gauge(page: Page, drawn: Bar, outside: str) -> None:
-    """Print a bar on three lines: the limits above it, the values below it."""
-    margin = " " * _INDENT
-    room = page.width - _INDENT
+def gauge(page: Page, bars: Sequence[tuple[str, Bar]], outside: str, indent: int) -> None:
+    """Print bars of one scale, each with its label: the limits above them, the last one's values below."""
+    last = bars[-1][1]
+    margin = " " * indent
+    room = page.width - indent
     page.blank()
-    page.line((margin + page.say(label_line(drawn.limits(page.glyphs), room)), "dim"))
-    page.line((margin, ""), *drawn.draw(page.glyphs, outside))
-    page.line((margin + page.say(label_line(drawn.values(), room)), ""))
+    page.line((margin + page.say(label_line(last.limits(page.glyphs), room)), "dim"))
+    for label, drawn in bars:
+        page.line((f"{label:>{indent - 1}} ", "dim" if label else ""), *drawn.draw(page.glyphs, outside))
+    page.line((margin + page.say(label_line(last.values(), room)), ""))
     page.blank()
 
 

@@ -27,7 +27,8 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     stream.write(serialised(report))
 
 
-def _review(review: Review) -> dict[str, Any]:
+def read_of(review: Review) -> dict[str, str | None]:
+    """Return what was read for a review: the netlist and what belongs to it."""
     return {
         "netlist": review.netlist,
         "format": review.format,
@@ -36,6 +37,12 @@ def _review(review: Review) -> dict[str, Any]:
         "parts_list": review.parts_list,
         "deviations": review.deviations,
         "configuration": review.configuration,
+    }
+
+
+def _review(review: Review) -> dict[str, Any]:
+    return {
+        **read_of(review),
         "controllers": [_controller(controller) for controller in review.controllers],
         "verdicts": [_verdict(verdict) for verdict in review.verdicts],
         "cautions": list(review.cautions),

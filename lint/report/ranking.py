@@ -6,14 +6,19 @@ from ..verdict import Deviation, Outcome, Review, Verdict
 from .words import badness
 
 
+def asks(verdict: Verdict) -> bool:
+    """Tell whether a verdict failed or is for a person to judge, and is not accepted."""
+    return verdict.outcome in (Outcome.FAIL, Outcome.REVIEW) and verdict.deviation is None
+
+
 def findings(review: Review) -> list[Verdict]:
     """Return what failed or is for a person to judge, and is not accepted; worst first."""
-    return _ranked(review, Outcome.FAIL, Outcome.REVIEW)
+    return sorted(filter(asks, review.verdicts), key=badness)
 
 
 def unanswered(review: Review) -> list[Verdict]:
     """Return what could not be checked and is not accepted."""
-    return _ranked(review, Outcome.OPEN)
+    return [one for one in review.verdicts if one.outcome is Outcome.OPEN and one.deviation is None]
 
 
 def accepted(review: Review) -> list[tuple[Verdict, Deviation]]:
@@ -26,8 +31,3 @@ def acceptance(deviation: Deviation) -> str:
     """Return in words who accepts a verdict, why, and until when."""
     until = f", until {deviation.expires.isoformat()}" if deviation.expires is not None else ""
     return f"accepted by {deviation.owner}{until}: {deviation.reason}"
-
-
-def _ranked(review: Review, *outcomes: Outcome) -> list[Verdict]:
-    chosen = (one for one in review.verdicts if one.outcome in outcomes and one.deviation is None)
-    return sorted(chosen, key=badness)

@@ -15,11 +15,11 @@ from rich.console import Console
 from ..verdict import ControllerReview, Outcome, PinRow, Review, Verdict
 from . import Gate
 from .bar import Piece
-from .findings import asks, lead, name, topics
+from .findings import lead, name, topics
 from .glyphs import BOX, Glyphs
 from .page import Page
 from .paper import answer, cautions, on_paper
-from .ranking import acceptance, accepted
+from .ranking import acceptance, accepted, asks, unanswered
 from .words import counts, grouped, word
 
 _LABEL = 12
@@ -50,7 +50,7 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
                 page.heading("the rest of the board", glyphs.strong)
                 page.blank()
             topics(page, verdicts)
-        _not_checked(page, review.verdicts)
+        _not_checked(page, unanswered(review))
         _accepted(page, review)
         _taken_for_granted(page, review)
         cautions(page, review.cautions)
@@ -162,15 +162,13 @@ def _pin_order(pin: PinRow) -> tuple[bool, int, str]:
 
 
 def _not_checked(page: Page, verdicts: Sequence[Verdict]) -> None:
-    """Print the open verdicts, grouped by the input that would open them."""
+    """Print what could not be checked, grouped by the input that would open it."""
     groups: dict[tuple[str, ...], list[Verdict]] = {}
     for verdict in verdicts:
-        if verdict.outcome is Outcome.OPEN and verdict.deviation is None:
-            groups.setdefault(verdict.needs, []).append(verdict)
+        groups.setdefault(verdict.needs, []).append(verdict)
     if not groups:
         return
-    members = [verdict for group in groups.values() for verdict in group]
-    page.heading("could not be checked", page.glyphs.light, counts(members))
+    page.heading("could not be checked", page.glyphs.light, counts(verdicts))
     page.blank()
     for needs, group in sorted(groups.items(), key=lambda item: (not item[0], -len(item[1]), item[0])):
         mark = lead(group[0])

@@ -1,4 +1,4 @@
-"""The words of outcomes and levels in a text report, and their colours.
+"""The words of outcomes and levels in reports, and their colours where there are some.
 
 IEC 60073: red asks to act, yellow is abnormal, green is normal, blue asks for something of the reader.
 """

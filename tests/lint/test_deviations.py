@@ -54,7 +54,7 @@ def load(maximum: float, outcome: Outcome = Outcome.FAIL, **more: object) -> Ver
 def replace_all(verdict: Verdict, **more: object) -> Verdict:
     from dataclasses import replace
 
-    return replace(verdict, **more)  # type: ignore[arg-type]  # pyright: ignore[reportArgumentType]
+    return replace(verdict, **more)  # pyright: ignore[reportArgumentType]
 
 
 class TestReading:

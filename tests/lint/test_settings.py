@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
-from pwmlint.lint.configuration import ConfigurationError
+from pwmlint.lint.configuration import ConfigurationError, Setting
 from pwmlint.lint.estimate import Method
 from pwmlint.lint.house_rules import HouseRuleError
 from pwmlint.lint.report import Gate
@@ -65,30 +65,25 @@ GIVEN = Given(
 )
 
 
-def values(settings: Settings) -> list[object]:
+def each(settings: Settings) -> list[Setting[object]]:
     return [
-        settings.gate.value,
-        settings.strict.value,
-        settings.worst_case.value,
-        settings.brief.value,
-        settings.parts_list.value,
-        settings.deviations.value,
-        settings.allow_include.value,
-        settings.reports.value,
+        settings.gate,
+        settings.strict,
+        settings.worst_case,
+        settings.brief,
+        settings.parts_list,
+        settings.deviations,
+        settings.allow_include,
+        settings.reports,
     ]
+
+
+def values(settings: Settings) -> list[object]:
+    return [one.value for one in each(settings)]
 
 
 def sources(settings: Settings) -> list[str]:
-    return [
-        settings.gate.source,
-        settings.strict.source,
-        settings.worst_case.source,
-        settings.brief.source,
-        settings.parts_list.source,
-        settings.deviations.source,
-        settings.allow_include.source,
-        settings.reports.source,
-    ]
+    return [one.source for one in each(settings)]
 
 
 class TestPrecedence:

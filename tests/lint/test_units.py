@@ -2,7 +2,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from pwmlint.lint.quantity import Spread
-from pwmlint.lint.units import QuantityTextError, quantity, read_quantity, read_range, registry
+from pwmlint.lint.units import QuantityTextError, quantity, read_range, registry
 
 
 @pytest.mark.parametrize(
@@ -82,12 +82,6 @@ def test_a_wrong_dimension_says_what_is_expected() -> None:
     with pytest.raises(QuantityTextError) as caught:
         read_range("50 V", "Hz")
     assert caught.value.expected == "a frequency such as 50 kHz"
-
-
-def test_a_single_quantity() -> None:
-    assert read_quantity("2 %", "") == 0.02
-    with pytest.raises(QuantityTextError, match="range"):
-        read_quantity("2 .. 3 %", "")
 
 
 def test_the_registry_is_ours_and_made_once() -> None:

@@ -6,13 +6,12 @@ import json
 import re
 from dataclasses import replace
 from importlib.metadata import version
-from importlib.resources import files
 from io import StringIO
 from math import inf
 from typing import Any
 
 import pytest
-from jsonschema import Draft202012Validator, ValidationError
+from jsonschema import ValidationError
 from markdown_it import MarkdownIt
 from pwmlint.grammar.netlist import Place
 from pwmlint.lint.compare.comparison import (
@@ -33,7 +32,9 @@ from pwmlint.lint.report import COMPARISON_FORMATS, Gate, comparison_writer
 from pwmlint.lint.report.compare_text import MOST, render
 from pwmlint.lint.report.glyphs import ASCII, BOX, Glyphs
 from pwmlint.lint.verdict import Deviation, Level, Limit, Outcome, Review, Verdict
-from rich.console import Console
+
+from .json_schema import check, schema_of
+from .paper import printed_by
 
 PLACE = Place("orchard/frost-fan-b.cir", 21, 1)
 LIMIT = Limit(None, 0.010, "A")
@@ -151,17 +152,7 @@ def printed(
     gate: Gate | None = None,
     colour: bool = False,
 ) -> str:
-    sheet = StringIO()
-    console = Console(
-        file=sheet,
-        width=width,
-        color_system="standard" if colour else None,
-        force_terminal=colour,
-        no_color=not colour,
-        legacy_windows=False,
-    )
-    render(comparison, console, gate or Gate(), glyphs)
-    return sheet.getvalue()
+    return printed_by(lambda console: render(comparison, console, gate or Gate(), glyphs), width, colour)
 
 
 def written(comparison: Comparison, form: str, gate: Gate | None = None) -> str:
@@ -299,19 +290,10 @@ class TestMarkdown:
 
 @pytest.fixture(scope="module")
 def schema() -> dict[str, Any]:
-    loaded: dict[str, Any] = json.loads(
-        (files("pwmlint.lint.report") / "compare.schema.json").read_text(encoding="utf-8")
-    )
-    Draft202012Validator.check_schema(loaded)
-    return loaded
+    return schema_of("compare.schema.json")
 
 
 class TestJson:
-    @staticmethod
-    def check(schema: dict[str, Any], report: dict[str, Any]) -> None:
-        # The library's own stubs leave the keyword arguments of `validate` untyped.
-        Draft202012Validator(schema).validate(report)  # pyright: ignore[reportUnknownMemberType]
-
     @staticmethod
     def data(comparison: Comparison) -> dict[str, Any]:
         loaded: dict[str, Any] = json.loads(written(comparison, "json"))
@@ -320,9 +302,9 @@ class TestJson:
     def test_follows_the_schema(
         self, comparison: Comparison, steering: Comparison, schema: dict[str, Any]
     ) -> None:
-        self.check(schema, self.data(comparison))
-        self.check(schema, self.data(replace(steering, verdicts=())))
-        self.check(schema, self.data(replace(comparison, circuit=CircuitChanges(), verdicts=())))
+        check(schema, self.data(comparison))
+        check(schema, self.data(replace(steering, verdicts=())))
+        check(schema, self.data(replace(comparison, circuit=CircuitChanges(), verdicts=())))
 
     def test_the_schema_describes_every_key_and_no_other(
         self, comparison: Comparison, schema: dict[str, Any]
@@ -357,7 +339,7 @@ class TestJson:
         report = self.data(comparison)
         report["verdicts"][place] |= change
         with pytest.raises(ValidationError):
-            self.check(schema, report)
+            check(schema, report)
 
     def test_the_contract(self, comparison: Comparison) -> None:
         report = self.data(comparison)
@@ -385,7 +367,7 @@ class TestJson:
     def test_what_has_no_bound_is_null(self, comparison: Comparison, schema: dict[str, Any]) -> None:
         verdict = replace(load(0.012), measured=Spread(1.0, inf, inf, "A"), margin=-inf)
         report = self.data(replace(comparison, verdicts=(VerdictChange(Change.NEW, None, verdict),)))
-        self.check(schema, report)
+        check(schema, report)
         assert report["verdicts"][0]["new"]["measured"]["maximum"] is None
         assert report["verdicts"][0]["new"]["margin"] is None
 

@@ -12,13 +12,11 @@ import re
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
 from datetime import date
-from importlib.resources import files
 from pathlib import Path
 from typing import Any, cast
 from xml.etree import ElementTree
 
 import pytest
-from jsonschema import Draft202012Validator
 from markdown_it import MarkdownIt
 from markdown_it.token import Token
 from pwmlint.grammar.errors import NetlistError
@@ -28,6 +26,8 @@ from pwmlint.lint.quantity import Spread
 from pwmlint.lint.report import FORMATS
 from pwmlint.lint.verdict import ControllerReview, Deviation, Level, Limit, Outcome, PinRow, Review, Verdict
 from xmlschema import XMLSchema
+
+from .json_schema import check, schema_of
 
 ROOT = Path(__file__).parents[3]
 
@@ -235,8 +235,7 @@ def judge_text(report: Reported) -> None:
 
 
 def judge_json(report: Reported) -> None:
-    schema = json.loads((files("pwmlint.lint.report") / "review.schema.json").read_text(encoding="utf-8"))
-    Draft202012Validator(schema).validate(json.loads(report.text))  # pyright: ignore[reportUnknownMemberType]
+    check(schema_of("review.schema.json"), json.loads(report.text))
     assert report.text.isascii()
     assert all(line.isprintable() for line in report.text.splitlines())
 

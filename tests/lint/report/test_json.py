@@ -3,30 +3,22 @@ from __future__ import annotations
 import json
 from dataclasses import replace
 from importlib.metadata import version
-from importlib.resources import files
 from io import StringIO
 from math import inf
 from typing import Any
 
 import pytest
-from jsonschema import Draft202012Validator, ValidationError
+from jsonschema import ValidationError
 from pwmlint.lint.quantity import Spread
 from pwmlint.lint.report import Gate, writer
 from pwmlint.lint.verdict import Level, Limit, Outcome, Review, Verdict
 
+from .json_schema import check, schema_of
+
 
 @pytest.fixture(scope="module")
 def schema() -> dict[str, Any]:
-    loaded: dict[str, Any] = json.loads(
-        (files("pwmlint.lint.report") / "review.schema.json").read_text(encoding="utf-8")
-    )
-    Draft202012Validator.check_schema(loaded)
-    return loaded
-
-
-def check(schema: dict[str, Any], report: dict[str, Any]) -> None:
-    # The library's own stubs leave the keyword arguments of `validate` untyped.
-    Draft202012Validator(schema).validate(report)  # pyright: ignore[reportUnknownMemberType]
+    return schema_of("review.schema.json")
 
 
 def text_of(*reviews: Review) -> str:

@@ -1,0 +1,1 @@
+"""Reports of reviews and of comparisons."""
