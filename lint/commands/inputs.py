@@ -7,6 +7,7 @@ from collections.abc import Iterable
 from pathlib import Path
 
 from ...grammar.errors import NetlistError
+from ..report import Unread
 from .answer import tell
 
 NETLIST = "a netlist, or - for standard input"
@@ -26,16 +27,16 @@ def add_inputs(parser: argparse.ArgumentParser) -> None:
     )
 
 
-def all_netlists(arguments: Iterable[str]) -> tuple[list[str], bool]:
-    """Return the netlists that the arguments stand for, each once, and whether there are some for each."""
+def all_netlists(arguments: Iterable[str]) -> tuple[list[str], list[Unread]]:
+    """Return the netlists that the arguments stand for, each once; tell of arguments that stand for none."""
     from ..netlist_files import netlists
 
     found: dict[str, None] = {}
-    complete = True
+    unread: list[Unread] = []
     for argument in arguments:
         try:
             found |= dict.fromkeys(netlists(argument))
         except NetlistError as error:
             tell(str(error))
-            complete = False
-    return list(found), complete
+            unread.append(Unread.of(argument, error))
+    return list(found), unread

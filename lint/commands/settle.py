@@ -7,18 +7,25 @@ from collections.abc import Iterable, Sequence
 
 from ...grammar.errors import NetlistError
 from ..configuration import ConfigurationError
+from ..report import Unread
 from ..report.delivery import STANDARD_OUTPUT, Target
 from ..settings import Settings, Settler, overwritten, shared_reports
 from .answer import tell
 from .given import given
 
 
-def settle_each(netlists: Iterable[str], options: argparse.Namespace) -> list[tuple[str, Settings]]:
-    """Return what holds for each netlist whose configuration can be used; tell once of each that cannot."""
+def settle_each(
+    netlists: Iterable[str], options: argparse.Namespace
+) -> tuple[list[tuple[str, Settings]], list[Unread]]:
+    """Return what holds for each netlist whose configuration can be used, and the others.
+
+    What is wrong with a configuration is told once, however many netlists it concerns.
+    """
     said = given(options)
     check_outputs(said.reports or (), options)
     settler = Settler(said)
     settled: list[tuple[str, Settings]] = []
+    unread: list[Unread] = []
     told: list[NetlistError] = []
     for netlist in netlists:
         try:
@@ -27,16 +34,20 @@ def settle_each(netlists: Iterable[str], options: argparse.Namespace) -> list[tu
             remark = settings.untrusted
         except NetlistError as error:
             remark = error
+            unread.append(Unread.of(netlist, error))
         if remark is not None and not any(remark is one for one in told):
             told.append(remark)
             tell(str(remark))
-    return settled
+    return settled, unread
 
 
 def targets_of(settled: Sequence[tuple[str, Settings]], options: argparse.Namespace) -> Sequence[Target]:
-    """Return the reports of a run. Raises ConfigurationError; wrong usage ends here."""
+    """Return the reports of a run. Raises ConfigurationError; wrong usage ends here.
+
+    Where no netlist can be reviewed they are those that the command line names.
+    """
     if not settled:
-        return ()
+        return given(options).reports or ()
     reports = shared_reports([settings for _, settings in settled])
     inputs = [path for netlist, settings in settled for path in (netlist, *settings.inputs)]
     output = overwritten(reports.value, inputs)

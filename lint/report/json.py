@@ -13,21 +13,30 @@ from typing import Any, TextIO
 
 from ...grammar.netlist import Place
 from ..verdict import ControllerReview, Deviation, Review, Verdict
-from . import Gate
+from . import Gate, Unread
 from .values import limit_values, number, spread_values
 
 SCHEMA = 1
 
 
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
-    """Write `reviews` to `stream`; the gate is no part of it, it is the exit status."""
-    del gate
+    """Write `reviews` to `stream`, and what could not be reviewed; the gate itself is the exit status."""
     report = {
         "schema": SCHEMA,
         "tool": {"name": "pwmlint", "version": version("pwmlint")},
         "reviews": [_review(review) for review in reviews],
+        "unread": [_unread(one) for one in gate.unread],
     }
     stream.write(json.dumps(report, indent=2, allow_nan=False) + "\n")
+
+
+def _unread(one: Unread) -> dict[str, Any]:
+    return {
+        "netlist": one.netlist,
+        "message": one.message,
+        "place": _place(one.place),
+        "remedy": one.remedy,
+    }
 
 
 def _review(review: Review) -> dict[str, Any]:

@@ -143,18 +143,41 @@ def test_findings_on_standard_output_and_nothing_else(capsys: pytest.CaptureFixt
 def test_an_unreadable_netlist_does_not_hide_the_others(capsys: pytest.CaptureFixture[str]) -> None:
     assert cli.main(["review", "missing.cir", "error.cir", "gone.cir", "--format", "json"]) == 2
     streams = capsys.readouterr()
-    assert [review["netlist"] for review in json.loads(streams.out)["reviews"]] == ["error.cir"]
+    report = json.loads(streams.out)
+    assert [review["netlist"] for review in report["reviews"]] == ["error.cir"]
+    assert [one["netlist"] for one in report["unread"]] == ["missing.cir", "gone.cir"]
     assert streams.err == (
         "missing.cir: there is no such file\n  remedy:   check the path\n"
         "gone.cir: there is no such file\n  remedy:   check the path\n"
     )
 
 
-def test_nothing_reviewed_nothing_reported(capsys: pytest.CaptureFixture[str], tmp_path: Path) -> None:
+def test_a_report_of_nothing_takes_the_place_of_an_older_one(
+    capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
     path = tmp_path / "report.json"
+    path.write_text("passed the day before", encoding="utf-8")
     assert cli.main(["review", "missing.cir", "--format", "json", "--output", str(path)]) == 2
+    report = json.loads(path.read_text(encoding="utf-8"))
+    assert report["reviews"] == []
+    assert report["unread"][0]["message"] == "there is no such file"
     assert capsys.readouterr().out == ""
-    assert not path.exists()
+
+
+def test_at_a_terminal_nothing_is_told_twice(capsys: pytest.CaptureFixture[str]) -> None:
+    assert cli.main(["review", "missing.cir"]) == 2
+    streams = capsys.readouterr()
+    assert streams.out == ""
+    assert streams.err.startswith("missing.cir: there is no such file")
+
+
+def test_a_folder_without_a_netlist_is_in_the_report(
+    capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
+    assert cli.main(["review", "sound.cir", str(tmp_path), "--format", "json"]) == 2
+    (unread,) = json.loads(capsys.readouterr().out)["unread"]
+    assert unread["netlist"] == str(tmp_path)
+    assert unread["message"] == "no netlist in this folder"
 
 
 @pytest.mark.parametrize(

@@ -235,7 +235,11 @@ class TestReview:
         status, out, err = run(capsys, "review", *netlists, "beacon.cir")
         assert status == 2
         assert "netlist     beacon.cir" in out
-        assert "mast/" not in out
+        assert "netlist     mast/" not in out
+        assert out.count("at mast/pwmlint.toml:1:8") == 2
+        assert out.endswith(
+            "1 netlist, 1 passed; 2 netlists could not be reviewed     gate error: not passed\n"
+        )
         assert err.count("mast/pwmlint.toml:1:8: ") == 1
 
     def test_different_reports(self, capsys: pytest.CaptureFixture[str]) -> None:
@@ -262,7 +266,8 @@ class TestReview:
         )
         assert "Traceback" not in err
         assert "netlist     pump.cir" in out
-        assert "beacon.cir" not in out
+        assert "netlist     beacon.cir" not in out
+        assert "crashed on beacon.cir" in out
 
     def test_the_same_input_gives_the_same_bytes(self, capsys: pytest.CaptureFixture[str]) -> None:
         configure('rules = "house"\n[topics]\nconnections = "off"\n[levels]\nsupply.range = "off"\n')
