@@ -11,7 +11,8 @@ from ..report import COMPARISON_FORMATS
 from ..report.delivery import DeliveryError, Target, deliver_comparison
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
 from .given import given
-from .review import STANDARD_INPUT, add_options
+from .inputs import STANDARD_INPUT
+from .review import add_options
 
 if TYPE_CHECKING:
     from ..compare import Asked, Comparison

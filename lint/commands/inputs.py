@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import os
 from collections.abc import Iterable
 from pathlib import Path
 
@@ -10,6 +11,7 @@ from ...grammar.errors import NetlistError
 from ..report import Unread
 from .answer import tell
 
+STANDARD_INPUT = "-"
 NETLIST = "a netlist, or - for standard input"
 NETLISTS = f"{NETLIST}; a folder stands for the netlists in it, a brief for the netlist beside it"
 
@@ -21,7 +23,7 @@ def add_inputs(parser: argparse.ArgumentParser) -> None:
         "--allow-include",
         action="append",
         default=[],
-        type=Path,
+        type=_folder,
         metavar="DIR",
         help="a folder besides the netlist's own from which it may include; may be repeated",
     )
@@ -31,12 +33,24 @@ def all_netlists(arguments: Iterable[str]) -> tuple[list[str], list[Unread]]:
     """Return the netlists that the arguments stand for, each once; tell of arguments that stand for none."""
     from ..netlist_files import netlists
 
-    found: dict[str, None] = {}
+    found: dict[str, str] = {}
     unread: list[Unread] = []
     for argument in arguments:
         try:
-            found |= dict.fromkeys(netlists(argument))
+            for netlist in netlists(argument):
+                found.setdefault(_identity(netlist), netlist)
         except NetlistError as error:
             tell(str(error))
             unread.append(Unread.of(argument, error))
-    return list(found), unread
+    return list(found.values()), unread
+
+
+def _identity(netlist: str) -> str:
+    """Return what two spellings of a path have in common; a link has files of its own beside it."""
+    return netlist if netlist == STANDARD_INPUT else str(Path(netlist).absolute())
+
+
+def _folder(text: str) -> Path:
+    if not os.path.isdir(text):
+        raise argparse.ArgumentTypeError(f"there is no folder {text}")
+    return Path(text)

@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Sequence
-from typing import Any
+from typing import Any, NoReturn
+
+from ...grammar.errors import printable
 
 
 class Parser(argparse.ArgumentParser):
@@ -13,6 +15,10 @@ class Parser(argparse.ArgumentParser):
     def __init__(self, *arguments: Any, examples: Sequence[tuple[str, str]] = (), **more: Any) -> None:
         super().__init__(*arguments, **more)
         self.examples = tuple(examples)
+
+    def error(self, message: str) -> NoReturn:
+        """End with the usage and `message`, which may quote an argument that a stranger has chosen."""
+        super().error(printable(message))
 
     def format_help(self) -> str:
         """Return the help: examples, then what argparse makes of the rest."""

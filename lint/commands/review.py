@@ -14,14 +14,13 @@ from ..report.delivery import DeliveryError, Target, deliver
 from ..verdict import Level, Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, tell
 from .given import add_configuration
-from .inputs import NETLISTS, add_inputs, all_netlists
+from .inputs import NETLISTS, STANDARD_INPUT, add_inputs, all_netlists
 from .progress import with_progress
 from .targets import add_targets
 
 if TYPE_CHECKING:
     from ..settings import Settings
 
-STANDARD_INPUT = "-"
 NEVER = "never"
 
 

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import argparse
+import os
+import stat
 from collections.abc import Iterable, Sequence
 
 from ...grammar.errors import NetlistError
@@ -63,7 +65,16 @@ def targets_of(settled: Sequence[tuple[str, Settings]], options: argparse.Namesp
 def check_outputs(targets: Sequence[Target], options: argparse.Namespace) -> None:
     """End where two reports would go to one place: that is wrong usage."""
     outputs = [target.output for target in targets]
-    for output in outputs:
-        if outputs.count(output) > 1:
+    places = [output if output == STANDARD_OUTPUT else os.path.realpath(output) for output in outputs]
+    for output, place in zip(outputs, places, strict=True):
+        if places.count(place) > 1 and not _is_device(place):
             where = "standard output" if output == STANDARD_OUTPUT else output
             options.parser.error(f"two reports would go to {where}: give each --format its own --output")
+
+
+def _is_device(path: str) -> bool:
+    """Tell whether a path leads to a device, which takes any number of reports."""
+    try:
+        return stat.S_ISCHR(os.stat(path).st_mode)
+    except OSError:
+        return False

@@ -117,17 +117,21 @@ def test_one_of_several_that_stops_is_enough() -> None:
     assert cli.main(["review", "sound.cir", "error.cir", "sound.cir"]) == 1
 
 
-def test_what_is_passed_on(asked: Asked) -> None:
+def test_what_is_passed_on(asked: Asked, tmp_path: Path) -> None:
+    folders = [tmp_path / "models", tmp_path / "more"]
+    for folder in folders:
+        folder.mkdir()
     arguments = ["review", "sound.cir", "--brief", "b.toml", "--parts-list", "p.csv"]
     arguments += ["--deviations", "d.toml"]
-    cli.main([*arguments, "--allow-include", "models", "--allow-include", "more", "--worst-case", "rss"])
+    arguments += [f"--allow-include={folder}" for folder in folders]
+    cli.main([*arguments, "--worst-case", "rss"])
     assert asked == [
         {
             "netlist": "sound.cir",
             "brief": "b.toml",
             "parts_list": "p.csv",
             "deviations": "d.toml",
-            "allow_include": [Path("models"), Path("more")],
+            "allow_include": folders,
             "method": Method.RSS,
         }
     ]

@@ -189,7 +189,8 @@ class TestReview:
 
     def test_the_reports_of_the_file(self, capsys: pytest.CaptureFixture[str]) -> None:
         configure('[reports]\ntext = "-"\njson = "beacon.report.json"\n')
-        _, out, _ = run(capsys, "review", "beacon.cir", "./beacon.cir")
+        Path("lamp.cir").write_text(NETLIST)
+        _, out, _ = run(capsys, "review", "beacon.cir", "lamp.cir")
         assert "2 netlists" in out
         assert len(json.loads(Path("beacon.report.json").read_text())["reviews"]) == 2
         Path("beacon.report.json").unlink()
