@@ -321,6 +321,38 @@ class TestDeviations:
         (found,) = json.loads(run(capsys, *arguments)[1])["reviews"]
         assert (found["deviations"], found["accepted"]) == ("accepted.toml", 1)
 
+    @pytest.mark.parametrize(
+        ("configuration", "arguments"),
+        [
+            ('[levels]\nlabel.present = "off"\n', ["--rules", "house"]),
+            ('[topics]\nlabels = "off"\n', ["--rules", "house"]),
+            ('rules = "house"\n', []),  # not trusted, so not loaded
+        ],
+    )
+    @pytest.mark.parametrize("rule", ["label.present", "label.*"])
+    def test_one_from_a_rule_that_was_not_asked_is_not_called_unused(
+        self, configuration: str, arguments: list[str], rule: str, capsys: pytest.CaptureFixture[str]
+    ) -> None:
+        Path("beacon.deviations.toml").write_text(
+            self.DEVIATION.replace("label.present", rule) + 'subject = "*"\n'
+        )
+        configure(configuration)
+        _, out, _ = run(capsys, "review", "beacon.cir", "--format", "json", *arguments)
+        (found,) = json.loads(out)["reviews"]
+        (about,) = [one for one in found["verdicts"] if one["rule"] == "deviations.unused"]
+        assert about["outcome"] == "informational"
+        assert about["message"] == (f"the deviation from {rule} of * was not needed: its rule was not asked")
+        assert about["places"] == [{"file": "beacon.deviations.toml", "line": 1, "column": 3}]
+
+    def test_one_from_a_rule_that_does_not_exist_is(self, capsys: pytest.CaptureFixture[str]) -> None:
+        Path("beacon.deviations.toml").write_text(self.DEVIATION.replace("present", "presnt"))
+        configure('[levels]\nlabel.present = "off"\n')
+        _, out, _ = run(capsys, "review", "beacon.cir", "--rules", "house", "--format", "json")
+        (about,) = [
+            one for one in json.loads(out)["reviews"][0]["verdicts"] if one["rule"] == "deviations.unused"
+        ]
+        assert (about["outcome"], about["level"]) == ("fail", "note")
+
     def test_a_permit_is_for_what_a_review_would_find(self, capsys: pytest.CaptureFixture[str]) -> None:
         assert 'rule = "label.present"' in run(capsys, "permit", "beacon.cir", "--rules", "house")[1]
         configure('[topics]\nlabels = "off"\n')
