@@ -28,22 +28,22 @@ def _list(depth: int) -> str:
     """Return a pattern for a list with lists nested in it to this depth; strings may hold parentheses."""
     inner = ""
     for _ in range(depth):
-        inner = rf'\((?:[^()"]++|"[^"]*+"{inner and "|" + inner})*+\)'
+        inner = rf'\((?>[^()"]++|"[^"]*+"{inner and "|" + inner})*+\)'
     return rf"{inner}\s*+"
 
 
 _LIST = _list(_DEEPEST)
-_WORD = r'(?:&(?=[^\s()"]))?+([^\s()"]++)\s*+'  # without the & that marks an identifier
+_WORD = r'(?>&(?=[^\s()"]))?+([^\s()"]++)\s*+'  # without the & that marks an identifier
 _RENAME = rf'\(\s*+rename\s++{_WORD}"([^"]*+)"\s*+\)\s*+'
-_NAMED = rf'\(\s*+name\s++{_WORD}(?:[^()"]++|"[^"]*+"|{_LIST})*+\)\s*+'
-_DISPLAYED = r'(?:\(\s*+stringdisplay\s*+)?+"([^"]*+)"'
+_NAMED = rf'\(\s*+name\s++{_WORD}(?>[^()"]++|"[^"]*+"|{_LIST})*+\)\s*+'
+_DISPLAYED = r'(?>\(\s*+stringdisplay\s*+)?+"([^"]*+)"'
 _LIBRARY_REF = rf"\(\s*+libraryref\s++{_WORD}\)\s*+"
-_CELL_REF = rf"\(\s*+cellref\s++{_WORD}(?:{_LIBRARY_REF})?+\)\s*+"
-_VIEW_REF = rf"\(\s*+viewref\s++{_WORD}(?:{_CELL_REF})?+\)\s*+"
-_PROPERTY = rf"\(\s*+(?:property|parameter(?:assign)?+)\s*+(?:{_WORD}|{_RENAME})\(\s*+string\s*+{_DISPLAYED}"
+_CELL_REF = rf"\(\s*+cellref\s++{_WORD}(?>{_LIBRARY_REF})?+\)\s*+"
+_VIEW_REF = rf"\(\s*+viewref\s++{_WORD}(?>{_CELL_REF})?+\)\s*+"
+_PROPERTY = rf"\(\s*+(?:property|parameter(?>assign)?+)\s*+(?:{_WORD}|{_RENAME})\(\s*+string\s*+{_DISPLAYED}"
 _DESIGNATOR = rf"\(\s*+designator\s*+{_DISPLAYED}"
 _PORT_INSTANCE = (
-    rf"\(\s*+portinstance\s*+(?:{_WORD}|{_NAMED})(?:(?!\(\s*+designator){_LIST})*+(?:{_DESIGNATOR})?+"
+    rf"\(\s*+portinstance\s*+(?:{_WORD}|{_NAMED})(?>(?!\(\s*+designator){_LIST})*+(?>{_DESIGNATOR})?+"
 )
 
 
@@ -56,9 +56,9 @@ _RENAME_FORM = _compiled(_RENAME)
 _VIEW_REF_FORM = _compiled(_VIEW_REF)
 _PROPERTY_FORM = _compiled(_PROPERTY)
 _PORT_INSTANCE_FORM = _compiled(_PORT_INSTANCE)
-_PORT_REF_FORM = _compiled(rf"\(\s*+portref\s++{_WORD}(?:\(\s*+instanceref\s++{_WORD}\)\s*+)?+\)\s*+")
+_PORT_REF_FORM = _compiled(rf"\(\s*+portref\s++{_WORD}(?>\(\s*+instanceref\s++{_WORD}\)\s*+)?+\)\s*+")
 _JOINED_FORM = _compiled(r"\(\s*+joined\s*+")
-_NET_FORM = _compiled(rf"\(\s*+net\s*+(?:{_WORD}|{_RENAME})(?:(?!\(\s*+joined){_LIST})*+")
+_NET_FORM = _compiled(rf"\(\s*+net\s*+(?:{_WORD}|{_RENAME})(?>(?!\(\s*+joined){_LIST})*+")
 _INSTANCE_FORM = _compiled(rf"\(\s*+instance\s*+(?:{_WORD}|{_NAMED}|{_RENAME})({_VIEW_REF})")
 _ITEM_FORM = _compiled(rf"(?:(?={_PROPERTY})|(?={_DESIGNATOR})|(?={_PORT_INSTANCE})|){_LIST}")
 _PROPERTY_VALUE = 4  # the groups of the pattern above: the last one that matched tells what the item is

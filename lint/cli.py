@@ -7,6 +7,7 @@
 from __future__ import annotations
 
 import os
+import sys
 import traceback
 from collections.abc import Sequence
 from importlib import import_module
@@ -15,12 +16,17 @@ from importlib.metadata import version
 from ..grammar.errors import printable
 from .commands import COMMANDS
 from .commands.answer import EXIT, INTERRUPTED, TRACEBACK, TROUBLE, tell
+from .commands.arguments import refusal
 from .commands.parser import Commands, Parser
 from .report.delivery import DeliveryError
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run the command line and return the exit status. Raises SystemExit(2) on wrong usage, as argparse."""
+    refused = refusal(sys.argv[1:] if arguments is None else arguments)
+    if refused is not None:
+        tell(refused)
+        return TROUBLE
     try:
         options = command_line().parse_args(arguments)
         return options.command(options)

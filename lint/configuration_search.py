@@ -34,7 +34,7 @@ def find_configuration(netlist: str | Path) -> Path | None:
 
 def _checked(found: Path, root: Path, shown: Path) -> Path:
     """Return the path to show, unless what stands there must not be read."""
-    if not found.is_file():
+    if not os.path.isfile(found):
         whole = Place(str(shown), 0, 0)
         raise ConfigurationError("this is no file", whole, remedy="make it a file, or give --no-config")
     remedy = "put the file there itself, or name it by --config"

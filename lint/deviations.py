@@ -7,10 +7,12 @@ expired, that accepts less than what is measured now, or that is about nothing a
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+import re
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass, replace
 from datetime import date
-from fnmatch import fnmatchcase
+from fnmatch import translate
+from functools import lru_cache
 from math import isfinite
 from pathlib import Path
 
@@ -62,6 +64,7 @@ class Applied:
     expired:  those whose last day is over, though there is a verdict that they are about
     outgrown: those whose accepted value is less than what is measured now, with that verdict
     unused:   those that are about no verdict
+    unasked:  those that would be about the verdicts of a rule that was not asked
     """
 
     deviations: Deviations
@@ -69,6 +72,7 @@ class Applied:
     expired: tuple[Deviation, ...]
     outgrown: tuple[tuple[Deviation, Verdict], ...]
     unused: tuple[Deviation, ...]
+    unasked: tuple[Deviation, ...] = ()
 
 
 def read_deviations(path: str | Path) -> Deviations:
@@ -87,9 +91,15 @@ def read_deviations(path: str | Path) -> Deviations:
 
 
 def apply(
-    deviations: Deviations, verdicts: Iterable[Verdict], today: date
+    deviations: Deviations,
+    verdicts: Iterable[Verdict],
+    today: date,
+    asked: Callable[[str], bool] = lambda pattern: True,
 ) -> tuple[tuple[Verdict, ...], Applied]:
-    """Return the verdicts with the deviations that accept them, and what became of each deviation."""
+    """Return the verdicts with the deviations that accept them, and what became of each deviation.
+
+    asked: tells whether every rule that a deviation may be from was asked
+    """
     accepted: list[Verdict] = []
     used: list[Deviation] = []
     expired: list[Deviation] = []
@@ -105,12 +115,14 @@ def apply(
             outgrown += [(one, verdict) for one in live]
         expired += [one for one in about if one not in live]
     spoken = {*used, *expired, *(one for one, _ in outgrown)}
+    silent = [one for one in deviations.entries if one not in spoken]
     return tuple(accepted), Applied(
         deviations=deviations,
         used=_once(used),
         expired=_once(expired),
         outgrown=tuple(outgrown),
-        unused=tuple(one for one in deviations.entries if one not in spoken),
+        unused=tuple(one for one in silent if asked(one.rule)),
+        unasked=tuple(one for one in silent if not asked(one.rule)),
     )
 
 
@@ -157,16 +169,25 @@ def _needed(table: Table, key: str) -> str:
 def _is_about(deviation: Deviation, verdict: Verdict) -> bool:
     return (
         verdict.outcome in ACCEPTABLE
-        and _matches(verdict.rule, deviation.rule)
-        and _matches(verdict.subject, deviation.subject)
+        and fits(verdict.rule, deviation.rule)
+        and fits(verdict.subject, deviation.subject)
         and (deviation.parts is None or set(deviation.parts) == set(verdict.parts))
         and (deviation.nets is None or set(deviation.nets) == set(verdict.nets))
     )
 
 
-def _matches(text: str, pattern: str) -> bool:
+def fits(text: str, pattern: str) -> bool:
     """Tell whether a text fits a pattern: "*" for any text, "?" for a character, all else for itself."""
-    return text == pattern or fnmatchcase(text, pattern.replace("[", "[[]"))
+    if not ("*" in pattern or "?" in pattern):
+        return text == pattern
+    if len(pattern) - pattern.count("*") > len(text):
+        return False
+    return _form(pattern).match(text) is not None
+
+
+@lru_cache(maxsize=2 * _MOST_ENTRIES)  # a file of many long patterns is compiled once, not once a verdict
+def _form(pattern: str) -> re.Pattern[str]:
+    return re.compile(translate(pattern.replace("[", "[[]")))
 
 
 def _covers(deviation: Deviation, verdict: Verdict) -> bool:

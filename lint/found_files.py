@@ -32,7 +32,7 @@ def beside(netlist: str | Path, ending: str) -> Path | None:
     if str(netlist) == STANDARD_INPUT or not path.name:  # "." has no name
         return None
     found = path.with_name(path.stem + ending)
-    if not found.is_file():
+    if not os.path.isfile(found):
         return None
     remedy = "put the file there itself, or name it on the command line"
     refuse_link_out(found, root_of(found.parent.resolve()), remedy=remedy)

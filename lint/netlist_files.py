@@ -30,10 +30,10 @@ def netlists(argument: str) -> list[str]:
     many.
     """
     path = Path(argument)
-    if path.is_dir():
+    if os.path.isdir(path):  # unlike the method of a path, it answers whatever the path is
         return _in_folder(path)
     ending = next((one for one in BESIDE if path.name.casefold().endswith(one)), None)
-    if ending is not None and path.is_file():
+    if ending is not None and os.path.isfile(path):
         return _beside(path, path.name[: -len(ending)])
     return [argument]
 
@@ -70,7 +70,7 @@ def _files(folder: Path) -> Iterator[Path]:
 
 def _beside(path: Path, stem: str) -> list[str]:
     files = (path.with_name(stem + ending) for ending in ENDINGS)
-    found = [str(file) for file in files if file.is_file()]
+    found = [str(file) for file in files if os.path.isfile(file)]
     if not found:
         remedy = f"name the netlist itself, or let it be called {stem} with {one_of(ENDINGS)}"
         raise _error(path, "there is no netlist beside this file", remedy)

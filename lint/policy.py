@@ -26,11 +26,13 @@ class Policy:
             one that a rule gives to a special case: what is written in the file holds
     off:    the rules that are not asked, and where that is written
     file:   the configuration, None where there is none
+    complete: whether all rules are loaded that the configuration may speak of
     """
 
     levels: Mapping[str, Level] = field(default_factory=dict[str, Level])
     off: Mapping[str, Place] = field(default_factory=dict[str, Place])
     file: str | None = None
+    complete: bool = True
 
     def judged(self, verdict: Verdict) -> Verdict:
         """Return `verdict` at the level that the configuration gives to its rule."""
@@ -59,7 +61,7 @@ def policy_of(configuration: Configuration, rules: Sequence[Rule], *, complete: 
             levels[one.id] = Level(setting.value)
         elif one.id != CAUTIONING:
             off[one.id] = setting.place or Place(configuration.file, 0, 0)
-    return Policy(levels, off, configuration.file)
+    return Policy(levels, off, configuration.file, complete)
 
 
 def _know(

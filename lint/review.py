@@ -14,7 +14,7 @@ from .brief import Brief, read_brief
 from .circuit.controllers import Controller
 from .controllers import generic_number
 from .design import Design
-from .deviations import Applied, Deviations, apply, read_deviations
+from .deviations import Applied, Deviations, apply, fits, read_deviations
 from .estimate import Method
 from .found_files import BRIEF, DEVIATIONS, PARTS_LIST, STANDARD_INPUT, beside
 from .house_rules import crash, is_of_house
@@ -108,7 +108,10 @@ def review_netlist(
         verdicts = left_to_judge(verdicts, hinging, passing)
     verdicts = tuple(map(policy.judged, verdicts))
     if deviations is not None:
-        verdicts, applied = apply(deviations, verdicts, today or date.today())
+        ids = [one.id for one in known]
+        verdicts, applied = apply(
+            deviations, verdicts, today or date.today(), lambda pattern: _is_asked(pattern, ids, policy)
+        )
         about = (verdict for one in asked for verdict in _answers(one, design, applied))
         verdicts += tuple(map(policy.judged, about))
     return Review(
@@ -124,6 +127,12 @@ def review_netlist(
         configuration=policy.file,
         switched_off=tuple(SwitchedOff(one.id, policy.off[one.id]) for one in known if one.id in policy.off),
     )
+
+
+def _is_asked(pattern: str, known: Sequence[str], policy: Policy) -> bool:
+    """Tell whether every rule that the pattern of a deviation fits was asked, as far as one can know."""
+    meant = [one for one in known if fits(one, pattern)]
+    return not any(one in policy.off for one in meant) and (policy.complete or bool(meant))
 
 
 def _cautions(verdicts: Iterable[Verdict]) -> tuple[str, ...]:

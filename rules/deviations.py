@@ -131,7 +131,8 @@ def unused(applied: Applied) -> Iterable[Verdict]:
     """Does every deviation still accept something?
 
     What:
-        Names each deviation that accepts no verdict of this review.
+        Names each deviation that accepts no verdict of this review. Where its rule was not asked, because it
+        is switched off or not loaded, nobody can know, and it is told without blame.
     Why:
         What it was about has been mended, renamed, or is accepted by another entry. Left in the file it
         would accept the next mistake of that kind unseen.
@@ -153,11 +154,23 @@ def unused(applied: Applied) -> Iterable[Verdict]:
     for one in applied.unused:
         yield _about(
             one,
-            f"the deviation from {one.rule}{f' of {one.subject}' if one.subject else ''} accepts nothing",
+            f"{_told(one)} accepts nothing",
             "take it out, or correct its rule and subject",
+        )
+    for one in applied.unasked:
+        yield Verdict(
+            outcome=Outcome.INFORMATIONAL,
+            message=f"{_told(one)} was not needed: its rule was not asked",
+            subject=f"{one.rule} {one.subject}".strip(),
+            places=(one.place,),
+            source=_SOURCE,
         )
     if applied.used and not applied.unused:
         yield Verdict(outcome=Outcome.PASS, message=f"{_deviations(len(applied.used))} in use")
+
+
+def _told(one: Deviation) -> str:
+    return f"the deviation from {one.rule}{f' of {one.subject}' if one.subject else ''}"
 
 
 def _about(one: Deviation, message: str, remedy: str) -> Verdict:

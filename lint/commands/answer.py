@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
+import os
 import sys
 from collections.abc import Callable, Iterable
 from contextlib import suppress
 from difflib import get_close_matches
-from pathlib import Path
 
 from ...grammar.errors import NetlistError, printable
 from ..report.colour import shows_box_characters
@@ -49,7 +49,7 @@ def is_taken(output: str) -> bool:
 
     A device or a named pipe holds nothing that could be lost.
     """
-    taken = output != STANDARD_OUTPUT and Path(output).is_file()
+    taken = output != STANDARD_OUTPUT and os.path.isfile(output)
     if taken:
         tell(
             f"{printable(output)}: this file is there already, and is not overwritten\n"

@@ -7,7 +7,9 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Sequence
-from typing import Any
+from typing import Any, NoReturn
+
+from ...grammar.errors import printable
 
 
 class Parser(argparse.ArgumentParser):
@@ -28,6 +30,10 @@ class Parser(argparse.ArgumentParser):
     def arguments(self) -> tuple[argparse.Action, ...]:
         """Return the options, and what stands on the command line without one."""
         return tuple(self._actions)
+
+    def error(self, message: str) -> NoReturn:
+        """End with the usage and `message`, which may quote an argument that a stranger has chosen."""
+        super().error(printable(message))
 
     def format_help(self) -> str:
         """Return the help: examples, then what argparse makes of the rest."""

@@ -47,8 +47,8 @@ def _run(options: argparse.Namespace) -> int:
 
     if is_taken(options.output):
         return TROUBLE
-    settled = settle_each([options.netlist], options)
-    reviewed = review_each(settled)
+    settled, _ = settle_each([options.netlist], options)
+    reviewed, _ = review_each(settled)
     if not reviewed:
         return TROUBLE
     ((found, settings),) = reviewed

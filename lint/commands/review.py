@@ -4,14 +4,15 @@ from __future__ import annotations
 
 import argparse
 from collections.abc import Iterable, Sequence
+from dataclasses import replace
 from functools import partial
 from typing import TYPE_CHECKING
 
 from ...grammar.errors import NetlistError
 from ..estimate import Method
 from ..found_files import STANDARD_INPUT
-from ..report import FORMATS, GATES
-from ..report.delivery import deliver
+from ..report import FORMATS, GATES, Unread
+from ..report.delivery import Target, deliver
 from ..verdict import Review
 from .answer import EXIT, NOT_PASSED, PASSED, TROUBLE, is_delivered, tell
 from .given import add_configuration
@@ -74,26 +75,32 @@ def _run(options: argparse.Namespace) -> int:
     from ..settings import gate_of
     from .settle import settle_each, targets_of
 
-    netlists, complete = all_netlists(options.netlists)
-    settled = settle_each(netlists, options)
+    netlists, unread = all_netlists(options.netlists)
+    settled, unsettled = settle_each(netlists, options)
     try:
         targets = targets_of(settled, options)
     except NetlistError as error:
         tell(str(error))
         return TROUBLE
-    reviewed = review_each(settled)
-    reviews, gate = [review for review, _ in reviewed], gate_of(reviewed)
-    written = [is_delivered(partial(deliver, target, reviews, gate)) for target in targets] if reviews else []
-    if not complete or len(reviews) < len(netlists) or not all(written):
+    reviewed, failed = review_each(settled)
+    reviews = [review for review, _ in reviewed]
+    gate = replace(gate_of(reviewed), unread=(*unread, *unsettled, *failed))
+    if not reviews:  # why has been told already, and a reader at a terminal needs it once
+        targets = [target for target in targets if target != Target()]
+    written = [is_delivered(partial(deliver, target, reviews, gate)) for target in targets]
+    if gate.unread or not all(written):
         return TROUBLE
-    return PASSED if all(gate.passes(review) for review in reviews) else NOT_PASSED
+    return PASSED if gate.passes_all(reviews) else NOT_PASSED
 
 
-def review_each(settled: Sequence[tuple[str, Settings]]) -> list[tuple[Review, Settings]]:
-    """Return the reviews of the netlists that can be reviewed; tell of each that cannot."""
+def review_each(
+    settled: Sequence[tuple[str, Settings]],
+) -> tuple[list[tuple[Review, Settings]], list[Unread]]:
+    """Return the reviews of the netlists that can be reviewed, and the others, of each of which it tells."""
     from ..review import review
 
     reviewed: list[tuple[Review, Settings]] = []
+    unread: list[Unread] = []
     for netlist, settings in with_progress(settled):
         try:
             found = review(
@@ -108,6 +115,7 @@ def review_each(settled: Sequence[tuple[str, Settings]]) -> list[tuple[Review, S
             )
         except NetlistError as error:
             tell(str(error))
+            unread.append(Unread.of(netlist, error))
         else:
             reviewed.append((found, settings))
-    return reviewed
+    return reviewed, unread

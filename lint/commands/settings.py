@@ -41,7 +41,7 @@ def add(commands: Commands) -> None:
 def _run(options: argparse.Namespace) -> int:
     from .settle import settle_each, targets_of
 
-    settled = settle_each([options.netlist], options)
+    settled, _ = settle_each([options.netlist], options)
     try:
         targets_of(settled, options)
     except NetlistError as error:

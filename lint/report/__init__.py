@@ -1,16 +1,19 @@
 """Reports: one module per format, each with `write(reviews, stream, gate)`.
 
 A new format is a module here and a line in `FORMATS`. A report computes nothing of a circuit: it prints what
-the review says. The formats of a comparison have a table of their own, and `write(comparison, stream, gate)`.
+the review says, and what the gate says could not be reviewed. The formats of a comparison have a table of
+their own, and `write(comparison, stream, gate)`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from importlib import import_module
-from typing import TYPE_CHECKING, Protocol, TextIO
+from typing import TYPE_CHECKING, NamedTuple, Protocol, TextIO
 
+from ...grammar.errors import NetlistError
+from ...grammar.netlist import Place
 from ..verdict import Level, Review, Verdict
 
 if TYPE_CHECKING:
@@ -35,6 +38,27 @@ GATES = (*(level.value for level in Level), NEVER)
 """The words for the level of a gate, in a configuration and on the command line."""
 
 
+class Unread(NamedTuple):
+    """A netlist that could not be reviewed: its name as given, why, where, and how to mend that."""
+
+    netlist: str
+    message: str
+    place: Place
+    remedy: str = ""
+
+    @classmethod
+    def of(cls, netlist: str, error: NetlistError) -> Unread:
+        """Return what `error`, the first of its file where there are several, says of `netlist`."""
+        return cls(netlist, error.message, error.place, error.remedy)
+
+    @property
+    def where(self) -> str:
+        """Return the place in words, empty where it says no more than the name of the netlist."""
+        if self.place.line > 0:
+            return str(self.place)
+        return self.place.file if self.place.file != self.netlist else ""
+
+
 @dataclass(frozen=True, slots=True)
 class Gate:
     """What stops a build.
@@ -42,11 +66,13 @@ class Gate:
     level:  the least level of a failed verdict that does; None: none does
     strict: whether `open` and `review` verdicts do as well
     own:    by netlist the gates of those that have one of their own, where the netlists of a run differ
+    unread: the netlists that could not be reviewed: a run with one does not pass, whatever the gate is
     """
 
     level: Level | None = Level.ERROR
     strict: bool = False
     own: Mapping[str, Gate] = field(default_factory=dict[str, "Gate"], hash=False)
+    unread: tuple[Unread, ...] = ()
 
     def of(self, review: Review) -> Gate:
         """Return the gate that `review` is held to."""
@@ -56,6 +82,10 @@ class Gate:
         """Tell whether `review` passes."""
         gate = self.of(review)
         return review.passes(gate.level, strict=gate.strict)
+
+    def passes_all(self, reviews: Iterable[Review]) -> bool:
+        """Tell whether a run passes: every netlist could be reviewed, and every review passes."""
+        return not self.unread and all(self.passes(review) for review in reviews)
 
     def stops(self, verdict: Verdict, review: Review) -> bool:
         """Tell whether `verdict`, one of `review`, stops the gate by itself."""

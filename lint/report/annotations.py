@@ -8,17 +8,17 @@ written than are shown, and the last of a kind says how many there are besides.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from pathlib import PurePath
 from typing import TextIO
 
 from ...grammar.errors import printable
 from ...grammar.netlist import Place
 from ..verdict import Level, Outcome, Review, Verdict
-from . import Gate
+from . import Gate, Unread
 from .glyphs import shown
 from .ranking import findings, unanswered
-from .words import badness, counts, gate_answer, word
+from .words import badness, counts, gate_answer, not_reviewed, word
 
 # So many of each kind does a host show for one step of a run.
 MOST = 10
@@ -32,7 +32,8 @@ _IN_PROPERTY = {**_IN_MESSAGE, ":": "%3A", ",": "%2C"}
 
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     """Write the commands, worst first, and one line that counts everything."""
-    lines: dict[str, list[str]] = {"error": [], "warning": [], "notice": []}
+    lines: dict[str, list[str]] = {"error": [_not_reviewed(one) for one in gate.unread]}
+    lines |= {"warning": [], "notice": []}
     for review, verdict in _ranked(reviews):
         lines[_kind(verdict, review, gate)].append(_command(verdict, review))
     for kind, messages in lines.items():
@@ -59,14 +60,25 @@ def _kind(verdict: Verdict, review: Review, gate: Gate) -> str:
 def _command(verdict: Verdict, review: Review) -> str:
     """Return properties and message of a command."""
     place = verdict.places[0] if verdict.places else Place(review.netlist, 0, 0)
-    properties = {"file": PurePath(place.file).as_posix()}
-    if place.line > 0:
-        properties |= {"line": str(place.line), "col": str(max(1, place.column))}
-    properties["title"] = f"{verdict.rule} {verdict.subject}".strip()
-    told = ",".join(f"{key}={_escaped(value, _IN_PROPERTY)}" for key, value in properties.items())
     called = "" if verdict.outcome is Outcome.FAIL else f"{word(verdict.outcome, verdict.level)[0]}: "
     rows = [called + verdict.message, *(f"missing: {need}" for need in verdict.needs)]
     rows += [f"remedy: {verdict.remedy}"] if verdict.remedy else []
+    return _at(place, f"{verdict.rule} {verdict.subject}".strip(), rows)
+
+
+def _not_reviewed(one: Unread) -> str:
+    """Return properties and message of the command for a netlist that could not be reviewed."""
+    rows = [f"{one.netlist} could not be reviewed: {one.message}"]
+    rows += [f"remedy: {one.remedy}"] if one.remedy else []
+    return _at(one.place, "not reviewed", rows)
+
+
+def _at(place: Place, title: str, rows: Iterable[str]) -> str:
+    properties = {"file": PurePath(place.file).as_posix()}
+    if place.line > 0:
+        properties |= {"line": str(place.line), "col": str(max(1, place.column))}
+    properties["title"] = title
+    told = ",".join(f"{key}={_escaped(value, _IN_PROPERTY)}" for key, value in properties.items())
     return f"{told}::{'%0A'.join(_escaped(row, _IN_MESSAGE) for row in rows)}"
 
 
@@ -79,12 +91,13 @@ def _summary(reviews: Sequence[Review], gate: Gate, left_out: int) -> str:
     told = "".join(text for text, _ in counts(one for review in reviews for one in review.verdicts))
     accepted = sum(review.accepted for review in reviews)
     off = len({one for review in reviews for one in review.switched_off})
-    passed = all(gate.passes(review) for review in reviews)
+    passed = gate.passes_all(reviews)
     sentences = [
         f"pwmlint: {told or 'no verdict'}",
         f"{accepted} of them accepted" if accepted else "",
         f"{left_out} not shown above" if left_out else "",
         f"{off} rule{'s' * (off > 1)} switched off" if off else "",
+        not_reviewed(gate.unread),
         f"gate {gate}: {gate_answer(passed)}",
     ]
     return "; ".join(filter(None, sentences))

@@ -10,21 +10,30 @@ from collections.abc import Sequence
 from typing import Any, TextIO
 
 from ..verdict import ControllerReview, Deviation, Review, Verdict
-from . import Gate
+from . import Gate, Unread
 from .values import limit_values, number, serialised, spread_values, tool
 
 SCHEMA = 1
 
 
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
-    """Write `reviews` to `stream`; the gate is no part of it, it is the exit status."""
-    del gate
+    """Write `reviews` to `stream`, and what could not be reviewed; the gate itself is the exit status."""
     report = {
         "schema": SCHEMA,
         "tool": tool(),
         "reviews": [_review(review) for review in reviews],
+        "unread": [_unread(one) for one in gate.unread],
     }
     stream.write(serialised(report))
+
+
+def _unread(one: Unread) -> dict[str, Any]:
+    return {
+        "netlist": one.netlist,
+        "message": one.message,
+        "place": one.place._asdict(),
+        "remedy": one.remedy,
+    }
 
 
 def read_of(review: Review) -> dict[str, str | None]:

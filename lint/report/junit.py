@@ -1,7 +1,8 @@
 """The report for the test tables of CI servers: JUnit XML, one suite a netlist and one case a verdict.
 
 A case fails where its verdict stops the gate, so that the table and the exit status say the same; what else
-asks something of the reader is skipped, with the reason. ASCII throughout; what XML 1.0 forbids is written as
+asks something of the reader is skipped, with the reason. A netlist that could not be reviewed is a suite with
+one case, an error. ASCII throughout; what XML 1.0 forbids is written as
 a visible escape.
 """
 
@@ -13,7 +14,7 @@ from xml.etree import ElementTree
 
 from ...grammar.errors import printable
 from ..verdict import Outcome, Review, Verdict
-from . import Gate
+from . import Gate, Unread
 from .case_names import case_names
 from .details import details
 from .ranking import acceptance
@@ -26,6 +27,7 @@ def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     """Write one suite a review."""
     root = ElementTree.Element("testsuites", name="pwmlint")
     suites = [_suite(review, gate) for review in reviews]
+    suites += [_not_reviewed(one) for one in gate.unread]
     for count in ("tests", "failures", "errors"):
         root.set(count, str(sum(int(suite.get(count, "0")) for suite in suites)))
     root.extend(suites)
@@ -44,6 +46,22 @@ def _suite(review: Review, gate: Gate) -> ElementTree.Element:
     suite.set("skipped", str(sum(case.find("skipped") is not None for case in cases)))
     suite.append(_properties(review, gate))
     suite.extend(cases)
+    return suite
+
+
+def _not_reviewed(one: Unread) -> ElementTree.Element:
+    """Return the suite of a netlist that could not be reviewed."""
+    suite = ElementTree.Element("testsuite", name=printable(one.netlist))
+    for count, found in (("tests", 1), ("failures", 0), ("errors", 1), ("skipped", 0)):
+        suite.set(count, str(found))
+    case = ElementTree.SubElement(suite, "testcase", classname="pwmlint", name="the review is possible")
+    told = ElementTree.SubElement(case, "error", type="not reviewed", message=printable(one.message))
+    rows = (
+        one.message,
+        f"at: {one.where}" if one.where else "",
+        f"remedy: {one.remedy}" if one.remedy else "",
+    )
+    told.text = "\n".join(printable(row) for row in rows if row)
     return suite
 
 

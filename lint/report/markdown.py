@@ -10,12 +10,12 @@ from collections.abc import Iterable, Iterator, Sequence
 from typing import TextIO
 
 from ..verdict import Deviation, Review, Verdict
-from . import Gate
+from . import Gate, Unread
 from .details import details
 from .markdown_parts import folded, named, table, write_lines
 from .markdown_text import code, inline
 from .ranking import acceptance, accepted, findings, unanswered
-from .words import counts, gate_answer, word
+from .words import counts, gate_answer, not_reviewed, word
 
 # Details whose text is no prose.
 _CODE = ("formula", "at", "needs")
@@ -24,9 +24,9 @@ _CODE = ("formula", "at", "needs")
 def write(reviews: Sequence[Review], stream: TextIO, gate: Gate) -> None:
     """Write one section a review, and above several the answer to all."""
     lines: list[str] = []
-    if len(reviews) != 1:
-        passed = sum(gate.passes(review) for review in reviews)
-        lines += [f"**pwmlint: {len(reviews)} netlists, {passed} passed the gate ({gate})**", ""]
+    if len(reviews) != 1 or gate.unread:
+        lines += [f"**pwmlint: {_all(reviews, gate)}**", ""]
+        lines += [*(f"- {_not_reviewed(one)}" for one in gate.unread), *([""] if gate.unread else [])]
     for review in reviews:
         lines += _review(review, gate)
     write_lines(lines, stream)
@@ -46,6 +46,20 @@ def _review(review: Review, gate: Gate) -> Iterator[str]:
     off = [[f"- {code(one.rule)} by {code(one.where)}"] for one in review.switched_off]
     yield from _folded("Switched off", off)
     yield from _folded("Cautions", [[f"- {inline(caution)}"] for caution in review.cautions])
+
+
+def _all(reviews: Sequence[Review], gate: Gate) -> str:
+    """Return the answer to a run in words."""
+    passed = sum(gate.passes(review) for review in reviews)
+    netlists = f"{len(reviews)} netlist{'s' * (len(reviews) != 1)}"
+    told = f"{netlists}, {passed} passed the gate ({gate})" if reviews or not gate.unread else ""
+    return "; ".join(filter(None, (told, not_reviewed(gate.unread))))
+
+
+def _not_reviewed(one: Unread) -> str:
+    place = f", at {code(one.where)}" if one.where else ""
+    remedy = f"; {inline(one.remedy)}" if one.remedy else ""
+    return f"{code(one.netlist)} could not be reviewed: {inline(one.message)}{place}{remedy}"
 
 
 def _answer(review: Review, gate: Gate) -> str:

@@ -13,14 +13,14 @@ from rich.cells import cell_len
 from rich.console import Console
 
 from ..verdict import ControllerReview, Outcome, PinRow, Review, Verdict
-from . import Gate
+from . import Gate, Unread
 from .bar import Piece
 from .findings import lead, name, topics
 from .glyphs import BOX, Glyphs
 from .page import Page
 from .paper import answer, cautions, on_paper
 from .ranking import acceptance, accepted, asks, unanswered
-from .words import counts, grouped, word
+from .words import counts, grouped, not_reviewed, word
 
 _LABEL = 12
 _INDENT = 11
@@ -57,10 +57,27 @@ def render(reviews: Sequence[Review], console: Console, gate: Gate, glyphs: Glyp
         _not_applicable(page, review.verdicts)
         _switched_off(page, review)
         answer(page, counts(review.verdicts), gate.of(review), gate.passes(review))
-    if len(reviews) > 1:
+    _not_reviewed(page, gate.unread)
+    if len(reviews) > 1 or gate.unread:
         passed = sum(gate.passes(review) for review in reviews)
-        told: list[Piece] = [(f"{len(reviews)} netlists, {passed} passed", "bold")]
-        answer(page, told, gate, passed == len(reviews))
+        told = [f"{len(reviews)} netlist{'s' * (len(reviews) > 1)}, {passed} passed"] if reviews else []
+        told += [not_reviewed(gate.unread)] if gate.unread else []
+        answer(page, [("; ".join(told), "bold")], gate, gate.passes_all(reviews))
+
+
+def _not_reviewed(page: Page, unread: Sequence[Unread]) -> None:
+    """Print the netlists that could not be reviewed, and why."""
+    if not unread:
+        return
+    page.blank()
+    page.heading("could not be reviewed", page.glyphs.strong)
+    page.blank()
+    for one in unread:
+        page.paragraph(one.netlist, _INDENT, ("  error", "bold red"), "bold")
+        for text, style in ((one.message, ""), (one.where and f"at {one.where}", "dim"), (one.remedy, "")):
+            if text:
+                page.paragraph(text, _INDENT, style=style)
+        page.blank()
 
 
 def _title(page: Page, review: Review) -> None:

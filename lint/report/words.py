@@ -7,12 +7,13 @@ from __future__ import annotations
 
 import re
 from collections import Counter
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from typing import TYPE_CHECKING
 
 from ..verdict import Level, Outcome, Verdict
 
 if TYPE_CHECKING:
+    from . import Unread
     from .bar import Piece
 
 # One word a verdict: a failed one goes by its level. Worst first: the order in a topic and of the counts.
@@ -62,6 +63,12 @@ def counts(verdicts: Iterable[Verdict]) -> list[Piece]:
         if found[text, style] and (text, style) != _WORDS[Outcome.NOT_APPLICABLE, None]:
             pieces += [(", " if pieces else "", ""), (f"{found[text, style]} {text}", style)]
     return pieces
+
+
+def not_reviewed(unread: Sequence[Unread]) -> str:
+    """Return how many netlists could not be reviewed, in words; empty where all could be."""
+    count = len(unread)
+    return f"{count} netlist{'s' * (count > 1)} could not be reviewed" if count else ""
 
 
 def grouped(sentences: Iterable[str]) -> list[str]:

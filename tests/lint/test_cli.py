@@ -117,17 +117,21 @@ def test_one_of_several_that_stops_is_enough() -> None:
     assert cli.main(["review", "sound.cir", "error.cir", "sound.cir"]) == 1
 
 
-def test_what_is_passed_on(asked: Asked) -> None:
+def test_what_is_passed_on(asked: Asked, tmp_path: Path) -> None:
+    folders = [tmp_path / "models", tmp_path / "more"]
+    for folder in folders:
+        folder.mkdir()
     arguments = ["review", "sound.cir", "--brief", "b.toml", "--parts-list", "p.csv"]
     arguments += ["--deviations", "d.toml"]
-    cli.main([*arguments, "--allow-include", "models", "--allow-include", "more", "--worst-case", "rss"])
+    arguments += [f"--allow-include={folder}" for folder in folders]
+    cli.main([*arguments, "--worst-case", "rss"])
     assert asked == [
         {
             "netlist": "sound.cir",
             "brief": "b.toml",
             "parts_list": "p.csv",
             "deviations": "d.toml",
-            "allow_include": [Path("models"), Path("more")],
+            "allow_include": folders,
             "method": Method.RSS,
         }
     ]
@@ -143,18 +147,41 @@ def test_findings_on_standard_output_and_nothing_else(capsys: pytest.CaptureFixt
 def test_an_unreadable_netlist_does_not_hide_the_others(capsys: pytest.CaptureFixture[str]) -> None:
     assert cli.main(["review", "missing.cir", "error.cir", "gone.cir", "--format", "json"]) == 2
     streams = capsys.readouterr()
-    assert [review["netlist"] for review in json.loads(streams.out)["reviews"]] == ["error.cir"]
+    report = json.loads(streams.out)
+    assert [review["netlist"] for review in report["reviews"]] == ["error.cir"]
+    assert [one["netlist"] for one in report["unread"]] == ["missing.cir", "gone.cir"]
     assert streams.err == (
         "missing.cir: there is no such file\n  remedy:   check the path\n"
         "gone.cir: there is no such file\n  remedy:   check the path\n"
     )
 
 
-def test_nothing_reviewed_nothing_reported(capsys: pytest.CaptureFixture[str], tmp_path: Path) -> None:
+def test_a_report_of_nothing_takes_the_place_of_an_older_one(
+    capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
     path = tmp_path / "report.json"
+    path.write_text("passed the day before", encoding="utf-8")
     assert cli.main(["review", "missing.cir", "--format", "json", "--output", str(path)]) == 2
+    report = json.loads(path.read_text(encoding="utf-8"))
+    assert report["reviews"] == []
+    assert report["unread"][0]["message"] == "there is no such file"
     assert capsys.readouterr().out == ""
-    assert not path.exists()
+
+
+def test_at_a_terminal_nothing_is_told_twice(capsys: pytest.CaptureFixture[str]) -> None:
+    assert cli.main(["review", "missing.cir"]) == 2
+    streams = capsys.readouterr()
+    assert streams.out == ""
+    assert streams.err.startswith("missing.cir: there is no such file")
+
+
+def test_a_folder_without_a_netlist_is_in_the_report(
+    capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
+    assert cli.main(["review", "sound.cir", str(tmp_path), "--format", "json"]) == 2
+    (unread,) = json.loads(capsys.readouterr().out)["unread"]
+    assert unread["netlist"] == str(tmp_path)
+    assert unread["message"] == "no netlist in this folder"
 
 
 @pytest.mark.parametrize(

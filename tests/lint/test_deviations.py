@@ -248,6 +248,19 @@ class TestApplying:
         assert became.unused == (unused,)
         assert became.outgrown == ((outgrown, verdicts[0]),)
 
+    def test_of_a_rule_that_was_not_asked_nobody_can_know(self, write: Write) -> None:
+        deviations = read_deviations(write(ENTRY + ENTRY.replace("reference.load", "dead-time.*")))
+        _, became = apply(deviations, [], TODAY, lambda pattern: pattern != "dead-time.*")
+        assert (became.unused, became.unasked) == (deviations.entries[:1], deviations.entries[1:])
+
+    def test_a_file_of_long_patterns_costs_little(self, write: Write) -> None:
+        text = "".join(ENTRY.replace("reference.load", f"*{number}" + "*?a" * 90) for number in range(400))
+        deviations = read_deviations(write(text))
+        verdicts = [load(0.012), load(0.012, rule="a" * 400)] * 50
+        began = time.process_time()
+        apply(deviations, verdicts, TODAY)
+        assert time.process_time() - began < 5.0  # about 1 s; compiled anew for each verdict, two minutes
+
     def test_the_first_that_covers_it_accepts_it(self, write: Write) -> None:
         text = ENTRY + 'accepted = "11 mA"\n' + ENTRY + ENTRY
         deviations = read_deviations(write(text))

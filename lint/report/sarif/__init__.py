@@ -12,11 +12,11 @@ from typing import Any, TextIO
 from ....grammar.errors import printable
 from ...rule import Rule, load_rules
 from ...verdict import Review, SwitchedOff
-from .. import Gate
+from .. import Gate, Unread
 from ..values import serialised, tool
-from ..words import gate_answer
+from ..words import gate_answer, not_reviewed
 from .places import BASE, artifact, physical
-from .results import Tables, results
+from .results import Tables, inert, results
 from .rules import descriptor
 from .sources import NAME, indexes, taxonomy
 
@@ -51,16 +51,32 @@ def log(reviews: Sequence[Review], gate: Gate, rules: Sequence[Rule]) -> dict[st
 
 
 def _invocation(reviews: Iterable[Review], gate: Gate) -> dict[str, Any]:
-    """Return how the run ended: it was a success whatever it found, and the gate gives the exit status."""
-    passed = all(gate.passes(review) for review in reviews)
+    """Return how the run ended.
+
+    It was a success whatever it found, and the gate gives the exit status; but not where a netlist could not
+    be reviewed.
+    """
+    passed = gate.passes_all(reviews)
     told: dict[str, Any] = {
-        "executionSuccessful": True,
-        "exitCode": 0 if passed else 1,
-        "exitCodeDescription": f"gate {gate}: {gate_answer(passed)}",
+        "executionSuccessful": not gate.unread,
+        "exitCode": 2 if gate.unread else 0 if passed else 1,
+        "exitCodeDescription": not_reviewed(gate.unread) or f"gate {gate}: {gate_answer(passed)}",
     }
+    if gate.unread:
+        told["toolExecutionNotifications"] = [_unread(one) for one in gate.unread]
     if off := [_not_asked(one, review) for review in reviews for one in review.switched_off]:
         told["toolConfigurationNotifications"] = off
     return told
+
+
+def _unread(one: Unread) -> dict[str, Any]:
+    """Return the notification that a netlist could not be reviewed."""
+    reason = f"{one.netlist} could not be reviewed: {one.message}"
+    return {
+        "level": "error",
+        "message": {"text": inert(printable(f"{reason}; {one.remedy}" if one.remedy else reason))},
+        "locations": [{"physicalLocation": physical(one.place)}],
+    }
 
 
 def _not_asked(off: SwitchedOff, review: Review) -> dict[str, Any]:

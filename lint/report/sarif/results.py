@@ -68,7 +68,7 @@ def message(verdict: Verdict) -> str:
     sentences = [verdict.message, *(f"Missing: {need}" for need in verdict.needs)]
     if verdict.remedy:
         sentences.append(f"Remedy: {verdict.remedy}")
-    return _inert(" ".join(_ended(printable(sentence)) for sentence in sentences))
+    return inert(" ".join(_ended(printable(sentence)) for sentence in sentences))
 
 
 def _level(verdict: Verdict) -> str:
@@ -82,7 +82,7 @@ def _ended(sentence: str) -> str:
     return sentence if sentence.endswith((".", "?", "!")) else f"{sentence}."
 
 
-def _inert(text: str) -> str:
+def inert(text: str) -> str:
     """Return a message in which a name can be neither a placeholder nor an embedded link.
 
     Braces are doubled (section 3.11.5). Brackets get a backslash (section 3.11.6), but only where there could

@@ -189,7 +189,8 @@ class TestReview:
 
     def test_the_reports_of_the_file(self, capsys: pytest.CaptureFixture[str]) -> None:
         configure('[reports]\ntext = "-"\njson = "beacon.report.json"\n')
-        _, out, _ = run(capsys, "review", "beacon.cir", "./beacon.cir")
+        Path("lamp.cir").write_text(NETLIST)
+        _, out, _ = run(capsys, "review", "beacon.cir", "lamp.cir")
         assert "2 netlists" in out
         assert len(json.loads(Path("beacon.report.json").read_text())["reviews"]) == 2
         Path("beacon.report.json").unlink()
@@ -235,7 +236,11 @@ class TestReview:
         status, out, err = run(capsys, "review", *netlists, "beacon.cir")
         assert status == 2
         assert "netlist     beacon.cir" in out
-        assert "mast/" not in out
+        assert "netlist     mast/" not in out
+        assert out.count("at mast/pwmlint.toml:1:8") == 2
+        assert out.endswith(
+            "1 netlist, 1 passed; 2 netlists could not be reviewed     gate error: not passed\n"
+        )
         assert err.count("mast/pwmlint.toml:1:8: ") == 1
 
     def test_different_reports(self, capsys: pytest.CaptureFixture[str]) -> None:
@@ -262,7 +267,8 @@ class TestReview:
         )
         assert "Traceback" not in err
         assert "netlist     pump.cir" in out
-        assert "beacon.cir" not in out
+        assert "netlist     beacon.cir" not in out
+        assert "crashed on beacon.cir" in out
 
     def test_the_same_input_gives_the_same_bytes(self, capsys: pytest.CaptureFixture[str]) -> None:
         configure('rules = "house"\n[topics]\nconnections = "off"\n[levels]\nsupply.range = "off"\n')
@@ -314,6 +320,38 @@ class TestDeviations:
         arguments = ["review", "beacon.cir", "--rules", "house", "--format", "json"]
         (found,) = json.loads(run(capsys, *arguments)[1])["reviews"]
         assert (found["deviations"], found["accepted"]) == ("accepted.toml", 1)
+
+    @pytest.mark.parametrize(
+        ("configuration", "arguments"),
+        [
+            ('[levels]\nlabel.present = "off"\n', ["--rules", "house"]),
+            ('[topics]\nlabels = "off"\n', ["--rules", "house"]),
+            ('rules = "house"\n', []),  # not trusted, so not loaded
+        ],
+    )
+    @pytest.mark.parametrize("rule", ["label.present", "label.*"])
+    def test_one_from_a_rule_that_was_not_asked_is_not_called_unused(
+        self, configuration: str, arguments: list[str], rule: str, capsys: pytest.CaptureFixture[str]
+    ) -> None:
+        Path("beacon.deviations.toml").write_text(
+            self.DEVIATION.replace("label.present", rule) + 'subject = "*"\n'
+        )
+        configure(configuration)
+        _, out, _ = run(capsys, "review", "beacon.cir", "--format", "json", *arguments)
+        (found,) = json.loads(out)["reviews"]
+        (about,) = [one for one in found["verdicts"] if one["rule"] == "deviations.unused"]
+        assert about["outcome"] == "informational"
+        assert about["message"] == (f"the deviation from {rule} of * was not needed: its rule was not asked")
+        assert about["places"] == [{"file": "beacon.deviations.toml", "line": 1, "column": 3}]
+
+    def test_one_from_a_rule_that_does_not_exist_is(self, capsys: pytest.CaptureFixture[str]) -> None:
+        Path("beacon.deviations.toml").write_text(self.DEVIATION.replace("present", "presnt"))
+        configure('[levels]\nlabel.present = "off"\n')
+        _, out, _ = run(capsys, "review", "beacon.cir", "--rules", "house", "--format", "json")
+        (about,) = [
+            one for one in json.loads(out)["reviews"][0]["verdicts"] if one["rule"] == "deviations.unused"
+        ]
+        assert (about["outcome"], about["level"]) == ("fail", "note")
 
     def test_a_permit_is_for_what_a_review_would_find(self, capsys: pytest.CaptureFixture[str]) -> None:
         assert 'rule = "label.present"' in run(capsys, "permit", "beacon.cir", "--rules", "house")[1]

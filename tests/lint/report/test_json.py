@@ -9,8 +9,9 @@ from typing import Any
 
 import pytest
 from jsonschema import ValidationError
+from pwmlint.grammar.netlist import Place
 from pwmlint.lint.quantity import Spread
-from pwmlint.lint.report import Gate, writer
+from pwmlint.lint.report import Gate, Unread, writer
 from pwmlint.lint.verdict import Level, Limit, Outcome, Review, Verdict
 
 from .json_schema import check, schema_of
@@ -50,11 +51,15 @@ def test_a_deviation_is_told_with_who_answers_for_it(accepted: Review) -> None:
 
 
 def test_the_schema_describes_every_key_and_no_other(accepted: Review, schema: dict[str, Any]) -> None:
-    report = written(accepted)
+    stream = StringIO()
+    unread = Unread("lamp.cir", "there is no such file", Place("lamp.cir", 0, 0))
+    writer("json")((accepted,), stream, Gate(unread=(unread,)))
+    report: dict[str, Any] = json.loads(stream.getvalue())
     review, verdict = report["reviews"][0], report["reviews"][0]["verdicts"][0]
     (deviation, *_) = [one["deviation"] for one in review["verdicts"] if one["deviation"]]
     for found, described in (
         (report, schema),
+        (report["unread"][0], schema["$defs"]["unread"]),
         (review, schema["$defs"]["review"]),
         (verdict, schema["$defs"]["verdict"]),
         (deviation, schema["$defs"]["deviation"]),
