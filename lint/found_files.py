@@ -54,5 +54,6 @@ def refuse_link_out(
     error: type[NetlistError] = NetlistError,
 ) -> None:
     """Raise `error` for a file that a link leads out of `root` to; `shown` is the path to tell of."""
-    if not found.resolve().is_relative_to(root):
+    # Unlike the method of a path it also answers for links that lead in a ring; reading tells of these.
+    if not Path(os.path.realpath(found)).is_relative_to(root):
         raise error(f"this link leads out of {root}", Place(str(shown or found), 0, 0), remedy=remedy)

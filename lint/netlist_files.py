@@ -65,7 +65,14 @@ def _files(folder: Path) -> Iterator[Path]:
             if Path(name).suffix.casefold() in ENDINGS and not name.startswith("."):
                 found = Path(where, name)
                 refuse_link_out(found, root, remedy="take the link out, or name the netlist itself")
+                _refuse_pipe(found)
                 yield found
+
+
+def _refuse_pipe(found: Path) -> None:
+    """Raise NetlistError for what is no file: nobody writes into a pipe that is merely there."""
+    if os.path.exists(found) and not os.path.isfile(found):
+        raise _error(found, "this is no file", "take it out of the folder, or name it itself")
 
 
 def _beside(path: Path, stem: str) -> list[str]:

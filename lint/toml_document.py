@@ -84,7 +84,12 @@ class TomlDocument:
     def _load(self, text: str) -> dict[str, Any]:
         for number, line in enumerate(self._lines, 1):
             if len(line) > _LONGEST_LINE:  # tomllib takes quadratic time over a key of thousands of parts
-                raise self._made(f"a line of {len(line)} characters", Place(self.file, number, 1))
+                raise self._made(
+                    f"a line of {len(line):,} characters",
+                    Place(self.file, number, 1),
+                    expected=f"lines of at most {_LONGEST_LINE:,} characters",
+                    remedy="break the line; a list may stand on several",
+                )
         try:
             return tomllib.loads(text)
         except RecursionError:

@@ -23,7 +23,7 @@ EXIT = """exit status: 0 the gate passed, 1 it did not, 2 something could not be
 
 def tell(message: str) -> None:
     """Print a message on standard error; where nobody listens any more there is nobody to tell."""
-    with suppress(BrokenPipeError):
+    with suppress(OSError):  # a closed pipe, a full disk
         print(message, file=sys.stderr)  # noqa: T201 - standard error is where messages go
 
 

@@ -201,7 +201,7 @@ def test_all_mistakes_are_shown_in_one_run(write: Write) -> None:
         ('[rails.V]\nvoltage = "12 V', 2, 16, "not TOML"),
         ("pins = [\n", 2, 1, "not TOML"),
         ("[design]\n[design]\n", 2, 8, "not TOML"),
-        ("a = " + "9" * 2_000, 1, 1, "a line of 2004 characters"),
+        ("a = " + "9" * 2_000, 1, 1, "a line of 2,004 characters"),
         ("a = " + "[\n" * 3_000, 0, 0, "nested too deeply"),
         ("a." * 3_000 + "b = 1", 1, 1, "a line of"),
     ],

@@ -155,3 +155,40 @@ def assert_refused(process: subprocess.CompletedProcess[bytes], file: Path, plac
     assert "internal error" not in message
     assert process.stdout == b""
     assert process.returncode == 2
+
+
+def without(stream: str, *arguments: str) -> subprocess.CompletedProcess[bytes]:
+    """Run the command line with one stream closed, as a shell does for `>&-`."""
+    closed = {"stdin": "<&-", "stdout": ">&-", "stderr": "2>&-"}[stream]
+    return subprocess.run(
+        ["sh", "-c", f'exec "$@" {closed}', "sh", *COMMAND, *arguments],
+        capture_output=True,
+        timeout=60,
+        check=False,
+    )
+
+
+@pytest.mark.skipif(os.name == "nt", reason="closes streams as a POSIX shell does")
+@pytest.mark.parametrize(
+    ("stream", "arguments", "says"),
+    [
+        ("stdin", ["review", "-"], b"<standard input>: the file is empty"),
+        ("stdout", ["controllers"], b"standard output: the report cannot be written"),
+        ("stderr", ["review", "gone.cir"], b""),
+    ],
+)
+def test_a_stream_that_is_closed(stream: str, arguments: list[str], says: bytes) -> None:
+    process = without(stream, *arguments)
+    assert process.returncode == 2
+    assert process.stdout == b""
+    assert process.stderr.startswith(says)
+    assert b"internal error" not in process.stderr
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="the system has no device that is always full")
+def test_messages_on_a_full_disk_do_not_change_the_exit_status() -> None:
+    with Path("/dev/full").open("wb") as full:
+        process = subprocess.run(
+            [*COMMAND, "review", "gone.cir"], stdout=subprocess.PIPE, stderr=full, timeout=60, check=False
+        )
+    assert (process.returncode, process.stdout) == (2, b"")

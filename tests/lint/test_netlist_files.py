@@ -103,3 +103,17 @@ def test_there_is_a_limit(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(netlist_files, "_MOST", 2)
     with pytest.raises(NetlistError, match="more than 2 netlists"):
         netlists("press")
+
+
+@pytest.mark.skipif(os.name == "nt", reason="links and pipes as POSIX has them")
+class TestWhatIsNoFile:
+    def test_a_ring_of_links_is_left_to_the_reader_to_tell(self, orchard: Path) -> None:
+        ring = orchard / "empty" / "ring.cir"
+        ring.symlink_to("ring.cir")
+        assert netlists("empty") == ["empty/ring.cir"]
+
+    def test_nobody_waits_for_a_pipe(self, orchard: Path) -> None:
+        os.mkfifo(orchard / "empty" / "pipe.cir")
+        with pytest.raises(NetlistError, match="this is no file") as caught:
+            netlists("empty")
+        assert caught.value.place.file == "empty/pipe.cir"
