@@ -10,7 +10,7 @@ from __future__ import annotations
 import math
 import sys
 import time
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Generator, Sequence
 from contextlib import contextmanager
 
 
@@ -33,7 +33,7 @@ def least_times(
 
 
 @contextmanager
-def untraced() -> Iterator[None]:
+def untraced() -> Generator[None, None, None]:
     """Let nobody trace what runs: counting the lines of our code would slow it down, and no library's."""
     tracing = sys.gettrace()
     sys.settrace(None)
